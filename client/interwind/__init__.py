@@ -1,0 +1,1 @@
+"""interwind: the language both sides speak."""

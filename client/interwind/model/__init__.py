@@ -1,0 +1,1 @@
+"""Frozen values: windings, network, response. Shapes are checked here, physics never."""

@@ -1,0 +1,1 @@
+"""The part that thinks."""
