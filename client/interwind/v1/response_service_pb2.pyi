@@ -1,0 +1,99 @@
+from interwind.v1 import array_pb2 as _array_pb2
+from interwind.v1 import network_pb2 as _network_pb2
+from interwind.v1 import response_pb2 as _response_pb2
+from google.protobuf.internal import containers as _containers
+from google.protobuf import descriptor as _descriptor
+from google.protobuf import message as _message
+from typing import ClassVar as _ClassVar, Iterable as _Iterable, Mapping as _Mapping, Optional as _Optional, Union as _Union
+
+DESCRIPTOR: _descriptor.FileDescriptor
+
+class ComputeFrequencyResponseRequest(_message.Message):
+    __slots__ = ("size", "network", "frequency_hz", "adaptive_sweep", "observe")
+    SIZE_FIELD_NUMBER: _ClassVar[int]
+    NETWORK_FIELD_NUMBER: _ClassVar[int]
+    FREQUENCY_HZ_FIELD_NUMBER: _ClassVar[int]
+    ADAPTIVE_SWEEP_FIELD_NUMBER: _ClassVar[int]
+    OBSERVE_FIELD_NUMBER: _ClassVar[int]
+    size: _response_pb2.Size
+    network: _network_pb2.Network
+    frequency_hz: _array_pb2.Array
+    adaptive_sweep: AdaptiveSweep
+    observe: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., frequency_hz: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., adaptive_sweep: _Optional[_Union[AdaptiveSweep, _Mapping]] = ..., observe: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ...) -> None: ...
+
+class AdaptiveSweep(_message.Message):
+    __slots__ = ("start_hz", "stop_hz", "tolerance_db")
+    START_HZ_FIELD_NUMBER: _ClassVar[int]
+    STOP_HZ_FIELD_NUMBER: _ClassVar[int]
+    TOLERANCE_DB_FIELD_NUMBER: _ClassVar[int]
+    start_hz: float
+    stop_hz: float
+    tolerance_db: float
+    def __init__(self, start_hz: _Optional[float] = ..., stop_hz: _Optional[float] = ..., tolerance_db: _Optional[float] = ...) -> None: ...
+
+class ComputeFrequencyResponseResponse(_message.Message):
+    __slots__ = ("progress", "header", "chunk", "trailer")
+    PROGRESS_FIELD_NUMBER: _ClassVar[int]
+    HEADER_FIELD_NUMBER: _ClassVar[int]
+    CHUNK_FIELD_NUMBER: _ClassVar[int]
+    TRAILER_FIELD_NUMBER: _ClassVar[int]
+    progress: _response_pb2.Progress
+    header: _response_pb2.ResultHeader
+    chunk: _response_pb2.ResultChunk
+    trailer: _response_pb2.ResultTrailer
+    def __init__(self, progress: _Optional[_Union[_response_pb2.Progress, _Mapping]] = ..., header: _Optional[_Union[_response_pb2.ResultHeader, _Mapping]] = ..., chunk: _Optional[_Union[_response_pb2.ResultChunk, _Mapping]] = ..., trailer: _Optional[_Union[_response_pb2.ResultTrailer, _Mapping]] = ...) -> None: ...
+
+class ComputePortResponseRequest(_message.Message):
+    __slots__ = ("size", "network", "frequency_hz")
+    SIZE_FIELD_NUMBER: _ClassVar[int]
+    NETWORK_FIELD_NUMBER: _ClassVar[int]
+    FREQUENCY_HZ_FIELD_NUMBER: _ClassVar[int]
+    size: _response_pb2.Size
+    network: _network_pb2.Network
+    frequency_hz: _array_pb2.Array
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., frequency_hz: _Optional[_Union[_array_pb2.Array, _Mapping]] = ...) -> None: ...
+
+class ComputePortResponseResponse(_message.Message):
+    __slots__ = ("progress", "header", "chunk", "trailer")
+    PROGRESS_FIELD_NUMBER: _ClassVar[int]
+    HEADER_FIELD_NUMBER: _ClassVar[int]
+    CHUNK_FIELD_NUMBER: _ClassVar[int]
+    TRAILER_FIELD_NUMBER: _ClassVar[int]
+    progress: _response_pb2.Progress
+    header: _response_pb2.ResultHeader
+    chunk: _response_pb2.ResultChunk
+    trailer: _response_pb2.ResultTrailer
+    def __init__(self, progress: _Optional[_Union[_response_pb2.Progress, _Mapping]] = ..., header: _Optional[_Union[_response_pb2.ResultHeader, _Mapping]] = ..., chunk: _Optional[_Union[_response_pb2.ResultChunk, _Mapping]] = ..., trailer: _Optional[_Union[_response_pb2.ResultTrailer, _Mapping]] = ...) -> None: ...
+
+class ComputeTimeResponseRequest(_message.Message):
+    __slots__ = ("size", "network", "stop_s", "step_s", "observe", "initial", "steady_start", "tolerance")
+    SIZE_FIELD_NUMBER: _ClassVar[int]
+    NETWORK_FIELD_NUMBER: _ClassVar[int]
+    STOP_S_FIELD_NUMBER: _ClassVar[int]
+    STEP_S_FIELD_NUMBER: _ClassVar[int]
+    OBSERVE_FIELD_NUMBER: _ClassVar[int]
+    INITIAL_FIELD_NUMBER: _ClassVar[int]
+    STEADY_START_FIELD_NUMBER: _ClassVar[int]
+    TOLERANCE_FIELD_NUMBER: _ClassVar[int]
+    size: _response_pb2.Size
+    network: _network_pb2.Network
+    stop_s: float
+    step_s: float
+    observe: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
+    initial: _containers.RepeatedCompositeFieldContainer[_response_pb2.InitialValue]
+    steady_start: bool
+    tolerance: float
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., stop_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ..., initial: _Optional[_Iterable[_Union[_response_pb2.InitialValue, _Mapping]]] = ..., steady_start: bool = ..., tolerance: _Optional[float] = ...) -> None: ...
+
+class ComputeTimeResponseResponse(_message.Message):
+    __slots__ = ("progress", "header", "chunk", "trailer")
+    PROGRESS_FIELD_NUMBER: _ClassVar[int]
+    HEADER_FIELD_NUMBER: _ClassVar[int]
+    CHUNK_FIELD_NUMBER: _ClassVar[int]
+    TRAILER_FIELD_NUMBER: _ClassVar[int]
+    progress: _response_pb2.Progress
+    header: _response_pb2.ResultHeader
+    chunk: _response_pb2.ResultChunk
+    trailer: _response_pb2.ResultTrailer
+    def __init__(self, progress: _Optional[_Union[_response_pb2.Progress, _Mapping]] = ..., header: _Optional[_Union[_response_pb2.ResultHeader, _Mapping]] = ..., chunk: _Optional[_Union[_response_pb2.ResultChunk, _Mapping]] = ..., trailer: _Optional[_Union[_response_pb2.ResultTrailer, _Mapping]] = ...) -> None: ...
