@@ -5,7 +5,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 from enum import Enum
 
-
 from interwind.model.finding import Caution, Evidence, Finding, Verdict
 from interwind.model.frozen import FloatArray
 from interwind.model.json_form import JsonForm
@@ -65,9 +64,11 @@ class Change:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class RepairReport(JsonForm):
-    """The answer of `repair`: the mended set, its unweighted Frobenius distance in couplings, every change, every leakage.
+    """The answer of `repair`: the mended set, its Frobenius distance in couplings, every change, every leakage.
 
-    ``leakage_before_h``, ``leakage_after_h`` (n, n), H: row driven, column shorted.
+    ``leakage_before_h``, ``leakage_after_h`` (n, n), H: row driven, column shorted, the others open;
+    ``all_shorted_leakage_before_h``, ``all_shorted_leakage_after_h`` (n,), H: each driven, all others shorted. NaN
+    where the set as stated gives none.
     """
 
     windings: WindingSet
@@ -75,8 +76,8 @@ class RepairReport(JsonForm):
     changes: tuple[Change, ...]
     leakage_before_h: FloatArray
     leakage_after_h: FloatArray
+    all_shorted_leakage_before_h: FloatArray
+    all_shorted_leakage_after_h: FloatArray
     findings: tuple[Finding, ...] = ()
     cautions: tuple[Caution, ...] = ()
     evidence: Evidence = Evidence()
-
-
