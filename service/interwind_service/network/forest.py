@@ -1,0 +1,48 @@
+"""Spanning forests of a graph given by the end nodes of its branches (Kruskal 1956)."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+import numpy as np
+from numpy.typing import NDArray
+
+IntArray = NDArray[np.int64]
+
+
+class _Union:
+    """Disjoint sets with path halving."""
+
+    def __init__(self, size: int) -> None:
+        self.parent = list(range(size))
+
+    def find(self, item: int) -> int:
+        parent = self.parent
+        while parent[item] != item:
+            parent[item] = parent[parent[item]]
+            item = parent[item]
+        return item
+
+    def join(self, one: int, other: int) -> bool:
+        a, b = self.find(one), self.find(other)
+        if a == b:
+            return False
+        self.parent[max(a, b)] = min(a, b)
+        return True
+
+
+def components(nodes: int, start: IntArray, finish: IntArray) -> IntArray:
+    """Return the component of each node, shape (nodes,), numbered in order of their first node."""
+    union = _Union(nodes)
+    for a, b in zip(start.tolist(), finish.tolist(), strict=True):
+        union.join(a, b)
+    roots = [union.find(k) for k in range(nodes)]
+    number: dict[int, int] = {}
+    return np.array([number.setdefault(root, len(number)) for root in roots], dtype=np.int64)
+
+
+def spanning_forest(nodes: int, start: IntArray, finish: IntArray, order: Iterable[int]) -> IntArray:
+    """Return the branches of the spanning forest that takes branches in ``order`` (the greedy basis of the graph)."""
+    union = _Union(nodes)
+    a, b = start.tolist(), finish.tolist()
+    return np.array([k for k in order if union.join(a[k], b[k])], dtype=np.int64)

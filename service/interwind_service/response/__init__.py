@@ -1,0 +1,1 @@
+"""What then happens: in frequency, in time, in the periodic state, with the evidence for it."""
