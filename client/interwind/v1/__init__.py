@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "72884618f8213e633cbf70e02719acd6a6197fba596f799882d76ec5781e6b3b"
+SOURCE_SHA256 = "9b70e93727111a9c5917fe3c62ba8dc413313491cbc3c5329f4950b6a3e16cb1"
