@@ -235,4 +235,4 @@ def field_path(prefix: str) -> Iterator[None]:
 
 def join_path(prefix: str, field: str) -> str:
     """Join two parts of a field path: ``elements[3]`` + ``resistance_ohm``, or ``coupling`` + ``[0][1]``."""
-    return prefix + field if not field or field.startswith("[") else f"{prefix}.{field}"
+    return prefix + field if not prefix or not field or field.startswith("[") else f"{prefix}.{field}"

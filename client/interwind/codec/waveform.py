@@ -1,0 +1,51 @@
+"""Waveforms <-> messages. The classes and the messages spell their fields alike, so one table serves both directions."""
+
+from __future__ import annotations
+
+from dataclasses import fields
+from typing import Any
+
+from interwind.codec.array import array_from_message, array_to_message
+from interwind.errors import InvalidRequest, field_path
+from interwind.model import waveform as model
+from interwind.v1 import network_pb2
+
+_SHAPES: dict[str, type[Any]] = {
+    "constant": model.Constant,
+    "step": model.Step,
+    "ramp": model.Ramp,
+    "sine": model.Sine,
+    "trapezoid": model.Trapezoid,
+    "double_exponential": model.DoubleExponential,
+}
+_NAMES = {cls: name for name, cls in _SHAPES.items()}
+
+
+def waveform_to_message(waveform: model.Waveform) -> network_pb2.Waveform:
+    """Return the message of a waveform."""
+    message = network_pb2.Waveform()
+    if isinstance(waveform, model.PiecewiseLinear):
+        message.piecewise_linear.time_s.CopyFrom(array_to_message(waveform.time_s))
+        message.piecewise_linear.value.CopyFrom(array_to_message(waveform.value))
+        return message
+    shape = getattr(message, _NAMES[type(waveform)])
+    shape.SetInParent()
+    for field in fields(waveform):
+        setattr(shape, field.name, getattr(waveform, field.name))
+    return message
+
+
+def waveform_from_message(message: network_pb2.Waveform) -> model.Waveform:
+    """Return the waveform of a message."""
+    name = message.WhichOneof("shape")
+    if name is None:
+        raise InvalidRequest.at("shape", "no waveform found; state one, such as step")
+    shape = getattr(message, name)
+    with field_path(name):
+        if name == "piecewise_linear":
+            return model.PiecewiseLinear(
+                array_from_message(shape.time_s, "time_s"), array_from_message(shape.value, "value")
+            )
+        cls = _SHAPES[name]
+        waveform: model.Waveform = cls(**{field.name: getattr(shape, field.name) for field in fields(cls)})
+        return waveform

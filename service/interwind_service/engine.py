@@ -1,0 +1,84 @@
+"""Value in, value out: one function a call. No grpc, no protobuf.
+
+Every answer leaves with the fingerprint of its request and the version that computed it.
+"""
+
+from __future__ import annotations
+
+import functools
+from collections.abc import Callable
+from dataclasses import replace
+from typing import Any, ParamSpec, TypeVar
+
+from interwind.model.digest import request_digest
+from interwind.model.network import Network
+from interwind.model.report import ValidityReport
+from interwind.model.response import FrequencyResponse, MnaSystem, PortResponse, TimeResponse
+from interwind.model.windings import WindingSet
+
+from interwind_service.version import SERVICE_VERSION
+
+P = ParamSpec("P")
+R = TypeVar("R")
+
+
+def _with_provenance(function: Callable[P, R]) -> Callable[P, R]:
+    """Put the request's fingerprint and the service's version into the evidence of the answer."""
+
+    @functools.wraps(function)
+    def call(*args: P.args, **kwargs: P.kwargs) -> R:
+        answer: Any = function(*args, **kwargs)
+        names = function.__code__.co_varnames[: function.__code__.co_argcount]
+        arguments = dict(zip(names, args, strict=False)) | kwargs
+        return replace(
+            answer,
+            evidence=replace(
+                answer.evidence,
+                input_sha256=request_digest(function.__name__, arguments),
+                service_version=SERVICE_VERSION,
+            ),
+        )
+
+    return call
+
+
+@_with_provenance
+def check(windings: WindingSet) -> ValidityReport:
+    """Say whether the windings can exist."""
+    from interwind_service.windings import verdict
+
+    return verdict.check(windings)
+
+
+@_with_provenance
+def stamp(network: Network) -> MnaSystem:
+    """Return the matrices of the network."""
+    from interwind_service.network import system
+
+    return system.stamp(network)
+
+
+@_with_provenance
+def frequency_response(network: Network, frequency_hz: Any, observe: Any = None) -> FrequencyResponse:
+    """Solve the network over frequency."""
+    from interwind_service.response import frequency
+
+    return frequency.frequency_response(network, frequency_hz, observe)
+
+
+@_with_provenance
+def port_response(network: Network, frequency_hz: Any) -> PortResponse:
+    """Look into the ports of the network over frequency."""
+    from interwind_service.response import ports
+
+    return ports.port_response(network, frequency_hz)
+
+
+@_with_provenance
+def time_response(
+    network: Network, stop_s: float, step_s: float, observe: Any = None, initial: Any = None, tolerance: float = 1e-6
+) -> TimeResponse:
+    """Solve the network over time."""
+    from interwind_service.response import time
+
+    return time.time_response(network, stop_s, step_s, observe, initial, tolerance)
