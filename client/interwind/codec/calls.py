@@ -10,8 +10,6 @@ from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any
 
-from google.protobuf.message import DecodeError
-
 from interwind.codec import response as responses
 from interwind.codec.array import array_from_message, array_to_message
 from interwind.codec.network import network_from_message, network_to_message
@@ -46,27 +44,20 @@ class Call:
     _to_answer: Callable[[Any], Any]
     _from_answer: Callable[..., Any]
 
-    def encode_request(self, arguments: Arguments) -> Any:
+    def encode_request(self, **arguments: Any) -> Any:
         """Return the request message of the engine function's arguments."""
         return self._to_request(arguments)
 
-    def decode_request(self, data: bytes) -> dict[str, Any]:
-        """Return the engine function's arguments from the bytes of a request; `InvalidRequest` when they are malformed."""
-        message = self.request_class()
-        try:
-            message.ParseFromString(data)
-        except DecodeError as error:
-            raise InvalidRequest(
-                "the request is not a message of this type; build it from the contract in proto/", reason="MALFORMED"
-            ) from error
+    def decode(self, message: Any) -> dict[str, Any]:
+        """Return the engine function's arguments of a request message."""
         return self._from_request(message)
 
-    def encode_answer(self, value: Any) -> Iterator[Any]:
+    def encode(self, value: Any) -> Iterator[Any]:
         """Yield the response messages of the engine function's answer; exactly one unless streaming."""
         answer = self._to_answer(value)
         return iter(answer) if self.streaming else iter((answer,))
 
-    def decode_answer(self, messages: Iterable[Any], progress: Callable[[int, int], None] | None = None) -> Any:
+    def decode_response(self, messages: Iterable[Any], progress: Callable[[int, int], None] | None = None) -> Any:
         """Return the answer of its response messages."""
         if self.streaming:
             return self._from_answer(messages, progress)

@@ -88,6 +88,20 @@ def _status(error: InterwindError, violation_limit: int) -> status_pb2.Status:
     return status
 
 
+def to_status(error: InterwindError) -> bytes:
+    """Return the packed ``google.rpc.Status`` of an error: what travels in the trailer."""
+    return bytes(error_to_status(error).SerializeToString())
+
+
+def from_rpc_error(error: Any) -> InterwindError:
+    """Return the error behind a ``grpc.RpcError``: ours when it carries our details, else the class of its code."""
+    packed = dict(error.trailing_metadata() or ()).get("grpc-status-details-bin")
+    if packed:
+        return status_to_error(status_pb2.Status.FromString(packed))
+    name = error.code().name
+    return _BY_CODE.get(name, InternalError)(error.details() or name)
+
+
 def status_to_error(status: status_pb2.Status) -> InterwindError:
     """Return the error of a ``google.rpc.Status``; a status without our details gets the class of its code."""
     reason: str | None = None

@@ -1,0 +1,237 @@
+"""Batches <-> messages: what is submitted, how far it has come, and the rows."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.codec.array import array_from_message, array_to_message
+from interwind.codec.calls import size_of_network
+from interwind.codec.network import network_from_message, network_to_message
+from interwind.codec.observable import (
+    observable_from_message,
+    observable_to_message,
+    observables_from_messages,
+    observables_to_messages,
+)
+from interwind.errors import InvalidRequest, field_path
+from interwind.model import batch as model
+from interwind.model import vary
+from interwind.model.network import Network
+from interwind.model.response import SteadyStart
+from interwind.v1 import batch_pb2, batch_service_pb2, response_pb2
+
+STATUSES = tuple(model.VariantStatus)  # the wire numbers are 1 + the position
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Submission:
+    """What SubmitBatch carries."""
+
+    network: Network
+    analysis: model.Analysis
+    columns: tuple[vary.Column, ...]
+    request_id: str = ""
+    validate_only: bool = False
+
+
+def submission_to_message(submission: Submission) -> Any:
+    """Return the request message of a submission."""
+    analysis = submission.analysis
+    observe = getattr(analysis, "observe", None)
+    message = batch_service_pb2.SubmitBatchRequest(
+        size=response_pb2.Size(
+            variant_count=vary.variant_count(submission.columns),
+            observable_count=len(observe or ()),
+            point_count=model.point_count(analysis),
+            **size_of_network(submission.network),
+        ),
+        request_id=submission.request_id,
+        validate_only=submission.validate_only,
+        network=network_to_message(submission.network),
+        columns=[_column_to_message(column) for column in submission.columns],
+    )
+    if isinstance(analysis, model.FrequencyAnalysis):
+        message.frequency.frequency_hz.CopyFrom(array_to_message(analysis.frequency_hz))
+    elif isinstance(analysis, model.TimeAnalysis):
+        message.time.stop_s, message.time.step_s = analysis.stop_s, analysis.step_s
+        message.time.tolerance = analysis.tolerance
+        message.time.steady_start = isinstance(analysis.initial, SteadyStart)
+        if analysis.initial is not None and not isinstance(analysis.initial, SteadyStart):
+            for observable, value in analysis.initial.items():
+                message.time.initial.add(observable=observable_to_message(observable), value=float(value))
+    elif isinstance(analysis, model.PeriodicAnalysis):
+        message.periodic.period_s, message.periodic.step_s = analysis.period_s, analysis.step_s
+        message.periodic.tolerance = analysis.tolerance
+    else:
+        message.check.SetInParent()
+        message.check.windings_name = analysis.windings_name or ""
+    if observe:
+        body = getattr(message, message.WhichOneof("analysis") or "")
+        body.observe.extend(observables_to_messages(observe, "analysis.observe"))
+    return message
+
+
+def submission_from_message(message: Any) -> Submission:
+    """Return the submission of a request message; `InvalidRequest` names the field that does not fit."""
+    if len(message.request_id) > 128:
+        raise InvalidRequest.at("request_id", f"{len(message.request_id)} characters found; at most 128 are allowed")
+    with field_path("network"):
+        network = network_from_message(message.network)
+    columns = []
+    for position, column in enumerate(message.columns):
+        with field_path(f"columns[{position}]"):
+            columns.append(_column_from_message(column))
+    kind = message.WhichOneof("analysis")
+    if kind is None:
+        raise InvalidRequest.at("analysis", "none found; state frequency, time, periodic or check")
+    with field_path(kind):
+        analysis = _ANALYSES[kind](getattr(message, kind))
+    return Submission(network, analysis, tuple(columns), message.request_id, message.validate_only)
+
+
+def _frequency(body: Any) -> model.Analysis:
+    frequency_hz = array_from_message(body.frequency_hz, "frequency_hz")
+    return model.FrequencyAnalysis(frequency_hz, observables_from_messages(body.observe, "observe") or None)
+
+
+def _time(body: Any) -> model.Analysis:
+    initial: Any = SteadyStart() if body.steady_start else None
+    if body.initial:
+        if body.steady_start:
+            raise InvalidRequest.at("initial", "values found beside steady_start; state one or the other")
+        initial = {}
+        for position, item in enumerate(body.initial):
+            with field_path(f"initial[{position}].observable"):
+                initial[observable_from_message(item.observable)] = item.value
+    observe = observables_from_messages(body.observe, "observe") or None
+    return model.TimeAnalysis(body.stop_s, body.step_s, observe, initial, body.tolerance or 1e-6)
+
+
+def _periodic(body: Any) -> model.Analysis:
+    observe = observables_from_messages(body.observe, "observe") or None
+    return model.PeriodicAnalysis(body.period_s, body.step_s, observe, body.tolerance or 1e-6)
+
+
+_ANALYSES: dict[str, Callable[[Any], model.Analysis]] = {
+    "frequency": _frequency,
+    "time": _time,
+    "periodic": _periodic,
+    "check": lambda body: model.CheckAnalysis(body.windings_name or None),
+}
+
+
+def _column_to_message(column: vary.Column) -> Any:
+    message = batch_pb2.OverrideColumn()
+    if isinstance(column, vary.Vary):
+        message.vary.element, message.vary.field = column.element, column.field
+        message.vary.values.CopyFrom(array_to_message(column.values))
+    elif isinstance(column, vary.VaryCoupling):
+        message.coupling.windings_name = column.windings_name
+        message.coupling.label_a, message.coupling.label_b = column.pair
+        message.coupling.values.CopyFrom(array_to_message(column.values))
+    elif isinstance(column, vary.VaryInductance):
+        message.inductance.windings_name = column.windings_name
+        message.inductance.label_a, message.inductance.label_b = column.pair
+        message.inductance.values_h.CopyFrom(array_to_message(column.values_h))
+    elif isinstance(column, vary.VaryMatrix):
+        message.matrix.windings_name = column.windings_name
+        message.matrix.inductance_h.CopyFrom(array_to_message(column.inductance_h))
+    else:
+        message.sample.CopyFrom(
+            batch_pb2.SampleWindings(
+                windings_name=column.windings_name,
+                variant_count=column.count,
+                spread=column.spread,
+                self_spread=column.self_spread,
+                parameter=f"SAMPLE_PARAMETER_{column.parameter.value}",
+                seed=column.seed,
+            )
+        )
+    return message
+
+
+def _column_from_message(message: Any) -> vary.Column:
+    kind = message.WhichOneof("kind")
+    if kind is None:
+        raise InvalidRequest.at("kind", "nothing varies; state one, such as vary")
+    body = getattr(message, kind)
+    with field_path(kind):
+        if kind == "vary":
+            return vary.Vary(body.element, body.field, array_from_message(body.values, "values"))
+        if kind == "matrix":
+            return vary.VaryMatrix(body.windings_name, array_from_message(body.inductance_h, "inductance_h"))
+        if kind == "sample":
+            name = batch_pb2.SampleParameter.Name(body.parameter).removeprefix("SAMPLE_PARAMETER_")
+            parameter = vary.SampleParameter("LEAKAGE" if name == "UNSPECIFIED" else name)
+            return vary.SampleWindings(
+                body.windings_name, body.variant_count, body.spread, body.self_spread, parameter, body.seed
+            )
+        pair = (body.label_a, body.label_b)
+        if kind == "coupling":
+            return vary.VaryCoupling(body.windings_name, pair, array_from_message(body.values, "values"))
+        return vary.VaryInductance(body.windings_name, pair, array_from_message(body.values_h, "values_h"))
+
+
+def progress_to_message(progress: model.BatchProgress) -> Any:
+    """Return the message of a batch and how far it has come."""
+    message = batch_pb2.Batch(
+        batch_id=progress.batch_id,
+        state=f"BATCH_STATE_{progress.state.value}",
+        done=progress.done,
+        variant_count=progress.variant_count,
+        ok_count=progress.ok_count,
+        invalid_count=progress.invalid_count,
+        failed_count=progress.failed_count,
+        cancelled_count=progress.cancelled_count,
+        sequence=progress.sequence,
+        request_id=progress.request_id,
+    )
+    for name in ("create_time", "done_time", "expire_time"):
+        seconds = getattr(progress, f"{name}_s")
+        if seconds is not None:
+            getattr(message, name).FromNanoseconds(round(seconds * 1e3) * 1_000_000)
+    if progress.forecast is not None:
+        message.forecast.duration_s = progress.forecast.duration_s
+        message.forecast.result_bytes = progress.forecast.result_bytes
+        message.forecast.memory_bytes = progress.forecast.memory_bytes
+        message.forecast.chunk_count = progress.forecast.chunk_count
+    return message
+
+
+def progress_from_message(message: Any) -> model.BatchProgress:
+    """Return a batch and how far it has come from its message."""
+
+    def seconds(name: str) -> float | None:
+        return getattr(message, name).ToNanoseconds() / 1e9 if message.HasField(name) else None
+
+    forecast = message.forecast
+    return model.BatchProgress(
+        batch_id=message.batch_id,
+        state=model.BatchState(batch_pb2.BatchState.Name(message.state).removeprefix("BATCH_STATE_")),
+        variant_count=message.variant_count,
+        ok_count=message.ok_count,
+        invalid_count=message.invalid_count,
+        failed_count=message.failed_count,
+        cancelled_count=message.cancelled_count,
+        sequence=message.sequence,
+        request_id=message.request_id,
+        create_time_s=seconds("create_time") or 0.0,
+        done_time_s=seconds("done_time"),
+        expire_time_s=seconds("expire_time"),
+        forecast=model.CostForecast(
+            forecast.duration_s, forecast.result_bytes, forecast.memory_bytes, forecast.chunk_count
+        )
+        if message.HasField("forecast")
+        else None,
+    )
+
+
+def statuses_from_message(statuses: Sequence[int]) -> NDArray[np.object_]:
+    """Return the status of each row of a chunk."""
+    table = np.array([None, *STATUSES], dtype=object)
+    return np.asarray(table[np.asarray(statuses, dtype=np.int64)])
