@@ -181,3 +181,14 @@ def _observables(value: Any) -> tuple[Observable, ...] | None:
                 f"observe[{position}]", f"{type(observable).__name__} found; an observable is expected"
             )
     return observables
+
+
+def point_count(analysis: Analysis) -> int:
+    """Return about how many points a row has, for admission; 0 where the analysis does not tell."""
+    if isinstance(analysis, FrequencyAnalysis):
+        return int(analysis.frequency_hz.size)
+    if isinstance(analysis, TimeAnalysis | PeriodicAnalysis):
+        span_s = analysis.stop_s if isinstance(analysis, TimeAnalysis) else analysis.period_s
+        ratio = span_s / analysis.step_s if analysis.step_s > 0 and span_s >= 0 else 0.0
+        return round(ratio) + 1 if ratio < 2.0**62 else 0
+    return 0
