@@ -16,7 +16,7 @@ from interwind.model.observables import (
     WindingCurrent,
     WindingVoltage,
 )
-from interwind.v1 import network_pb2
+from interwind.v1 import observable_pb2
 
 _OF_ELEMENT = {
     "element_voltage": ElementVoltage,
@@ -28,9 +28,9 @@ _OF_WINDING = {"winding_voltage": WindingVoltage, "winding_current": WindingCurr
 _NAMES: dict[type, str] = {cls: name for name, cls in (*_OF_ELEMENT.items(), *_OF_WINDING.items())}
 
 
-def observable_to_message(observable: Observable) -> network_pb2.Observable:
+def observable_to_message(observable: Observable) -> observable_pb2.Observable:
     """Return the message of an observable."""
-    message = network_pb2.Observable()
+    message = observable_pb2.Observable()
     if isinstance(observable, NodeVoltage):
         message.node_voltage.node = observable.node
         message.node_voltage.to = observable.to or ""
@@ -44,7 +44,7 @@ def observable_to_message(observable: Observable) -> network_pb2.Observable:
     return message
 
 
-def observable_from_message(message: network_pb2.Observable) -> Observable:
+def observable_from_message(message: observable_pb2.Observable) -> Observable:
     """Return the observable of a message."""
     quantity = message.WhichOneof("quantity")
     if quantity is None:
@@ -57,7 +57,7 @@ def observable_from_message(message: network_pb2.Observable) -> Observable:
     return _OF_ELEMENT[quantity](getattr(message, quantity))
 
 
-def observables_to_messages(observe: Iterable[Observable] | None, field: str) -> list[network_pb2.Observable]:
+def observables_to_messages(observe: Iterable[Observable] | None, field: str) -> list[observable_pb2.Observable]:
     """Return the messages of a list of observables; None is the empty list, which asks for the usual ones."""
     messages = []
     for position, observable in enumerate(observe or ()):
@@ -66,7 +66,7 @@ def observables_to_messages(observe: Iterable[Observable] | None, field: str) ->
     return messages
 
 
-def observables_from_messages(messages: Iterable[network_pb2.Observable], field: str) -> tuple[Observable, ...]:
+def observables_from_messages(messages: Iterable[observable_pb2.Observable], field: str) -> tuple[Observable, ...]:
     """Return the observables of a list of messages."""
     found = []
     for position, message in enumerate(messages):

@@ -8,7 +8,7 @@ from typing import Any
 from interwind.codec.array import array_from_message, array_to_message
 from interwind.errors import InvalidRequest, field_path
 from interwind.model import waveform as model
-from interwind.v1 import network_pb2
+from interwind.v1 import waveform_pb2
 
 _SHAPES: dict[str, type[Any]] = {
     "constant": model.Constant,
@@ -21,9 +21,9 @@ _SHAPES: dict[str, type[Any]] = {
 _NAMES = {cls: name for name, cls in _SHAPES.items()}
 
 
-def waveform_to_message(waveform: model.Waveform) -> network_pb2.Waveform:
+def waveform_to_message(waveform: model.Waveform) -> waveform_pb2.Waveform:
     """Return the message of a waveform."""
-    message = network_pb2.Waveform()
+    message = waveform_pb2.Waveform()
     if isinstance(waveform, model.PiecewiseLinear):
         message.piecewise_linear.time_s.CopyFrom(array_to_message(waveform.time_s))
         message.piecewise_linear.value.CopyFrom(array_to_message(waveform.value))
@@ -35,7 +35,7 @@ def waveform_to_message(waveform: model.Waveform) -> network_pb2.Waveform:
     return message
 
 
-def waveform_from_message(message: network_pb2.Waveform) -> model.Waveform:
+def waveform_from_message(message: waveform_pb2.Waveform) -> model.Waveform:
     """Return the waveform of a message."""
     name = message.WhichOneof("shape")
     if name is None:

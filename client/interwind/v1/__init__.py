@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "9b70e93727111a9c5917fe3c62ba8dc413313491cbc3c5329f4950b6a3e16cb1"
+SOURCE_SHA256 = "2a859b914d89fef758e9ebe3f65ad9d594874b4724379fd9894aa4475f0ce664"

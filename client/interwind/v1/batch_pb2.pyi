@@ -1,6 +1,6 @@
 from google.protobuf import timestamp_pb2 as _timestamp_pb2
 from interwind.v1 import array_pb2 as _array_pb2
-from interwind.v1 import network_pb2 as _network_pb2
+from interwind.v1 import observable_pb2 as _observable_pb2
 from interwind.v1 import response_pb2 as _response_pb2
 from google.protobuf.internal import containers as _containers
 from google.protobuf.internal import enum_type_wrapper as _enum_type_wrapper
@@ -122,8 +122,8 @@ class FrequencyAnalysis(_message.Message):
     FREQUENCY_HZ_FIELD_NUMBER: _ClassVar[int]
     OBSERVE_FIELD_NUMBER: _ClassVar[int]
     frequency_hz: _array_pb2.Array
-    observe: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
-    def __init__(self, frequency_hz: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., observe: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ...) -> None: ...
+    observe: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
+    def __init__(self, frequency_hz: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ...) -> None: ...
 
 class TimeAnalysis(_message.Message):
     __slots__ = ("stop_s", "step_s", "observe", "initial", "steady_start", "tolerance")
@@ -135,11 +135,11 @@ class TimeAnalysis(_message.Message):
     TOLERANCE_FIELD_NUMBER: _ClassVar[int]
     stop_s: float
     step_s: float
-    observe: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
+    observe: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
     initial: _containers.RepeatedCompositeFieldContainer[_response_pb2.InitialValue]
     steady_start: bool
     tolerance: float
-    def __init__(self, stop_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ..., initial: _Optional[_Iterable[_Union[_response_pb2.InitialValue, _Mapping]]] = ..., steady_start: bool = ..., tolerance: _Optional[float] = ...) -> None: ...
+    def __init__(self, stop_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., initial: _Optional[_Iterable[_Union[_response_pb2.InitialValue, _Mapping]]] = ..., steady_start: bool = ..., tolerance: _Optional[float] = ...) -> None: ...
 
 class PeriodicAnalysis(_message.Message):
     __slots__ = ("period_s", "step_s", "observe", "tolerance")
@@ -149,9 +149,9 @@ class PeriodicAnalysis(_message.Message):
     TOLERANCE_FIELD_NUMBER: _ClassVar[int]
     period_s: float
     step_s: float
-    observe: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
+    observe: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
     tolerance: float
-    def __init__(self, period_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ..., tolerance: _Optional[float] = ...) -> None: ...
+    def __init__(self, period_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., tolerance: _Optional[float] = ...) -> None: ...
 
 class CheckAnalysis(_message.Message):
     __slots__ = ("windings_name",)

@@ -25,54 +25,55 @@ _sym_db = _symbol_database.Default()
 from interwind.v1 import array_pb2 as interwind_dot_v1_dot_array__pb2
 from interwind.v1 import batch_pb2 as interwind_dot_v1_dot_batch__pb2
 from interwind.v1 import network_pb2 as interwind_dot_v1_dot_network__pb2
+from interwind.v1 import observable_pb2 as interwind_dot_v1_dot_observable__pb2
 from interwind.v1 import response_pb2 as interwind_dot_v1_dot_response__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n interwind/v1/batch_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x18interwind/v1/batch.proto\x1a\x1ainterwind/v1/network.proto\x1a\x1binterwind/v1/response.proto\"\x88\x03\n\x12SubmitBatchRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12\x12\n\nrequest_id\x18\x02 \x01(\t\x12\x15\n\rvalidate_only\x18\x03 \x01(\x08\x12&\n\x07network\x18\x04 \x01(\x0b\x32\x15.interwind.v1.Network\x12\x34\n\tfrequency\x18\x05 \x01(\x0b\x32\x1f.interwind.v1.FrequencyAnalysisH\x00\x12*\n\x04time\x18\x06 \x01(\x0b\x32\x1a.interwind.v1.TimeAnalysisH\x00\x12\x32\n\x08periodic\x18\x07 \x01(\x0b\x32\x1e.interwind.v1.PeriodicAnalysisH\x00\x12,\n\x05\x63heck\x18\x08 \x01(\x0b\x32\x1b.interwind.v1.CheckAnalysisH\x00\x12-\n\x07\x63olumns\x18\t \x03(\x0b\x32\x1c.interwind.v1.OverrideColumnB\n\n\x08\x61nalysis\"9\n\x13SubmitBatchResponse\x12\"\n\x05\x62\x61tch\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Batch\"#\n\x0fGetBatchRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\"6\n\x10GetBatchResponse\x12\"\n\x05\x62\x61tch\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Batch\";\n\x12ListBatchesRequest\x12\x11\n\tpage_size\x18\x01 \x01(\x05\x12\x12\n\npage_token\x18\x02 \x01(\t\"T\n\x13ListBatchesResponse\x12$\n\x07\x62\x61tches\x18\x01 \x03(\x0b\x32\x13.interwind.v1.Batch\x12\x17\n\x0fnext_page_token\x18\x02 \x01(\t\"=\n\x11WatchBatchRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\x12\x16\n\x0e\x61\x66ter_sequence\x18\x02 \x01(\x03\"8\n\x12WatchBatchResponse\x12\"\n\x05\x62\x61tch\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Batch\"N\n\x19StreamBatchResultsRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\x12\x11\n\tstart_row\x18\x02 \x01(\x03\x12\x0c\n\x04wait\x18\x03 \x01(\x08\"\xad\x01\n\x1aStreamBatchResultsResponse\x12\x31\n\x06header\x18\x01 \x01(\x0b\x32\x1f.interwind.v1.BatchResultHeaderH\x00\x12)\n\x05\x63hunk\x18\x02 \x01(\x0b\x32\x18.interwind.v1.BatchChunkH\x00\x12)\n\x04\x64\x61ta\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x42\x06\n\x04part\"\xc7\x01\n\x11\x42\x61tchResultHeader\x12\x15\n\rvariant_count\x18\x01 \x01(\x03\x12)\n\x07\x63olumns\x18\x02 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\"\n\x05\x64type\x18\x03 \x01(\x0e\x32\x13.interwind.v1.Dtype\x12\x13\n\x0bpoint_count\x18\x04 \x01(\x03\x12\x12\n\npoint_name\x18\x05 \x01(\t\x12#\n\x06points\x18\x06 \x01(\x0b\x32\x13.interwind.v1.Array\"\xb3\x01\n\nBatchChunk\x12\x11\n\tfirst_row\x18\x01 \x01(\x03\x12\x11\n\trow_count\x18\x02 \x01(\x03\x12-\n\x08statuses\x18\x03 \x03(\x0e\x32\x1b.interwind.v1.VariantStatus\x12,\n\x07reasons\x18\x04 \x03(\x0b\x32\x1b.interwind.v1.VariantReason\x12\x12\n\nsize_bytes\x18\x05 \x01(\x03\x12\x0e\n\x06sha256\x18\x06 \x01(\t\";\n\rVariantReason\x12\x0b\n\x03row\x18\x01 \x01(\x03\x12\x0c\n\x04\x63ode\x18\x02 \x01(\t\x12\x0f\n\x07message\x18\x03 \x01(\t\"{\n\x15SummarizeBatchRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12\x10\n\x08\x62\x61tch_id\x18\x02 \x01(\t\x12\x17\n\x0fquantile_levels\x18\x03 \x03(\x01\x12\x15\n\rextreme_count\x18\x04 \x01(\x03\"\xd6\x01\n\x16SummarizeBatchResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"&\n\x12\x43\x61ncelBatchRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\"9\n\x13\x43\x61ncelBatchResponse\x12\"\n\x05\x62\x61tch\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Batch\"&\n\x12\x44\x65leteBatchRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\"\x15\n\x13\x44\x65leteBatchResponse2\xc6\x05\n\x0c\x42\x61tchService\x12R\n\x0bSubmitBatch\x12 .interwind.v1.SubmitBatchRequest\x1a!.interwind.v1.SubmitBatchResponse\x12I\n\x08GetBatch\x12\x1d.interwind.v1.GetBatchRequest\x1a\x1e.interwind.v1.GetBatchResponse\x12R\n\x0bListBatches\x12 .interwind.v1.ListBatchesRequest\x1a!.interwind.v1.ListBatchesResponse\x12Q\n\nWatchBatch\x12\x1f.interwind.v1.WatchBatchRequest\x1a .interwind.v1.WatchBatchResponse0\x01\x12i\n\x12StreamBatchResults\x12\'.interwind.v1.StreamBatchResultsRequest\x1a(.interwind.v1.StreamBatchResultsResponse0\x01\x12]\n\x0eSummarizeBatch\x12#.interwind.v1.SummarizeBatchRequest\x1a$.interwind.v1.SummarizeBatchResponse0\x01\x12R\n\x0b\x43\x61ncelBatch\x12 .interwind.v1.CancelBatchRequest\x1a!.interwind.v1.CancelBatchResponse\x12R\n\x0b\x44\x65leteBatch\x12 .interwind.v1.DeleteBatchRequest\x1a!.interwind.v1.DeleteBatchResponseb\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n interwind/v1/batch_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x18interwind/v1/batch.proto\x1a\x1ainterwind/v1/network.proto\x1a\x1dinterwind/v1/observable.proto\x1a\x1binterwind/v1/response.proto\"\x88\x03\n\x12SubmitBatchRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12\x12\n\nrequest_id\x18\x02 \x01(\t\x12\x15\n\rvalidate_only\x18\x03 \x01(\x08\x12&\n\x07network\x18\x04 \x01(\x0b\x32\x15.interwind.v1.Network\x12\x34\n\tfrequency\x18\x05 \x01(\x0b\x32\x1f.interwind.v1.FrequencyAnalysisH\x00\x12*\n\x04time\x18\x06 \x01(\x0b\x32\x1a.interwind.v1.TimeAnalysisH\x00\x12\x32\n\x08periodic\x18\x07 \x01(\x0b\x32\x1e.interwind.v1.PeriodicAnalysisH\x00\x12,\n\x05\x63heck\x18\x08 \x01(\x0b\x32\x1b.interwind.v1.CheckAnalysisH\x00\x12-\n\x07\x63olumns\x18\t \x03(\x0b\x32\x1c.interwind.v1.OverrideColumnB\n\n\x08\x61nalysis\"9\n\x13SubmitBatchResponse\x12\"\n\x05\x62\x61tch\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Batch\"#\n\x0fGetBatchRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\"6\n\x10GetBatchResponse\x12\"\n\x05\x62\x61tch\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Batch\";\n\x12ListBatchesRequest\x12\x11\n\tpage_size\x18\x01 \x01(\x05\x12\x12\n\npage_token\x18\x02 \x01(\t\"T\n\x13ListBatchesResponse\x12$\n\x07\x62\x61tches\x18\x01 \x03(\x0b\x32\x13.interwind.v1.Batch\x12\x17\n\x0fnext_page_token\x18\x02 \x01(\t\"=\n\x11WatchBatchRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\x12\x16\n\x0e\x61\x66ter_sequence\x18\x02 \x01(\x03\"8\n\x12WatchBatchResponse\x12\"\n\x05\x62\x61tch\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Batch\"N\n\x19StreamBatchResultsRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\x12\x11\n\tstart_row\x18\x02 \x01(\x03\x12\x0c\n\x04wait\x18\x03 \x01(\x08\"\xad\x01\n\x1aStreamBatchResultsResponse\x12\x31\n\x06header\x18\x01 \x01(\x0b\x32\x1f.interwind.v1.BatchResultHeaderH\x00\x12)\n\x05\x63hunk\x18\x02 \x01(\x0b\x32\x18.interwind.v1.BatchChunkH\x00\x12)\n\x04\x64\x61ta\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x42\x06\n\x04part\"\xc7\x01\n\x11\x42\x61tchResultHeader\x12\x15\n\rvariant_count\x18\x01 \x01(\x03\x12)\n\x07\x63olumns\x18\x02 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\"\n\x05\x64type\x18\x03 \x01(\x0e\x32\x13.interwind.v1.Dtype\x12\x13\n\x0bpoint_count\x18\x04 \x01(\x03\x12\x12\n\npoint_name\x18\x05 \x01(\t\x12#\n\x06points\x18\x06 \x01(\x0b\x32\x13.interwind.v1.Array\"\xb3\x01\n\nBatchChunk\x12\x11\n\tfirst_row\x18\x01 \x01(\x03\x12\x11\n\trow_count\x18\x02 \x01(\x03\x12-\n\x08statuses\x18\x03 \x03(\x0e\x32\x1b.interwind.v1.VariantStatus\x12,\n\x07reasons\x18\x04 \x03(\x0b\x32\x1b.interwind.v1.VariantReason\x12\x12\n\nsize_bytes\x18\x05 \x01(\x03\x12\x0e\n\x06sha256\x18\x06 \x01(\t\";\n\rVariantReason\x12\x0b\n\x03row\x18\x01 \x01(\x03\x12\x0c\n\x04\x63ode\x18\x02 \x01(\t\x12\x0f\n\x07message\x18\x03 \x01(\t\"{\n\x15SummarizeBatchRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12\x10\n\x08\x62\x61tch_id\x18\x02 \x01(\t\x12\x17\n\x0fquantile_levels\x18\x03 \x03(\x01\x12\x15\n\rextreme_count\x18\x04 \x01(\x03\"\xd6\x01\n\x16SummarizeBatchResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"&\n\x12\x43\x61ncelBatchRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\"9\n\x13\x43\x61ncelBatchResponse\x12\"\n\x05\x62\x61tch\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Batch\"&\n\x12\x44\x65leteBatchRequest\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\"\x15\n\x13\x44\x65leteBatchResponse2\xc6\x05\n\x0c\x42\x61tchService\x12R\n\x0bSubmitBatch\x12 .interwind.v1.SubmitBatchRequest\x1a!.interwind.v1.SubmitBatchResponse\x12I\n\x08GetBatch\x12\x1d.interwind.v1.GetBatchRequest\x1a\x1e.interwind.v1.GetBatchResponse\x12R\n\x0bListBatches\x12 .interwind.v1.ListBatchesRequest\x1a!.interwind.v1.ListBatchesResponse\x12Q\n\nWatchBatch\x12\x1f.interwind.v1.WatchBatchRequest\x1a .interwind.v1.WatchBatchResponse0\x01\x12i\n\x12StreamBatchResults\x12\'.interwind.v1.StreamBatchResultsRequest\x1a(.interwind.v1.StreamBatchResultsResponse0\x01\x12]\n\x0eSummarizeBatch\x12#.interwind.v1.SummarizeBatchRequest\x1a$.interwind.v1.SummarizeBatchResponse0\x01\x12R\n\x0b\x43\x61ncelBatch\x12 .interwind.v1.CancelBatchRequest\x1a!.interwind.v1.CancelBatchResponse\x12R\n\x0b\x44\x65leteBatch\x12 .interwind.v1.DeleteBatchRequest\x1a!.interwind.v1.DeleteBatchResponseb\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
 _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'interwind.v1.batch_service_pb2', _globals)
 if not _descriptor._USE_C_DESCRIPTORS:
   DESCRIPTOR._loaded_options = None
-  _globals['_SUBMITBATCHREQUEST']._serialized_start=160
-  _globals['_SUBMITBATCHREQUEST']._serialized_end=552
-  _globals['_SUBMITBATCHRESPONSE']._serialized_start=554
-  _globals['_SUBMITBATCHRESPONSE']._serialized_end=611
-  _globals['_GETBATCHREQUEST']._serialized_start=613
-  _globals['_GETBATCHREQUEST']._serialized_end=648
-  _globals['_GETBATCHRESPONSE']._serialized_start=650
-  _globals['_GETBATCHRESPONSE']._serialized_end=704
-  _globals['_LISTBATCHESREQUEST']._serialized_start=706
-  _globals['_LISTBATCHESREQUEST']._serialized_end=765
-  _globals['_LISTBATCHESRESPONSE']._serialized_start=767
-  _globals['_LISTBATCHESRESPONSE']._serialized_end=851
-  _globals['_WATCHBATCHREQUEST']._serialized_start=853
-  _globals['_WATCHBATCHREQUEST']._serialized_end=914
-  _globals['_WATCHBATCHRESPONSE']._serialized_start=916
-  _globals['_WATCHBATCHRESPONSE']._serialized_end=972
-  _globals['_STREAMBATCHRESULTSREQUEST']._serialized_start=974
-  _globals['_STREAMBATCHRESULTSREQUEST']._serialized_end=1052
-  _globals['_STREAMBATCHRESULTSRESPONSE']._serialized_start=1055
-  _globals['_STREAMBATCHRESULTSRESPONSE']._serialized_end=1228
-  _globals['_BATCHRESULTHEADER']._serialized_start=1231
-  _globals['_BATCHRESULTHEADER']._serialized_end=1430
-  _globals['_BATCHCHUNK']._serialized_start=1433
-  _globals['_BATCHCHUNK']._serialized_end=1612
-  _globals['_VARIANTREASON']._serialized_start=1614
-  _globals['_VARIANTREASON']._serialized_end=1673
-  _globals['_SUMMARIZEBATCHREQUEST']._serialized_start=1675
-  _globals['_SUMMARIZEBATCHREQUEST']._serialized_end=1798
-  _globals['_SUMMARIZEBATCHRESPONSE']._serialized_start=1801
-  _globals['_SUMMARIZEBATCHRESPONSE']._serialized_end=2015
-  _globals['_CANCELBATCHREQUEST']._serialized_start=2017
-  _globals['_CANCELBATCHREQUEST']._serialized_end=2055
-  _globals['_CANCELBATCHRESPONSE']._serialized_start=2057
-  _globals['_CANCELBATCHRESPONSE']._serialized_end=2114
-  _globals['_DELETEBATCHREQUEST']._serialized_start=2116
-  _globals['_DELETEBATCHREQUEST']._serialized_end=2154
-  _globals['_DELETEBATCHRESPONSE']._serialized_start=2156
-  _globals['_DELETEBATCHRESPONSE']._serialized_end=2177
-  _globals['_BATCHSERVICE']._serialized_start=2180
-  _globals['_BATCHSERVICE']._serialized_end=2890
+  _globals['_SUBMITBATCHREQUEST']._serialized_start=191
+  _globals['_SUBMITBATCHREQUEST']._serialized_end=583
+  _globals['_SUBMITBATCHRESPONSE']._serialized_start=585
+  _globals['_SUBMITBATCHRESPONSE']._serialized_end=642
+  _globals['_GETBATCHREQUEST']._serialized_start=644
+  _globals['_GETBATCHREQUEST']._serialized_end=679
+  _globals['_GETBATCHRESPONSE']._serialized_start=681
+  _globals['_GETBATCHRESPONSE']._serialized_end=735
+  _globals['_LISTBATCHESREQUEST']._serialized_start=737
+  _globals['_LISTBATCHESREQUEST']._serialized_end=796
+  _globals['_LISTBATCHESRESPONSE']._serialized_start=798
+  _globals['_LISTBATCHESRESPONSE']._serialized_end=882
+  _globals['_WATCHBATCHREQUEST']._serialized_start=884
+  _globals['_WATCHBATCHREQUEST']._serialized_end=945
+  _globals['_WATCHBATCHRESPONSE']._serialized_start=947
+  _globals['_WATCHBATCHRESPONSE']._serialized_end=1003
+  _globals['_STREAMBATCHRESULTSREQUEST']._serialized_start=1005
+  _globals['_STREAMBATCHRESULTSREQUEST']._serialized_end=1083
+  _globals['_STREAMBATCHRESULTSRESPONSE']._serialized_start=1086
+  _globals['_STREAMBATCHRESULTSRESPONSE']._serialized_end=1259
+  _globals['_BATCHRESULTHEADER']._serialized_start=1262
+  _globals['_BATCHRESULTHEADER']._serialized_end=1461
+  _globals['_BATCHCHUNK']._serialized_start=1464
+  _globals['_BATCHCHUNK']._serialized_end=1643
+  _globals['_VARIANTREASON']._serialized_start=1645
+  _globals['_VARIANTREASON']._serialized_end=1704
+  _globals['_SUMMARIZEBATCHREQUEST']._serialized_start=1706
+  _globals['_SUMMARIZEBATCHREQUEST']._serialized_end=1829
+  _globals['_SUMMARIZEBATCHRESPONSE']._serialized_start=1832
+  _globals['_SUMMARIZEBATCHRESPONSE']._serialized_end=2046
+  _globals['_CANCELBATCHREQUEST']._serialized_start=2048
+  _globals['_CANCELBATCHREQUEST']._serialized_end=2086
+  _globals['_CANCELBATCHRESPONSE']._serialized_start=2088
+  _globals['_CANCELBATCHRESPONSE']._serialized_end=2145
+  _globals['_DELETEBATCHREQUEST']._serialized_start=2147
+  _globals['_DELETEBATCHREQUEST']._serialized_end=2185
+  _globals['_DELETEBATCHRESPONSE']._serialized_start=2187
+  _globals['_DELETEBATCHRESPONSE']._serialized_end=2208
+  _globals['_BATCHSERVICE']._serialized_start=2211
+  _globals['_BATCHSERVICE']._serialized_end=2921
 # @@protoc_insertion_point(module_scope)

@@ -1,6 +1,7 @@
 from interwind.v1 import array_pb2 as _array_pb2
 from interwind.v1 import batch_pb2 as _batch_pb2
 from interwind.v1 import network_pb2 as _network_pb2
+from interwind.v1 import observable_pb2 as _observable_pb2
 from interwind.v1 import response_pb2 as _response_pb2
 from google.protobuf.internal import containers as _containers
 from google.protobuf import descriptor as _descriptor
@@ -108,12 +109,12 @@ class BatchResultHeader(_message.Message):
     POINT_NAME_FIELD_NUMBER: _ClassVar[int]
     POINTS_FIELD_NUMBER: _ClassVar[int]
     variant_count: int
-    columns: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
+    columns: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
     dtype: _array_pb2.Dtype
     point_count: int
     point_name: str
     points: _array_pb2.Array
-    def __init__(self, variant_count: _Optional[int] = ..., columns: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ..., dtype: _Optional[_Union[_array_pb2.Dtype, str]] = ..., point_count: _Optional[int] = ..., point_name: _Optional[str] = ..., points: _Optional[_Union[_array_pb2.Array, _Mapping]] = ...) -> None: ...
+    def __init__(self, variant_count: _Optional[int] = ..., columns: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., dtype: _Optional[_Union[_array_pb2.Dtype, str]] = ..., point_count: _Optional[int] = ..., point_name: _Optional[str] = ..., points: _Optional[_Union[_array_pb2.Array, _Mapping]] = ...) -> None: ...
 
 class BatchChunk(_message.Message):
     __slots__ = ("first_row", "row_count", "statuses", "reasons", "size_bytes", "sha256")

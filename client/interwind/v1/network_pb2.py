@@ -23,84 +23,63 @@ _sym_db = _symbol_database.Default()
 
 
 from interwind.v1 import array_pb2 as interwind_dot_v1_dot_array__pb2
+from interwind.v1 import waveform_pb2 as interwind_dot_v1_dot_waveform__pb2
 from interwind.v1 import windings_pb2 as interwind_dot_v1_dot_windings__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x1ainterwind/v1/network.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1binterwind/v1/windings.proto\"|\n\x07Network\x12\x11\n\treference\x18\x01 \x01(\t\x12\'\n\x08\x65lements\x18\x02 \x03(\x0b\x32\x15.interwind.v1.Element\x12!\n\x05ports\x18\x03 \x03(\x0b\x32\x12.interwind.v1.Port\x12\x12\n\nreferences\x18\x04 \x03(\t\"X\n\x04Port\x12\x0c\n\x04name\x18\x01 \x01(\t\x12\t\n\x01\x61\x18\x02 \x01(\t\x12\t\n\x01\x62\x18\x03 \x01(\t\x12\x1a\n\rreference_ohm\x18\x04 \x01(\x01H\x00\x88\x01\x01\x42\x10\n\x0e_reference_ohm\"\xad\x06\n\x07\x45lement\x12\x0c\n\x04name\x18\x01 \x01(\t\x12*\n\x08resistor\x18\x02 \x01(\x0b\x32\x16.interwind.v1.ResistorH\x00\x12*\n\x08inductor\x18\x03 \x01(\x0b\x32\x16.interwind.v1.InductorH\x00\x12,\n\tcapacitor\x18\x04 \x01(\x0b\x32\x17.interwind.v1.CapacitorH\x00\x12\x35\n\x0evoltage_source\x18\x05 \x01(\x0b\x32\x1b.interwind.v1.VoltageSourceH\x00\x12\x35\n\x0e\x63urrent_source\x18\x06 \x01(\x0b\x32\x1b.interwind.v1.CurrentSourceH\x00\x12*\n\x08windings\x18\x07 \x01(\x0b\x32\x16.interwind.v1.WindingsH\x00\x12&\n\x06switch\x18\x08 \x01(\x0b\x32\x14.interwind.v1.SwitchH\x00\x12$\n\x05\x64iode\x18\t \x01(\x0b\x32\x13.interwind.v1.DiodeH\x00\x12*\n\x08\x61rrester\x18\n \x01(\x0b\x32\x16.interwind.v1.ArresterH\x00\x12=\n\x12saturable_inductor\x18\x0b \x01(\x0b\x32\x1f.interwind.v1.SaturableInductorH\x00\x12;\n\x11ideal_transformer\x18\x0c \x01(\x0b\x32\x1e.interwind.v1.IdealTransformerH\x00\x12<\n\x12voltage_by_voltage\x18\r \x01(\x0b\x32\x1e.interwind.v1.VoltageByVoltageH\x00\x12<\n\x12\x63urrent_by_voltage\x18\x0e \x01(\x0b\x32\x1e.interwind.v1.CurrentByVoltageH\x00\x12<\n\x12voltage_by_current\x18\x0f \x01(\x0b\x32\x1e.interwind.v1.VoltageByCurrentH\x00\x12<\n\x12\x63urrent_by_current\x18\x10 \x01(\x0b\x32\x1e.interwind.v1.CurrentByCurrentH\x00\x42\x06\n\x04kind\"8\n\x08Resistor\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x16\n\x0eresistance_ohm\x18\x03 \x01(\x01\"6\n\x08Inductor\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x14\n\x0cinductance_h\x18\x03 \x01(\x01\"8\n\tCapacitor\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x15\n\rcapacitance_f\x18\x03 \x01(\x01\"u\n\rVoltageSource\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12(\n\x08waveform\x18\x03 \x01(\x0b\x32\x16.interwind.v1.Waveform\x12$\n\x06phasor\x18\x04 \x01(\x0b\x32\x14.interwind.v1.Phasor\"u\n\rCurrentSource\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12(\n\x08waveform\x18\x03 \x01(\x0b\x32\x16.interwind.v1.Waveform\x12$\n\x06phasor\x18\x04 \x01(\x0b\x32\x14.interwind.v1.Phasor\")\n\x06Phasor\x12\x0c\n\x04real\x18\x01 \x01(\x01\x12\x11\n\timaginary\x18\x02 \x01(\x01\"i\n\x08Windings\x12*\n\x08windings\x18\x01 \x01(\x0b\x32\x18.interwind.v1.WindingSet\x12\x31\n\tterminals\x18\x02 \x03(\x0b\x32\x1e.interwind.v1.WindingTerminals\"@\n\x10WindingTerminals\x12\r\n\x05label\x18\x01 \x01(\t\x12\r\n\x05start\x18\x02 \x01(\t\x12\x0e\n\x06\x66inish\x18\x03 \x01(\t\"\xe0\x01\n\x06Switch\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\"\n\x04gate\x18\x03 \x01(\x0b\x32\x12.interwind.v1.GateH\x00\x12-\n\ngate_times\x18\x04 \x01(\x0b\x32\x17.interwind.v1.GateTimesH\x00\x12!\n\x19\x63onducting_resistance_ohm\x18\x05 \x01(\x01\x12$\n\x17\x62locking_resistance_ohm\x18\x06 \x01(\x01H\x01\x88\x01\x01\x42\x08\n\x06\x63losedB\x1a\n\x18_blocking_resistance_ohm\"7\n\x04Gate\x12\x10\n\x08period_s\x18\x01 \x01(\x01\x12\x0c\n\x04on_s\x18\x02 \x01(\x01\x12\x0f\n\x07\x64\x65lay_s\x18\x03 \x01(\x01\"L\n\tGateTimes\x12%\n\x08toggle_s\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x18\n\x10initially_closed\x18\x02 \x01(\x08\"\xa1\x01\n\x05\x44iode\x12\r\n\x05\x61node\x18\x01 \x01(\t\x12\x0f\n\x07\x63\x61thode\x18\x02 \x01(\t\x12<\n\x10piecewise_linear\x18\x03 \x01(\x0b\x32 .interwind.v1.PiecewiseLinearLawH\x00\x12\x33\n\x0b\x65xponential\x18\x04 \x01(\x0b\x32\x1c.interwind.v1.ExponentialLawH\x00\x42\x05\n\x03law\"\x94\x01\n\x12PiecewiseLinearLaw\x12\x19\n\x11\x66orward_voltage_v\x18\x01 \x01(\x01\x12!\n\x19\x63onducting_resistance_ohm\x18\x02 \x01(\x01\x12$\n\x17\x62locking_resistance_ohm\x18\x03 \x01(\x01H\x00\x88\x01\x01\x42\x1a\n\x18_blocking_resistance_ohm\"I\n\x0e\x45xponentialLaw\x12\x1c\n\x14saturation_current_a\x18\x01 \x01(\x01\x12\x19\n\x11thermal_voltage_v\x18\x02 \x01(\x01\"l\n\x08\x41rrester\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x1b\n\x13reference_voltage_v\x18\x03 \x01(\x01\x12\x1b\n\x13reference_current_a\x18\x04 \x01(\x01\x12\x10\n\x08\x65xponent\x18\x05 \x01(\x01\"\x94\x01\n\x11SaturableInductor\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12&\n\tcurrent_a\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\x12,\n\x0f\x66lux_linkage_wb\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x13\n\x0bresidual_wb\x18\x05 \x01(\x01\"S\n\x10IdealTransformer\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\t\n\x01\x63\x18\x03 \x01(\t\x12\t\n\x01\x64\x18\x04 \x01(\t\x12\x13\n\x0bturns_ratio\x18\x05 \x01(\x01\"\\\n\x10VoltageByVoltage\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x11\n\tcontrol_a\x18\x03 \x01(\t\x12\x11\n\tcontrol_b\x18\x04 \x01(\t\x12\x0c\n\x04gain\x18\x05 \x01(\x01\"j\n\x10\x43urrentByVoltage\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x11\n\tcontrol_a\x18\x03 \x01(\t\x12\x11\n\tcontrol_b\x18\x04 \x01(\t\x12\x1a\n\x12transconductance_s\x18\x05 \x01(\x01\"V\n\x10VoltageByCurrent\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x0f\n\x07\x63ontrol\x18\x03 \x01(\t\x12\x1b\n\x13transresistance_ohm\x18\x04 \x01(\x01\"G\n\x10\x43urrentByCurrent\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x0f\n\x07\x63ontrol\x18\x03 \x01(\t\x12\x0c\n\x04gain\x18\x04 \x01(\x01\"\xd3\x02\n\x08Waveform\x12*\n\x08\x63onstant\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ConstantH\x00\x12\"\n\x04step\x18\x02 \x01(\x0b\x32\x12.interwind.v1.StepH\x00\x12\"\n\x04ramp\x18\x03 \x01(\x0b\x32\x12.interwind.v1.RampH\x00\x12\"\n\x04sine\x18\x04 \x01(\x0b\x32\x12.interwind.v1.SineH\x00\x12,\n\ttrapezoid\x18\x05 \x01(\x0b\x32\x17.interwind.v1.TrapezoidH\x00\x12=\n\x12\x64ouble_exponential\x18\x06 \x01(\x0b\x32\x1f.interwind.v1.DoubleExponentialH\x00\x12\x39\n\x10piecewise_linear\x18\x07 \x01(\x0b\x32\x1d.interwind.v1.PiecewiseLinearH\x00\x42\x07\n\x05shape\"\x19\n\x08\x43onstant\x12\r\n\x05value\x18\x01 \x01(\x01\"#\n\x04Step\x12\r\n\x05value\x18\x01 \x01(\x01\x12\x0c\n\x04\x61t_s\x18\x02 \x01(\x01\")\n\x04Ramp\x12\x13\n\x0bslope_per_s\x18\x01 \x01(\x01\x12\x0c\n\x04\x61t_s\x18\x02 \x01(\x01\"R\n\x04Sine\x12\x11\n\tamplitude\x18\x01 \x01(\x01\x12\x14\n\x0c\x66requency_hz\x18\x02 \x01(\x01\x12\x11\n\tphase_rad\x18\x03 \x01(\x01\x12\x0e\n\x06offset\x18\x04 \x01(\x01\"y\n\tTrapezoid\x12\x0b\n\x03low\x18\x01 \x01(\x01\x12\x0c\n\x04high\x18\x02 \x01(\x01\x12\x10\n\x08period_s\x18\x03 \x01(\x01\x12\x0e\n\x06rise_s\x18\x04 \x01(\x01\x12\x0e\n\x06high_s\x18\x05 \x01(\x01\x12\x0e\n\x06\x66\x61ll_s\x18\x06 \x01(\x01\x12\x0f\n\x07\x64\x65lay_s\x18\x07 \x01(\x01\"G\n\x11\x44oubleExponential\x12\x11\n\tamplitude\x18\x01 \x01(\x01\x12\x0e\n\x06tail_s\x18\x02 \x01(\x01\x12\x0f\n\x07\x66ront_s\x18\x03 \x01(\x01\"Z\n\x0fPiecewiseLinear\x12#\n\x06time_s\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12\"\n\x05value\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\"\xd2\x02\n\nObservable\x12\x31\n\x0cnode_voltage\x18\x01 \x01(\x0b\x32\x19.interwind.v1.NodeVoltageH\x00\x12\x19\n\x0f\x65lement_voltage\x18\x02 \x01(\tH\x00\x12\x19\n\x0f\x65lement_current\x18\x03 \x01(\tH\x00\x12\x34\n\x0fwinding_voltage\x18\x04 \x01(\x0b\x32\x19.interwind.v1.WindingNameH\x00\x12\x34\n\x0fwinding_current\x18\x05 \x01(\x0b\x32\x19.interwind.v1.WindingNameH\x00\x12\x31\n\x0c\x66lux_linkage\x18\x06 \x01(\x0b\x32\x19.interwind.v1.WindingNameH\x00\x12\x17\n\relement_power\x18\x07 \x01(\tH\x00\x12\x17\n\rstored_energy\x18\x08 \x01(\tH\x00\x42\n\n\x08quantity\"\'\n\x0bNodeVoltage\x12\x0c\n\x04node\x18\x01 \x01(\t\x12\n\n\x02to\x18\x02 \x01(\t\"*\n\x0bWindingName\x12\x0c\n\x04name\x18\x01 \x01(\t\x12\r\n\x05label\x18\x02 \x01(\tb\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x1ainterwind/v1/network.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1binterwind/v1/waveform.proto\x1a\x1binterwind/v1/windings.proto\"|\n\x07Network\x12\x11\n\treference\x18\x01 \x01(\t\x12\'\n\x08\x65lements\x18\x02 \x03(\x0b\x32\x15.interwind.v1.Element\x12!\n\x05ports\x18\x03 \x03(\x0b\x32\x12.interwind.v1.Port\x12\x12\n\nreferences\x18\x04 \x03(\t\"X\n\x04Port\x12\x0c\n\x04name\x18\x01 \x01(\t\x12\t\n\x01\x61\x18\x02 \x01(\t\x12\t\n\x01\x62\x18\x03 \x01(\t\x12\x1a\n\rreference_ohm\x18\x04 \x01(\x01H\x00\x88\x01\x01\x42\x10\n\x0e_reference_ohm\"\xad\x06\n\x07\x45lement\x12\x0c\n\x04name\x18\x01 \x01(\t\x12*\n\x08resistor\x18\x02 \x01(\x0b\x32\x16.interwind.v1.ResistorH\x00\x12*\n\x08inductor\x18\x03 \x01(\x0b\x32\x16.interwind.v1.InductorH\x00\x12,\n\tcapacitor\x18\x04 \x01(\x0b\x32\x17.interwind.v1.CapacitorH\x00\x12\x35\n\x0evoltage_source\x18\x05 \x01(\x0b\x32\x1b.interwind.v1.VoltageSourceH\x00\x12\x35\n\x0e\x63urrent_source\x18\x06 \x01(\x0b\x32\x1b.interwind.v1.CurrentSourceH\x00\x12*\n\x08windings\x18\x07 \x01(\x0b\x32\x16.interwind.v1.WindingsH\x00\x12&\n\x06switch\x18\x08 \x01(\x0b\x32\x14.interwind.v1.SwitchH\x00\x12$\n\x05\x64iode\x18\t \x01(\x0b\x32\x13.interwind.v1.DiodeH\x00\x12*\n\x08\x61rrester\x18\n \x01(\x0b\x32\x16.interwind.v1.ArresterH\x00\x12=\n\x12saturable_inductor\x18\x0b \x01(\x0b\x32\x1f.interwind.v1.SaturableInductorH\x00\x12;\n\x11ideal_transformer\x18\x0c \x01(\x0b\x32\x1e.interwind.v1.IdealTransformerH\x00\x12<\n\x12voltage_by_voltage\x18\r \x01(\x0b\x32\x1e.interwind.v1.VoltageByVoltageH\x00\x12<\n\x12\x63urrent_by_voltage\x18\x0e \x01(\x0b\x32\x1e.interwind.v1.CurrentByVoltageH\x00\x12<\n\x12voltage_by_current\x18\x0f \x01(\x0b\x32\x1e.interwind.v1.VoltageByCurrentH\x00\x12<\n\x12\x63urrent_by_current\x18\x10 \x01(\x0b\x32\x1e.interwind.v1.CurrentByCurrentH\x00\x42\x06\n\x04kind\"8\n\x08Resistor\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x16\n\x0eresistance_ohm\x18\x03 \x01(\x01\"6\n\x08Inductor\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x14\n\x0cinductance_h\x18\x03 \x01(\x01\"8\n\tCapacitor\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x15\n\rcapacitance_f\x18\x03 \x01(\x01\"u\n\rVoltageSource\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12(\n\x08waveform\x18\x03 \x01(\x0b\x32\x16.interwind.v1.Waveform\x12$\n\x06phasor\x18\x04 \x01(\x0b\x32\x14.interwind.v1.Phasor\"u\n\rCurrentSource\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12(\n\x08waveform\x18\x03 \x01(\x0b\x32\x16.interwind.v1.Waveform\x12$\n\x06phasor\x18\x04 \x01(\x0b\x32\x14.interwind.v1.Phasor\")\n\x06Phasor\x12\x0c\n\x04real\x18\x01 \x01(\x01\x12\x11\n\timaginary\x18\x02 \x01(\x01\"i\n\x08Windings\x12*\n\x08windings\x18\x01 \x01(\x0b\x32\x18.interwind.v1.WindingSet\x12\x31\n\tterminals\x18\x02 \x03(\x0b\x32\x1e.interwind.v1.WindingTerminals\"@\n\x10WindingTerminals\x12\r\n\x05label\x18\x01 \x01(\t\x12\r\n\x05start\x18\x02 \x01(\t\x12\x0e\n\x06\x66inish\x18\x03 \x01(\t\"\xe0\x01\n\x06Switch\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\"\n\x04gate\x18\x03 \x01(\x0b\x32\x12.interwind.v1.GateH\x00\x12-\n\ngate_times\x18\x04 \x01(\x0b\x32\x17.interwind.v1.GateTimesH\x00\x12!\n\x19\x63onducting_resistance_ohm\x18\x05 \x01(\x01\x12$\n\x17\x62locking_resistance_ohm\x18\x06 \x01(\x01H\x01\x88\x01\x01\x42\x08\n\x06\x63losedB\x1a\n\x18_blocking_resistance_ohm\"7\n\x04Gate\x12\x10\n\x08period_s\x18\x01 \x01(\x01\x12\x0c\n\x04on_s\x18\x02 \x01(\x01\x12\x0f\n\x07\x64\x65lay_s\x18\x03 \x01(\x01\"L\n\tGateTimes\x12%\n\x08toggle_s\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x18\n\x10initially_closed\x18\x02 \x01(\x08\"\xa1\x01\n\x05\x44iode\x12\r\n\x05\x61node\x18\x01 \x01(\t\x12\x0f\n\x07\x63\x61thode\x18\x02 \x01(\t\x12<\n\x10piecewise_linear\x18\x03 \x01(\x0b\x32 .interwind.v1.PiecewiseLinearLawH\x00\x12\x33\n\x0b\x65xponential\x18\x04 \x01(\x0b\x32\x1c.interwind.v1.ExponentialLawH\x00\x42\x05\n\x03law\"\x94\x01\n\x12PiecewiseLinearLaw\x12\x19\n\x11\x66orward_voltage_v\x18\x01 \x01(\x01\x12!\n\x19\x63onducting_resistance_ohm\x18\x02 \x01(\x01\x12$\n\x17\x62locking_resistance_ohm\x18\x03 \x01(\x01H\x00\x88\x01\x01\x42\x1a\n\x18_blocking_resistance_ohm\"I\n\x0e\x45xponentialLaw\x12\x1c\n\x14saturation_current_a\x18\x01 \x01(\x01\x12\x19\n\x11thermal_voltage_v\x18\x02 \x01(\x01\"l\n\x08\x41rrester\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x1b\n\x13reference_voltage_v\x18\x03 \x01(\x01\x12\x1b\n\x13reference_current_a\x18\x04 \x01(\x01\x12\x10\n\x08\x65xponent\x18\x05 \x01(\x01\"\x94\x01\n\x11SaturableInductor\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12&\n\tcurrent_a\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\x12,\n\x0f\x66lux_linkage_wb\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x13\n\x0bresidual_wb\x18\x05 \x01(\x01\"S\n\x10IdealTransformer\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\t\n\x01\x63\x18\x03 \x01(\t\x12\t\n\x01\x64\x18\x04 \x01(\t\x12\x13\n\x0bturns_ratio\x18\x05 \x01(\x01\"\\\n\x10VoltageByVoltage\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x11\n\tcontrol_a\x18\x03 \x01(\t\x12\x11\n\tcontrol_b\x18\x04 \x01(\t\x12\x0c\n\x04gain\x18\x05 \x01(\x01\"j\n\x10\x43urrentByVoltage\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x11\n\tcontrol_a\x18\x03 \x01(\t\x12\x11\n\tcontrol_b\x18\x04 \x01(\t\x12\x1a\n\x12transconductance_s\x18\x05 \x01(\x01\"V\n\x10VoltageByCurrent\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x0f\n\x07\x63ontrol\x18\x03 \x01(\t\x12\x1b\n\x13transresistance_ohm\x18\x04 \x01(\x01\"G\n\x10\x43urrentByCurrent\x12\t\n\x01\x61\x18\x01 \x01(\t\x12\t\n\x01\x62\x18\x02 \x01(\t\x12\x0f\n\x07\x63ontrol\x18\x03 \x01(\t\x12\x0c\n\x04gain\x18\x04 \x01(\x01\x62\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
 _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'interwind.v1.network_pb2', _globals)
 if not _descriptor._USE_C_DESCRIPTORS:
   DESCRIPTOR._loaded_options = None
-  _globals['_NETWORK']._serialized_start=99
-  _globals['_NETWORK']._serialized_end=223
-  _globals['_PORT']._serialized_start=225
-  _globals['_PORT']._serialized_end=313
-  _globals['_ELEMENT']._serialized_start=316
-  _globals['_ELEMENT']._serialized_end=1129
-  _globals['_RESISTOR']._serialized_start=1131
-  _globals['_RESISTOR']._serialized_end=1187
-  _globals['_INDUCTOR']._serialized_start=1189
-  _globals['_INDUCTOR']._serialized_end=1243
-  _globals['_CAPACITOR']._serialized_start=1245
-  _globals['_CAPACITOR']._serialized_end=1301
-  _globals['_VOLTAGESOURCE']._serialized_start=1303
-  _globals['_VOLTAGESOURCE']._serialized_end=1420
-  _globals['_CURRENTSOURCE']._serialized_start=1422
-  _globals['_CURRENTSOURCE']._serialized_end=1539
-  _globals['_PHASOR']._serialized_start=1541
-  _globals['_PHASOR']._serialized_end=1582
-  _globals['_WINDINGS']._serialized_start=1584
-  _globals['_WINDINGS']._serialized_end=1689
-  _globals['_WINDINGTERMINALS']._serialized_start=1691
-  _globals['_WINDINGTERMINALS']._serialized_end=1755
-  _globals['_SWITCH']._serialized_start=1758
-  _globals['_SWITCH']._serialized_end=1982
-  _globals['_GATE']._serialized_start=1984
-  _globals['_GATE']._serialized_end=2039
-  _globals['_GATETIMES']._serialized_start=2041
-  _globals['_GATETIMES']._serialized_end=2117
-  _globals['_DIODE']._serialized_start=2120
-  _globals['_DIODE']._serialized_end=2281
-  _globals['_PIECEWISELINEARLAW']._serialized_start=2284
-  _globals['_PIECEWISELINEARLAW']._serialized_end=2432
-  _globals['_EXPONENTIALLAW']._serialized_start=2434
-  _globals['_EXPONENTIALLAW']._serialized_end=2507
-  _globals['_ARRESTER']._serialized_start=2509
-  _globals['_ARRESTER']._serialized_end=2617
-  _globals['_SATURABLEINDUCTOR']._serialized_start=2620
-  _globals['_SATURABLEINDUCTOR']._serialized_end=2768
-  _globals['_IDEALTRANSFORMER']._serialized_start=2770
-  _globals['_IDEALTRANSFORMER']._serialized_end=2853
-  _globals['_VOLTAGEBYVOLTAGE']._serialized_start=2855
-  _globals['_VOLTAGEBYVOLTAGE']._serialized_end=2947
-  _globals['_CURRENTBYVOLTAGE']._serialized_start=2949
-  _globals['_CURRENTBYVOLTAGE']._serialized_end=3055
-  _globals['_VOLTAGEBYCURRENT']._serialized_start=3057
-  _globals['_VOLTAGEBYCURRENT']._serialized_end=3143
-  _globals['_CURRENTBYCURRENT']._serialized_start=3145
-  _globals['_CURRENTBYCURRENT']._serialized_end=3216
-  _globals['_WAVEFORM']._serialized_start=3219
-  _globals['_WAVEFORM']._serialized_end=3558
-  _globals['_CONSTANT']._serialized_start=3560
-  _globals['_CONSTANT']._serialized_end=3585
-  _globals['_STEP']._serialized_start=3587
-  _globals['_STEP']._serialized_end=3622
-  _globals['_RAMP']._serialized_start=3624
-  _globals['_RAMP']._serialized_end=3665
-  _globals['_SINE']._serialized_start=3667
-  _globals['_SINE']._serialized_end=3749
-  _globals['_TRAPEZOID']._serialized_start=3751
-  _globals['_TRAPEZOID']._serialized_end=3872
-  _globals['_DOUBLEEXPONENTIAL']._serialized_start=3874
-  _globals['_DOUBLEEXPONENTIAL']._serialized_end=3945
-  _globals['_PIECEWISELINEAR']._serialized_start=3947
-  _globals['_PIECEWISELINEAR']._serialized_end=4037
-  _globals['_OBSERVABLE']._serialized_start=4040
-  _globals['_OBSERVABLE']._serialized_end=4378
-  _globals['_NODEVOLTAGE']._serialized_start=4380
-  _globals['_NODEVOLTAGE']._serialized_end=4419
-  _globals['_WINDINGNAME']._serialized_start=4421
-  _globals['_WINDINGNAME']._serialized_end=4463
+  _globals['_NETWORK']._serialized_start=128
+  _globals['_NETWORK']._serialized_end=252
+  _globals['_PORT']._serialized_start=254
+  _globals['_PORT']._serialized_end=342
+  _globals['_ELEMENT']._serialized_start=345
+  _globals['_ELEMENT']._serialized_end=1158
+  _globals['_RESISTOR']._serialized_start=1160
+  _globals['_RESISTOR']._serialized_end=1216
+  _globals['_INDUCTOR']._serialized_start=1218
+  _globals['_INDUCTOR']._serialized_end=1272
+  _globals['_CAPACITOR']._serialized_start=1274
+  _globals['_CAPACITOR']._serialized_end=1330
+  _globals['_VOLTAGESOURCE']._serialized_start=1332
+  _globals['_VOLTAGESOURCE']._serialized_end=1449
+  _globals['_CURRENTSOURCE']._serialized_start=1451
+  _globals['_CURRENTSOURCE']._serialized_end=1568
+  _globals['_PHASOR']._serialized_start=1570
+  _globals['_PHASOR']._serialized_end=1611
+  _globals['_WINDINGS']._serialized_start=1613
+  _globals['_WINDINGS']._serialized_end=1718
+  _globals['_WINDINGTERMINALS']._serialized_start=1720
+  _globals['_WINDINGTERMINALS']._serialized_end=1784
+  _globals['_SWITCH']._serialized_start=1787
+  _globals['_SWITCH']._serialized_end=2011
+  _globals['_GATE']._serialized_start=2013
+  _globals['_GATE']._serialized_end=2068
+  _globals['_GATETIMES']._serialized_start=2070
+  _globals['_GATETIMES']._serialized_end=2146
+  _globals['_DIODE']._serialized_start=2149
+  _globals['_DIODE']._serialized_end=2310
+  _globals['_PIECEWISELINEARLAW']._serialized_start=2313
+  _globals['_PIECEWISELINEARLAW']._serialized_end=2461
+  _globals['_EXPONENTIALLAW']._serialized_start=2463
+  _globals['_EXPONENTIALLAW']._serialized_end=2536
+  _globals['_ARRESTER']._serialized_start=2538
+  _globals['_ARRESTER']._serialized_end=2646
+  _globals['_SATURABLEINDUCTOR']._serialized_start=2649
+  _globals['_SATURABLEINDUCTOR']._serialized_end=2797
+  _globals['_IDEALTRANSFORMER']._serialized_start=2799
+  _globals['_IDEALTRANSFORMER']._serialized_end=2882
+  _globals['_VOLTAGEBYVOLTAGE']._serialized_start=2884
+  _globals['_VOLTAGEBYVOLTAGE']._serialized_end=2976
+  _globals['_CURRENTBYVOLTAGE']._serialized_start=2978
+  _globals['_CURRENTBYVOLTAGE']._serialized_end=3084
+  _globals['_VOLTAGEBYCURRENT']._serialized_start=3086
+  _globals['_VOLTAGEBYCURRENT']._serialized_end=3172
+  _globals['_CURRENTBYCURRENT']._serialized_start=3174
+  _globals['_CURRENTBYCURRENT']._serialized_end=3245
 # @@protoc_insertion_point(module_scope)

@@ -25,20 +25,21 @@ _sym_db = _symbol_database.Default()
 from interwind.v1 import array_pb2 as interwind_dot_v1_dot_array__pb2
 from interwind.v1 import finding_pb2 as interwind_dot_v1_dot_finding__pb2
 from interwind.v1 import network_pb2 as interwind_dot_v1_dot_network__pb2
+from interwind.v1 import observable_pb2 as interwind_dot_v1_dot_observable__pb2
 from interwind.v1 import response_pb2 as interwind_dot_v1_dot_response__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\"interwind/v1/network_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/finding.proto\x1a\x1ainterwind/v1/network.proto\x1a\x1binterwind/v1/response.proto\"_\n\x13StampNetworkRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\"\xd7\x02\n\x14StampNetworkResponse\x12/\n\x12\x63onductance_matrix\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12+\n\x0estorage_matrix\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\x12)\n\x0cinput_matrix\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\x12*\n\x08unknowns\x18\x04 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x0e\n\x06inputs\x18\x05 \x03(\t\x12\'\n\x08\x66indings\x18\x06 \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\x07 \x03(\x0b\x32\x15.interwind.v1.Caution\x12(\n\x08\x65vidence\x18\x08 \x01(\x0b\x32\x16.interwind.v1.Evidence2g\n\x0eNetworkService\x12U\n\x0cStampNetwork\x12!.interwind.v1.StampNetworkRequest\x1a\".interwind.v1.StampNetworkResponseb\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\"interwind/v1/network_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/finding.proto\x1a\x1ainterwind/v1/network.proto\x1a\x1dinterwind/v1/observable.proto\x1a\x1binterwind/v1/response.proto\"_\n\x13StampNetworkRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\"\xd7\x02\n\x14StampNetworkResponse\x12/\n\x12\x63onductance_matrix\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12+\n\x0estorage_matrix\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\x12)\n\x0cinput_matrix\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\x12*\n\x08unknowns\x18\x04 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x0e\n\x06inputs\x18\x05 \x03(\t\x12\'\n\x08\x66indings\x18\x06 \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\x07 \x03(\x0b\x32\x15.interwind.v1.Caution\x12(\n\x08\x65vidence\x18\x08 \x01(\x0b\x32\x16.interwind.v1.Evidence2g\n\x0eNetworkService\x12U\n\x0cStampNetwork\x12!.interwind.v1.StampNetworkRequest\x1a\".interwind.v1.StampNetworkResponseb\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
 _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'interwind.v1.network_service_pb2', _globals)
 if not _descriptor._USE_C_DESCRIPTORS:
   DESCRIPTOR._loaded_options = None
-  _globals['_STAMPNETWORKREQUEST']._serialized_start=163
-  _globals['_STAMPNETWORKREQUEST']._serialized_end=258
-  _globals['_STAMPNETWORKRESPONSE']._serialized_start=261
-  _globals['_STAMPNETWORKRESPONSE']._serialized_end=604
-  _globals['_NETWORKSERVICE']._serialized_start=606
-  _globals['_NETWORKSERVICE']._serialized_end=709
+  _globals['_STAMPNETWORKREQUEST']._serialized_start=194
+  _globals['_STAMPNETWORKREQUEST']._serialized_end=289
+  _globals['_STAMPNETWORKRESPONSE']._serialized_start=292
+  _globals['_STAMPNETWORKRESPONSE']._serialized_end=635
+  _globals['_NETWORKSERVICE']._serialized_start=637
+  _globals['_NETWORKSERVICE']._serialized_end=740
 # @@protoc_insertion_point(module_scope)

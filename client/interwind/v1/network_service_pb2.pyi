@@ -1,6 +1,7 @@
 from interwind.v1 import array_pb2 as _array_pb2
 from interwind.v1 import finding_pb2 as _finding_pb2
 from interwind.v1 import network_pb2 as _network_pb2
+from interwind.v1 import observable_pb2 as _observable_pb2
 from interwind.v1 import response_pb2 as _response_pb2
 from google.protobuf.internal import containers as _containers
 from google.protobuf import descriptor as _descriptor
@@ -30,9 +31,9 @@ class StampNetworkResponse(_message.Message):
     conductance_matrix: _array_pb2.Array
     storage_matrix: _array_pb2.Array
     input_matrix: _array_pb2.Array
-    unknowns: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
+    unknowns: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
     inputs: _containers.RepeatedScalarFieldContainer[str]
     findings: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Finding]
     cautions: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Caution]
     evidence: _finding_pb2.Evidence
-    def __init__(self, conductance_matrix: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., storage_matrix: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., input_matrix: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., unknowns: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ..., inputs: _Optional[_Iterable[str]] = ..., findings: _Optional[_Iterable[_Union[_finding_pb2.Finding, _Mapping]]] = ..., cautions: _Optional[_Iterable[_Union[_finding_pb2.Caution, _Mapping]]] = ..., evidence: _Optional[_Union[_finding_pb2.Evidence, _Mapping]] = ...) -> None: ...
+    def __init__(self, conductance_matrix: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., storage_matrix: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., input_matrix: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., unknowns: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., inputs: _Optional[_Iterable[str]] = ..., findings: _Optional[_Iterable[_Union[_finding_pb2.Finding, _Mapping]]] = ..., cautions: _Optional[_Iterable[_Union[_finding_pb2.Caution, _Mapping]]] = ..., evidence: _Optional[_Union[_finding_pb2.Evidence, _Mapping]] = ...) -> None: ...

@@ -1,6 +1,6 @@
 from interwind.v1 import array_pb2 as _array_pb2
 from interwind.v1 import finding_pb2 as _finding_pb2
-from interwind.v1 import network_pb2 as _network_pb2
+from interwind.v1 import observable_pb2 as _observable_pb2
 from google.protobuf.internal import containers as _containers
 from google.protobuf import descriptor as _descriptor
 from google.protobuf import message as _message
@@ -46,9 +46,9 @@ class ResultArray(_message.Message):
     name: str
     shape: _containers.RepeatedScalarFieldContainer[int]
     dtype: _array_pb2.Dtype
-    columns: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
+    columns: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
     port_names: _containers.RepeatedScalarFieldContainer[str]
-    def __init__(self, name: _Optional[str] = ..., shape: _Optional[_Iterable[int]] = ..., dtype: _Optional[_Union[_array_pb2.Dtype, str]] = ..., columns: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ..., port_names: _Optional[_Iterable[str]] = ...) -> None: ...
+    def __init__(self, name: _Optional[str] = ..., shape: _Optional[_Iterable[int]] = ..., dtype: _Optional[_Union[_array_pb2.Dtype, str]] = ..., columns: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., port_names: _Optional[_Iterable[str]] = ...) -> None: ...
 
 class ResultChunk(_message.Message):
     __slots__ = ("offset_bytes", "data")
@@ -113,6 +113,6 @@ class InitialValue(_message.Message):
     __slots__ = ("observable", "value")
     OBSERVABLE_FIELD_NUMBER: _ClassVar[int]
     VALUE_FIELD_NUMBER: _ClassVar[int]
-    observable: _network_pb2.Observable
+    observable: _observable_pb2.Observable
     value: float
-    def __init__(self, observable: _Optional[_Union[_network_pb2.Observable, _Mapping]] = ..., value: _Optional[float] = ...) -> None: ...
+    def __init__(self, observable: _Optional[_Union[_observable_pb2.Observable, _Mapping]] = ..., value: _Optional[float] = ...) -> None: ...

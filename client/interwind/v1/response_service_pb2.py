@@ -24,30 +24,31 @@ _sym_db = _symbol_database.Default()
 
 from interwind.v1 import array_pb2 as interwind_dot_v1_dot_array__pb2
 from interwind.v1 import network_pb2 as interwind_dot_v1_dot_network__pb2
+from interwind.v1 import observable_pb2 as interwind_dot_v1_dot_observable__pb2
 from interwind.v1 import response_pb2 as interwind_dot_v1_dot_response__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n#interwind/v1/response_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/network.proto\x1a\x1binterwind/v1/response.proto\"\x89\x02\n\x1f\x43omputeFrequencyResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12+\n\x0c\x66requency_hz\x18\x03 \x01(\x0b\x32\x13.interwind.v1.ArrayH\x00\x12\x35\n\x0e\x61\x64\x61ptive_sweep\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.AdaptiveSweepH\x00\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.ObservableB\r\n\x0b\x66requencies\"H\n\rAdaptiveSweep\x12\x10\n\x08start_hz\x18\x01 \x01(\x01\x12\x0f\n\x07stop_hz\x18\x02 \x01(\x01\x12\x14\n\x0ctolerance_db\x18\x03 \x01(\x01\"\xe0\x01\n ComputeFrequencyResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\x91\x01\n\x1a\x43omputePortResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12)\n\x0c\x66requency_hz\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\"\xdb\x01\n\x1b\x43omputePortResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\x87\x02\n\x1a\x43omputeTimeResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12\x0e\n\x06stop_s\x18\x03 \x01(\x01\x12\x0e\n\x06step_s\x18\x04 \x01(\x01\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.Observable\x12+\n\x07initial\x18\x06 \x03(\x0b\x32\x1a.interwind.v1.InitialValue\x12\x14\n\x0csteady_start\x18\x07 \x01(\x08\x12\x11\n\ttolerance\x18\x08 \x01(\x01\"\xdb\x01\n\x1b\x43omputeTimeResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part2\xea\x02\n\x0fResponseService\x12{\n\x18\x43omputeFrequencyResponse\x12-.interwind.v1.ComputeFrequencyResponseRequest\x1a..interwind.v1.ComputeFrequencyResponseResponse0\x01\x12l\n\x13\x43omputePortResponse\x12(.interwind.v1.ComputePortResponseRequest\x1a).interwind.v1.ComputePortResponseResponse0\x01\x12l\n\x13\x43omputeTimeResponse\x12(.interwind.v1.ComputeTimeResponseRequest\x1a).interwind.v1.ComputeTimeResponseResponse0\x01\x62\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n#interwind/v1/response_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/network.proto\x1a\x1dinterwind/v1/observable.proto\x1a\x1binterwind/v1/response.proto\"\x89\x02\n\x1f\x43omputeFrequencyResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12+\n\x0c\x66requency_hz\x18\x03 \x01(\x0b\x32\x13.interwind.v1.ArrayH\x00\x12\x35\n\x0e\x61\x64\x61ptive_sweep\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.AdaptiveSweepH\x00\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.ObservableB\r\n\x0b\x66requencies\"H\n\rAdaptiveSweep\x12\x10\n\x08start_hz\x18\x01 \x01(\x01\x12\x0f\n\x07stop_hz\x18\x02 \x01(\x01\x12\x14\n\x0ctolerance_db\x18\x03 \x01(\x01\"\xe0\x01\n ComputeFrequencyResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\x91\x01\n\x1a\x43omputePortResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12)\n\x0c\x66requency_hz\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\"\xdb\x01\n\x1b\x43omputePortResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\x87\x02\n\x1a\x43omputeTimeResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12\x0e\n\x06stop_s\x18\x03 \x01(\x01\x12\x0e\n\x06step_s\x18\x04 \x01(\x01\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.Observable\x12+\n\x07initial\x18\x06 \x03(\x0b\x32\x1a.interwind.v1.InitialValue\x12\x14\n\x0csteady_start\x18\x07 \x01(\x08\x12\x11\n\ttolerance\x18\x08 \x01(\x01\"\xdb\x01\n\x1b\x43omputeTimeResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part2\xea\x02\n\x0fResponseService\x12{\n\x18\x43omputeFrequencyResponse\x12-.interwind.v1.ComputeFrequencyResponseRequest\x1a..interwind.v1.ComputeFrequencyResponseResponse0\x01\x12l\n\x13\x43omputePortResponse\x12(.interwind.v1.ComputePortResponseRequest\x1a).interwind.v1.ComputePortResponseResponse0\x01\x12l\n\x13\x43omputeTimeResponse\x12(.interwind.v1.ComputeTimeResponseRequest\x1a).interwind.v1.ComputeTimeResponseResponse0\x01\x62\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
 _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'interwind.v1.response_service_pb2', _globals)
 if not _descriptor._USE_C_DESCRIPTORS:
   DESCRIPTOR._loaded_options = None
-  _globals['_COMPUTEFREQUENCYRESPONSEREQUEST']._serialized_start=137
-  _globals['_COMPUTEFREQUENCYRESPONSEREQUEST']._serialized_end=402
-  _globals['_ADAPTIVESWEEP']._serialized_start=404
-  _globals['_ADAPTIVESWEEP']._serialized_end=476
-  _globals['_COMPUTEFREQUENCYRESPONSERESPONSE']._serialized_start=479
-  _globals['_COMPUTEFREQUENCYRESPONSERESPONSE']._serialized_end=703
-  _globals['_COMPUTEPORTRESPONSEREQUEST']._serialized_start=706
-  _globals['_COMPUTEPORTRESPONSEREQUEST']._serialized_end=851
-  _globals['_COMPUTEPORTRESPONSERESPONSE']._serialized_start=854
-  _globals['_COMPUTEPORTRESPONSERESPONSE']._serialized_end=1073
-  _globals['_COMPUTETIMERESPONSEREQUEST']._serialized_start=1076
-  _globals['_COMPUTETIMERESPONSEREQUEST']._serialized_end=1339
-  _globals['_COMPUTETIMERESPONSERESPONSE']._serialized_start=1342
-  _globals['_COMPUTETIMERESPONSERESPONSE']._serialized_end=1561
-  _globals['_RESPONSESERVICE']._serialized_start=1564
-  _globals['_RESPONSESERVICE']._serialized_end=1926
+  _globals['_COMPUTEFREQUENCYRESPONSEREQUEST']._serialized_start=168
+  _globals['_COMPUTEFREQUENCYRESPONSEREQUEST']._serialized_end=433
+  _globals['_ADAPTIVESWEEP']._serialized_start=435
+  _globals['_ADAPTIVESWEEP']._serialized_end=507
+  _globals['_COMPUTEFREQUENCYRESPONSERESPONSE']._serialized_start=510
+  _globals['_COMPUTEFREQUENCYRESPONSERESPONSE']._serialized_end=734
+  _globals['_COMPUTEPORTRESPONSEREQUEST']._serialized_start=737
+  _globals['_COMPUTEPORTRESPONSEREQUEST']._serialized_end=882
+  _globals['_COMPUTEPORTRESPONSERESPONSE']._serialized_start=885
+  _globals['_COMPUTEPORTRESPONSERESPONSE']._serialized_end=1104
+  _globals['_COMPUTETIMERESPONSEREQUEST']._serialized_start=1107
+  _globals['_COMPUTETIMERESPONSEREQUEST']._serialized_end=1370
+  _globals['_COMPUTETIMERESPONSERESPONSE']._serialized_start=1373
+  _globals['_COMPUTETIMERESPONSERESPONSE']._serialized_end=1592
+  _globals['_RESPONSESERVICE']._serialized_start=1595
+  _globals['_RESPONSESERVICE']._serialized_end=1957
 # @@protoc_insertion_point(module_scope)

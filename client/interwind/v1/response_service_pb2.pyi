@@ -1,5 +1,6 @@
 from interwind.v1 import array_pb2 as _array_pb2
 from interwind.v1 import network_pb2 as _network_pb2
+from interwind.v1 import observable_pb2 as _observable_pb2
 from interwind.v1 import response_pb2 as _response_pb2
 from google.protobuf.internal import containers as _containers
 from google.protobuf import descriptor as _descriptor
@@ -19,8 +20,8 @@ class ComputeFrequencyResponseRequest(_message.Message):
     network: _network_pb2.Network
     frequency_hz: _array_pb2.Array
     adaptive_sweep: AdaptiveSweep
-    observe: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
-    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., frequency_hz: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., adaptive_sweep: _Optional[_Union[AdaptiveSweep, _Mapping]] = ..., observe: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ...) -> None: ...
+    observe: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., frequency_hz: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., adaptive_sweep: _Optional[_Union[AdaptiveSweep, _Mapping]] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ...) -> None: ...
 
 class AdaptiveSweep(_message.Message):
     __slots__ = ("start_hz", "stop_hz", "tolerance_db")
@@ -80,11 +81,11 @@ class ComputeTimeResponseRequest(_message.Message):
     network: _network_pb2.Network
     stop_s: float
     step_s: float
-    observe: _containers.RepeatedCompositeFieldContainer[_network_pb2.Observable]
+    observe: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
     initial: _containers.RepeatedCompositeFieldContainer[_response_pb2.InitialValue]
     steady_start: bool
     tolerance: float
-    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., stop_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_network_pb2.Observable, _Mapping]]] = ..., initial: _Optional[_Iterable[_Union[_response_pb2.InitialValue, _Mapping]]] = ..., steady_start: bool = ..., tolerance: _Optional[float] = ...) -> None: ...
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., stop_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., initial: _Optional[_Iterable[_Union[_response_pb2.InitialValue, _Mapping]]] = ..., steady_start: bool = ..., tolerance: _Optional[float] = ...) -> None: ...
 
 class ComputeTimeResponseResponse(_message.Message):
     __slots__ = ("progress", "header", "chunk", "trailer")
