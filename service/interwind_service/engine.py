@@ -10,12 +10,14 @@ from collections.abc import Callable
 from dataclasses import replace
 from typing import Any, ParamSpec, TypeVar
 
+from interwind.model.characterization import Characterization
 from interwind.model.digest import request_digest
+from interwind.model.identification import Identification
 from interwind.model.network import Network
-from interwind.model.report import ValidityReport
+from interwind.model.periodic import PeriodicResponse
+from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import FrequencyResponse, MnaSystem, PortResponse, TimeResponse
 from interwind.model.windings import WindingSet
-
 from interwind_service.version import SERVICE_VERSION
 
 P = ParamSpec("P")
@@ -51,6 +53,36 @@ def check(windings: WindingSet) -> ValidityReport:
 
 
 @_with_provenance
+def repair(
+    windings: WindingSet,
+    trusted: Any = (),
+    weights: Any = None,
+    floor: float | None = None,
+    method: RepairMethod = RepairMethod.COMPLETION,
+) -> RepairReport:
+    """Mend a set."""
+    from interwind_service.windings import repair as desk
+
+    return desk.repair(windings, trusted, weights, floor, method)
+
+
+@_with_provenance
+def identify(labels: Any, readings: Any) -> Identification:
+    """Find the set that fits the readings."""
+    from interwind_service.windings import identify as desk
+
+    return desk.identify(labels, readings)
+
+
+@_with_provenance
+def characterize(windings: WindingSet, connections: Any = (), frequency_hz: Any = None) -> Characterization:
+    """Read off what designers use."""
+    from interwind_service.windings import characterize as desk
+
+    return desk.characterize(windings, connections, frequency_hz)
+
+
+@_with_provenance
 def stamp(network: Network) -> MnaSystem:
     """Return the matrices of the network."""
     from interwind_service.network import system
@@ -82,3 +114,13 @@ def time_response(
     from interwind_service.response import time
 
     return time.time_response(network, stop_s, step_s, observe, initial, tolerance)
+
+
+@_with_provenance
+def periodic_response(
+    network: Network, period_s: float, step_s: float, observe: Any = None, tolerance: float = 1e-6
+) -> PeriodicResponse:
+    """Find one period of the steady state, directly."""
+    from interwind_service.response import periodic
+
+    return periodic.periodic_response(network, period_s, step_s, observe, tolerance)

@@ -122,7 +122,8 @@ def array_from_message(message: array_pb2.Array, field: str, *, real: bool = Tru
         count *= length
     if array.size != count:
         raise InvalidRequest.at(
-            f"{field}.shape", f"{list(shape)} needs {count} numbers, {array.size} found; state as many as the shape says"
+            f"{field}.shape",
+            f"{list(shape)} needs {count} numbers, {array.size} found; state as many as the shape says",
         )
     if real and dtype.kind == "c":
         raise InvalidRequest.at(f"{field}.dtype", "complex numbers found; real numbers are expected here")

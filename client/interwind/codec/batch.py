@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind.codec.array import array_from_message, array_to_message
-from interwind.codec.calls import size_of_network
+from interwind.codec.call import size_of_network
 from interwind.codec.network import network_from_message, network_to_message
 from interwind.codec.observable import (
     observable_from_message,

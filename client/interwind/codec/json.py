@@ -7,6 +7,7 @@ from typing import Any
 
 from google.protobuf import json_format
 
+from interwind.codec import desk
 from interwind.codec.array import typed_arrays
 from interwind.codec.network import network_from_message, network_to_message
 from interwind.codec.windings import (
@@ -16,14 +17,27 @@ from interwind.codec.windings import (
     windings_to_message,
 )
 from interwind.errors import InvalidRequest
+from interwind.model.characterization import Characterization
+from interwind.model.identification import Identification
 from interwind.model.network import Network
-from interwind.model.report import ValidityReport
+from interwind.model.report import RepairReport, ValidityReport
 from interwind.model.windings import WindingSet
 from interwind.v1 import network_pb2, windings_pb2, windings_service_pb2
 
 FORMS: dict[type[Any], tuple[type[Any], Callable[[Any], Any], Callable[[Any], Any]]] = {
     WindingSet: (windings_pb2.WindingSet, windings_to_message, windings_from_message),
     Network: (network_pb2.Network, network_to_message, network_from_message),
+    RepairReport: (windings_service_pb2.RepairWindingsResponse, desk.repair_to_message, desk.repair_from_message),
+    Identification: (
+        windings_service_pb2.IdentifyWindingsResponse,
+        desk.identification_to_message,
+        desk.identification_from_message,
+    ),
+    Characterization: (
+        windings_service_pb2.CharacterizeWindingsResponse,
+        desk.characterization_to_message,
+        desk.characterization_from_message,
+    ),
     ValidityReport: (windings_service_pb2.CheckWindingsResponse, verdict_to_message, verdict_from_message),
 }
 

@@ -10,6 +10,7 @@ from interwind.codec.finding import caution_from_message, evidence_from_message,
 from interwind.codec.observable import observable_to_message, observables_from_messages
 from interwind.codec.stream import NamedArray, StreamResult, decode_stream, encode_stream
 from interwind.codec.windings import frozen_from, noticed_from_message, noticed_to_messages
+from interwind.model.periodic import PeriodicResponse
 from interwind.model.response import (
     EnergyLedger,
     Event,
@@ -22,6 +23,7 @@ from interwind.v1 import network_service_pb2, response_pb2, response_service_pb2
 
 Messages = Iterable[Any]
 ProgressCallback = Callable[[int, int], None] | None
+_PERIODIC_ARRAYS = ("time_s", "means", "rmses", "peaks", "peak_times_s", "harmonic_values", "multipliers")
 
 
 def system_to_message(system: MnaSystem) -> network_service_pb2.StampNetworkResponse:
@@ -102,8 +104,7 @@ def time_to_messages(response: TimeResponse) -> Iterator[Any]:
     """Yield the messages of a time response."""
 
     def finish(trailer: response_pb2.ResultTrailer) -> None:
-        for event in response.events:
-            trailer.events.add(time_s=event.time_s, element=event.element, state=event.state)
+        _events_to_messages(response.events, trailer)
         if response.ledger is not None:
             trailer.ledger.CopyFrom(ledger_to_message(response.ledger))
 
@@ -127,6 +128,46 @@ def time_from_messages(messages: Messages, progress: ProgressCallback = None) ->
         ledger=ledger_from_message(trailer.ledger) if trailer.HasField("ledger") else None,
         **_noticed(result),
     )
+
+
+def periodic_to_messages(response: PeriodicResponse) -> Iterator[Any]:
+    """Yield the messages of a periodic response."""
+
+    def finish(trailer: response_pb2.ResultTrailer) -> None:
+        _events_to_messages(response.events, trailer)
+        if response.ledger is not None:
+            trailer.ledger.CopyFrom(ledger_to_message(response.ledger))
+        trailer.mean_power_w.update(response.mean_power_w)
+        trailer.period_s = response.period_s
+
+    arrays = [NamedArray(name, getattr(response, name)) for name in _PERIODIC_ARRAYS]
+    return encode_stream(
+        response_service_pb2.ComputePeriodicResponseResponse,
+        [NamedArray("samples", response.samples, response.observables), *arrays],
+        response,
+        finish,
+    )
+
+
+def periodic_from_messages(messages: Messages, progress: ProgressCallback = None) -> PeriodicResponse:
+    """Put a periodic response together."""
+    result = decode_stream(messages, progress)
+    trailer = result.trailer
+    return PeriodicResponse(
+        result.columns["samples"],
+        result.arrays["samples"],
+        period_s=trailer.period_s,
+        mean_power_w=dict(trailer.mean_power_w),
+        events=events_from_messages(trailer.events),
+        ledger=ledger_from_message(trailer.ledger) if trailer.HasField("ledger") else None,
+        **{name: result.arrays[name] for name in _PERIODIC_ARRAYS},
+        **_noticed(result),
+    )
+
+
+def _events_to_messages(events: Iterable[Event], trailer: response_pb2.ResultTrailer) -> None:
+    for event in events:
+        trailer.events.add(time_s=event.time_s, element=event.element, state=event.state)
 
 
 def events_from_messages(messages: Messages) -> tuple[Event, ...]:

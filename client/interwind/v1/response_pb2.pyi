@@ -59,7 +59,14 @@ class ResultChunk(_message.Message):
     def __init__(self, offset_bytes: _Optional[int] = ..., data: _Optional[bytes] = ...) -> None: ...
 
 class ResultTrailer(_message.Message):
-    __slots__ = ("evidence", "findings", "cautions", "size_bytes", "sha256", "events", "ledger")
+    __slots__ = ("evidence", "findings", "cautions", "size_bytes", "sha256", "events", "ledger", "mean_power_w", "period_s")
+    class MeanPowerWEntry(_message.Message):
+        __slots__ = ("key", "value")
+        KEY_FIELD_NUMBER: _ClassVar[int]
+        VALUE_FIELD_NUMBER: _ClassVar[int]
+        key: str
+        value: float
+        def __init__(self, key: _Optional[str] = ..., value: _Optional[float] = ...) -> None: ...
     EVIDENCE_FIELD_NUMBER: _ClassVar[int]
     FINDINGS_FIELD_NUMBER: _ClassVar[int]
     CAUTIONS_FIELD_NUMBER: _ClassVar[int]
@@ -67,6 +74,8 @@ class ResultTrailer(_message.Message):
     SHA256_FIELD_NUMBER: _ClassVar[int]
     EVENTS_FIELD_NUMBER: _ClassVar[int]
     LEDGER_FIELD_NUMBER: _ClassVar[int]
+    MEAN_POWER_W_FIELD_NUMBER: _ClassVar[int]
+    PERIOD_S_FIELD_NUMBER: _ClassVar[int]
     evidence: _finding_pb2.Evidence
     findings: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Finding]
     cautions: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Caution]
@@ -74,7 +83,9 @@ class ResultTrailer(_message.Message):
     sha256: str
     events: _containers.RepeatedCompositeFieldContainer[Event]
     ledger: EnergyLedger
-    def __init__(self, evidence: _Optional[_Union[_finding_pb2.Evidence, _Mapping]] = ..., findings: _Optional[_Iterable[_Union[_finding_pb2.Finding, _Mapping]]] = ..., cautions: _Optional[_Iterable[_Union[_finding_pb2.Caution, _Mapping]]] = ..., size_bytes: _Optional[int] = ..., sha256: _Optional[str] = ..., events: _Optional[_Iterable[_Union[Event, _Mapping]]] = ..., ledger: _Optional[_Union[EnergyLedger, _Mapping]] = ...) -> None: ...
+    mean_power_w: _containers.ScalarMap[str, float]
+    period_s: float
+    def __init__(self, evidence: _Optional[_Union[_finding_pb2.Evidence, _Mapping]] = ..., findings: _Optional[_Iterable[_Union[_finding_pb2.Finding, _Mapping]]] = ..., cautions: _Optional[_Iterable[_Union[_finding_pb2.Caution, _Mapping]]] = ..., size_bytes: _Optional[int] = ..., sha256: _Optional[str] = ..., events: _Optional[_Iterable[_Union[Event, _Mapping]]] = ..., ledger: _Optional[_Union[EnergyLedger, _Mapping]] = ..., mean_power_w: _Optional[_Mapping[str, float]] = ..., period_s: _Optional[float] = ...) -> None: ...
 
 class Event(_message.Message):
     __slots__ = ("time_s", "element", "state")

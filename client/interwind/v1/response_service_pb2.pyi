@@ -98,3 +98,31 @@ class ComputeTimeResponseResponse(_message.Message):
     chunk: _response_pb2.ResultChunk
     trailer: _response_pb2.ResultTrailer
     def __init__(self, progress: _Optional[_Union[_response_pb2.Progress, _Mapping]] = ..., header: _Optional[_Union[_response_pb2.ResultHeader, _Mapping]] = ..., chunk: _Optional[_Union[_response_pb2.ResultChunk, _Mapping]] = ..., trailer: _Optional[_Union[_response_pb2.ResultTrailer, _Mapping]] = ...) -> None: ...
+
+class ComputePeriodicResponseRequest(_message.Message):
+    __slots__ = ("size", "network", "period_s", "step_s", "observe", "tolerance")
+    SIZE_FIELD_NUMBER: _ClassVar[int]
+    NETWORK_FIELD_NUMBER: _ClassVar[int]
+    PERIOD_S_FIELD_NUMBER: _ClassVar[int]
+    STEP_S_FIELD_NUMBER: _ClassVar[int]
+    OBSERVE_FIELD_NUMBER: _ClassVar[int]
+    TOLERANCE_FIELD_NUMBER: _ClassVar[int]
+    size: _response_pb2.Size
+    network: _network_pb2.Network
+    period_s: float
+    step_s: float
+    observe: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
+    tolerance: float
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., period_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., tolerance: _Optional[float] = ...) -> None: ...
+
+class ComputePeriodicResponseResponse(_message.Message):
+    __slots__ = ("progress", "header", "chunk", "trailer")
+    PROGRESS_FIELD_NUMBER: _ClassVar[int]
+    HEADER_FIELD_NUMBER: _ClassVar[int]
+    CHUNK_FIELD_NUMBER: _ClassVar[int]
+    TRAILER_FIELD_NUMBER: _ClassVar[int]
+    progress: _response_pb2.Progress
+    header: _response_pb2.ResultHeader
+    chunk: _response_pb2.ResultChunk
+    trailer: _response_pb2.ResultTrailer
+    def __init__(self, progress: _Optional[_Union[_response_pb2.Progress, _Mapping]] = ..., header: _Optional[_Union[_response_pb2.ResultHeader, _Mapping]] = ..., chunk: _Optional[_Union[_response_pb2.ResultChunk, _Mapping]] = ..., trailer: _Optional[_Union[_response_pb2.ResultTrailer, _Mapping]] = ...) -> None: ...

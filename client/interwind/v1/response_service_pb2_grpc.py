@@ -51,6 +51,11 @@ class ResponseServiceStub(object):
                 request_serializer=interwind_dot_v1_dot_response__service__pb2.ComputeTimeResponseRequest.SerializeToString,
                 response_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputeTimeResponseResponse.FromString,
                 _registered_method=True)
+        self.ComputePeriodicResponse = channel.unary_stream(
+                '/interwind.v1.ResponseService/ComputePeriodicResponse',
+                request_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePeriodicResponseRequest.SerializeToString,
+                response_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputePeriodicResponseResponse.FromString,
+                _registered_method=True)
 
 
 class ResponseServiceServicer(object):
@@ -79,6 +84,13 @@ class ResponseServiceServicer(object):
         context.set_details('Method not implemented!')
         raise NotImplementedError('Method not implemented!')
 
+    def ComputePeriodicResponse(self, request, context):
+        """Computes one period of the steady state, directly.
+        """
+        context.set_code(grpc.StatusCode.UNIMPLEMENTED)
+        context.set_details('Method not implemented!')
+        raise NotImplementedError('Method not implemented!')
+
 
 def add_ResponseServiceServicer_to_server(servicer, server):
     rpc_method_handlers = {
@@ -96,6 +108,11 @@ def add_ResponseServiceServicer_to_server(servicer, server):
                     servicer.ComputeTimeResponse,
                     request_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputeTimeResponseRequest.FromString,
                     response_serializer=interwind_dot_v1_dot_response__service__pb2.ComputeTimeResponseResponse.SerializeToString,
+            ),
+            'ComputePeriodicResponse': grpc.unary_stream_rpc_method_handler(
+                    servicer.ComputePeriodicResponse,
+                    request_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputePeriodicResponseRequest.FromString,
+                    response_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePeriodicResponseResponse.SerializeToString,
             ),
     }
     generic_handler = grpc.method_handlers_generic_handler(
@@ -181,6 +198,33 @@ class ResponseService(object):
             '/interwind.v1.ResponseService/ComputeTimeResponse',
             interwind_dot_v1_dot_response__service__pb2.ComputeTimeResponseRequest.SerializeToString,
             interwind_dot_v1_dot_response__service__pb2.ComputeTimeResponseResponse.FromString,
+            options,
+            channel_credentials,
+            insecure,
+            call_credentials,
+            compression,
+            wait_for_ready,
+            timeout,
+            metadata,
+            _registered_method=True)
+
+    @staticmethod
+    def ComputePeriodicResponse(request,
+            target,
+            options=(),
+            channel_credentials=None,
+            call_credentials=None,
+            insecure=False,
+            compression=None,
+            wait_for_ready=None,
+            timeout=None,
+            metadata=None):
+        return grpc.experimental.unary_stream(
+            request,
+            target,
+            '/interwind.v1.ResponseService/ComputePeriodicResponse',
+            interwind_dot_v1_dot_response__service__pb2.ComputePeriodicResponseRequest.SerializeToString,
+            interwind_dot_v1_dot_response__service__pb2.ComputePeriodicResponseResponse.FromString,
             options,
             channel_credentials,
             insecure,

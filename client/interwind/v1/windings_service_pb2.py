@@ -23,26 +23,48 @@ _sym_db = _symbol_database.Default()
 
 
 from interwind.v1 import array_pb2 as interwind_dot_v1_dot_array__pb2
+from interwind.v1 import characterization_pb2 as interwind_dot_v1_dot_characterization__pb2
 from interwind.v1 import finding_pb2 as interwind_dot_v1_dot_finding__pb2
+from interwind.v1 import reading_pb2 as interwind_dot_v1_dot_reading__pb2
 from interwind.v1 import response_pb2 as interwind_dot_v1_dot_response__pb2
 from interwind.v1 import windings_pb2 as interwind_dot_v1_dot_windings__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n#interwind/v1/windings_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/finding.proto\x1a\x1binterwind/v1/response.proto\x1a\x1binterwind/v1/windings.proto\"d\n\x14\x43heckWindingsRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12*\n\x08windings\x18\x02 \x01(\x0b\x32\x18.interwind.v1.WindingSet\"\xeb\x03\n\x15\x43heckWindingsResponse\x12&\n\x07verdict\x18\x01 \x01(\x0e\x32\x15.interwind.v1.Verdict\x12\x0e\n\x06labels\x18\x02 \x03(\t\x12(\n\x0b\x65igenvalues\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\x12*\n\reigenvalues_h\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\x12.\n\x11witness_current_a\x18\x05 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x18\n\x10witness_energy_j\x18\x06 \x01(\x01\x12\'\n\x08\x63ulprits\x18\x07 \x03(\x0b\x32\x15.interwind.v1.Culprit\x12)\n\x0c\x66\x65\x61sible_low\x18\x08 \x01(\x0b\x32\x13.interwind.v1.Array\x12*\n\rfeasible_high\x18\t \x01(\x0b\x32\x13.interwind.v1.Array\x12\'\n\x08\x66indings\x18\n \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\x0b \x03(\x0b\x32\x15.interwind.v1.Caution\x12(\n\x08\x65vidence\x18\x0c \x01(\x0b\x32\x16.interwind.v1.Evidence\"V\n\x07\x43ulprit\x12\r\n\x05\x66irst\x18\x01 \x01(\t\x12\x0e\n\x06second\x18\x02 \x01(\t\x12\x0b\n\x03low\x18\x03 \x01(\x01\x12\x0c\n\x04high\x18\x04 \x01(\x01\x12\x11\n\tsuggested\x18\x05 \x01(\x01*a\n\x07Verdict\x12\x17\n\x13VERDICT_UNSPECIFIED\x10\x00\x12\x11\n\rVERDICT_VALID\x10\x01\x12\x13\n\x0fVERDICT_INVALID\x10\x02\x12\x15\n\x11VERDICT_UNDECIDED\x10\x03\x32k\n\x0fWindingsService\x12X\n\rCheckWindings\x12\".interwind.v1.CheckWindingsRequest\x1a#.interwind.v1.CheckWindingsResponseb\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n#interwind/v1/windings_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a#interwind/v1/characterization.proto\x1a\x1ainterwind/v1/finding.proto\x1a\x1ainterwind/v1/reading.proto\x1a\x1binterwind/v1/response.proto\x1a\x1binterwind/v1/windings.proto\"d\n\x14\x43heckWindingsRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12*\n\x08windings\x18\x02 \x01(\x0b\x32\x18.interwind.v1.WindingSet\"\xeb\x03\n\x15\x43heckWindingsResponse\x12&\n\x07verdict\x18\x01 \x01(\x0e\x32\x15.interwind.v1.Verdict\x12\x0e\n\x06labels\x18\x02 \x03(\t\x12(\n\x0b\x65igenvalues\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\x12*\n\reigenvalues_h\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\x12.\n\x11witness_current_a\x18\x05 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x18\n\x10witness_energy_j\x18\x06 \x01(\x01\x12\'\n\x08\x63ulprits\x18\x07 \x03(\x0b\x32\x15.interwind.v1.Culprit\x12)\n\x0c\x66\x65\x61sible_low\x18\x08 \x01(\x0b\x32\x13.interwind.v1.Array\x12*\n\rfeasible_high\x18\t \x01(\x0b\x32\x13.interwind.v1.Array\x12\'\n\x08\x66indings\x18\n \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\x0b \x03(\x0b\x32\x15.interwind.v1.Caution\x12(\n\x08\x65vidence\x18\x0c \x01(\x0b\x32\x16.interwind.v1.Evidence\"V\n\x07\x43ulprit\x12\r\n\x05\x66irst\x18\x01 \x01(\t\x12\x0e\n\x06second\x18\x02 \x01(\t\x12\x0b\n\x03low\x18\x03 \x01(\x01\x12\x0c\n\x04high\x18\x04 \x01(\x01\x12\x11\n\tsuggested\x18\x05 \x01(\x01\"\x81\x02\n\x15RepairWindingsRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12*\n\x08windings\x18\x02 \x01(\x0b\x32\x18.interwind.v1.WindingSet\x12*\n\x07trusted\x18\x03 \x03(\x0b\x32\x19.interwind.v1.WindingPair\x12$\n\x07weights\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x12\n\x05\x66loor\x18\x05 \x01(\x01H\x00\x88\x01\x01\x12*\n\x06method\x18\x06 \x01(\x0e\x32\x1a.interwind.v1.RepairMethodB\x08\n\x06_floor\",\n\x0bWindingPair\x12\r\n\x05\x66irst\x18\x01 \x01(\t\x12\x0e\n\x06second\x18\x02 \x01(\t\"\xd3\x03\n\x16RepairWindingsResponse\x12*\n\x08windings\x18\x01 \x01(\x0b\x32\x18.interwind.v1.WindingSet\x12\x10\n\x08\x64istance\x18\x02 \x01(\x01\x12-\n\x07\x63hanges\x18\x03 \x03(\x0b\x32\x1c.interwind.v1.CouplingChange\x12-\n\x10leakage_before_h\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\x12,\n\x0fleakage_after_h\x18\x05 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x39\n\x1c\x61ll_shorted_leakage_before_h\x18\x06 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x38\n\x1b\x61ll_shorted_leakage_after_h\x18\x07 \x01(\x0b\x32\x13.interwind.v1.Array\x12\'\n\x08\x66indings\x18\x08 \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\t \x03(\x0b\x32\x15.interwind.v1.Caution\x12(\n\x08\x65vidence\x18\n \x01(\x0b\x32\x16.interwind.v1.Evidence\"y\n\x0e\x43ouplingChange\x12\'\n\x04pair\x18\x01 \x01(\x0b\x32\x19.interwind.v1.WindingPair\x12\x0e\n\x06\x62\x65\x66ore\x18\x02 \x01(\x01\x12\r\n\x05\x61\x66ter\x18\x03 \x01(\x01\x12\x1f\n\x17\x63hange_in_uncertainties\x18\x04 \x01(\x01\"t\n\x17IdentifyWindingsRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12\x0e\n\x06labels\x18\x02 \x03(\t\x12\'\n\x08readings\x18\x03 \x03(\x0b\x32\x15.interwind.v1.Reading\"\xfd\x03\n\x18IdentifyWindingsResponse\x12*\n\x08windings\x18\x01 \x01(\x0b\x32\x18.interwind.v1.WindingSet\x12*\n\rcovariance_h2\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x12\n\nchi_square\x18\x03 \x01(\x01\x12\x1f\n\x17\x64\x65gree_of_freedom_count\x18\x04 \x01(\x03\x12&\n\tresiduals\x18\x05 \x01(\x0b\x32\x13.interwind.v1.Array\x12\'\n\x08outliers\x18\x06 \x03(\x0b\x32\x15.interwind.v1.Outlier\x12+\n\x0cnext_reading\x18\x07 \x01(\x0b\x32\x15.interwind.v1.Reading\x12&\n\tleakage_h\x18\x08 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x32\n\x15leakage_uncertainty_h\x18\t \x01(\x0b\x32\x13.interwind.v1.Array\x12\'\n\x08\x66indings\x18\n \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\x0b \x03(\x0b\x32\x15.interwind.v1.Caution\x12(\n\x08\x65vidence\x18\x0c \x01(\x0b\x32\x16.interwind.v1.Evidence\"?\n\x07Outlier\x12\x10\n\x08position\x18\x01 \x01(\x03\x12\x10\n\x08windings\x18\x02 \x03(\t\x12\x10\n\x08residual\x18\x03 \x01(\x01\"\xc5\x01\n\x1b\x43haracterizeWindingsRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12*\n\x08windings\x18\x02 \x01(\x0b\x32\x18.interwind.v1.WindingSet\x12-\n\x0b\x63onnections\x18\x03 \x03(\x0b\x32\x18.interwind.v1.Connection\x12)\n\x0c\x66requency_hz\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\"\xd6\x04\n\x1c\x43haracterizeWindingsResponse\x12*\n\x08windings\x18\x01 \x01(\x0b\x32\x18.interwind.v1.WindingSet\x12&\n\tleakage_h\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x32\n\x15leakage_uncertainty_h\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x32\n\x15\x61ll_shorted_leakage_h\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\x12>\n!all_shorted_leakage_uncertainty_h\x18\x05 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x35\n\x18inverse_inductance_per_h\x18\x06 \x01(\x0b\x32\x13.interwind.v1.Array\x12\"\n\x05modes\x18\x07 \x01(\x0b\x32\x13.interwind.v1.Modes\x12\x34\n\x0b\x65quivalents\x18\x08 \x03(\x0b\x32\x1f.interwind.v1.EquivalentCircuit\x12-\n\x07sharing\x18\t \x03(\x0b\x32\x1c.interwind.v1.CurrentSharing\x12\'\n\x08\x66indings\x18\n \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\x0b \x03(\x0b\x32\x15.interwind.v1.Caution\x12(\n\x08\x65vidence\x18\x0c \x01(\x0b\x32\x16.interwind.v1.Evidence*a\n\x07Verdict\x12\x17\n\x13VERDICT_UNSPECIFIED\x10\x00\x12\x11\n\rVERDICT_VALID\x10\x01\x12\x13\n\x0fVERDICT_INVALID\x10\x02\x12\x15\n\x11VERDICT_UNDECIDED\x10\x03*f\n\x0cRepairMethod\x12\x1d\n\x19REPAIR_METHOD_UNSPECIFIED\x10\x00\x12\x1c\n\x18REPAIR_METHOD_COMPLETION\x10\x01\x12\x19\n\x15REPAIR_METHOD_NEAREST\x10\x02\x32\x9a\x03\n\x0fWindingsService\x12X\n\rCheckWindings\x12\".interwind.v1.CheckWindingsRequest\x1a#.interwind.v1.CheckWindingsResponse\x12[\n\x0eRepairWindings\x12#.interwind.v1.RepairWindingsRequest\x1a$.interwind.v1.RepairWindingsResponse\x12\x61\n\x10IdentifyWindings\x12%.interwind.v1.IdentifyWindingsRequest\x1a&.interwind.v1.IdentifyWindingsResponse\x12m\n\x14\x43haracterizeWindings\x12).interwind.v1.CharacterizeWindingsRequest\x1a*.interwind.v1.CharacterizeWindingsResponseb\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
 _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'interwind.v1.windings_service_pb2', _globals)
 if not _descriptor._USE_C_DESCRIPTORS:
   DESCRIPTOR._loaded_options = None
-  _globals['_VERDICT']._serialized_start=849
-  _globals['_VERDICT']._serialized_end=946
-  _globals['_CHECKWINDINGSREQUEST']._serialized_start=165
-  _globals['_CHECKWINDINGSREQUEST']._serialized_end=265
-  _globals['_CHECKWINDINGSRESPONSE']._serialized_start=268
-  _globals['_CHECKWINDINGSRESPONSE']._serialized_end=759
-  _globals['_CULPRIT']._serialized_start=761
-  _globals['_CULPRIT']._serialized_end=847
-  _globals['_WINDINGSSERVICE']._serialized_start=948
-  _globals['_WINDINGSSERVICE']._serialized_end=1055
+  _globals['_VERDICT']._serialized_start=3309
+  _globals['_VERDICT']._serialized_end=3406
+  _globals['_REPAIRMETHOD']._serialized_start=3408
+  _globals['_REPAIRMETHOD']._serialized_end=3510
+  _globals['_CHECKWINDINGSREQUEST']._serialized_start=230
+  _globals['_CHECKWINDINGSREQUEST']._serialized_end=330
+  _globals['_CHECKWINDINGSRESPONSE']._serialized_start=333
+  _globals['_CHECKWINDINGSRESPONSE']._serialized_end=824
+  _globals['_CULPRIT']._serialized_start=826
+  _globals['_CULPRIT']._serialized_end=912
+  _globals['_REPAIRWINDINGSREQUEST']._serialized_start=915
+  _globals['_REPAIRWINDINGSREQUEST']._serialized_end=1172
+  _globals['_WINDINGPAIR']._serialized_start=1174
+  _globals['_WINDINGPAIR']._serialized_end=1218
+  _globals['_REPAIRWINDINGSRESPONSE']._serialized_start=1221
+  _globals['_REPAIRWINDINGSRESPONSE']._serialized_end=1688
+  _globals['_COUPLINGCHANGE']._serialized_start=1690
+  _globals['_COUPLINGCHANGE']._serialized_end=1811
+  _globals['_IDENTIFYWINDINGSREQUEST']._serialized_start=1813
+  _globals['_IDENTIFYWINDINGSREQUEST']._serialized_end=1929
+  _globals['_IDENTIFYWINDINGSRESPONSE']._serialized_start=1932
+  _globals['_IDENTIFYWINDINGSRESPONSE']._serialized_end=2441
+  _globals['_OUTLIER']._serialized_start=2443
+  _globals['_OUTLIER']._serialized_end=2506
+  _globals['_CHARACTERIZEWINDINGSREQUEST']._serialized_start=2509
+  _globals['_CHARACTERIZEWINDINGSREQUEST']._serialized_end=2706
+  _globals['_CHARACTERIZEWINDINGSRESPONSE']._serialized_start=2709
+  _globals['_CHARACTERIZEWINDINGSRESPONSE']._serialized_end=3307
+  _globals['_WINDINGSSERVICE']._serialized_start=3513
+  _globals['_WINDINGSSERVICE']._serialized_end=3923
 # @@protoc_insertion_point(module_scope)

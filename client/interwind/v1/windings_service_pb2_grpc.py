@@ -40,6 +40,21 @@ class WindingsServiceStub(object):
                 request_serializer=interwind_dot_v1_dot_windings__service__pb2.CheckWindingsRequest.SerializeToString,
                 response_deserializer=interwind_dot_v1_dot_windings__service__pb2.CheckWindingsResponse.FromString,
                 _registered_method=True)
+        self.RepairWindings = channel.unary_unary(
+                '/interwind.v1.WindingsService/RepairWindings',
+                request_serializer=interwind_dot_v1_dot_windings__service__pb2.RepairWindingsRequest.SerializeToString,
+                response_deserializer=interwind_dot_v1_dot_windings__service__pb2.RepairWindingsResponse.FromString,
+                _registered_method=True)
+        self.IdentifyWindings = channel.unary_unary(
+                '/interwind.v1.WindingsService/IdentifyWindings',
+                request_serializer=interwind_dot_v1_dot_windings__service__pb2.IdentifyWindingsRequest.SerializeToString,
+                response_deserializer=interwind_dot_v1_dot_windings__service__pb2.IdentifyWindingsResponse.FromString,
+                _registered_method=True)
+        self.CharacterizeWindings = channel.unary_unary(
+                '/interwind.v1.WindingsService/CharacterizeWindings',
+                request_serializer=interwind_dot_v1_dot_windings__service__pb2.CharacterizeWindingsRequest.SerializeToString,
+                response_deserializer=interwind_dot_v1_dot_windings__service__pb2.CharacterizeWindingsResponse.FromString,
+                _registered_method=True)
 
 
 class WindingsServiceServicer(object):
@@ -53,6 +68,27 @@ class WindingsServiceServicer(object):
         context.set_details('Method not implemented!')
         raise NotImplementedError('Method not implemented!')
 
+    def RepairWindings(self, request, context):
+        """Mends a set: completes unknown and distrusted pairs, or finds the nearest set that can exist.
+        """
+        context.set_code(grpc.StatusCode.UNIMPLEMENTED)
+        context.set_details('Method not implemented!')
+        raise NotImplementedError('Method not implemented!')
+
+    def IdentifyWindings(self, request, context):
+        """Finds the set that fits a mixture of readings best.
+        """
+        context.set_code(grpc.StatusCode.UNIMPLEMENTED)
+        context.set_details('Method not implemented!')
+        raise NotImplementedError('Method not implemented!')
+
+    def CharacterizeWindings(self, request, context):
+        """Reads off leakages, modes, equivalent circuits and the sharing of paralleled windings.
+        """
+        context.set_code(grpc.StatusCode.UNIMPLEMENTED)
+        context.set_details('Method not implemented!')
+        raise NotImplementedError('Method not implemented!')
+
 
 def add_WindingsServiceServicer_to_server(servicer, server):
     rpc_method_handlers = {
@@ -60,6 +96,21 @@ def add_WindingsServiceServicer_to_server(servicer, server):
                     servicer.CheckWindings,
                     request_deserializer=interwind_dot_v1_dot_windings__service__pb2.CheckWindingsRequest.FromString,
                     response_serializer=interwind_dot_v1_dot_windings__service__pb2.CheckWindingsResponse.SerializeToString,
+            ),
+            'RepairWindings': grpc.unary_unary_rpc_method_handler(
+                    servicer.RepairWindings,
+                    request_deserializer=interwind_dot_v1_dot_windings__service__pb2.RepairWindingsRequest.FromString,
+                    response_serializer=interwind_dot_v1_dot_windings__service__pb2.RepairWindingsResponse.SerializeToString,
+            ),
+            'IdentifyWindings': grpc.unary_unary_rpc_method_handler(
+                    servicer.IdentifyWindings,
+                    request_deserializer=interwind_dot_v1_dot_windings__service__pb2.IdentifyWindingsRequest.FromString,
+                    response_serializer=interwind_dot_v1_dot_windings__service__pb2.IdentifyWindingsResponse.SerializeToString,
+            ),
+            'CharacterizeWindings': grpc.unary_unary_rpc_method_handler(
+                    servicer.CharacterizeWindings,
+                    request_deserializer=interwind_dot_v1_dot_windings__service__pb2.CharacterizeWindingsRequest.FromString,
+                    response_serializer=interwind_dot_v1_dot_windings__service__pb2.CharacterizeWindingsResponse.SerializeToString,
             ),
     }
     generic_handler = grpc.method_handlers_generic_handler(
@@ -90,6 +141,87 @@ class WindingsService(object):
             '/interwind.v1.WindingsService/CheckWindings',
             interwind_dot_v1_dot_windings__service__pb2.CheckWindingsRequest.SerializeToString,
             interwind_dot_v1_dot_windings__service__pb2.CheckWindingsResponse.FromString,
+            options,
+            channel_credentials,
+            insecure,
+            call_credentials,
+            compression,
+            wait_for_ready,
+            timeout,
+            metadata,
+            _registered_method=True)
+
+    @staticmethod
+    def RepairWindings(request,
+            target,
+            options=(),
+            channel_credentials=None,
+            call_credentials=None,
+            insecure=False,
+            compression=None,
+            wait_for_ready=None,
+            timeout=None,
+            metadata=None):
+        return grpc.experimental.unary_unary(
+            request,
+            target,
+            '/interwind.v1.WindingsService/RepairWindings',
+            interwind_dot_v1_dot_windings__service__pb2.RepairWindingsRequest.SerializeToString,
+            interwind_dot_v1_dot_windings__service__pb2.RepairWindingsResponse.FromString,
+            options,
+            channel_credentials,
+            insecure,
+            call_credentials,
+            compression,
+            wait_for_ready,
+            timeout,
+            metadata,
+            _registered_method=True)
+
+    @staticmethod
+    def IdentifyWindings(request,
+            target,
+            options=(),
+            channel_credentials=None,
+            call_credentials=None,
+            insecure=False,
+            compression=None,
+            wait_for_ready=None,
+            timeout=None,
+            metadata=None):
+        return grpc.experimental.unary_unary(
+            request,
+            target,
+            '/interwind.v1.WindingsService/IdentifyWindings',
+            interwind_dot_v1_dot_windings__service__pb2.IdentifyWindingsRequest.SerializeToString,
+            interwind_dot_v1_dot_windings__service__pb2.IdentifyWindingsResponse.FromString,
+            options,
+            channel_credentials,
+            insecure,
+            call_credentials,
+            compression,
+            wait_for_ready,
+            timeout,
+            metadata,
+            _registered_method=True)
+
+    @staticmethod
+    def CharacterizeWindings(request,
+            target,
+            options=(),
+            channel_credentials=None,
+            call_credentials=None,
+            insecure=False,
+            compression=None,
+            wait_for_ready=None,
+            timeout=None,
+            metadata=None):
+        return grpc.experimental.unary_unary(
+            request,
+            target,
+            '/interwind.v1.WindingsService/CharacterizeWindings',
+            interwind_dot_v1_dot_windings__service__pb2.CharacterizeWindingsRequest.SerializeToString,
+            interwind_dot_v1_dot_windings__service__pb2.CharacterizeWindingsResponse.FromString,
             options,
             channel_credentials,
             insecure,

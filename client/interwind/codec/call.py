@@ -1,0 +1,62 @@
+"""One RPC as both sides know it, and how large its request is."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Iterator, Mapping
+from dataclasses import dataclass
+from typing import Any
+
+from interwind.model.elements import Windings
+from interwind.model.network import Network
+
+Arguments = Mapping[str, Any]
+
+
+@dataclass(frozen=True, slots=True)
+class Call:
+    """One RPC: the engine function it reaches and the two directions of its request and its answer."""
+
+    path: str
+    engine: str
+    request_class: type[Any]
+    response_class: type[Any]
+    streaming: bool
+    _to_request: Callable[[Arguments], Any]
+    _from_request: Callable[[Any], dict[str, Any]]
+    _to_answer: Callable[[Any], Any]
+    _from_answer: Callable[..., Any]
+
+    def encode_request(self, **arguments: Any) -> Any:
+        """Return the request message of the engine function's arguments."""
+        return self._to_request(arguments)
+
+    def decode(self, message: Any) -> dict[str, Any]:
+        """Return the engine function's arguments of a request message."""
+        return self._from_request(message)
+
+    def encode(self, value: Any) -> Iterator[Any]:
+        """Yield the response messages of the engine function's answer; exactly one unless streaming."""
+        answer = self._to_answer(value)
+        return iter(answer) if self.streaming else iter((answer,))
+
+    def decode_response(self, messages: Iterable[Any], progress: Callable[[int, int], None] | None = None) -> Any:
+        """Return the answer of its response messages."""
+        if self.streaming:
+            return self._from_answer(messages, progress)
+        (message,) = messages
+        return self._from_answer(message)
+
+
+def size_of_network(network: Network) -> dict[str, int]:
+    """Return the counts of a network that admission needs."""
+    sets = [element.windings.size for element in network.elements if isinstance(element, Windings)]
+    return {
+        "winding_count": max(sets, default=0),
+        "unknown_count": len(network.nodes) + sum(sets) + len(network.elements),
+    }
+
+
+def point_count(stop_s: float, step_s: float) -> int:
+    """Return about how many samples a run has, for admission; 0 where the numbers make no sense (the engine says why)."""
+    ratio = stop_s / step_s if step_s > 0 and stop_s >= 0 else 0.0
+    return int(ratio) + 1 if 0.0 <= ratio < 2.0**62 else 0

@@ -1,0 +1,194 @@
+"""Requests about networks <-> the arguments of their engine functions."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from interwind.codec import response as responses
+from interwind.codec.array import array_from_message, array_to_message
+from interwind.codec.call import Arguments, Call, point_count, size_of_network
+from interwind.codec.network import network_from_message, network_to_message
+from interwind.codec.observable import (
+    observable_from_message,
+    observable_to_message,
+    observables_from_messages,
+    observables_to_messages,
+)
+from interwind.errors import InvalidRequest, field_path
+from interwind.model.frozen import frozen_vector
+from interwind.model.response import AdaptiveSweep, SteadyStart
+from interwind.v1 import network_service_pb2, response_pb2, response_service_pb2
+
+
+def _stamp_request(arguments: Arguments) -> Any:
+    network = arguments["network"]
+    return network_service_pb2.StampNetworkRequest(
+        size=response_pb2.Size(**size_of_network(network)), network=network_to_message(network)
+    )
+
+
+def _network_argument(message: Any) -> dict[str, Any]:
+    return {"network": network_from_message(message.network)}
+
+
+def _frequency_request(arguments: Arguments) -> Any:
+    network, frequencies = arguments["network"], arguments["frequency_hz"]
+    observe = observables_to_messages(arguments.get("observe"), "observe")
+    adaptive = isinstance(frequencies, AdaptiveSweep)
+    frequency_hz = None if adaptive else frozen_vector(_at_least_1d(frequencies), "frequency_hz")
+    message = response_service_pb2.ComputeFrequencyResponseRequest(
+        size=response_pb2.Size(
+            point_count=0 if frequency_hz is None else frequency_hz.size,
+            observable_count=len(observe),
+            **size_of_network(network),
+        ),
+        network=network_to_message(network),
+        observe=observe,
+    )
+    if frequency_hz is None:
+        message.adaptive_sweep.start_hz = frequencies.start_hz
+        message.adaptive_sweep.stop_hz = frequencies.stop_hz
+        message.adaptive_sweep.tolerance_db = frequencies.tolerance_db
+    else:
+        message.frequency_hz.CopyFrom(array_to_message(frequency_hz))
+    return message
+
+
+def _frequency_arguments(message: Any) -> dict[str, Any]:
+    kind = message.WhichOneof("frequencies")
+    frequencies: Any
+    if kind == "adaptive_sweep":
+        sweep = message.adaptive_sweep
+        frequencies = AdaptiveSweep(sweep.start_hz, sweep.stop_hz, sweep.tolerance_db or AdaptiveSweep.tolerance_db)
+    elif kind == "frequency_hz":
+        frequencies = frozen_vector(array_from_message(message.frequency_hz, "frequency_hz"), "frequency_hz")
+    else:
+        raise InvalidRequest.at("frequency_hz", "no frequencies found; state frequency_hz or adaptive_sweep")
+    return _network_argument(message) | {
+        "frequency_hz": frequencies,
+        "observe": observables_from_messages(message.observe, "observe") or None,
+    }
+
+
+def _ports_request(arguments: Arguments) -> Any:
+    network = arguments["network"]
+    frequency_hz = frozen_vector(_at_least_1d(arguments["frequency_hz"]), "frequency_hz")
+    return response_service_pb2.ComputePortResponseRequest(
+        size=response_pb2.Size(
+            point_count=frequency_hz.size, observable_count=len(network.ports) ** 2, **size_of_network(network)
+        ),
+        network=network_to_message(network),
+        frequency_hz=array_to_message(frequency_hz),
+    )
+
+
+def _ports_arguments(message: Any) -> dict[str, Any]:
+    frequency_hz = frozen_vector(array_from_message(message.frequency_hz, "frequency_hz"), "frequency_hz")
+    return _network_argument(message) | {"frequency_hz": frequency_hz}
+
+
+def _time_request(arguments: Arguments) -> Any:
+    network, initial = arguments["network"], arguments.get("initial")
+    observe = observables_to_messages(arguments.get("observe"), "observe")
+    stop_s, step_s = float(arguments["stop_s"]), float(arguments["step_s"])
+    message = response_service_pb2.ComputeTimeResponseRequest(
+        size=response_pb2.Size(
+            point_count=point_count(stop_s, step_s), observable_count=len(observe), **size_of_network(network)
+        ),
+        network=network_to_message(network),
+        stop_s=stop_s,
+        step_s=step_s,
+        observe=observe,
+        steady_start=isinstance(initial, SteadyStart),
+        tolerance=float(arguments.get("tolerance") or 0.0),
+    )
+    if initial is not None and not isinstance(initial, SteadyStart):
+        for observable, value in initial.items():
+            with field_path("initial"):
+                message.initial.add(observable=observable_to_message(observable), value=float(value))
+    return message
+
+
+def _time_arguments(message: Any) -> dict[str, Any]:
+    initial: Any = None
+    if message.steady_start:
+        if message.initial:
+            raise InvalidRequest.at("initial", "values found beside steady_start; state one or the other")
+        initial = SteadyStart()
+    elif message.initial:
+        initial = {}
+        for position, item in enumerate(message.initial):
+            with field_path(f"initial[{position}].observable"):
+                observable = observable_from_message(item.observable)
+                if observable in initial:
+                    raise InvalidRequest.at("", f"{observable!r} is given twice; give each state once")
+                initial[observable] = item.value
+    arguments = _network_argument(message) | {
+        "stop_s": message.stop_s,
+        "step_s": message.step_s,
+        "observe": observables_from_messages(message.observe, "observe") or None,
+        "initial": initial,
+    }
+    if message.tolerance:
+        arguments["tolerance"] = message.tolerance
+    return arguments
+
+
+def _at_least_1d(value: Any) -> Any:
+    return [value] if isinstance(value, int | float) else value
+
+
+def _periodic_request(arguments: Arguments) -> Any:
+    network = arguments["network"]
+    observe = observables_to_messages(arguments.get("observe"), "observe")
+    period_s, step_s = float(arguments["period_s"]), float(arguments["step_s"])
+    return response_service_pb2.ComputePeriodicResponseRequest(
+        size=response_pb2.Size(
+            point_count=point_count(period_s, step_s), observable_count=len(observe), **size_of_network(network)
+        ),
+        network=network_to_message(network),
+        period_s=period_s,
+        step_s=step_s,
+        observe=observe,
+        tolerance=float(arguments.get("tolerance") or 0.0),
+    )
+
+
+def _periodic_arguments(message: Any) -> dict[str, Any]:
+    arguments = _network_argument(message) | {
+        "period_s": message.period_s,
+        "step_s": message.step_s,
+        "observe": observables_from_messages(message.observe, "observe") or None,
+    }
+    if message.tolerance:
+        arguments["tolerance"] = message.tolerance
+    return arguments
+
+
+RESPONSE_CALLS = (
+    Call(
+        "/interwind.v1.NetworkService/StampNetwork", "stamp",
+        network_service_pb2.StampNetworkRequest, network_service_pb2.StampNetworkResponse, False,
+        _stamp_request, _network_argument, responses.system_to_message, responses.system_from_message,
+    ),
+    Call(
+        "/interwind.v1.ResponseService/ComputeFrequencyResponse", "frequency_response",
+        response_service_pb2.ComputeFrequencyResponseRequest, response_service_pb2.ComputeFrequencyResponseResponse, True,
+        _frequency_request, _frequency_arguments, responses.frequency_to_messages, responses.frequency_from_messages,
+    ),
+    Call(
+        "/interwind.v1.ResponseService/ComputePortResponse", "port_response",
+        response_service_pb2.ComputePortResponseRequest, response_service_pb2.ComputePortResponseResponse, True,
+        _ports_request, _ports_arguments, responses.ports_to_messages, responses.ports_from_messages,
+    ),
+    Call(
+        "/interwind.v1.ResponseService/ComputeTimeResponse", "time_response",
+        response_service_pb2.ComputeTimeResponseRequest, response_service_pb2.ComputeTimeResponseResponse, True,
+        _time_request, _time_arguments, responses.time_to_messages, responses.time_from_messages,
+    ),
+    Call(
+        "/interwind.v1.ResponseService/ComputePeriodicResponse", "periodic_response",
+        response_service_pb2.ComputePeriodicResponseRequest, response_service_pb2.ComputePeriodicResponseResponse, True,
+        _periodic_request, _periodic_arguments, responses.periodic_to_messages, responses.periodic_from_messages,
+    ),
+)  # fmt: skip
