@@ -90,13 +90,13 @@ class InvalidRequest(InterwindError):
 
 
 class InvalidWindings(InvalidRequest):
-    """These windings cannot exist."""
+    """Windings that cannot exist."""
 
     default_reason = "INVALID_WINDINGS"
 
 
 class InvalidNetwork(InvalidRequest):
-    """This network has no solution, or no unique one."""
+    """A network without a solution, or without a unique one."""
 
     default_reason = "INVALID_NETWORK"
 
@@ -218,7 +218,7 @@ def error_classes() -> tuple[type[InterwindError], ...]:
 
 @contextmanager
 def field_path(prefix: str) -> Iterator[None]:
-    """Put ``prefix`` before the field paths of any `InvalidRequest` raised inside, so that nested values need not know where they stand."""
+    """Put ``prefix`` before the field paths of errors raised inside: nested values need not know where they stand."""
     try:
         yield
     except InvalidRequest as error:

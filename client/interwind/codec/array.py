@@ -87,7 +87,7 @@ def array_to_message(array: Any) -> array_pb2.Array:
 
 
 def array_from_message(message: array_pb2.Array, field: str, *, real: bool = True) -> NDArray[Any]:
-    """Return the array of a message as read-only float64 (``real``) or as it came; `InvalidRequest` names what does not fit."""
+    """Return the array of a message, as float64 (``real``) or as it came; `InvalidRequest` names what does not fit."""
     shape = tuple(message.shape)
     if any(length < 0 for length in shape):
         raise InvalidRequest.at(f"{field}.shape", f"{list(shape)} found; no length is negative")

@@ -57,6 +57,6 @@ def size_of_network(network: Network) -> dict[str, int]:
 
 
 def point_count(stop_s: float, step_s: float) -> int:
-    """Return about how many samples a run has, for admission; 0 where the numbers make no sense (the engine says why)."""
+    """Return about how many samples a run has, for admission; 0 where the numbers make no sense."""
     ratio = stop_s / step_s if step_s > 0 and stop_s >= 0 else 0.0
     return int(ratio) + 1 if 0.0 <= ratio < 2.0**62 else 0

@@ -130,7 +130,7 @@ def characterization_to_message(answer: model.Characterization) -> windings_serv
         modes=characterization_pb2.Modes(**_to_arrays(answer.modes, _MODE_ARRAYS)),
         equivalents=[
             characterization_pb2.EquivalentCircuit(
-                kind=characterization_pb2.EquivalentKind.Value(f"EQUIVALENT_KIND_{circuit.kind.value}"),
+                kind=f"EQUIVALENT_KIND_{circuit.kind.value}",
                 reference=circuit.reference,
                 branches=[
                     characterization_pb2.EquivalentBranch(windings=branch.windings, inductance_h=branch.inductance_h)

@@ -10,7 +10,7 @@ def finding_to_message(finding: Finding) -> finding_pb2.Finding:
     """Return the message of a finding."""
     return finding_pb2.Finding(
         code=finding.code,
-        severity=finding_pb2.Severity.Value(f"SEVERITY_{finding.severity.value}"),
+        severity=f"SEVERITY_{finding.severity.value}",
         windings=finding.windings,
         field=finding.field,
         message=finding.message,

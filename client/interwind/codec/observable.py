@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from typing import Any
 
 from interwind.errors import InvalidRequest, field_path
 from interwind.model.observables import (
@@ -18,13 +19,17 @@ from interwind.model.observables import (
 )
 from interwind.v1 import observable_pb2
 
-_OF_ELEMENT = {
+_OF_ELEMENT: dict[str, type[Any]] = {
     "element_voltage": ElementVoltage,
     "element_current": ElementCurrent,
     "element_power": ElementPower,
     "stored_energy": StoredEnergy,
 }
-_OF_WINDING = {"winding_voltage": WindingVoltage, "winding_current": WindingCurrent, "flux_linkage": FluxLinkage}
+_OF_WINDING: dict[str, type[Any]] = {
+    "winding_voltage": WindingVoltage,
+    "winding_current": WindingCurrent,
+    "flux_linkage": FluxLinkage,
+}
 _NAMES: dict[type, str] = {cls: name for name, cls in (*_OF_ELEMENT.items(), *_OF_WINDING.items())}
 
 
@@ -53,8 +58,10 @@ def observable_from_message(message: observable_pb2.Observable) -> Observable:
         return NodeVoltage(message.node_voltage.node, message.node_voltage.to or None)
     if quantity in _OF_WINDING:
         named = getattr(message, quantity)
-        return _OF_WINDING[quantity](named.name, named.label)
-    return _OF_ELEMENT[quantity](getattr(message, quantity))
+        of_winding: Observable = _OF_WINDING[quantity](named.name, named.label)
+        return of_winding
+    of_element: Observable = _OF_ELEMENT[quantity](getattr(message, quantity))
+    return of_element
 
 
 def observables_to_messages(observe: Iterable[Observable] | None, field: str) -> list[observable_pb2.Observable]:

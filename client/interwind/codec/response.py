@@ -160,7 +160,7 @@ def periodic_from_messages(messages: Messages, progress: ProgressCallback = None
         mean_power_w=dict(trailer.mean_power_w),
         events=events_from_messages(trailer.events),
         ledger=ledger_from_message(trailer.ledger) if trailer.HasField("ledger") else None,
-        **{name: result.arrays[name] for name in _PERIODIC_ARRAYS},
+        **_arrays(result, _PERIODIC_ARRAYS),
         **_noticed(result),
     )
 
@@ -205,3 +205,7 @@ def _noticed(result: StreamResult) -> dict[str, Any]:
         "cautions": tuple(caution_from_message(caution) for caution in result.trailer.cautions),
         "evidence": evidence_from_message(result.trailer.evidence),
     }
+
+
+def _arrays(result: StreamResult, names: Iterable[str]) -> dict[str, Any]:
+    return {name: result.arrays[name] for name in names}

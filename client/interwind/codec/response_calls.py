@@ -16,7 +16,7 @@ from interwind.codec.observable import (
 )
 from interwind.errors import InvalidRequest, field_path
 from interwind.model.frozen import frozen_vector
-from interwind.model.response import AdaptiveSweep, SteadyStart
+from interwind.model.response import DEFAULT_TOLERANCE_DB, AdaptiveSweep, SteadyStart
 from interwind.v1 import network_service_pb2, response_pb2, response_service_pb2
 
 
@@ -59,7 +59,7 @@ def _frequency_arguments(message: Any) -> dict[str, Any]:
     frequencies: Any
     if kind == "adaptive_sweep":
         sweep = message.adaptive_sweep
-        frequencies = AdaptiveSweep(sweep.start_hz, sweep.stop_hz, sweep.tolerance_db or AdaptiveSweep.tolerance_db)
+        frequencies = AdaptiveSweep(sweep.start_hz, sweep.stop_hz, sweep.tolerance_db or DEFAULT_TOLERANCE_DB)
     elif kind == "frequency_hz":
         frequencies = frozen_vector(array_from_message(message.frequency_hz, "frequency_hz"), "frequency_hz")
     else:
@@ -173,7 +173,8 @@ RESPONSE_CALLS = (
     ),
     Call(
         "/interwind.v1.ResponseService/ComputeFrequencyResponse", "frequency_response",
-        response_service_pb2.ComputeFrequencyResponseRequest, response_service_pb2.ComputeFrequencyResponseResponse, True,
+        response_service_pb2.ComputeFrequencyResponseRequest,
+        response_service_pb2.ComputeFrequencyResponseResponse, True,
         _frequency_request, _frequency_arguments, responses.frequency_to_messages, responses.frequency_from_messages,
     ),
     Call(

@@ -1,7 +1,7 @@
 """Streamed answers: arrays cut into chunks between a header and a trailer, and put together again.
 
-A response message of any streaming call has the parts progress, header, chunk and trailer; the bytes of all arrays stand
-one after the other, and the trailer proves them by SHA-256.
+A response message of any streaming call has the parts progress, header, chunk and trailer; the bytes of all arrays
+stand one after the other, and the trailer proves them by SHA-256.
 """
 
 from __future__ import annotations
@@ -61,7 +61,7 @@ class ChunkWriter:
     def chunks(self, array: NDArray[Any]) -> Iterator[Any]:
         """Yield the response messages that carry the bytes of one array."""
         little = np.ascontiguousarray(array, dtype=DTYPES[dtype_code(array)])
-        view = memoryview(little.reshape(-1).view(np.uint8))
+        view = memoryview(little.reshape(-1).view(np.uint8).data)
         for start in range(0, len(view), CHUNK_BYTES):
             piece = bytes(view[start : start + CHUNK_BYTES])
             self._hash.update(piece)
@@ -69,7 +69,7 @@ class ChunkWriter:
             self._offset += len(piece)
 
     def trailer(self, value: Any) -> Any:
-        """Return the response message that ends the stream, with evidence, findings, cautions and checksum of ``value``."""
+        """Return the message that ends the stream: evidence, findings and cautions of ``value``, and the checksum."""
         return self._part(
             trailer=response_pb2.ResultTrailer(
                 evidence=evidence_to_message(value.evidence),

@@ -1,4 +1,4 @@
-"""Waveforms <-> messages. The classes and the messages spell their fields alike, so one table serves both directions."""
+"""Waveforms <-> messages. Classes and messages spell their fields alike, so one table serves both directions."""
 
 from __future__ import annotations
 

@@ -69,7 +69,7 @@ def windings_from_message(message: windings_pb2.WindingSet) -> WindingSet:
 def verdict_to_message(report: ValidityReport) -> windings_service_pb2.CheckWindingsResponse:
     """Return the message of a verdict."""
     return windings_service_pb2.CheckWindingsResponse(
-        verdict=windings_service_pb2.Verdict.Value(f"VERDICT_{report.verdict.value}"),
+        verdict=f"VERDICT_{report.verdict.value}",
         labels=report.labels,
         eigenvalues=array_to_message(report.eigenvalues),
         eigenvalues_h=array_to_message(report.eigenvalues_h),

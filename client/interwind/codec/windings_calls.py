@@ -37,9 +37,7 @@ def _repair_request(arguments: Arguments) -> Any:
     message = windings_service_pb2.RepairWindingsRequest(
         size=response_pb2.Size(winding_count=windings.size),
         windings=windings_to_message(windings),
-        method=windings_service_pb2.RepairMethod.Value(
-            f"REPAIR_METHOD_{arguments.get('method', RepairMethod.COMPLETION).value}"
-        ),
+        method=f"REPAIR_METHOD_{arguments.get('method', RepairMethod.COMPLETION).value}",
     )
     for position, pair in enumerate(arguments.get("trusted") or ()):
         with field_path(f"trusted[{position}]"):

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from enum import Enum
 
-from interwind.model.finding import Caution, Evidence, Finding
+from interwind.model.finding import NO_EVIDENCE, Caution, Evidence, Finding
 from interwind.model.frozen import ComplexArray, FloatArray
 from interwind.model.json_form import JsonForm
 from interwind.model.windings import WindingSet
@@ -105,4 +105,4 @@ class Characterization(JsonForm):
     sharing: tuple[CurrentSharing, ...] = ()
     findings: tuple[Finding, ...] = ()
     cautions: tuple[Caution, ...] = ()
-    evidence: Evidence = Evidence()
+    evidence: Evidence = NO_EVIDENCE

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Any, Union
+from typing import Any
 
 from interwind.errors import InvalidRequest
 from interwind.model.frozen import FloatArray, frozen_vector, plain_float
@@ -77,7 +77,7 @@ class VoltageSource(_Named):
 
 @dataclass(frozen=True, slots=True)
 class CurrentSource(_Named):
-    """Drives waveform(t), A, from ``a`` through itself to ``b``; in a frequency response ``phasor``, A peak, complex."""
+    """Drives waveform(t), A, from ``a`` through itself to ``b``; in a frequency response ``phasor``, A peak."""
 
     name: str
     a: str
@@ -160,7 +160,7 @@ class GateTimes:
 
 @dataclass(frozen=True, slots=True)
 class Switch(_Named):
-    """A timed switch: ``conducting_resistance_ohm`` while closed, ``blocking_resistance_ohm`` while open (0 and inf are ideal)."""
+    """A timed switch: its conducting resistance while closed, its blocking one while open (0 and inf are ideal)."""
 
     name: str
     a: str
@@ -178,7 +178,7 @@ class Switch(_Named):
 
 @dataclass(frozen=True, slots=True)
 class Diode(_Named):
-    """Piecewise linear (the defaults are ideal), or exponential when ``saturation_current_a`` and ``thermal_voltage_v`` are given.
+    """Piecewise linear (the defaults are ideal), or exponential when both its numbers are given.
 
     Piecewise linear: conducting v = V_f + r i, blocking i = v / R_blocking. Exponential: i = I_s (e^(v/V_T) − 1).
     """
@@ -198,7 +198,7 @@ class Diode(_Named):
         _Named.__post_init__(self)
         if (self.saturation_current_a is None) != (self.thermal_voltage_v is None):
             raise InvalidRequest.at(
-                "saturation_current_a", "given without its partner; an exponential diode needs both it and thermal_voltage_v"
+                "saturation_current_a", "an exponential diode needs both it and thermal_voltage_v; one is missing"
             )
         if self.exponential:
             for field in ("saturation_current_a", "thermal_voltage_v"):
@@ -235,7 +235,7 @@ class Arrester(_Named):
 
 @dataclass(frozen=True, slots=True, eq=False)
 class SaturableInductor(_Named):
-    """A single-valued flux-current branch through its table, odd about 0, its last slope carried on; starts at ``residual_wb``.
+    """A single-valued flux-current table, odd about 0, its last slope carried on; starts at ``residual_wb``.
 
     ``current_a`` and ``flux_linkage_wb`` shape (n,), rising, from 0 or from their first positive point.
     """
@@ -336,10 +336,10 @@ def _control_nodes(element: VoltageByVoltage | CurrentByVoltage) -> None:
     object.__setattr__(element, "control", pair)
 
 
-Element = Union[
-    Resistor, Inductor, Capacitor, VoltageSource, CurrentSource, Windings, Switch, Diode, Arrester, SaturableInductor,
-    IdealTransformer, VoltageByVoltage, CurrentByVoltage, VoltageByCurrent, CurrentByCurrent,
-]  # fmt: skip
+Element = (
+    Resistor | Inductor | Capacitor | VoltageSource | CurrentSource | Windings | Switch | Diode | Arrester
+    | SaturableInductor | IdealTransformer | VoltageByVoltage | CurrentByVoltage | VoltageByCurrent | CurrentByCurrent
+)  # fmt: skip
 ELEMENTS: tuple[type[Any], ...] = (
     Resistor, Inductor, Capacitor, VoltageSource, CurrentSource, Windings, Switch, Diode, Arrester, SaturableInductor,
     IdealTransformer, VoltageByVoltage, CurrentByVoltage, VoltageByCurrent, CurrentByCurrent,

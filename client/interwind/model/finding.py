@@ -25,7 +25,7 @@ class Verdict(Enum):
 
 @dataclass(frozen=True, slots=True)
 class Finding:
-    """One thing noticed: a stable code, the windings concerned, the field, and the two numbers compared (NaN: none)."""
+    """One thing noticed: its stable code, the windings concerned, the field, and the numbers compared (NaN: none)."""
 
     code: str
     severity: Severity
@@ -38,7 +38,7 @@ class Finding:
 
 @dataclass(frozen=True, slots=True)
 class Caution:
-    """One hazard that the content calls for: a stable code, its sentence, the value found and the threshold (NaN: none)."""
+    """One hazard that the content calls for: its stable code and sentence, value found and threshold (NaN: none)."""
 
     code: str
     message: str
@@ -64,3 +64,6 @@ class Evidence:
     periods_propagated: int = 0
     input_sha256: str = ""
     service_version: str = ""
+
+
+NO_EVIDENCE = Evidence()

@@ -23,7 +23,9 @@ def frozen_floats(value: Any, field: str) -> FloatArray:
         raise InvalidRequest.at(field, "complex numbers found; real numbers are expected here")
     if raw.dtype.kind not in "buif":
         raise InvalidRequest.at(field, f"{raw.dtype} found; numbers are expected here")
-    return _stand_still(np.array(raw, dtype=np.float64, order="C"))
+    array = np.array(raw, dtype=np.float64, order="C")
+    array.setflags(write=False)
+    return array
 
 
 def frozen_complex(value: Any, field: str) -> ComplexArray:
@@ -31,7 +33,9 @@ def frozen_complex(value: Any, field: str) -> ComplexArray:
     raw = np.asarray(value)
     if raw.dtype.kind not in "buifc":
         raise InvalidRequest.at(field, f"{raw.dtype} found; numbers are expected here")
-    return _stand_still(np.array(raw, dtype=np.complex128, order="C"))
+    array = np.array(raw, dtype=np.complex128, order="C")
+    array.setflags(write=False)
+    return array
 
 
 def frozen_vector(value: Any, field: str) -> FloatArray:
@@ -69,8 +73,3 @@ def labels_of(value: Any, field: str) -> tuple[str, ...]:
         if label in labels[:position]:
             raise InvalidRequest.at(f"{field}[{position}]", f"{label!r} stands twice; each label names one winding")
     return labels
-
-
-def _stand_still(array: Any) -> Any:
-    array.setflags(write=False)
-    return array

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from interwind.model.finding import Caution, Evidence, Finding
+from interwind.model.finding import NO_EVIDENCE, Caution, Evidence, Finding
 from interwind.model.frozen import FloatArray
 from interwind.model.json_form import JsonForm
 from interwind.model.readings import Reading
@@ -45,4 +45,4 @@ class Identification(JsonForm):
     leakage_uncertainty_h: FloatArray
     findings: tuple[Finding, ...] = ()
     cautions: tuple[Caution, ...] = ()
-    evidence: Evidence = Evidence()
+    evidence: Evidence = NO_EVIDENCE

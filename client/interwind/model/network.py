@@ -79,7 +79,7 @@ class Network(JsonForm):
 
 
 def element_nodes(element: Element) -> tuple[str, ...]:
-    """Return the nodes an element carries current between, in its own order; control nodes carry none and are left out."""
+    """Return the nodes an element carries current between, in its own order; control nodes carry none."""
     if isinstance(element, Windings):
         return tuple(node for pair in element.terminals.values() for node in pair)
     if isinstance(element, IdealTransformer):

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Any, Union
+from typing import Any
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,9 +66,11 @@ class StoredEnergy:
     name: str
 
 
-Observable = Union[
-    NodeVoltage, ElementVoltage, ElementCurrent, WindingVoltage, WindingCurrent, FluxLinkage, ElementPower, StoredEnergy
-]
+Observable = (
+    NodeVoltage | ElementVoltage | ElementCurrent | WindingVoltage | WindingCurrent | FluxLinkage | ElementPower
+    | StoredEnergy
+)  # fmt: skip
 OBSERVABLES: tuple[type[Any], ...] = (
-    NodeVoltage, ElementVoltage, ElementCurrent, WindingVoltage, WindingCurrent, FluxLinkage, ElementPower, StoredEnergy,
+    NodeVoltage, ElementVoltage, ElementCurrent, WindingVoltage, WindingCurrent, FluxLinkage, ElementPower,
+    StoredEnergy,
 )  # fmt: skip

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from enum import Enum
 
-from interwind.model.finding import Caution, Evidence, Finding, Verdict
+from interwind.model.finding import NO_EVIDENCE, Caution, Evidence, Finding, Verdict
 from interwind.model.frozen import FloatArray
 from interwind.model.json_form import JsonForm
 from interwind.model.windings import WindingSet
@@ -42,7 +42,7 @@ class ValidityReport(JsonForm):
     feasible_high: FloatArray
     findings: tuple[Finding, ...] = ()
     cautions: tuple[Caution, ...] = ()
-    evidence: Evidence = Evidence()
+    evidence: Evidence = NO_EVIDENCE
 
 
 class RepairMethod(Enum):
@@ -80,4 +80,4 @@ class RepairReport(JsonForm):
     all_shorted_leakage_after_h: FloatArray
     findings: tuple[Finding, ...] = ()
     cautions: tuple[Caution, ...] = ()
-    evidence: Evidence = Evidence()
+    evidence: Evidence = NO_EVIDENCE

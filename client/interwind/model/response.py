@@ -6,7 +6,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 
 from interwind.errors import InvalidRequest
-from interwind.model.finding import Caution, Evidence, Finding
+from interwind.model.finding import NO_EVIDENCE, Caution, Evidence, Finding
 from interwind.model.frozen import ComplexArray, FloatArray
 from interwind.model.observables import ElementCurrent, ElementVoltage, Observable, WindingCurrent
 
@@ -16,21 +16,26 @@ class SteadyStart:
     """Start at the DC point of the sources at t = 0."""
 
 
+DEFAULT_TOLERANCE_DB = 0.01
+
 Initial = Mapping[ElementVoltage | ElementCurrent | WindingCurrent, float] | SteadyStart | None
 
 
 @dataclass(frozen=True, slots=True)
 class AdaptiveSweep:
-    """Frequencies chosen by the service between ``start_hz`` and ``stop_hz`` until every peak is within ``tolerance_db``."""
+    """Frequencies from ``start_hz`` to ``stop_hz``, chosen so that every peak is within ``tolerance_db``."""
 
     start_hz: float
     stop_hz: float
-    tolerance_db: float = 0.01
+    tolerance_db: float = DEFAULT_TOLERANCE_DB
 
 
 @dataclass(frozen=True, slots=True, eq=False)
 class MnaSystem:
-    """G x + C dx/dt = B u: dense float64 ``G``, ``C`` (m, m), ``B`` (m, inputs); ``unknowns`` in row order, ``inputs`` by element name."""
+    """G x + C dx/dt = B u: dense float64 ``G``, ``C`` (m, m), ``B`` (m, inputs).
+
+    ``unknowns`` in row order, ``inputs`` by element name.
+    """
 
     G: FloatArray
     C: FloatArray
@@ -39,7 +44,7 @@ class MnaSystem:
     inputs: tuple[str, ...]
     findings: tuple[Finding, ...] = ()
     cautions: tuple[Caution, ...] = ()
-    evidence: Evidence = Evidence()
+    evidence: Evidence = NO_EVIDENCE
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -50,7 +55,7 @@ class _Columns:
     samples: FloatArray | ComplexArray
     findings: tuple[Finding, ...] = field(default=(), kw_only=True)
     cautions: tuple[Caution, ...] = field(default=(), kw_only=True)
-    evidence: Evidence = field(default=Evidence(), kw_only=True)
+    evidence: Evidence = field(default=NO_EVIDENCE, kw_only=True)
 
     def __getitem__(self, observable: Observable) -> FloatArray | ComplexArray:
         try:
@@ -70,7 +75,7 @@ class _Columns:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class FrequencyResponse(_Columns):
-    """Complex peak values over frequency: ``frequency_hz`` (F,); ``samples`` (F, observables), a NaN row where singular."""
+    """Complex peak values: ``frequency_hz`` (F,), Hz; ``samples`` (F, observables), a NaN row where singular."""
 
     frequency_hz: FloatArray = field(kw_only=True)
 
@@ -86,7 +91,7 @@ class PortResponse:
     scattering: ComplexArray
     findings: tuple[Finding, ...] = ()
     cautions: tuple[Caution, ...] = ()
-    evidence: Evidence = Evidence()
+    evidence: Evidence = NO_EVIDENCE
 
 
 @dataclass(frozen=True, slots=True)
@@ -112,7 +117,7 @@ class EnergyLedger:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class TimeResponse(_Columns):
-    """Samples at ``time_s`` (T,), s, limits from the right; ``samples`` (T, observables); ``events`` in order; the energy ``ledger``."""
+    """Samples (T, observables) at ``time_s`` (T,), s, limits from the right; ``events``; the energy ``ledger``."""
 
     time_s: FloatArray = field(kw_only=True)
     events: tuple[Event, ...] = field(default=(), kw_only=True)

@@ -51,7 +51,7 @@ class WindingSet(JsonForm):
     coupling_decimals: int | None = None
     coupling_uncertainty: FloatArray | None = None
     inductance_uncertainty_h: FloatArray | None = None
-    coupling: FloatArray = field(default=None, repr=False)  # type: ignore[assignment]
+    coupling: FloatArray = field(default=None, repr=False)  # type: ignore[arg-type]
     stated_as_coupling: bool = field(default=False, init=False)
 
     def __post_init__(self) -> None:
@@ -158,7 +158,7 @@ def _per_entry(value: Any, name: str, size: int) -> FloatArray:
 def _coupling_of(inductance_h: FloatArray) -> FloatArray:
     with np.errstate(invalid="ignore", divide="ignore"):
         root = np.sqrt(inductance_h.diagonal())
-        coupling = inductance_h / np.outer(root, root)
+        coupling: FloatArray = inductance_h / np.outer(root, root)
     np.fill_diagonal(coupling, 1.0)
     coupling.setflags(write=False)
     return coupling
