@@ -2,12 +2,161 @@
 
 # --- windings -------------------------------------------------------------------------------------------------------
 
+# Verdict. Matrices formed as products of several factors differ from their transpose by some hundred roundings.
+SYMMETRY_ROUNDING = 1e-12
+# A stated band counts two standard deviations (contract of the verdict).
+STATED_DEVIATIONS = 2.0
+# Two entries of one pair further apart than five standard deviations of their difference: by chance one in two million.
+ASYMMETRY_ERROR_DEVIATIONS = 5.0
+# |k| = 1 formed as M / sqrt(L_i L_j) carries three roundings on each side of 1.
+COUPLING_ROUNDING = 1e-15
+# Null directions of two windings count as parallel when the squared sine is below this: K is then within 1e-12 of singular.
+PARALLEL_SINE_SQUARED = 1e-12
+# At most this many culprits are listed; the rest can be read off the feasible intervals.
+CULPRITS_LISTED = 2000
+# Two ends of a feasible interval closer than this are one value, reached by different roundings.
+INTERVAL_ROUNDING = 1e-12
+# A winding is named in a verdict when it carries at least this share of the squared witness vector.
+WITNESS_SHARE = 0.02
+# At most this many asymmetric pairs are named one by one, the worst first.
+ASYMMETRIC_PAIRS_NAMED = 10
+# Barrier method for unknown pairs: duality gap at which the best smallest eigenvalue counts as found.
+COMPLETION_GAP = 1e-10
+# The barrier is centred when the Newton decrement is below this: the gap is then within a few per cent of n mu.
+BARRIER_DECREMENT = 1e-2
+# Factor of the barrier parameter between centrings; a shorter one takes fewer steps each and more centrings.
+BARRIER_SHRINK = 0.2
+# A centring that takes more Newton steps than this is stalled by rounding; the next one starts from where it is.
+BARRIER_STEPS = 40
+# Newton steps solve one dense system in the unknown pairs; 300 of them take some seconds.
+COMPLETION_UNKNOWNS = 300
+# Intervals over every completion of a loose pattern take two barrier solutions a pair: below a second up to here.
+COMPLETION_INTERVAL_WINDINGS = 8
+
+# Completion. Newton decrement at which log det is within its square, 1e-20, of the largest.
+COMPLETION_DECREMENT = 1e-10
+# Damped Newton steps of a self-concordant function: some ten for each factor e of the determinant to gain, then quadratic.
+COMPLETION_STEPS = 200
+# One Newton step solves a dense system in the unknown pairs: 2000 of them take about a second.
+COMPLETION_UNKNOWN_PAIRS = 2000
+
+# Nearest matrix. Fixed entries met to this part of their norm: some hundred roundings of the eigenvalue decomposition.
+NEAREST_RESIDUAL = 1e-14
+# Newton steps: quadratic convergence takes 5 to 15, a problem with hardly any room above the floor more.
+NEAREST_STEPS = 100
+# Conjugate gradient steps for one Newton direction, and the accuracy asked of the first directions (Qi & Sun 2006).
+NEAREST_CG_STEPS = 200
+NEAREST_FORCING = 1e-2
+# Part of the linear gain that a step must keep (Armijo 1966).
+SUFFICIENT_DECREASE = 1e-4
+
 # --- network --------------------------------------------------------------------------------------------------------
+
+# A group whose smallest pivot is above this keeps 14 digits of every leakage in plain currents.
+LOOSE_PIVOT = 1e-2
+# Among the pivots within this share of the largest, the least resistive winding goes first; entries of U stay below 7.
+PIVOT_SHARE = 0.02
+# A pivot of at most this many times n is rounding of the stated matrix: the coupling is perfect.
+PERFECT_COUPLING_PIVOT = 4 * 2.0**-52
 
 # --- response: frequency --------------------------------------------------------------------------------------------
 
+# Stacks of systems up to this size are inverted together; beyond, LAPACK one by one is faster.
+STACKED_SOLVE_SIZE = 32
+# Passes of the equilibration: rows and columns are then within a factor 2 of each other.
+EQUILIBRATION_PASSES = 3
+# Condition, after scaling, from which a matrix in tree coordinates has no digit left: singular.
+SINGULAR_CONDITION = 1e15
+# One tree serves frequencies within this ratio; a chord is then at most so much larger than its tree branches.
+TREE_BAND = 2.0
+# Complex numbers held at once by a stack of matrices: 64 MB.
+STACK_ENTRIES = 4_000_000
+# Imposed voltages round a loop, or currents into a part, that cancel to this share agree: some hundred roundings.
+CONTRADICTION = 1e-13
+# Members of a null vector above this share of its largest are named.
+NULL_VECTOR_SHARE = 0.1
+# |b - A x| after one refinement is a few roundings; four digits more are left for large systems.
+RESIDUAL_LIMIT = 1e-11
+# Reciprocity and passivity of R, L, C, windings and ideal transformers, over the largest entry: what K-01 asks.
+RECIPROCITY_LIMIT = 1e-9
+PASSIVITY_LIMIT = -1e-9
+
 # --- response: time -------------------------------------------------------------------------------------------------
+
+# Below this 1-norm the Taylor series of e^X needs no halving; at 0.5 degree 14 leaves 2e-17.
+EXPONENTIAL_BASE_NORM = 0.5
+# Terms of that series: 0.5^15 / 15! is below the unit roundoff.
+EXPONENTIAL_TAYLOR_DEGREE = 14
+# Corners of one waveform within one run: 4 million take 100 MB and a few seconds.
+MAX_WAVEFORM_CORNERS = 4_000_000
 
 # --- response: switching and periodic -------------------------------------------------------------------------------
 
+IDEAL_EPSILON = 1e-9  # ideal 0 ohm and 0 S stand as this times Z0 and 1/Z0; smaller loses lossless loops, larger shows
+PERFECT_COUPLING_FACTOR = 1e-11  # eigenvalues of a coupling matrix below this carry no state of their own
+COUPLING_ROUNDING = 1e-10  # eigenvalues of a coupling matrix above minus this are rounding, not impossibility
+DEPENDENT_ROW = 1e-9  # a unit voltage row that keeps less than this beside the others closes a loop
+SINGULAR_TABLEAU = 1e-30  # reciprocal condition after scaling; ε networks reach 1e-20 and are solved well all the same
+NULL_MEMBER = 1e-3  # share of the null vector from which an element is named
+EQUILIBRATION_PASSES = 4  # row and column passes; more change no exponent
+CONJUGATE_PAIR = 1e-6  # relative distance at which two eigenvalues are one pair
+NEAR_RESONANCE = 0.03  # |λ - s| span below which drive and mode are joined by Taylor terms; 0.03^8 / 9! is rounding
+RESONANCE_TERMS = 9  # highest power of t in that series
+SAME_INSTANT = 1e-14  # breakpoints closer than this share of the run are one
+MAXIMUM_BREAKPOINTS = 2_000_000  # drive changes in one run; 64 MB of segments
+GUARD_ROUNDING = 1e-12  # a guard above minus this share of its terms holds
+TERM_ROUNDING = 1e-18  # terms of a modal sum below this share of the largest are left out of a root search
+EVENT_INTERVAL = 1e-13  # share of its bracket to which an event is located
+TIME_ROUNDING = 2.3e-16  # and of the time itself
+EVENT_ITERATIONS = 120  # halvings always suffice
+EVENTS_PER_INTERVAL = 2000  # diode changes between two drive changes; more is chatter
+CHATTER_WINDOW = 50  # last changes from which a chatter is named
+SCAN_BLOCK = 48  # grid points looked at first; doubles from block to block
+GRID_FIRST = 0.25  # first look, in time constants of the fastest mode
+GRID_RATIO = 0.35  # growth of the step with time
+GRID_COARSEST = 24  # looks in the longest span, at least
+GRID_ALIVE = 14.0  # an oscillation decayed by e to this power no longer needs looks
+GRID_RADIANS = 0.7  # largest step of a living oscillation
+GRID_POINTS = 4096  # looks kept for one piece; a longer span is run in several
+PIECES_KEPT = 512  # combinations of device states kept
+PIVOTS = 200  # pivots of the complementarity problem; three is the most seen
+PIVOT_PATIENCE = 5  # block pivots without progress before the least-index rule takes over
+
 # --- cautions -------------------------------------------------------------------------------------------------------
+
+# --- service: workers and front -------------------------------------------------------------------------------------
+WORKER_OOM_SCORE_ADJUST = 700  # the kernel, short of memory, takes a worker and not the server
+WORKER_RESPAWN_PAUSE_S = 0.2  # between tries to start a process when the system has none to give
+INLINE_ANSWER_BYTES = 64 * 1024  # below this a file costs more than the pipe (measured: 0.4 ms against 0.3 ms)
+MAX_REQUEST_BYTES = 4 * 2**20  # what every gRPC library sends and takes unasked; larger arrays go through PutArray
+MAX_FRAME_BYTES = 2 * 2**20  # largest response message, half of what every client library takes unasked
+MAX_ARRAY_PART_BYTES = 2**20  # one part of an array: the chunk size at which Python streams fastest
+MAX_SIZE_HEADER_BYTES = 64  # five varints and their keys
+DEFAULT_QUEUE_PER_WORKER = 4  # waiting calls a worker: with calls of a second, nobody waits longer than a few
+DEFAULT_MAX_TIMEOUT_S = 600.0  # no call may hold a worker longer; batches are for that
+DEFAULT_MEMORY_SHARE = 0.5  # of the machine's memory for all calls together; the rest is for whoever else is on the node
+WORKER_BASE_ADDRESS_BYTES = 2 * 2**30  # address space of an idle worker (libraries, arenas), before its share of the budget
+DEFAULT_ARRAY_STORE_BYTES = 512 * 2**20  # uploaded and fetched arrays together; the least recently used leave first
+ARRAY_UPLOAD_IDLE_S = 600.0  # an upload nobody continues is forgotten
+MAX_OPEN_UPLOADS = 64  # unfinished uploads at a time; the longest idle leaves first
+SPOOL_FULL_RETRY_S = 2.0  # a full spool empties as answers are read
+MAX_WINDINGS = 4000  # a dense set of this size is 128 MB a matrix and some minutes of eigenvalues
+RETRY_AFTER_FLOOR_S = 0.1  # shortest wait asked of a refused caller
+RETRY_AFTER_CEILING_S = 5.0  # longest wait asked of a refused caller; load changes faster than that
+DEFAULT_GRACE_S = 10.0  # a drain waits so long for running calls, below the 30 s service supervisors allow
+HANDSHAKE_TIMEOUT_MS = 5_000  # a connection that says nothing is closed
+MAX_CONNECTION_IDLE_MS = 300_000  # a connection without calls is closed; clients reconnect by themselves
+KEEPALIVE_MIN_INTERVAL_MS = 30_000  # the client pings every 60 s while it has calls; twice as often is tolerated
+MAX_CONCURRENT_STREAMS = 256  # calls a connection may have open at once
+FIRST_CALL_S = 1.0  # what a call is taken to last before any was measured
+ESTIMATE_MATRICES = 6  # dense complex copies a solve holds at once: matrix, factor, right sides, scratch, two of headroom
+ESTIMATE_COPIES = 4  # copies of a request in flight: received, piped, parsed, decoded
+LOG_QUEUE_LINES = 10_000  # lines that may wait for a slow reader of stderr; later ones are counted and dropped
+TOKEN_RELOAD_INTERVAL_S = 1.0  # how often the token file is looked at, at most
+PARENT_POLL_S = 0.2  # how often an embedded server looks whether its parent lives
+
+# --- batches --------------------------------------------------------------------------------------------------------
+BATCH_GROUP_COMMIT_COUNT = 256  # writes in one transaction: one sync of the disk serves them all
+BATCH_CHUNK_TRIES = 2  # a chunk whose worker died is tried once more, then split
+BATCH_SPLIT = 8  # parts a poisoned chunk falls into: four splits single out one row of 4096
+BATCH_STORE_RETRY_S = 2.0  # before the state folder is tried again once it could not be written to

@@ -6,6 +6,7 @@ Each class states its function of time; a source is 0 before t = 0 only where th
 from __future__ import annotations
 
 from dataclasses import dataclass
+from enum import Enum
 from typing import Any, Union
 
 import numpy as np
@@ -114,5 +115,88 @@ class PiecewiseLinear:
         return hash((self.time_s.tobytes(), self.value.tobytes()))
 
 
-Waveform = Union[Constant, Step, Ramp, Sine, Trapezoid, DoubleExponential, PiecewiseLinear]
-WAVEFORMS: tuple[type[Any], ...] = (Constant, Step, Ramp, Sine, Trapezoid, DoubleExponential, PiecewiseLinear)
+class ImpulseShape(Enum):
+    """The standard impulses, by their front and tail in µs."""
+
+    LIGHTNING_1_2_50 = "LIGHTNING_1_2_50"
+    SWITCHING_250_2500 = "SWITCHING_250_2500"
+    CURRENT_8_20 = "CURRENT_8_20"
+    SURGE_10_1000 = "SURGE_10_1000"
+    RING_100_KHZ = "RING_100_KHZ"
+
+
+@dataclass(frozen=True, slots=True)
+class StandardImpulse:
+    """A standard impulse of crest ``peak``, 0 before 0.
+
+    ``chopped_at_s`` (None: a full wave) is where it collapses, within ``collapse_s`` along a straight line, to 0.
+    """
+
+    shape: ImpulseShape
+    peak: float
+    chopped_at_s: float | None = None
+    collapse_s: float = 0.0
+
+    def __post_init__(self) -> None:
+        if not isinstance(self.shape, ImpulseShape):
+            raise InvalidRequest.at("shape", f"{self.shape!r} found; an ImpulseShape is expected")
+        object.__setattr__(self, "peak", plain_float(self.peak, "peak"))
+        object.__setattr__(self, "collapse_s", plain_float(self.collapse_s, "collapse_s"))
+        if self.chopped_at_s is not None:
+            object.__setattr__(self, "chopped_at_s", plain_float(self.chopped_at_s, "chopped_at_s"))
+
+
+@dataclass(frozen=True, slots=True)
+class DampedSine(_Numbers):
+    """``amplitude`` e^(−t/decay_s) sin(2π ``frequency_hz`` t + ``phase_rad``)."""
+
+    amplitude: float
+    frequency_hz: float
+    decay_s: float
+    phase_rad: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class OffsetFaultCurrent(_Numbers):
+    """``amplitude`` (sin(2π ``frequency_hz`` t + ``phase_rad``) − sin(``phase_rad``) e^(−t/decay_s)): starts at 0."""
+
+    amplitude: float
+    frequency_hz: float
+    decay_s: float
+    phase_rad: float = -1.5707963267948966
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class SampledRecord:
+    """Straight lines through ``value`` (n,) sampled every ``interval_s`` from ``start_s`` on; the ends hold outside."""
+
+    interval_s: float
+    value: FloatArray
+    start_s: float = 0.0
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "interval_s", plain_float(self.interval_s, "interval_s"))
+        object.__setattr__(self, "start_s", plain_float(self.start_s, "start_s"))
+        object.__setattr__(self, "value", frozen_vector(self.value, "value"))
+        if self.value.size == 0:
+            raise InvalidRequest.at("value", "no sample found; at least one is expected")
+
+    def __eq__(self, other: object) -> bool:
+        return (
+            isinstance(other, SampledRecord)
+            and (self.interval_s, self.start_s) == (other.interval_s, other.start_s)
+            and np.array_equal(self.value, other.value)
+        )
+
+    def __hash__(self) -> int:
+        return hash((self.interval_s, self.start_s, self.value.tobytes()))
+
+
+Waveform = Union[
+    Constant, Step, Ramp, Sine, Trapezoid, DoubleExponential, PiecewiseLinear,
+    StandardImpulse, DampedSine, OffsetFaultCurrent, SampledRecord,
+]  # fmt: skip
+WAVEFORMS: tuple[type[Any], ...] = (
+    Constant, Step, Ramp, Sine, Trapezoid, DoubleExponential, PiecewiseLinear,
+    StandardImpulse, DampedSine, OffsetFaultCurrent, SampledRecord,
+)  # fmt: skip
