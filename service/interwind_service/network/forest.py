@@ -46,3 +46,31 @@ def spanning_forest(nodes: int, start: IntArray, finish: IntArray, order: Iterab
     union = _Union(nodes)
     a, b = start.tolist(), finish.tolist()
     return np.array([k for k in order if union.join(a[k], b[k])], dtype=np.int64)
+
+
+def path_matrix(nodes: int, start: IntArray, finish: IntArray, tree: IntArray) -> NDArray[np.float64]:
+    """Return P (nodes, tree): node voltages = P @ tree branch voltages, the first node of each component being zero.
+
+    Entries are 0, +1 and −1: the branches on the way from a node to its zero, with their direction.
+    """
+    neighbours: list[list[tuple[int, int, float]]] = [[] for _ in range(nodes)]
+    for column, k in enumerate(tree.tolist()):
+        a, b = int(start[k]), int(finish[k])
+        neighbours[a].append((b, column, -1.0))
+        neighbours[b].append((a, column, 1.0))
+    P = np.zeros((nodes, len(tree)))
+    seen = [False] * nodes
+    for root in range(nodes):
+        if seen[root]:
+            continue
+        seen[root] = True
+        stack = [root]
+        while stack:
+            node = stack.pop()
+            for other, column, sign in neighbours[node]:
+                if not seen[other]:
+                    seen[other] = True
+                    P[other] = P[node]
+                    P[other, column] = sign
+                    stack.append(other)
+    return P

@@ -18,8 +18,9 @@ FloatArray = NDArray[np.float64]
 class WindingGroup:
     """The windings of one element.
 
-    ``branches`` (n,) branch numbers; ``inductance_h`` L (n, n) symmetric; ``coupling`` K (n, n), unit diagonal, as stated
-    where couplings were stated; ``root`` d = sqrt(diag L) (n,), so that L = diag(d) K diag(d); ``resistance_ohm`` R (n, n).
+    ``branches`` (n,) branch numbers; ``inductance_h`` L (n, n) symmetric; ``coupling`` K (n, n), unit diagonal, as
+    stated where couplings were stated; ``root`` d = sqrt(diag L) (n,), so that L = diag(d) K diag(d);
+    ``resistance_ohm`` R (n, n).
     """
 
     name: str
@@ -30,6 +31,7 @@ class WindingGroup:
     coupling: FloatArray
     root: FloatArray
     resistance_ohm: FloatArray
+    stated_as_coupling: bool
 
     @property
     def size(self) -> int:
@@ -54,6 +56,7 @@ def group_of(element: Windings, branches: NDArray[np.int64], position: int) -> W
             coupling=coupling,
             root=np.sqrt(inductance.diagonal()),
             resistance_ohm=0.5 * (resistance + resistance.T),
+            stated_as_coupling=coils.stated_as_coupling,
         )
 
 

@@ -15,8 +15,8 @@ from interwind.errors import InvalidNetwork, InvalidRequest
 from interwind.model import elements as el
 from interwind.model.finding import Finding
 from interwind.model.network import Network, element_nodes
-from interwind_service.network.kind import Kind
 from interwind_service.network.groups import WindingGroup, group_of
+from interwind_service.network.kind import Kind
 from interwind_service.network.parts import Parts, divide
 from interwind_service.network.values import check_values
 

@@ -1,0 +1,102 @@
+"""Stacks of linear systems, factored once and solved for every right side, with the numbers that vouch for them."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.linalg import lapack
+
+from interwind_service import tolerances as tol
+
+ComplexArray = NDArray[np.complex128]
+FloatArray = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Solutions:
+    """``x`` (f, n, m); ``residual`` (f,) = |b − A x|∞ / (|A|∞ |x|∞ + |b|∞); ``condition`` (f,) after scaling, 1-norm.
+
+    Where A is singular, x and the residual are NaN and the condition is inf.
+    """
+
+    x: ComplexArray
+    residual: FloatArray
+    condition: FloatArray
+
+
+def solve(A: ComplexArray, b: ComplexArray) -> Solutions:
+    """Solve A x = b for stacks A (f, n, n) and b (f, n, m): equilibrate, factor, refine once.
+
+    References: Ruiz 2001 (equilibration); Skeel 1980 (one refinement in working precision); Higham 2002, chapter 15.
+    """
+    f, n, m = b.shape
+    if n == 0 or f == 0:
+        return Solutions(np.zeros(b.shape, np.complex128), np.zeros(f), np.ones(f))
+    scaled, rows, columns = equilibrate(A)
+    right = b * rows[:, :, None]
+    if n <= tol.STACKED_SOLVE_SIZE:
+        x, condition = _by_inverse(scaled, right)
+    else:
+        x, condition = _by_factors(scaled, right)
+    singular = ~(condition < tol.SINGULAR_CONDITION)
+    x[singular] = np.nan
+    gap = np.abs(right - scaled @ x).max(axis=(1, 2)) if m else np.zeros(f)
+    size = np.abs(scaled).sum(axis=2).max(axis=1) * np.abs(x).max(axis=(1, 2), initial=0.0)
+    size += np.abs(right).max(axis=(1, 2), initial=0.0)
+    residual = np.divide(gap, size, out=np.zeros(f), where=size > 0.0)
+    residual[singular] = np.nan
+    return Solutions(x * columns[:, :, None], residual, np.where(singular, np.inf, condition))
+
+
+def equilibrate(A: ComplexArray) -> tuple[ComplexArray, FloatArray, FloatArray]:
+    """Return (diag(r) A diag(c), r, c), r and c powers of two, so that every row and column has a largest entry near 1."""
+    size = np.abs(A)
+    f, n = A.shape[:2]
+    r, c = np.ones((f, n)), np.ones((f, A.shape[2]))
+    for _ in range(tol.EQUILIBRATION_PASSES):
+        row, column = _root(size.max(axis=2)), _root(size.max(axis=1))
+        size *= row[:, :, None]
+        size *= column[:, None, :]
+        r *= row
+        c *= column
+    return A * r[:, :, None] * c[:, None, :], r, c
+
+
+def _root(largest: FloatArray) -> FloatArray:
+    with np.errstate(divide="ignore"):
+        exponent = np.where(largest > 0.0, np.round(-0.5 * np.log2(largest)), 0.0)
+    return np.exp2(exponent)
+
+
+def _by_inverse(A: ComplexArray, b: ComplexArray) -> tuple[ComplexArray, FloatArray]:
+    try:
+        inverse = np.linalg.inv(A)
+    except np.linalg.LinAlgError:
+        return _by_factors(A, b)
+    x = inverse @ b
+    x += inverse @ (b - A @ x)
+    return x, _norm_one(A) * _norm_one(inverse)
+
+
+def _norm_one(A: ComplexArray) -> FloatArray:
+    return np.abs(A).sum(axis=1).max(axis=1)
+
+
+def _by_factors(A: ComplexArray, b: ComplexArray) -> tuple[ComplexArray, FloatArray]:
+    x = np.full(b.shape, np.nan, dtype=np.complex128)
+    condition = np.full(len(A), np.inf)
+    norm = _norm_one(A)
+    for k in range(len(A)):
+        factors, pivots, info = lapack.zgetrf(A[k])
+        if info != 0:
+            continue
+        reciprocal, _ = lapack.zgecon(factors, norm[k])
+        if reciprocal == 0.0:
+            continue
+        condition[k] = 1.0 / reciprocal
+        first, _ = lapack.zgetrs(factors, pivots, b[k])
+        step, _ = lapack.zgetrs(factors, pivots, b[k] - A[k] @ first)
+        x[k] = first + step
+    return x, condition

@@ -1,0 +1,173 @@
+"""Frequency response: complex peak values of any observable at each frequency, sources by their phasors."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.errors import InvalidNetwork
+from interwind.model.elements import CurrentSource, VoltageSource
+from interwind.model.finding import Finding, Severity
+from interwind.model.network import Network
+from interwind.model.observables import Observable
+from interwind.model.response import FrequencyResponse
+from interwind_service.network.kind import Kind
+from interwind_service.network.topology import Topology, number
+from interwind_service.response.evidence import gather, require
+from interwind_service.response.frequency_tree import Drive
+from interwind_service.response.observe import Phasors, evaluate, resolve
+from interwind_service.response.spectrum import Band, checked_frequencies, spectrum
+from interwind_service.response.undetermined import Undetermined, node_list, refuse, suspects, undetermined
+
+ComplexArray = NDArray[np.complex128]
+
+
+def frequency_response(
+    network: Network, frequency_hz: object, observe: Sequence[Observable] | None = None
+) -> FrequencyResponse:
+    """Compute the sinusoidal steady state at each frequency.
+
+    M(jω) z + J u = 0 in the voltages of a tree chosen at ω (`frequency_tree`), u the phasors of the sources.
+
+    Parameters
+    ----------
+    network : its sources by ``phasor``; a switch stands as at t = 0.
+    frequency_hz : shape (F,), Hz, from 0 on.
+    observe : observables; None = all node voltages and winding currents.
+
+    Returns
+    -------
+    FrequencyResponse : complex (F,) per observable, a NaN row and a finding where the network is singular.
+
+    Raises
+    ------
+    InvalidNetwork : sources contradict each other, or the network is singular at every frequency asked for.
+    AccuracyNotReached : residual, reciprocity or passivity beyond its limit.
+    """
+    f = checked_frequencies(frequency_hz)
+    topology = number(network)
+    asked = resolve(topology, observe)
+    drives, u = drives_of(topology)
+    samples = np.full((len(f), len(asked)), np.nan, dtype=np.complex128)
+    findings = list(topology.findings)
+    bands: list[Band] = []
+    alone = True
+    for band in spectrum(topology, f, drives):
+        open_ends = undetermined(band.tree, u)
+        singular = ~np.isfinite(band.condition)
+        if band.s[0] != 0.0:
+            refuse(open_ends)
+            findings += [x for x in _open_ends(band, open_ends) if x not in findings]
+        elif not open_ends.nothing:
+            singular[:] = True
+        alone &= open_ends.nothing
+        findings += [
+            _singular(band, float(f[k]), complex(s), open_ends)
+            for k, s in zip(band.index[singular], band.s[singular], strict=True)
+        ]
+        samples[band.index] = _observe(topology, band, u, open_ends, asked)
+        samples[band.index[singular]] = np.nan
+        bands.append(band)
+    found = [x for x in findings if x.code == "SINGULAR_AT_FREQUENCY"]
+    if len(found) == len(f):
+        raise InvalidNetwork.at(
+            "elements", f"no solution at any frequency asked for; {found[0].message}", reason="SINGULAR"
+        )
+    evidence = gather(topology, "frequency tree, LU, one refinement", bands, drives_alone=alone)
+    require(evidence)
+    return FrequencyResponse(asked, samples, frequency_hz=f, findings=tuple(findings), evidence=evidence)
+
+
+def drives_of(topology: Topology) -> tuple[tuple[Drive, ...], ComplexArray]:
+    """Return the drives of a network, its sources and then its ports, and their phasors (0 for a port)."""
+    drives, phasors = [], []
+    for branch in topology.input_branch.tolist():
+        source = topology.network.elements[topology.element[branch]]
+        if topology.kind[branch] == Kind.CURRENT_SOURCE:
+            drives.append(Drive(branch, int(topology.start[branch]), int(topology.finish[branch])))
+        else:
+            drives.append(Drive(branch))
+        given = source.phasor if isinstance(source, VoltageSource | CurrentSource) else None
+        phasors.append(0j if given is None else given)
+    for position, port in enumerate(topology.network.ports):
+        a, b = port_nodes(topology, position)
+        if topology.parts.of_node[a] == topology.parts.of_node[b]:
+            drives.append(Drive(-1, out_of=b, into=a))
+            phasors.append(0j)
+    return tuple(drives), np.array(phasors, dtype=np.complex128)
+
+
+def port_nodes(topology: Topology, position: int) -> tuple[int, int]:
+    """Return the node numbers of a port; an unknown node is refused by its path."""
+    port = topology.network.ports[position]
+    for field in ("a", "b"):
+        if topology.node(getattr(port, field)) < 0:
+            raise InvalidNetwork.at(
+                f"ports[{position}].{field}", f"{getattr(port, field)!r} found; no element touches that node"
+            )
+    return topology.node(port.a), topology.node(port.b)
+
+
+def _observe(
+    topology: Topology, band: Band, u: ComplexArray, open_ends: Undetermined, asked: tuple[Observable, ...]
+) -> ComplexArray:
+    tree = band.tree
+    z = band.Z @ u
+    floating = set(open_ends.nodes.tolist())
+
+    def between(one: int, other: int) -> ComplexArray:
+        if one == other:
+            return np.full(len(z), np.nan if one in floating else 0.0, dtype=np.complex128)
+        if tree.component[one] != tree.component[other]:
+            return np.full(len(z), np.nan, dtype=np.complex128)
+        return z[:, : len(tree.tree)] @ (tree.paths[one] - tree.paths[other])
+
+    def voltage(branch: int) -> ComplexArray:
+        return between(int(topology.start[branch]), int(topology.finish[branch]))
+
+    def current(branch: int) -> ComplexArray:
+        if branch in open_ends.currents:
+            return np.full(len(z), np.nan, dtype=np.complex128)
+        return tree.branch_current(branch, z, band.s, u)
+
+    phasors = Phasors(topology, band.s.imag, voltage, current, between)
+    return np.stack([evaluate(phasors, item) for item in asked], axis=1) if asked else np.empty((len(z), 0))
+
+
+def _open_ends(band: Band, open_ends: Undetermined) -> list[Finding]:
+    findings = []
+    if open_ends.nodes.size:
+        findings.append(
+            Finding(
+                "UNDEFINED_POTENTIAL", Severity.WARNING, field="elements",
+                message=f"nodes {node_list(band.tree, open_ends.nodes)} are cut off by open switches; their voltages are NaN",
+            )
+        )  # fmt: skip
+    if open_ends.currents.size:
+        names = dict.fromkeys(band.tree.topology.names[k] for k in open_ends.currents)
+        findings.append(
+            Finding(
+                "UNDETERMINED_CURRENT", Severity.WARNING, field="elements",
+                message=f"the current shared by {', '.join(map(repr, names))} is undetermined, for they close a loop "
+                "without resistance; their currents are NaN; give one of them the resistance it has",
+            )
+        )  # fmt: skip
+    return findings
+
+
+def _singular(band: Band, frequency_hz: float, s: complex, open_ends: Undetermined) -> Finding:
+    if open_ends.nothing:
+        what = f"{suspects(band.tree, s)} carry a resonance without loss or a current that nothing determines"
+    elif open_ends.contradiction:
+        what = open_ends.contradiction
+    elif open_ends.nodes.size:
+        what = f"nodes {node_list(band.tree, open_ends.nodes)} hang on capacitors alone"
+    else:
+        names = dict.fromkeys(band.tree.topology.names[k] for k in open_ends.currents)
+        what = f"{', '.join(map(repr, names))} close a loop without resistance"
+    return Finding(
+        "SINGULAR_AT_FREQUENCY", Severity.WARNING, field="frequency_hz",
+        message=f"at {frequency_hz:.9g} Hz the network has no unique solution: {what}", measured=frequency_hz,
+    )  # fmt: skip

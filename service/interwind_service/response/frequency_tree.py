@@ -1,0 +1,242 @@
+"""Equations in the voltages of a spanning tree chosen at the working frequency.
+
+At each angular frequency the branches of largest admittance form a spanning tree T. With v_T its branch voltages every
+branch voltage is v = Qᵀ v_T and the current law is Q i = 0; Q, the fundamental cut-set matrix, holds 0, +1 and −1 only.
+No sum then mixes an admittance with one that would swallow it: a chord is no larger than the tree branches it loops
+with, and no voltage appears as a difference of node voltages. The equations are
+
+    M(s) z + J u = 0,   M(s) = M0 + s M1 + M2 / s,   z = (v_T, y, i),
+
+y the coordinates of the winding groups, i the currents of imposed voltages, ideal transformers and controlled sources,
+u the drives: voltages of sources, currents of sources, currents into ports.
+
+References: Bryant 1962 (fundamental cut-sets); Stewart 1989 and Vavasis 1994 (stable methods for the weighted problem).
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind_service.network.forest import components, path_matrix, spanning_forest
+from interwind_service.network.topology import Topology
+from interwind_service.network.winding_coordinates import WindingCoordinates
+from interwind_service.response.roles import Role, Roles
+
+FloatArray = NDArray[np.float64]
+IntArray = NDArray[np.int64]
+ComplexArray = NDArray[np.complex128]
+
+
+@dataclass(frozen=True, slots=True)
+class Drive:
+    """One column of u: the voltage of source ``branch``, else (branch −1) a current taken from one node to another."""
+
+    branch: int
+    out_of: int = -1
+    into: int = -1
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class FrequencyTree:
+    """The equations of a network in one tree.
+
+    Attributes
+    ----------
+    tree : (T,) branches of the tree. ``Q`` (T, branches). ``paths`` (nodes, T): node voltages = paths @ v_T.
+    component : (nodes,) what hangs together at this frequency; each has the first of its nodes as zero.
+    M : three matrices (n, columns); ``J`` (n, drives).
+    known : columns of imposed tree voltages; ``imposed`` (known, drives): their values per unit of each drive.
+    columns : the branch of each column; the first T are voltages, the others currents.
+    groups : columns of each winding group. ``current`` (branches,): the column of a current, −1 without one.
+    loops : branches of imposed voltage that close a loop of such branches.
+    """
+
+    topology: Topology
+    coordinates: tuple[WindingCoordinates, ...]
+    roles: Roles
+    drives: tuple[Drive, ...]
+    tree: IntArray
+    Q: FloatArray
+    paths: FloatArray
+    component: IntArray
+    M: tuple[FloatArray, FloatArray, FloatArray]
+    J: FloatArray
+    known: IntArray
+    imposed: FloatArray
+    columns: IntArray
+    groups: tuple[slice, ...]
+    current: IntArray
+    loops: IntArray
+
+    @property
+    def unknown(self) -> IntArray:
+        """The columns sought."""
+        return np.setdiff1d(np.arange(len(self.columns)), self.known)
+
+    def matrix(self, s: ComplexArray) -> ComplexArray:
+        """Return M(s), shape (f, n, columns)."""
+        M0, M1, M2 = self.M
+        stack = M1[None] * s[:, None, None]
+        stack += M0[None]
+        if np.any(M2):
+            stack += M2[None] * (1.0 / s)[:, None, None]
+        return stack
+
+    def voltage(self, branch: int, z: ComplexArray) -> ComplexArray:
+        """Return the voltage of a branch, z (f, columns) being solutions."""
+        return z[:, : len(self.tree)] @ self.Q[:, branch]
+
+    def branch_current(self, branch: int, z: ComplexArray, s: ComplexArray, u: ComplexArray) -> ComplexArray:
+        """Return the current of a branch, u (drives,) being the drives that made z."""
+        role = self.roles.role[branch]
+        if role == Role.ADMITTANCE:
+            return self.roles.admittance(branch, s) * self.voltage(branch, z)
+        if role == Role.WINDING:
+            group, row = _place(self.topology, branch)
+            return z[:, self.groups[group]] @ self.coordinates[group].N[row]
+        if role == Role.TRANSFORMER:
+            transformer = next(t for t in self.topology.transformers if branch in (t.first, t.second))
+            own = z[:, self.current[transformer.first]]
+            return own if branch == transformer.first else -transformer.ratio * own
+        if role == Role.CURRENT:
+            a, b = int(self.topology.start[branch]), int(self.topology.finish[branch])
+            value = sum((u[k] for k, d in enumerate(self.drives) if (d.out_of, d.into, d.branch) == (a, b, branch)), 0j)
+            return np.full(len(z), value, dtype=np.complex128)
+        if self.current[branch] >= 0:
+            return z[:, self.current[branch]]
+        return np.zeros(len(z), dtype=np.complex128)
+
+
+def frequency_tree(
+    topology: Topology,
+    coordinates: tuple[WindingCoordinates, ...],
+    roles: Roles,
+    omega: float,
+    drives: tuple[Drive, ...],
+) -> FrequencyTree:
+    """Choose the tree at ``omega``, rad/s, and write the equations."""
+    size, nodes, role = len(topology.kind), len(topology.nodes), roles.role
+    tree = spanning_forest(nodes, topology.start, topology.finish, _order(topology, roles, omega))
+    conducting = np.flatnonzero((role != Role.CURRENT) & (role != Role.OPEN))
+    component = components(nodes, topology.start[conducting], topology.finish[conducting])
+    paths = path_matrix(nodes, topology.start, topology.finish, tree)
+    Q = (paths[topology.start] - paths[topology.finish]).T
+    T = len(tree)
+
+    columns = tree.tolist()
+    groups = []
+    for group in topology.groups:
+        groups.append(slice(len(columns), len(columns) + group.size))
+        columns += group.branches.tolist()
+    imposing = [k for k in tree.tolist() if role[k] == Role.VOLTAGE]
+    current = np.full(size, -1, dtype=np.int64)
+    for branch in [*imposing, *(t.first for t in topology.transformers), *(c.branch for c in topology.controls)]:
+        current[branch] = len(columns)
+        columns.append(int(branch))
+    known = np.array([k for k, branch in enumerate(tree.tolist()) if role[branch] == Role.VOLTAGE], dtype=np.int64)
+    imposed = np.array([[float(d.branch == branch) for d in drives] for branch in imposing]).reshape(-1, len(drives))
+    equations = _Equations(topology, coordinates, roles, drives, Q, paths, groups, current, len(columns))
+    M, J = equations.write(imposing)
+    return FrequencyTree(
+        topology, coordinates, roles, drives, tree, Q, paths, component, M, J, known, imposed,
+        np.array(columns, dtype=np.int64), tuple(groups), current,
+        np.setdiff1d(np.flatnonzero(role == Role.VOLTAGE), tree),
+    )  # fmt: skip
+
+
+def _order(topology: Topology, roles: Roles, omega: float) -> list[int]:
+    """Order the branches by admittance, largest first; ideal ones at the ends; what does not conduct is left out."""
+    role = roles.role
+    with np.errstate(divide="ignore", invalid="ignore"):
+        size = roles.conductance + omega * roles.capacitance
+        size += np.where(roles.reciprocal_inductance > 0.0, roles.reciprocal_inductance / omega, 0.0)
+        for group in topology.groups:
+            impedance = omega * group.inductance_h.diagonal() + group.resistance_ohm.diagonal()
+            size[group.branches] = np.where(impedance > 0.0, 1.0 / impedance, np.inf)
+    rank = np.select([role == Role.VOLTAGE, role == Role.CONTROLLED_VOLTAGE, role >= Role.TRANSFORMER], [0, 1, 3], 2)
+    order = np.lexsort((-size, rank))
+    return [int(k) for k in order if role[k] not in (Role.CURRENT, Role.OPEN)]
+
+
+def _place(topology: Topology, branch: int) -> tuple[int, int]:
+    for k, group in enumerate(topology.groups):
+        if group.branches[0] <= branch <= group.branches[-1]:
+            return k, int(branch - group.branches[0])
+    raise ValueError(f"branch {branch} is no winding")
+
+
+class _Equations:
+    """Writes M0, M1, M2 and J; rows: the cut-sets, the groups, the transformers, the controlled sources."""
+
+    def __init__(
+        self,
+        topology: Topology,
+        coordinates: tuple[WindingCoordinates, ...],
+        roles: Roles,
+        drives: tuple[Drive, ...],
+        Q: FloatArray,
+        paths: FloatArray,
+        groups: list[slice],
+        current: IntArray,
+        columns: int,
+    ) -> None:
+        self.topology, self.coordinates, self.roles, self.drives = topology, coordinates, roles, drives
+        self.Q, self.paths, self.groups, self.current, self.columns = Q, paths, groups, current, columns
+
+    def write(self, imposing: list[int]) -> tuple[tuple[FloatArray, FloatArray, FloatArray], FloatArray]:
+        Q, roles, T = self.Q, self.roles, len(self.Q)
+        n = self.columns - len(imposing)
+        M0, M1, M2 = (np.zeros((n, self.columns)) for _ in range(3))
+        J = np.zeros((n, len(self.drives)))
+        for target, value in ((M0, roles.conductance), (M1, roles.capacitance), (M2, roles.reciprocal_inductance)):
+            part = value != 0.0
+            target[:T, :T] = (Q[:, part] * value[part]) @ Q[:, part].T
+        for group, where, own in zip(self.topology.groups, self.groups, self.coordinates, strict=True):
+            cuts = Q[:, group.branches] @ own.N
+            M0[:T, where], M0[where, :T] = cuts, -cuts.T
+            M0[where, where] = own.N.T @ group.resistance_ohm @ own.N
+            M1[where, where] = own.S
+        for branch in imposing:
+            M0[:T, self.current[branch]] = Q[:, branch]
+        row = self.groups[-1].stop if self.groups else T
+        for transformer in self.topology.transformers:
+            cut = Q[:, transformer.first] - transformer.ratio * Q[:, transformer.second]
+            M0[:T, self.current[transformer.first]], M0[row, :T] = cut, -cut
+            row += 1
+        for column, drive in enumerate(self.drives):
+            if drive.out_of >= 0:
+                J[:T, column] = self.paths[drive.out_of] - self.paths[drive.into]
+        for control in self.topology.controls:
+            own = int(self.current[control.branch])
+            M0[:T, own] = Q[:, control.branch]
+            if roles.role[control.branch] == Role.CONTROLLED_VOLTAGE:
+                M0[row, :T] = Q[:, control.branch]
+            else:
+                M0[row, own] = 1.0
+            if control.sensed < 0:
+                M0[row, :T] -= control.gain * (self.paths[control.start] - self.paths[control.finish])
+            else:
+                self._subtract_current(control.sensed, control.gain, row, (M0, M1, M2), J)
+            row += 1
+        return (M0, M1, M2), J
+
+    def _subtract_current(
+        self, branch: int, gain: float, row: int, M: tuple[FloatArray, FloatArray, FloatArray], J: FloatArray
+    ) -> None:
+        role, T = self.roles.role[branch], len(self.Q)
+        if role == Role.ADMITTANCE:
+            parts = (self.roles.conductance, self.roles.capacitance, self.roles.reciprocal_inductance)
+            for target, value in zip(M, parts, strict=True):
+                target[row, :T] -= gain * value[branch] * self.Q[:, branch]
+        elif role == Role.WINDING:
+            group, place = _place(self.topology, branch)
+            M[0][row, self.groups[group]] -= gain * self.coordinates[group].N[place]
+        elif role == Role.CURRENT:
+            for column, drive in enumerate(self.drives):
+                if drive.branch == branch:
+                    J[row, column] -= gain
+        elif self.current[branch] >= 0:
+            M[0][row, self.current[branch]] -= gain

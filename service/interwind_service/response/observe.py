@@ -1,0 +1,152 @@
+"""What may be asked of a network, and the answer from its phasors."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.errors import InvalidNetwork, InvalidRequest, field_path
+from interwind.model import observables as ob
+from interwind.model.elements import Windings
+from interwind_service.network.kind import Kind
+from interwind_service.network.topology import Topology
+
+ComplexArray = NDArray[np.complex128]
+
+
+def resolve(topology: Topology, observe: Sequence[ob.Observable] | None) -> tuple[ob.Observable, ...]:
+    """Return what is asked for, each checked against the network; None = all node voltages and winding currents.
+
+    Raises
+    ------
+    InvalidRequest : an unknown node, element or winding, by its path such as ``observe[2].node``.
+    """
+    if observe is None:
+        windings = topology.of_kind(Kind.WINDING)
+        nodes: list[ob.Observable] = [ob.NodeVoltage(name) for name in topology.nodes]
+        return (*nodes, *(ob.WindingCurrent(topology.names[k], topology.labels[k]) for k in windings))
+    for position, item in enumerate(observe):
+        with field_path(f"observe[{position}]"):
+            _check(topology, item)
+    return tuple(observe)
+
+
+def _check(topology: Topology, item: ob.Observable) -> None:
+    if not isinstance(item, ob.OBSERVABLES):
+        raise InvalidRequest.at("", f"{type(item).__name__} found; an observable is expected")
+    if isinstance(item, ob.NodeVoltage):
+        for field in ("node", "to"):
+            name = getattr(item, field)
+            if (field, name) != ("to", None) and topology.node(name) < 0:
+                raise InvalidRequest.at(field, f"{name!r} found; no element touches that node")
+        if item.to is not None:
+            parts = topology.parts.of_node
+            if parts[topology.node(item.node)] != parts[topology.node(item.to)]:
+                raise InvalidNetwork.at(
+                    "to",
+                    f"{item.to!r} and {item.node!r} have no conducting path between them; no voltage is defined there",
+                )
+        return
+    if item.name not in topology.names:
+        raise InvalidRequest.at("name", f"{item.name!r} found; no element of that name")
+    if isinstance(item, ob.WindingVoltage | ob.WindingCurrent | ob.FluxLinkage):
+        if topology.winding(item.name, item.label) < 0:
+            element = topology.network.element(item.name)
+            known = (
+                ", ".join(element.windings.labels) if isinstance(element, Windings) else "none; it is no winding set"
+            )
+            raise InvalidRequest.at("label", f"{item.label!r} found; windings of {item.name!r}: {known}")
+    elif isinstance(item, ob.ElementVoltage | ob.ElementCurrent):
+        element = topology.network.element(item.name)
+        if isinstance(element, Windings) and element.windings.size > 1:
+            raise InvalidRequest.at(
+                "name", f"{item.name!r} has {element.windings.size} windings; ask for WindingVoltage or WindingCurrent"
+            )
+
+
+class Phasors:
+    """Voltages and currents of the branches over frequency, as functions of the branch number.
+
+    ``voltage(branch)``, ``current(branch)`` and ``between(node, node)`` each return shape (f,); ``omega`` (f,), rad/s.
+    """
+
+    def __init__(
+        self,
+        topology: Topology,
+        omega: NDArray[np.float64],
+        voltage: Callable[[int], ComplexArray],
+        current: Callable[[int], ComplexArray],
+        between: Callable[[int, int], ComplexArray],
+    ) -> None:
+        self.topology, self.omega = topology, omega
+        self.voltage, self.current, self.between = voltage, current, between
+
+
+def evaluate(phasors: Phasors, item: ob.Observable) -> ComplexArray:
+    """Return one observable over frequency, shape (f,), complex peak; power ½ V conj(I), energy the mean.
+
+    A winding group absorbs ½ iᴴ (R + jωL) i with its full resistance matrix, so that no small loss is left over from
+    large reactive products.
+    """
+    topology = phasors.topology
+    if isinstance(item, ob.NodeVoltage):
+        node = topology.node(item.node)
+        zero = topology.parts.reference[topology.parts.of_node[node]] if item.to is None else topology.node(item.to)
+        return phasors.between(node, int(zero))
+    if isinstance(item, ob.ElementPower):
+        return sum(
+            (_power(phasors, k) for k in _units(topology, item.name)), np.zeros(len(phasors.omega), np.complex128)
+        )
+    if isinstance(item, ob.StoredEnergy):
+        return sum(
+            (_energy(phasors, k) for k in _units(topology, item.name)), np.zeros(len(phasors.omega), np.complex128)
+        )
+    if isinstance(item, ob.FluxLinkage):
+        group, currents = _group(phasors, item.name)
+        return currents @ group.inductance_h[group.labels.index(item.label)]
+    if isinstance(item, ob.WindingVoltage | ob.WindingCurrent):
+        branch = topology.winding(item.name, item.label)
+        return phasors.voltage(branch) if isinstance(item, ob.WindingVoltage) else phasors.current(branch)
+    branch = int(topology.branches_of(item.name)[0])
+    return phasors.voltage(branch) if isinstance(item, ob.ElementVoltage) else phasors.current(branch)
+
+
+def _units(topology: Topology, name: str) -> list[int]:
+    branches = topology.branches_of(name).tolist()
+    return branches[:1] if topology.kind[branches[0]] == Kind.WINDING else branches
+
+
+def _group(phasors: Phasors, name: str):
+    group = next(g for g in phasors.topology.groups if g.name == name)
+    return group, np.stack([phasors.current(int(k)) for k in group.branches], axis=1)
+
+
+def _power(phasors: Phasors, branch: int) -> ComplexArray:
+    topology, kind = phasors.topology, phasors.topology.kind[branch]
+    value = topology.value[branch]
+    if kind == Kind.WINDING:
+        group, i = _group(phasors, topology.names[branch])
+        loss = np.einsum("fi,ij,fj->f", i.conj(), group.resistance_ohm, i)
+        return 0.5 * (loss + 1j * phasors.omega * np.einsum("fi,ij,fj->f", i.conj(), group.inductance_h, i))
+    if kind == Kind.RESISTOR:
+        return 0.5 * value * np.abs(phasors.current(branch)) ** 2 + 0j
+    if kind == Kind.INDUCTOR:
+        return 0.5j * phasors.omega * value * np.abs(phasors.current(branch)) ** 2
+    if kind == Kind.CAPACITOR:
+        return -0.5j * phasors.omega * value * np.abs(phasors.voltage(branch)) ** 2
+    return 0.5 * phasors.voltage(branch) * np.conj(phasors.current(branch))
+
+
+def _energy(phasors: Phasors, branch: int) -> ComplexArray:
+    topology, kind = phasors.topology, phasors.topology.kind[branch]
+    value = topology.value[branch]
+    if kind == Kind.WINDING:
+        group, i = _group(phasors, topology.names[branch])
+        return 0.25 * np.einsum("fi,ij,fj->f", i.conj(), group.inductance_h, i)
+    if kind == Kind.INDUCTOR:
+        return 0.25 * value * np.abs(phasors.current(branch)) ** 2 + 0j
+    if kind == Kind.CAPACITOR:
+        return 0.25 * value * np.abs(phasors.voltage(branch)) ** 2 + 0j
+    return np.zeros(len(phasors.omega), dtype=np.complex128)

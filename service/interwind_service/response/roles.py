@@ -1,0 +1,98 @@
+"""What each branch is in the sinusoidal state: an admittance, an imposed voltage or current, or one with a law of its own."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from enum import IntEnum
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.errors import InvalidNetwork
+from interwind.model import elements as el
+from interwind_service.network.kind import Kind
+from interwind_service.network.topology import Topology
+from interwind_service.network.values import switch_closed_at_zero
+
+FloatArray = NDArray[np.float64]
+
+
+class Role(IntEnum):
+    """The part a branch plays at one frequency."""
+
+    ADMITTANCE = 0
+    VOLTAGE = 1
+    CURRENT = 2
+    OPEN = 3
+    WINDING = 4
+    TRANSFORMER = 5
+    CONTROLLED_VOLTAGE = 6
+    CONTROLLED_CURRENT = 7
+
+
+_BY_KIND = {
+    Kind.VOLTAGE_SOURCE: Role.VOLTAGE,
+    Kind.CURRENT_SOURCE: Role.CURRENT,
+    Kind.WINDING: Role.WINDING,
+    Kind.TRANSFORMER: Role.TRANSFORMER,
+    Kind.CONTROLLED_VOLTAGE: Role.CONTROLLED_VOLTAGE,
+    Kind.CONTROLLED_CURRENT: Role.CONTROLLED_CURRENT,
+}
+_REFUSED = {Kind.DIODE: "a diode", Kind.ARRESTER: "an arrester", Kind.SATURABLE: "a saturable inductor"}
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Roles:
+    """``role`` (branches,); an admittance is y(s) = conductance + s capacitance + reciprocal_inductance / s, each (branches,)."""
+
+    role: NDArray[np.int64]
+    conductance: FloatArray
+    capacitance: FloatArray
+    reciprocal_inductance: FloatArray
+
+    def admittance(self, branch: int, s: NDArray[np.complex128]) -> NDArray[np.complex128]:
+        """Return y(s) of one branch, shape of ``s``."""
+        y = self.conductance[branch] + s * self.capacitance[branch]
+        return y + self.reciprocal_inductance[branch] / s if self.reciprocal_inductance[branch] else y
+
+
+def roles_of(topology: Topology, *, at_zero: bool) -> Roles:
+    """Say what each branch is; ``at_zero`` = at 0 Hz, where inductors are short circuits and capacitors open.
+
+    A switch stands as at t = 0. Elements whose law is not linear have no frequency response.
+
+    Raises
+    ------
+    InvalidNetwork : a diode, an arrester or a saturable inductor.
+    """
+    size = len(topology.kind)
+    role = np.full(size, Role.ADMITTANCE, dtype=np.int64)
+    g, c, w = np.zeros(size), np.zeros(size), np.zeros(size)
+    for k, number in enumerate(topology.kind.tolist()):
+        kind, value = Kind(number), float(topology.value[k])
+        if kind in _REFUSED:
+            raise InvalidNetwork.at(
+                f"elements[{topology.element[k]}]",
+                f"{topology.names[k]!r} is {_REFUSED[kind]}, which has no frequency response; replace it by the "
+                "resistance or inductance of its working point, or ask for a time response",
+            )
+        if kind in _BY_KIND:
+            role[k] = _BY_KIND[kind]
+        elif kind in (Kind.RESISTOR, Kind.SWITCH):
+            ohm = value if kind == Kind.RESISTOR else _switch_resistance(topology, k)
+            role[k] = Role.VOLTAGE if ohm == 0.0 else Role.OPEN if np.isinf(ohm) else Role.ADMITTANCE
+            g[k] = 1.0 / ohm if role[k] == Role.ADMITTANCE else 0.0
+        elif kind == Kind.CAPACITOR:
+            role[k] = Role.OPEN if at_zero or value == 0.0 else Role.ADMITTANCE
+            c[k] = value if role[k] == Role.ADMITTANCE else 0.0
+        else:
+            role[k] = Role.VOLTAGE if at_zero or value == 0.0 else Role.ADMITTANCE
+            w[k] = 1.0 / value if role[k] == Role.ADMITTANCE else 0.0
+    return Roles(role, g, c, w)
+
+
+def _switch_resistance(topology: Topology, branch: int) -> float:
+    switch = topology.network.elements[topology.element[branch]]
+    if not isinstance(switch, el.Switch):
+        raise TypeError(f"branch {branch} is no switch")
+    return switch.conducting_resistance_ohm if switch_closed_at_zero(switch) else switch.blocking_resistance_ohm

@@ -1,0 +1,87 @@
+"""The solutions of a network over a list of frequencies, one tree for each band."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.errors import InvalidNetwork
+from interwind_service import tolerances as tol
+from interwind_service.network.topology import Topology
+from interwind_service.network.winding_coordinates import WindingCoordinates, winding_coordinates
+from interwind_service.response.factor import solve
+from interwind_service.response.frequency_tree import Drive, FrequencyTree, frequency_tree
+from interwind_service.response.roles import roles_of
+
+FloatArray = NDArray[np.float64]
+ComplexArray = NDArray[np.complex128]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Band:
+    """Frequencies solved in one tree.
+
+    ``index`` (f,) positions in the list asked for; ``s`` (f,) = jω; ``Z`` (f, columns, drives), one column of solutions
+    per unit of each drive, NaN where singular; ``residual``, ``condition`` (f,).
+    """
+
+    tree: FrequencyTree
+    index: NDArray[np.int64]
+    s: ComplexArray
+    Z: ComplexArray
+    residual: FloatArray
+    condition: FloatArray
+
+
+def checked_frequencies(frequency_hz: object) -> FloatArray:
+    """Return the frequencies as a vector; each must be finite and not negative."""
+    f = np.array(frequency_hz, dtype=np.float64)
+    if f.ndim != 1 or f.size == 0:
+        raise InvalidNetwork.at(
+            "frequency_hz", f"shape {f.shape} found; a vector of at least one frequency is expected"
+        )
+    for k in np.flatnonzero(~(np.isfinite(f) & (f >= 0.0))):
+        raise InvalidNetwork.at(
+            f"frequency_hz[{k}]", f"{float(f[k])!r} Hz found; a finite frequency from 0 on is expected"
+        )
+    return f
+
+
+def all_coordinates(topology: Topology) -> tuple[WindingCoordinates, ...]:
+    """Return the coordinates of every winding group."""
+    return tuple(winding_coordinates(group) for group in topology.groups)
+
+
+def spectrum(topology: Topology, frequency_hz: FloatArray, drives: tuple[Drive, ...]) -> Iterator[Band]:
+    """Solve for every drive at every frequency, in bands that share a tree, in rising order of frequency."""
+    coordinates = all_coordinates(topology)
+    order = np.argsort(frequency_hz, kind="stable")
+    omega = 2.0 * np.pi * frequency_hz[order]
+    done = 0
+    while done < len(order):
+        first = omega[done]
+        stop = (
+            int(np.searchsorted(omega, first * tol.TREE_BAND, side="right")) if first > 0.0 else int((omega == 0).sum())
+        )
+        roles = roles_of(topology, at_zero=first == 0.0)
+        tree = frequency_tree(topology, coordinates, roles, float(np.sqrt(first * omega[stop - 1])), drives)
+        share = max(1, tol.STACK_ENTRIES // max(1, tree.M[0].size))
+        for begin in range(done, stop, share):
+            end = min(stop, begin + share)
+            yield solve_band(tree, order[begin:end], 1j * omega[begin:end])
+        done = stop
+
+
+def solve_band(tree: FrequencyTree, index: NDArray[np.int64], s: ComplexArray) -> Band:
+    """Solve for every drive at the frequencies ``s`` in one tree."""
+    unknown = tree.unknown
+    M = tree.matrix(s)
+    right = -(M[:, :, tree.known] @ tree.imposed) - tree.J
+    answer = solve(np.ascontiguousarray(M[:, :, unknown]), right)
+    Z = np.empty((len(s), M.shape[2], len(tree.drives)), dtype=np.complex128)
+    Z[:, unknown] = answer.x
+    Z[:, tree.known] = tree.imposed
+    return Band(tree, index, s, Z, answer.residual, answer.condition)
