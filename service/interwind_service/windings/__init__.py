@@ -1,0 +1,1 @@
+"""What N coupled windings are."""

@@ -1,0 +1,80 @@
+"""Whether the winding resistance can only lose power: R symmetric and positive semidefinite."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from interwind.model.finding import Finding, Severity
+from interwind.model.windings import WindingSet
+from interwind_service.tolerances import SYMMETRY_ROUNDING, WITNESS_SHARE
+from interwind_service.windings.spectrum import rounding_bound
+
+
+def check_resistance(coils: WindingSet) -> list[Finding]:
+    """Return what is wrong with the resistance; the matrix is judged with its diagonal scaled to 1.
+
+    p = iᵀ R i must not be negative for any current. A diagonal of zero forces its row to be zero.
+    """
+    R = coils.resistance_ohm
+    own = np.broadcast_to(R, (coils.size,)) if R.ndim < 2 else R.diagonal()
+    findings = [
+        Finding(
+            "NEGATIVE_RESISTANCE",
+            Severity.ERROR,
+            (coils.labels[i],),
+            f"resistance_ohm[{i}]" + f"[{i}]" * (R.ndim == 2) if R.ndim else "resistance_ohm",
+            f"The resistance of {coils.labels[i]} is {own[i]:.6g} ohm; a winding cannot deliver power.",
+            float(own[i]),
+            0.0,
+        )
+        for i in np.flatnonzero(own < 0)
+    ]
+    if R.ndim < 2 or findings:
+        return findings
+    return _matrix(coils)
+
+
+def _matrix(coils: WindingSet) -> list[Finding]:
+    R = coils.resistance_ohm
+    own = R.diagonal()
+    scale = np.sqrt(np.where(own > 0, own, own.max() if own.max() > 0 else 1.0))
+    scaled = R / np.outer(scale, scale)
+    difference = np.triu(np.abs(scaled - scaled.T))
+    i, j = (int(k) for k in np.unravel_index(np.argmax(difference), difference.shape))
+    if difference[i, j] > SYMMETRY_ROUNDING:
+        text = (
+            f"R({coils.labels[i]}, {coils.labels[j]}) = {R[i, j]:.6g} ohm and R({coils.labels[j]}, {coils.labels[i]}) "
+            f"= {R[j, i]:.6g} ohm differ; reciprocity wants them equal."
+        )
+        pair = (coils.labels[i], coils.labels[j])
+        return [
+            Finding(
+                "RESISTANCE_ASYMMETRIC",
+                Severity.ERROR,
+                pair,
+                f"resistance_ohm[{i}][{j}]",
+                text,
+                float(difference[i, j]),
+                SYMMETRY_ROUNDING,
+            )
+        ]
+    values, V = np.linalg.eigh(0.5 * (scaled + scaled.T))
+    limit = -rounding_bound(values)
+    if values[0] >= limit:
+        return []
+    names = tuple(coils.labels[k] for k in np.flatnonzero(V[:, 0] ** 2 >= WITNESS_SHARE))
+    text = (
+        f"The resistance matrix, scaled to a unit diagonal, has the eigenvalue {values[0]:.4g}: currents in "
+        f"{', '.join(names)} would deliver power. Check their mutual resistances."
+    )
+    return [
+        Finding(
+            "RESISTANCE_NOT_POSITIVE_SEMIDEFINITE",
+            Severity.ERROR,
+            names,
+            "resistance_ohm",
+            text,
+            float(values[0]),
+            limit,
+        )
+    ]
