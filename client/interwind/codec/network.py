@@ -14,6 +14,7 @@ from interwind.codec.array import array_from_message, array_to_message
 from interwind.codec.waveform import waveform_from_message, waveform_to_message
 from interwind.codec.windings import windings_from_message, windings_to_message
 from interwind.errors import InvalidRequest, field_path
+from interwind.model import devices
 from interwind.model import elements as model
 from interwind.model.network import Network, Port
 from interwind.v1 import network_pb2
@@ -22,7 +23,7 @@ _PLAIN: dict[str, type[Any]] = {
     "resistor": model.Resistor,
     "inductor": model.Inductor,
     "capacitor": model.Capacitor,
-    "arrester": model.Arrester,
+    "arrester": devices.Arrester,
     "ideal_transformer": model.IdealTransformer,
     "voltage_by_current": model.VoltageByCurrent,
     "current_by_current": model.CurrentByCurrent,
@@ -34,9 +35,9 @@ _BY_NODES: dict[str, type[Any]] = {
 }
 _KINDS = {cls: kind for table in (_PLAIN, _SOURCES, _BY_NODES) for kind, cls in table.items()} | {
     model.Windings: "windings",
-    model.Switch: "switch",
-    model.Diode: "diode",
-    model.SaturableInductor: "saturable_inductor",
+    devices.Switch: "switch",
+    devices.Diode: "diode",
+    devices.SaturableInductor: "saturable_inductor",
 }
 
 
@@ -82,7 +83,7 @@ def _element_to_message(element: model.Element) -> network_pb2.Element:
         for label, (start, finish) in element.terminals.items():
             body.terminals.add(label=label, start=start, finish=finish)
         return message
-    if isinstance(element, model.Diode):
+    if isinstance(element, devices.Diode):
         _diode_to_message(element, body)
         return message
     body.a, body.b = element.a, element.b
@@ -95,9 +96,9 @@ def _element_to_message(element: model.Element) -> network_pb2.Element:
         body.control_a, body.control_b = element.control
         name = fields(element)[-1].name
         setattr(body, name, getattr(element, name))
-    elif isinstance(element, model.Switch):
+    elif isinstance(element, devices.Switch):
         _switch_to_message(element, body)
-    elif isinstance(element, model.SaturableInductor):
+    elif isinstance(element, devices.SaturableInductor):
         body.current_a.CopyFrom(array_to_message(element.current_a))
         body.flux_linkage_wb.CopyFrom(array_to_message(element.flux_linkage_wb))
         body.residual_wb = element.residual_wb
@@ -136,7 +137,7 @@ def _element_from_message(message: network_pb2.Element) -> model.Element:
         return _switch_from_message(message.name, body)
     if kind == "diode":
         return _diode_from_message(message.name, body)
-    return model.SaturableInductor(
+    return devices.SaturableInductor(
         message.name,
         body.a,
         body.b,
@@ -156,8 +157,8 @@ def _source_from_message(cls: type[Any], name: str, body: Any) -> Any:
     return cls(name, body.a, body.b, waveform, phasor)
 
 
-def _switch_to_message(element: model.Switch, body: Any) -> None:
-    if isinstance(element.closed, model.Gate):
+def _switch_to_message(element: devices.Switch, body: Any) -> None:
+    if isinstance(element.closed, devices.Gate):
         for field in fields(element.closed):
             setattr(body.gate, field.name, getattr(element.closed, field.name))
         body.gate.SetInParent()
@@ -168,21 +169,21 @@ def _switch_to_message(element: model.Switch, body: Any) -> None:
     body.blocking_resistance_ohm = element.blocking_resistance_ohm
 
 
-def _switch_from_message(name: str, body: Any) -> model.Switch:
+def _switch_from_message(name: str, body: Any) -> devices.Switch:
     drive = body.WhichOneof("closed")
     if drive is None:
         raise InvalidRequest.at("closed", "the switch has no drive; state gate or gate_times")
     with field_path(drive):
-        closed: model.Gate | model.GateTimes
+        closed: devices.Gate | devices.GateTimes
         if drive == "gate":
-            closed = model.Gate(body.gate.period_s, body.gate.on_s, body.gate.delay_s)
+            closed = devices.Gate(body.gate.period_s, body.gate.on_s, body.gate.delay_s)
         else:
             toggle = array_from_message(body.gate_times.toggle_s, "toggle_s")
-            closed = model.GateTimes(toggle, body.gate_times.initially_closed)
-    return model.Switch(name, body.a, body.b, closed, body.conducting_resistance_ohm, _blocking(body))
+            closed = devices.GateTimes(toggle, body.gate_times.initially_closed)
+    return devices.Switch(name, body.a, body.b, closed, body.conducting_resistance_ohm, _blocking(body))
 
 
-def _diode_to_message(element: model.Diode, body: Any) -> None:
+def _diode_to_message(element: devices.Diode, body: Any) -> None:
     body.anode, body.cathode = element.anode, element.cathode
     if element.exponential:
         body.exponential.saturation_current_a = element.saturation_current_a
@@ -194,10 +195,10 @@ def _diode_to_message(element: model.Diode, body: Any) -> None:
         law.blocking_resistance_ohm = element.blocking_resistance_ohm
 
 
-def _diode_from_message(name: str, body: Any) -> model.Diode:
+def _diode_from_message(name: str, body: Any) -> devices.Diode:
     if body.WhichOneof("law") == "exponential":
         law = body.exponential
-        return model.Diode(
+        return devices.Diode(
             name,
             body.anode,
             body.cathode,
@@ -205,7 +206,7 @@ def _diode_from_message(name: str, body: Any) -> model.Diode:
             thermal_voltage_v=law.thermal_voltage_v,
         )
     law = body.piecewise_linear
-    return model.Diode(
+    return devices.Diode(
         name, body.anode, body.cathode, law.forward_voltage_v, law.conducting_resistance_ohm, _blocking(law)
     )
 
