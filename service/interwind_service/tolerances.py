@@ -160,3 +160,6 @@ BATCH_GROUP_COMMIT_COUNT = 256  # writes in one transaction: one sync of the dis
 BATCH_CHUNK_TRIES = 2  # a chunk whose worker died is tried once more, then split
 BATCH_SPLIT = 8  # parts a poisoned chunk falls into: four splits single out one row of 4096
 BATCH_STORE_RETRY_S = 2.0  # before the state folder is tried again once it could not be written to
+BATCH_EXPIRE_EVERY_S = 60.0  # between two looks for batches whose time has come; retention is told in days
+BATCH_OPEN_COUNT = 8  # batches whose submitted numbers stay open: more run in turns rarely
+BATCH_PROVE_COUNT = 64  # newest result files read whole after a restart: what a disk may hold back unwritten
