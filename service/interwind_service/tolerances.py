@@ -50,6 +50,9 @@ NEAREST_FORCING = 1e-2
 # Part of the linear gain that a step must keep (Armijo 1966).
 SUFFICIENT_DECREASE = 1e-4
 
+# Repair. A leakage that moves by more than a tenth is named: printed leakages are rarely known better.
+LEAKAGE_MOVED_RATIO = 1.1
+
 # --- network --------------------------------------------------------------------------------------------------------
 
 # A group whose smallest pivot is above this keeps 14 digits of every leakage in plain currents.
