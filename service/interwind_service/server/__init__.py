@@ -1,0 +1,1 @@
+"""The front: it authenticates, admits, hands on and streams; it never computes."""

@@ -1,0 +1,72 @@
+"""The doors of the server: limits of a connection, the address, and TLS with certificates that may change meanwhile."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import Any
+
+import grpc
+
+from interwind_service.server.settings import Settings, SettingsError
+from interwind_service.tolerances import (
+    HANDSHAKE_TIMEOUT_MS,
+    KEEPALIVE_MIN_INTERVAL_MS,
+    MAX_CONCURRENT_STREAMS,
+    MAX_CONNECTION_IDLE_MS,
+    MAX_REQUEST_BYTES,
+)
+
+CHANNEL_OPTIONS: list[tuple[str, Any]] = [
+    ("grpc.max_receive_message_length", MAX_REQUEST_BYTES),
+    ("grpc.so_reuseport", 0),  # otherwise a second server on the same port silently takes half of the connections
+    ("grpc.server_handshake_timeout_ms", HANDSHAKE_TIMEOUT_MS),
+    ("grpc.max_connection_idle_ms", MAX_CONNECTION_IDLE_MS),
+    ("grpc.http2.min_recv_ping_interval_without_data_ms", KEEPALIVE_MIN_INTERVAL_MS),
+    ("grpc.max_concurrent_streams", MAX_CONCURRENT_STREAMS),
+]
+
+
+def open_door(server: grpc.aio.Server, settings: Settings) -> str:
+    """Bind the address; return it with the port that was found."""
+    if settings.tls_cert:
+        reader = _Certificates(settings)
+        credentials = grpc.dynamic_ssl_server_credentials(
+            reader.read(), reader.fetch, require_client_authentication=bool(settings.tls_client_ca)
+        )
+        port = server.add_secure_port(settings.listen, credentials)
+    else:
+        port = server.add_insecure_port(settings.listen)
+    if settings.listen.startswith("unix:"):
+        return settings.listen
+    return f"{settings.listen.rpartition(':')[0]}:{port}"
+
+
+class _Certificates:
+    """Reads the certificate files again, at the next handshake, once they have changed."""
+
+    def __init__(self, settings: Settings) -> None:
+        self._paths = [Path(path) for path in (settings.tls_key, settings.tls_cert, settings.tls_client_ca) if path]
+        self._seen = self._stamp()
+
+    def _stamp(self) -> tuple[int, ...]:
+        return tuple(path.stat().st_mtime_ns for path in self._paths)
+
+    def read(self) -> grpc.ServerCertificateConfiguration:
+        """Return what the files hold."""
+        try:
+            key, chain, *client_ca = (path.read_bytes() for path in self._paths)
+        except OSError as error:
+            raise SettingsError(f"--tls-cert, --tls-key, --tls-client-ca: {error}") from error
+        return grpc.ssl_server_certificate_configuration([(key, chain)], client_ca[0] if client_ca else None)
+
+    def fetch(self) -> grpc.ServerCertificateConfiguration | None:
+        """Return the new certificates, None while the old ones stand or the new ones cannot be read yet."""
+        try:
+            stamp = self._stamp()
+            if stamp == self._seen:
+                return None
+            configuration = self.read()
+        except (OSError, SettingsError):
+            return None
+        self._seen = stamp
+        return configuration

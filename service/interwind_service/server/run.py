@@ -1,0 +1,141 @@
+"""Starting, serving, draining: the life of a server process."""
+
+from __future__ import annotations
+
+import asyncio
+import contextlib
+import json
+import os
+import shutil
+import signal
+import tempfile
+from collections.abc import AsyncIterator, Iterator
+from pathlib import Path
+
+os.environ.setdefault("GRPC_VERBOSITY", "NONE")  # the C core writes plain text on stderr, which is for JSON lines
+
+import grpc
+from grpc_health.v1 import health, health_pb2, health_pb2_grpc
+from grpc_reflection.v1alpha import reflection
+
+from interwind_service.server.admission import Admission
+from interwind_service.server.arrays import ArrayDoor
+from interwind_service.server.auth import TokenGate, Tokens, client_of
+from interwind_service.server.boundary import Boundary, Rpc
+from interwind_service.server.compute import Compute, remove_spools_of_the_dead
+from interwind_service.server.doors import CHANNEL_OPTIONS, open_door
+from interwind_service.server.info import Info
+from interwind_service.server.logs import configure, emit
+from interwind_service.server.servicers import generic_handlers, rpcs, service_names
+from interwind_service.server.settings import Settings, SettingsError
+from interwind_service.tolerances import PARENT_POLL_S, WORKER_BASE_ADDRESS_BYTES
+from interwind_service.version import SERVICE_VERSION
+from interwind_service.workers.arrays import ArrayFolder
+from interwind_service.workers.pool import WorkerPool
+from interwind_service.workers.process import Guards
+
+PRELOAD = (
+    "interwind_service.workers.job",
+    "interwind_service.windings.verdict",
+    "interwind_service.network.system",
+    "interwind_service.response.frequency",
+    "interwind_service.response.ports",
+    "interwind_service.response.time",
+)
+
+
+def run(settings: Settings) -> int:
+    """Serve until asked to stop; return the exit status."""
+    listener = configure()
+    try:
+        return asyncio.run(_serve(settings))
+    finally:
+        listener.stop()
+
+
+async def _serve(settings: Settings) -> int:
+    stop = asyncio.Event()
+    loop = asyncio.get_running_loop()
+    for number in (signal.SIGTERM, signal.SIGINT):
+        loop.add_signal_handler(number, stop.set)
+    with _spool(settings) as spool:
+        guards = Guards(WORKER_BASE_ADDRESS_BYTES + settings.memory_bytes, str(spool))
+        pool = WorkerPool(settings.worker_count, guards=guards, preload=PRELOAD)
+        try:
+            async with _serving(settings, pool, spool) as address:
+                print(json.dumps({"listening": address}), flush=True)
+                emit("listening", address=address, version=SERVICE_VERSION, pid=os.getpid(), workers=pool.count)
+                await _until(stop, settings.parent_pid)
+        finally:
+            await asyncio.to_thread(pool.shutdown, cancel_futures=True)
+    emit("stopped")
+    return 0
+
+
+@contextlib.asynccontextmanager
+async def _serving(settings: Settings, pool: WorkerPool, spool: Path) -> AsyncIterator[str]:
+    """Serve inside; drain at the end: first say so, then let running calls finish within the grace."""
+    admission = Admission(
+        workers=pool.count,
+        queue_limit=settings.queue_count,
+        client_limit=settings.client_limit,
+        memory_bytes=settings.memory_bytes,
+    )
+    arrays = ArrayFolder(spool / "arrays", settings.array_store_bytes)
+    table = rpcs(
+        Compute(pool=pool, admission=admission, arrays=arrays, spool=spool),
+        ArrayDoor(arrays),
+        Info(settings=settings, pool=pool, admission=admission),
+    )
+    gates = [TokenGate(Tokens(settings.token_file))] if settings.token_file else []
+    server = grpc.aio.server(options=CHANNEL_OPTIONS, interceptors=gates)
+    boundary = Boundary(max_timeout_s=settings.max_timeout_s, client_of=client_of, on_call=_count)
+    server.add_generic_rpc_handlers(generic_handlers(table, boundary))
+    names = service_names(table)
+    health_servicer = health.aio.HealthServicer()
+    health_pb2_grpc.add_HealthServicer_to_server(health_servicer, server)
+    if settings.reflection:
+        reflection.enable_server_reflection([*names, health.SERVICE_NAME, reflection.SERVICE_NAME], server)
+    try:
+        address = open_door(server, settings)
+    except RuntimeError as error:
+        raise SettingsError(f"--listen: {settings.listen} cannot be bound; is another server there?") from error
+    await server.start()
+    for name in ("", *names):
+        await health_servicer.set(name, health_pb2.HealthCheckResponse.SERVING)
+    try:
+        yield address
+    finally:
+        emit("draining", grace_s=settings.grace_s)
+        admission.draining = True
+        await health_servicer.enter_graceful_shutdown()
+        await server.stop(settings.grace_s)
+
+
+def _count(rpc: Rpc, code: str, seconds: float) -> None:
+    """Hear of every ended call."""
+
+
+async def _until(stop: asyncio.Event, parent_pid: int) -> None:
+    """Wait until asked to stop, or until ``parent_pid`` is no longer the parent."""
+    while not stop.is_set() and (not parent_pid or os.getppid() == parent_pid):
+        with contextlib.suppress(TimeoutError):
+            await asyncio.wait_for(stop.wait(), PARENT_POLL_S if parent_pid else None)
+
+
+@contextlib.contextmanager
+def _spool(settings: Settings) -> Iterator[Path]:
+    """Make the folder for results on their way out, and clear away those of servers that died."""
+    shared_memory = Path("/dev/shm")
+    usable = shared_memory.is_dir() and os.access(shared_memory, os.W_OK)
+    parent = Path(settings.spool_dir or (shared_memory if usable else tempfile.gettempdir()))
+    remove_spools_of_the_dead(parent)
+    try:
+        folder = Path(tempfile.mkdtemp(prefix=f"interwind-spool-{os.getpid()}-", dir=parent))
+    except OSError as error:
+        raise SettingsError(f"--spool-dir: {error}") from error
+    (folder / "arrays").mkdir()
+    try:
+        yield folder
+    finally:
+        shutil.rmtree(folder, ignore_errors=True)

@@ -1,0 +1,1 @@
+"""Worker processes: the pool, the process, the job, the spool."""

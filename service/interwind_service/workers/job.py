@@ -1,0 +1,97 @@
+"""What a worker does with one call: decode, compute, encode, spool. Imported once for all workers."""
+
+from __future__ import annotations
+
+import errno
+import time
+import traceback
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np  # noqa: F401  preloaded for the workers
+import scipy.linalg  # noqa: F401  preloaded for the workers
+from google.protobuf.message import DecodeError
+
+from interwind.codec.array import stored_arrays
+from interwind.codec.calls import CALLS
+from interwind.codec.errors import to_status
+from interwind.errors import InterwindError, InvalidRequest, Overloaded
+from interwind_service import engine
+from interwind_service.tolerances import SPOOL_FULL_RETRY_S
+from interwind_service.workers.arrays import ArrayFolder
+from interwind_service.workers.spool import SpoolWriter
+
+
+@dataclass(frozen=True, slots=True)
+class CallWork:
+    """One call as the front hands it on: raw bytes, the size header it was admitted by, and where to put things."""
+
+    method: str
+    request: bytes
+    size_header: bytes
+    spool_path: str
+    arrays: ArrayFolder
+
+
+@dataclass(frozen=True, slots=True)
+class CallAnswer:
+    """How a call ended: its ``frames``, or ``spooled_bytes`` of them in the file, or the ``status`` of its error."""
+
+    frames: tuple[bytes, ...] = ()
+    spooled_bytes: int = 0
+    status: bytes = b""
+    reason: str = ""
+    trace: str = ""
+    solve_s: float = 0.0
+
+
+def run_call(work: CallWork, *, notify: Callable[[Any], None]) -> CallAnswer:
+    """Decode, compute, encode; frames go to the spool as they are made."""
+    call = CALLS[work.method]
+    spool = SpoolWriter(work.spool_path, notify)
+    started_s = time.monotonic()
+    try:
+        message = _parse(call.request_class, work.request)
+        _same_size(message, work.size_header)
+        with stored_arrays(work.arrays):
+            result = getattr(engine, call.engine)(**call.decode(message))
+            for response in call.encode(result):
+                spool.write(response.SerializeToString())
+    except InterwindError as error:
+        return CallAnswer(status=to_status(error), reason=error.reason, solve_s=time.monotonic() - started_s)
+    except MemoryError:
+        error = Overloaded(
+            "the call needed more memory than one worker may use; ask for fewer points, observables or windings",
+            reason="WORKER_OUT_OF_MEMORY",
+        )
+        return CallAnswer(status=to_status(error), reason=error.reason, trace=traceback.format_exc())
+    except OSError as problem:
+        if problem.errno not in (errno.ENOSPC, errno.EDQUOT):
+            raise
+        error = Overloaded("the spool is full; try again", reason="SPOOL_FULL", retry_after_s=SPOOL_FULL_RETRY_S)
+        return CallAnswer(status=to_status(error), reason=error.reason)
+    finally:
+        spool.close()
+    solve_s = time.monotonic() - started_s
+    if spool.frames:
+        return CallAnswer(frames=tuple(spool.frames), solve_s=solve_s)
+    return CallAnswer(spooled_bytes=spool.size_bytes, solve_s=solve_s)
+
+
+def _parse(message_class: Any, data: bytes) -> Any:
+    try:
+        return message_class.FromString(data)
+    except DecodeError as error:
+        raise InvalidRequest(
+            f"the bytes are no {message_class.DESCRIPTOR.full_name}; regenerate the caller from the published contract",
+            reason="MALFORMED_MESSAGE",
+        ) from error
+
+
+def _same_size(message: Any, size_header: bytes) -> None:
+    """Refuse a request that was admitted by another size than the one it carries."""
+    if not any(field.name == "size" for field in message.DESCRIPTOR.fields):
+        return
+    if type(message.size).FromString(size_header) != message.size:
+        raise InvalidRequest.at("size", "it does not stand first, or stands twice; send one size, as the first field")
