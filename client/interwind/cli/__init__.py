@@ -1,0 +1,1 @@
+"""The command `interwind`: a request in a file, an answer on standard output."""

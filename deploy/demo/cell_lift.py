@@ -1,0 +1,44 @@
+"""A table of couplings that cannot exist, and the one entry to blame: the auxiliary supply of a lift's inverter."""
+
+from __future__ import annotations
+
+import json
+from pathlib import Path
+
+from figures import Figures, cautions, title
+
+import interwind as iw
+from interwind import plot
+
+DATA = json.loads(Path(__file__).with_name("cell_lift.json").read_text(encoding="utf-8"))
+
+
+def windings() -> iw.WindingSet:
+    """The five windings as the bench typed them."""
+    return iw.WindingSet.from_coupling(
+        DATA["labels"],
+        DATA["self_inductance_h"],
+        DATA["coupling"],
+        coupling_decimals=DATA["coupling_decimals"],
+    )
+
+
+def show(solver: iw.Client, figures: Figures, output: Path) -> None:
+    """Judge the set, name the pair at fault and the interval it would have to lie in."""
+    title("Five windings of an auxiliary supply")
+    print(DATA["story"])
+    golden = DATA["golden"]
+    report = solver.check(windings())
+    figures.compare("cell_lift_verdict", report.verdict.name, golden["verdict"])
+    for position, value in enumerate(golden["eigenvalues"]):
+        figures.compare(f"cell_lift_eigenvalue_{position + 1}", report.eigenvalues[position], value)
+    figures.compare("cell_lift_culprits", len(report.culprits), golden["culprit_count"])
+    culprit = report.culprits[0]
+    numbers = sorted(DATA["labels"].index(label) + 1 for label in culprit.pair)
+    print(f"to blame: the coupling of {culprit.pair[0]} and {culprit.pair[1]}; no other single change cures the set")
+    figures.compare("cell_lift_pair", f"({numbers[0]},{numbers[1]})", golden["culprit"])
+    figures.compare("cell_lift_pair_low", culprit.low, golden["culprit_low"])
+    figures.compare("cell_lift_pair_high", culprit.high, golden["culprit_high"])
+    figures.compare("cell_lift_pair_suggested", culprit.suggested, golden["culprit_suggested"])
+    plot.save(report, output / "cell_lift_intervals.png")
+    cautions(report)

@@ -1,0 +1,114 @@
+"""Nobody imports upwards: each room may use the rooms below it, and the rooms that think never see a message."""
+
+from __future__ import annotations
+
+import ast
+import sys
+from collections.abc import Iterator
+
+# Each room of the service: what it may import of the service, and of the client's language.
+LANGUAGE = {"model", "errors"}
+SERVICE: dict[str, tuple[set[str], set[str]]] = {
+    "tolerances": (set(), set()),
+    "version": (set(), set()),
+    "windings": ({"tolerances"}, LANGUAGE),
+    "network": ({"tolerances"}, LANGUAGE),
+    "response": ({"tolerances", "windings", "network"}, LANGUAGE),
+    "engine": ({"tolerances", "version", "windings", "network", "response"}, LANGUAGE),
+    "workers": ({"tolerances", "version", "engine"}, LANGUAGE | {"codec", "v1"}),
+    "batch": ({"tolerances", "engine", "workers"}, LANGUAGE),
+    "server": ({"tolerances", "version", "engine", "workers", "batch"}, LANGUAGE | {"codec", "v1"}),
+    "__main__": ({"server"}, set()),
+    "": (set(), set()),
+}
+CLIENT: dict[str, set[str]] = {
+    "errors": set(),
+    "model": {"errors"},
+    "codec": {"errors", "model", "v1"},
+    "channel": {"errors"},
+    "embedded": {"errors"},
+    "calling": {"errors", "codec", "channel"},
+    "uploads": {"errors", "codec", "v1"},
+    "client": {"errors", "model", "codec", "v1", "channel", "embedded", "calling", "uploads"},
+    "plot": {"errors", "model", "codec"},
+    "cli": {"errors", "model", "codec", "v1", "channel", "embedded", "client", "plot", ""},
+    "": {"errors", "model", "codec", "channel", "embedded", "client"},
+}
+# What else a room may stand on, beside the standard library. The rooms that think see no message and no socket.
+NUMERIC = {"numpy", "scipy"}
+WIRE = {"numpy", "grpc", "google", "grpc_status"}
+FOREIGN: dict[str, set[str]] = {
+    "interwind_service.tolerances": set(),
+    "interwind_service.version": set(),
+    "interwind_service.windings": NUMERIC,
+    "interwind_service.network": NUMERIC,
+    "interwind_service.response": NUMERIC,
+    "interwind_service.engine": NUMERIC,
+    "interwind_service.workers": WIRE | {"scipy", "threadpoolctl"},
+    "interwind_service.batch": {"numpy"},
+    "interwind_service.server": WIRE | {"grpc_health", "grpc_reflection", "prometheus_client", "threadpoolctl"},
+    "interwind_service.__main__": set(),
+    "interwind_service": set(),
+    "interwind.errors": set(),
+    "interwind.model": {"numpy"},
+    "interwind.codec": WIRE,
+    "interwind.channel": {"grpc"},
+    "interwind.embedded": set(),
+    "interwind.calling": {"grpc"},
+    "interwind.uploads": set(),
+    "interwind.client": WIRE,
+    "interwind.plot": {"numpy", "matplotlib"},
+    "interwind.cli": {"numpy", "google"},
+    "interwind": set(),
+}
+
+
+def imports(tree: ast.Module) -> Iterator[tuple[int, str]]:
+    """Every dotted name a module imports, also inside functions; ``from a import b`` counts as ``a.b``."""
+    for node in ast.walk(tree):
+        if isinstance(node, ast.Import):
+            yield from ((node.lineno, alias.name) for alias in node.names)
+        elif isinstance(node, ast.ImportFrom):
+            assert node.level == 0, f"line {node.lineno}: relative imports hide the room; write the full name"
+            yield from ((node.lineno, f"{node.module}.{alias.name}") for alias in node.names)
+
+
+def room_of(dotted: str, names: set[str]) -> str:
+    """The room a dotted name stands in: its second part, when that is a module, else the package itself."""
+    parts = dotted.split(".")
+    return parts[1] if len(parts) > 1 and ".".join(parts[:2]) in names else ""
+
+
+def packages_of(modules) -> set[str]:
+    """Every module and every package on the way to it."""
+    return {".".join(name.split(".")[:depth]) for name in modules for depth in range(1, name.count(".") + 2)}
+
+
+def test_every_import_goes_down_the_ladder(modules):
+    """A room imports only the rooms below it, and only the libraries its work needs."""
+    names = packages_of(modules) | {"interwind.v1"}
+    offenders = []
+    for name, tree in modules.items():
+        package, room = name.split(".")[0], room_of(name, names)
+        for line, target in imports(tree):
+            top, where = target.split(".")[0], room_of(target, names)
+            if top == package and where == room:
+                continue
+            if top == "interwind_service":
+                allowed = package == top and where in SERVICE[room][0] | {""}
+            elif top == "interwind":
+                allowed = where in (SERVICE[room][1] if package == "interwind_service" else CLIENT[room])
+            else:
+                home = f"{package}.{room}" if room else package
+                allowed = top in sys.stdlib_module_names or top in FOREIGN[home]
+            if not allowed:
+                offenders.append(f"{name}:{line} imports {target}")
+    assert [] == offenders
+
+
+def test_every_room_is_on_the_ladder(modules):
+    """A new room is placed on the ladder before it is furnished."""
+    names = packages_of(modules)
+    rooms = {(name.split(".")[0], room_of(name, names)) for name in modules}
+    known = {("interwind_service", room) for room in SERVICE} | {("interwind", room) for room in CLIENT}
+    assert set() == rooms - known

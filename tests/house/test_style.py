@@ -1,0 +1,114 @@
+"""Habits that a reader relies on: thresholds in one place, errors mapped in one place, numerics that never log."""
+
+from __future__ import annotations
+
+import ast
+
+# Below this a literal is a tolerance, not a coefficient; above its inverse it is a stand-in for infinity.
+SMALL = 1e-3
+NUMBER_FILES = {"interwind_service.tolerances", "interwind_service.response.tableau"}
+NUMERIC_ROOMS = ("windings", "network", "response", "engine", "tolerances")
+# The outermost edges: one for calls, one for the worker process that serves them.
+EDGES = {"interwind_service.server.boundary", "interwind_service.workers.process"}
+
+# Methods whose signature somebody else wrote: concurrent.futures.Executor.
+GIVEN_SIGNATURES = {"shutdown"}
+
+
+def service(modules):
+    """The modules of the service by name."""
+    return {name: tree for name, tree in modules.items() if name.startswith("interwind_service")}
+
+
+def test_thresholds_stand_in_one_file(modules):
+    """A number such as a tolerance has a name and a reason, and both stand in tolerances.py."""
+    offenders = [
+        f"{name}:{node.lineno}: {node.value!r}"
+        for name, tree in service(modules).items()
+        if name not in NUMBER_FILES
+        for node in ast.walk(tree)
+        if isinstance(node, ast.Constant) and isinstance(node.value, float) and 0 < node.value < SMALL
+    ]
+    assert [] == offenders
+
+
+def test_every_threshold_has_its_reason(root):
+    """Every name in tolerances.py is upper case and has its reason on its line or on the lines just above."""
+    text = (root / "service/interwind_service/tolerances.py").read_text(encoding="utf-8")
+    lines = text.splitlines()
+    offenders = []
+    for node in ast.parse(text).body:
+        if isinstance(node, ast.Assign | ast.AnnAssign):
+            target = node.targets[0] if isinstance(node, ast.Assign) else node.target
+            said = "#" in lines[node.end_lineno - 1] or lines[node.lineno - 2].startswith("#")
+            if not (isinstance(target, ast.Name) and target.id.isupper() and said):
+                offenders.append(f"{node.lineno}: {lines[node.lineno - 1]}")
+    assert [] == offenders
+
+
+def test_every_threshold_is_used(modules):
+    """A threshold nobody reads is deleted."""
+    defined = {
+        node.targets[0].id
+        for node in modules["interwind_service.tolerances"].body
+        if isinstance(node, ast.Assign) and isinstance(node.targets[0], ast.Name)
+    }
+    used = set()
+    for tree in service(modules).values():
+        for node in ast.walk(tree):
+            if isinstance(node, ast.Attribute):
+                used.add(node.attr)
+            elif isinstance(node, ast.Name) and isinstance(node.ctx, ast.Load):
+                used.add(node.id)
+    assert set() == defined - used
+
+
+def test_everything_is_caught_in_one_place_only(modules):
+    """Outside the edges an exception is either known by its class or nobody's to catch."""
+    offenders = [
+        f"{name}:{node.lineno}"
+        for name, tree in modules.items()
+        if name not in EDGES
+        for node in ast.walk(tree)
+        if isinstance(node, ast.ExceptHandler)
+        and (node.type is None or (isinstance(node.type, ast.Name) and node.type.id in ("Exception", "BaseException")))
+    ]
+    assert [] == offenders
+
+
+def test_assert_is_for_tests(modules):
+    """A check that vanishes under -O is no check."""
+    found = [
+        f"{name}:{node.lineno}"
+        for name, tree in modules.items()
+        for node in ast.walk(tree)
+        if isinstance(node, ast.Assert)
+    ]
+    assert [] == found
+
+
+def test_numerics_never_log(modules):
+    """What the numerics have to say is in the answer: a finding, a caution, the evidence."""
+    offenders = []
+    for name, tree in service(modules).items():
+        if name.split(".")[1:2] and name.split(".")[1] in NUMERIC_ROOMS:
+            for node in ast.walk(tree):
+                if isinstance(node, ast.Import) and any(alias.name in ("logging", "warnings") for alias in node.names):
+                    offenders.append(f"{name}:{node.lineno}")
+                if isinstance(node, ast.Name) and node.id == "print":
+                    offenders.append(f"{name}:{node.lineno}")
+    assert [] == offenders
+
+
+def test_no_boolean_by_position(modules):
+    """A bare True at a call tells the reader nothing: a flag of a public function is by keyword, or an enum."""
+    offenders = []
+    for name, tree in modules.items():
+        for node in ast.walk(tree):
+            if isinstance(node, ast.FunctionDef | ast.AsyncFunctionDef) and not node.name.startswith("_"):
+                if node.name in GIVEN_SIGNATURES:
+                    continue
+                positional = node.args.posonlyargs + node.args.args
+                flags = [a.arg for a in positional if isinstance(a.annotation, ast.Name) and a.annotation.id == "bool"]
+                offenders.extend(f"{name}:{node.lineno} {node.name}({flag})" for flag in flags)
+    assert [] == offenders
