@@ -17,6 +17,8 @@ _SHAPES: dict[str, type[Any]] = {
     "sine": model.Sine,
     "trapezoid": model.Trapezoid,
     "double_exponential": model.DoubleExponential,
+    "damped_sine": model.DampedSine,
+    "offset_fault_current": model.OffsetFaultCurrent,
 }
 _NAMES = {cls: name for name, cls in _SHAPES.items()}
 
@@ -27,6 +29,17 @@ def waveform_to_message(waveform: model.Waveform) -> waveform_pb2.Waveform:
     if isinstance(waveform, model.PiecewiseLinear):
         message.piecewise_linear.time_s.CopyFrom(array_to_message(waveform.time_s))
         message.piecewise_linear.value.CopyFrom(array_to_message(waveform.value))
+        return message
+    if isinstance(waveform, model.SampledRecord):
+        message.sampled_record.interval_s, message.sampled_record.start_s = waveform.interval_s, waveform.start_s
+        message.sampled_record.value.CopyFrom(array_to_message(waveform.value))
+        return message
+    if isinstance(waveform, model.StandardImpulse):
+        impulse = message.standard_impulse
+        impulse.shape = waveform_pb2.ImpulseShape.Value(f"IMPULSE_SHAPE_{waveform.shape.value}")
+        impulse.peak, impulse.collapse_s = waveform.peak, waveform.collapse_s
+        if waveform.chopped_at_s is not None:
+            impulse.chopped_at_s = waveform.chopped_at_s
         return message
     shape = getattr(message, _NAMES[type(waveform)])
     shape.SetInParent()
@@ -46,6 +59,18 @@ def waveform_from_message(message: waveform_pb2.Waveform) -> model.Waveform:
             return model.PiecewiseLinear(
                 array_from_message(shape.time_s, "time_s"), array_from_message(shape.value, "value")
             )
+        if name == "sampled_record":
+            return model.SampledRecord(shape.interval_s, array_from_message(shape.value, "value"), shape.start_s)
+        if name == "standard_impulse":
+            return _impulse_from_message(shape)
         cls = _SHAPES[name]
         waveform: model.Waveform = cls(**{field.name: getattr(shape, field.name) for field in fields(cls)})
         return waveform
+
+
+def _impulse_from_message(message: waveform_pb2.StandardImpulse) -> model.StandardImpulse:
+    name = waveform_pb2.ImpulseShape.Name(message.shape).removeprefix("IMPULSE_SHAPE_") if message.shape else ""
+    if name not in model.ImpulseShape.__members__:
+        raise InvalidRequest.at("shape", "no impulse found; state one, such as IMPULSE_SHAPE_LIGHTNING_1_2_50")
+    chopped = message.chopped_at_s if message.HasField("chopped_at_s") else None
+    return model.StandardImpulse(model.ImpulseShape(name), message.peak, chopped, message.collapse_s)

@@ -25,27 +25,37 @@ _sym_db = _symbol_database.Default()
 from interwind.v1 import array_pb2 as interwind_dot_v1_dot_array__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x1binterwind/v1/waveform.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\"\xd3\x02\n\x08Waveform\x12*\n\x08\x63onstant\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ConstantH\x00\x12\"\n\x04step\x18\x02 \x01(\x0b\x32\x12.interwind.v1.StepH\x00\x12\"\n\x04ramp\x18\x03 \x01(\x0b\x32\x12.interwind.v1.RampH\x00\x12\"\n\x04sine\x18\x04 \x01(\x0b\x32\x12.interwind.v1.SineH\x00\x12,\n\ttrapezoid\x18\x05 \x01(\x0b\x32\x17.interwind.v1.TrapezoidH\x00\x12=\n\x12\x64ouble_exponential\x18\x06 \x01(\x0b\x32\x1f.interwind.v1.DoubleExponentialH\x00\x12\x39\n\x10piecewise_linear\x18\x07 \x01(\x0b\x32\x1d.interwind.v1.PiecewiseLinearH\x00\x42\x07\n\x05shape\"\x19\n\x08\x43onstant\x12\r\n\x05value\x18\x01 \x01(\x01\"#\n\x04Step\x12\r\n\x05value\x18\x01 \x01(\x01\x12\x0c\n\x04\x61t_s\x18\x02 \x01(\x01\")\n\x04Ramp\x12\x13\n\x0bslope_per_s\x18\x01 \x01(\x01\x12\x0c\n\x04\x61t_s\x18\x02 \x01(\x01\"R\n\x04Sine\x12\x11\n\tamplitude\x18\x01 \x01(\x01\x12\x14\n\x0c\x66requency_hz\x18\x02 \x01(\x01\x12\x11\n\tphase_rad\x18\x03 \x01(\x01\x12\x0e\n\x06offset\x18\x04 \x01(\x01\"y\n\tTrapezoid\x12\x0b\n\x03low\x18\x01 \x01(\x01\x12\x0c\n\x04high\x18\x02 \x01(\x01\x12\x10\n\x08period_s\x18\x03 \x01(\x01\x12\x0e\n\x06rise_s\x18\x04 \x01(\x01\x12\x0e\n\x06high_s\x18\x05 \x01(\x01\x12\x0e\n\x06\x66\x61ll_s\x18\x06 \x01(\x01\x12\x0f\n\x07\x64\x65lay_s\x18\x07 \x01(\x01\"G\n\x11\x44oubleExponential\x12\x11\n\tamplitude\x18\x01 \x01(\x01\x12\x0e\n\x06tail_s\x18\x02 \x01(\x01\x12\x0f\n\x07\x66ront_s\x18\x03 \x01(\x01\"Z\n\x0fPiecewiseLinear\x12#\n\x06time_s\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12\"\n\x05value\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Arrayb\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x1binterwind/v1/waveform.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\"\xb8\x04\n\x08Waveform\x12*\n\x08\x63onstant\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ConstantH\x00\x12\"\n\x04step\x18\x02 \x01(\x0b\x32\x12.interwind.v1.StepH\x00\x12\"\n\x04ramp\x18\x03 \x01(\x0b\x32\x12.interwind.v1.RampH\x00\x12\"\n\x04sine\x18\x04 \x01(\x0b\x32\x12.interwind.v1.SineH\x00\x12,\n\ttrapezoid\x18\x05 \x01(\x0b\x32\x17.interwind.v1.TrapezoidH\x00\x12=\n\x12\x64ouble_exponential\x18\x06 \x01(\x0b\x32\x1f.interwind.v1.DoubleExponentialH\x00\x12\x39\n\x10piecewise_linear\x18\x07 \x01(\x0b\x32\x1d.interwind.v1.PiecewiseLinearH\x00\x12\x39\n\x10standard_impulse\x18\x08 \x01(\x0b\x32\x1d.interwind.v1.StandardImpulseH\x00\x12/\n\x0b\x64\x61mped_sine\x18\t \x01(\x0b\x32\x18.interwind.v1.DampedSineH\x00\x12@\n\x14offset_fault_current\x18\n \x01(\x0b\x32 .interwind.v1.OffsetFaultCurrentH\x00\x12\x35\n\x0esampled_record\x18\x0b \x01(\x0b\x32\x1b.interwind.v1.SampledRecordH\x00\x42\x07\n\x05shape\"\x19\n\x08\x43onstant\x12\r\n\x05value\x18\x01 \x01(\x01\"#\n\x04Step\x12\r\n\x05value\x18\x01 \x01(\x01\x12\x0c\n\x04\x61t_s\x18\x02 \x01(\x01\")\n\x04Ramp\x12\x13\n\x0bslope_per_s\x18\x01 \x01(\x01\x12\x0c\n\x04\x61t_s\x18\x02 \x01(\x01\"R\n\x04Sine\x12\x11\n\tamplitude\x18\x01 \x01(\x01\x12\x14\n\x0c\x66requency_hz\x18\x02 \x01(\x01\x12\x11\n\tphase_rad\x18\x03 \x01(\x01\x12\x0e\n\x06offset\x18\x04 \x01(\x01\"y\n\tTrapezoid\x12\x0b\n\x03low\x18\x01 \x01(\x01\x12\x0c\n\x04high\x18\x02 \x01(\x01\x12\x10\n\x08period_s\x18\x03 \x01(\x01\x12\x0e\n\x06rise_s\x18\x04 \x01(\x01\x12\x0e\n\x06high_s\x18\x05 \x01(\x01\x12\x0e\n\x06\x66\x61ll_s\x18\x06 \x01(\x01\x12\x0f\n\x07\x64\x65lay_s\x18\x07 \x01(\x01\"G\n\x11\x44oubleExponential\x12\x11\n\tamplitude\x18\x01 \x01(\x01\x12\x0e\n\x06tail_s\x18\x02 \x01(\x01\x12\x0f\n\x07\x66ront_s\x18\x03 \x01(\x01\"Z\n\x0fPiecewiseLinear\x12#\n\x06time_s\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12\"\n\x05value\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\"\x8a\x01\n\x0fStandardImpulse\x12)\n\x05shape\x18\x01 \x01(\x0e\x32\x1a.interwind.v1.ImpulseShape\x12\x0c\n\x04peak\x18\x02 \x01(\x01\x12\x19\n\x0c\x63hopped_at_s\x18\x03 \x01(\x01H\x00\x88\x01\x01\x12\x12\n\ncollapse_s\x18\x04 \x01(\x01\x42\x0f\n\r_chopped_at_s\"Y\n\nDampedSine\x12\x11\n\tamplitude\x18\x01 \x01(\x01\x12\x14\n\x0c\x66requency_hz\x18\x02 \x01(\x01\x12\x0f\n\x07\x64\x65\x63\x61y_s\x18\x03 \x01(\x01\x12\x11\n\tphase_rad\x18\x04 \x01(\x01\"a\n\x12OffsetFaultCurrent\x12\x11\n\tamplitude\x18\x01 \x01(\x01\x12\x14\n\x0c\x66requency_hz\x18\x02 \x01(\x01\x12\x0f\n\x07\x64\x65\x63\x61y_s\x18\x03 \x01(\x01\x12\x11\n\tphase_rad\x18\x04 \x01(\x01\"X\n\rSampledRecord\x12\x12\n\ninterval_s\x18\x01 \x01(\x01\x12\"\n\x05value\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\x12\x0f\n\x07start_s\x18\x03 \x01(\x01*\xd8\x01\n\x0cImpulseShape\x12\x1d\n\x19IMPULSE_SHAPE_UNSPECIFIED\x10\x00\x12\"\n\x1eIMPULSE_SHAPE_LIGHTNING_1_2_50\x10\x01\x12$\n IMPULSE_SHAPE_SWITCHING_250_2500\x10\x02\x12\x1e\n\x1aIMPULSE_SHAPE_CURRENT_8_20\x10\x03\x12\x1f\n\x1bIMPULSE_SHAPE_SURGE_10_1000\x10\x04\x12\x1e\n\x1aIMPULSE_SHAPE_RING_100_KHZ\x10\x05\x62\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
 _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'interwind.v1.waveform_pb2', _globals)
 if not _descriptor._USE_C_DESCRIPTORS:
   DESCRIPTOR._loaded_options = None
+  _globals['_IMPULSESHAPE']._serialized_start=1543
+  _globals['_IMPULSESHAPE']._serialized_end=1759
   _globals['_WAVEFORM']._serialized_start=72
-  _globals['_WAVEFORM']._serialized_end=411
-  _globals['_CONSTANT']._serialized_start=413
-  _globals['_CONSTANT']._serialized_end=438
-  _globals['_STEP']._serialized_start=440
-  _globals['_STEP']._serialized_end=475
-  _globals['_RAMP']._serialized_start=477
-  _globals['_RAMP']._serialized_end=518
-  _globals['_SINE']._serialized_start=520
-  _globals['_SINE']._serialized_end=602
-  _globals['_TRAPEZOID']._serialized_start=604
-  _globals['_TRAPEZOID']._serialized_end=725
-  _globals['_DOUBLEEXPONENTIAL']._serialized_start=727
-  _globals['_DOUBLEEXPONENTIAL']._serialized_end=798
-  _globals['_PIECEWISELINEAR']._serialized_start=800
-  _globals['_PIECEWISELINEAR']._serialized_end=890
+  _globals['_WAVEFORM']._serialized_end=640
+  _globals['_CONSTANT']._serialized_start=642
+  _globals['_CONSTANT']._serialized_end=667
+  _globals['_STEP']._serialized_start=669
+  _globals['_STEP']._serialized_end=704
+  _globals['_RAMP']._serialized_start=706
+  _globals['_RAMP']._serialized_end=747
+  _globals['_SINE']._serialized_start=749
+  _globals['_SINE']._serialized_end=831
+  _globals['_TRAPEZOID']._serialized_start=833
+  _globals['_TRAPEZOID']._serialized_end=954
+  _globals['_DOUBLEEXPONENTIAL']._serialized_start=956
+  _globals['_DOUBLEEXPONENTIAL']._serialized_end=1027
+  _globals['_PIECEWISELINEAR']._serialized_start=1029
+  _globals['_PIECEWISELINEAR']._serialized_end=1119
+  _globals['_STANDARDIMPULSE']._serialized_start=1122
+  _globals['_STANDARDIMPULSE']._serialized_end=1260
+  _globals['_DAMPEDSINE']._serialized_start=1262
+  _globals['_DAMPEDSINE']._serialized_end=1351
+  _globals['_OFFSETFAULTCURRENT']._serialized_start=1353
+  _globals['_OFFSETFAULTCURRENT']._serialized_end=1450
+  _globals['_SAMPLEDRECORD']._serialized_start=1452
+  _globals['_SAMPLEDRECORD']._serialized_end=1540
 # @@protoc_insertion_point(module_scope)
