@@ -4,6 +4,7 @@ Start with `connect`, `WindingSet` and `Network`; `InterwindError` is the root o
 """
 
 import interwind.codec  # noqa: F401  loads to_json and from_json
+from interwind.client import Client, connect
 from interwind.errors import (
     AccuracyNotReached,
     ArrayEvicted,
@@ -99,6 +100,7 @@ from interwind.model.response import (
     SteadyStart,
     TimeResponse,
 )
+from interwind.model.server_info import ServerInfo
 from interwind.model.vary import SampleParameter, SampleWindings, Vary, VaryCoupling, VaryInductance, VaryMatrix
 from interwind.model.waveform import (
     Constant,
@@ -131,6 +133,7 @@ __all__ = [
     "Change",
     "Characterization",
     "CheckAnalysis",
+    "Client",
     "Constant",
     "CostForecast",
     "Culprit",
@@ -205,6 +208,7 @@ __all__ = [
     "SampledRecord",
     "SaturableInductor",
     "SeriesInductance",
+    "ServerInfo",
     "Severity",
     "Shorted",
     "ShortedInductance",
@@ -235,4 +239,5 @@ __all__ = [
     "WindingVoltage",
     "Windings",
     "WorkerLost",
+    "connect",
 ]

@@ -116,7 +116,8 @@ def _element_from_message(message: network_pb2.Element) -> model.Element:
         element: model.Element = cls(message.name, **given)
         return element
     if kind in _SOURCES:
-        return _source_from_message(_SOURCES[kind], message.name, body)
+        source: model.Element = _source_from_message(_SOURCES[kind], message.name, body)
+        return source
     if kind in _BY_NODES:
         cls = _BY_NODES[kind]
         name = fields(cls)[-1].name

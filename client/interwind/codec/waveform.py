@@ -35,11 +35,14 @@ def waveform_to_message(waveform: model.Waveform) -> waveform_pb2.Waveform:
         message.sampled_record.value.CopyFrom(array_to_message(waveform.value))
         return message
     if isinstance(waveform, model.StandardImpulse):
-        impulse = message.standard_impulse
-        impulse.shape = waveform_pb2.ImpulseShape.Value(f"IMPULSE_SHAPE_{waveform.shape.value}")
-        impulse.peak, impulse.collapse_s = waveform.peak, waveform.collapse_s
-        if waveform.chopped_at_s is not None:
-            impulse.chopped_at_s = waveform.chopped_at_s
+        message.standard_impulse.CopyFrom(
+            waveform_pb2.StandardImpulse(
+                shape=f"IMPULSE_SHAPE_{waveform.shape.value}",
+                peak=waveform.peak,
+                chopped_at_s=waveform.chopped_at_s,
+                collapse_s=waveform.collapse_s,
+            )
+        )
         return message
     shape = getattr(message, _NAMES[type(waveform)])
     shape.SetInParent()

@@ -103,6 +103,7 @@ class SeriesInductance:
                 raise InvalidRequest.at(
                     "aiding", f"False found for {len(self.windings)} windings; give one truth value for each winding"
                 )
+            object.__setattr__(self, "aiding", (True,) + (self.aiding,) * (len(self.windings) - 1))
         else:
             object.__setattr__(self, "aiding", _truths(self.aiding, len(self.windings)))
         _numbers(self, "inductance_h", "uncertainty_h")
@@ -110,9 +111,7 @@ class SeriesInductance:
     @property
     def senses(self) -> tuple[int, ...]:
         """The sign s of each winding in the series path, +1 or −1."""
-        if isinstance(self.aiding, bool):
-            return (1,) * len(self.windings) if self.aiding else (1, -1)
-        return tuple(1 if truth else -1 for truth in self.aiding)
+        return tuple(1 if truth else -1 for truth in self.aiding)  # type: ignore[union-attr]
 
 
 @dataclass(frozen=True, slots=True)
