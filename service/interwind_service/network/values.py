@@ -7,6 +7,7 @@ from collections.abc import Callable
 
 from interwind.errors import InvalidNetwork, field_path
 from interwind.model import elements as el
+from interwind.model.devices import Gate, GateTimes
 from interwind.model.network import Network, Port
 
 _Check = Callable[[float], str | None]
@@ -79,9 +80,9 @@ def _check_item(item: el.Element | Port) -> None:
         _check_table(item)
 
 
-def _check_gate(gate: el.Gate | el.GateTimes) -> None:
+def _check_gate(gate: Gate | GateTimes) -> None:
     with field_path("closed"):
-        if isinstance(gate, el.Gate):
+        if isinstance(gate, Gate):
             if not (math.isfinite(gate.period_s) and gate.period_s > 0.0):
                 raise InvalidNetwork.at("period_s", f"{gate.period_s!r} s found; a finite time above 0 is expected")
             if not 0.0 <= gate.on_s <= gate.period_s:
@@ -112,6 +113,6 @@ def _check_table(item: el.SaturableInductor) -> None:
 def switch_closed_at_zero(switch: el.Switch) -> bool:
     """Whether a switch stands closed just after t = 0."""
     gate = switch.closed
-    if isinstance(gate, el.Gate):
+    if isinstance(gate, Gate):
         return (0.0 - gate.delay_s) % gate.period_s < gate.on_s
     return gate.initially_closed ^ bool(int((gate.toggle_s <= 0.0).sum()) % 2)
