@@ -20,6 +20,10 @@ UNITLESS = {
     "Trapezoid": {"low", "high"},
     "DoubleExponential": {"amplitude"},
     "PiecewiseLinear": {"value"},
+    "SampledRecord": {"value"},
+    "StandardImpulse": {"peak"},
+    "DampedSine": {"amplitude"},
+    "OffsetFaultCurrent": {"amplitude"},
     "DoubleList": {"values"},
     "InitialValue": {"value"},
     # Couplings, ratios, gains, scattering and exponents have none.
