@@ -16,8 +16,13 @@ from interwind.codec.array import stored_arrays
 from interwind.codec.calls import BY_ENGINE
 from interwind.embedded import EmbeddedServer
 from interwind.errors import InterwindError, InvalidRequest, Unavailable
+from interwind.model.characterization import Characterization
+from interwind.model.connection import Connection
+from interwind.model.identification import Identification
 from interwind.model.network import Network
 from interwind.model.observables import Observable
+from interwind.model.periodic import PeriodicResponse
+from interwind.model.readings import Reading
 from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import (
     AdaptiveSweep,
@@ -85,81 +90,96 @@ class Client:
         if self._embedded is not None:
             self._embedded.stop()
 
-    def check(self, windings: WindingSet, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> ValidityReport:
+    def check(self, coils: WindingSet, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> ValidityReport:
         """Say whether the windings can exist, and which pair is to blame when they cannot."""
-        report: ValidityReport = self._call("check", {"windings": windings}, timeout_s)
+        report: ValidityReport = self._call("check", {"windings": coils}, timeout_s)
         return report
 
     def repair(
         self,
-        windings: WindingSet,
+        coils: WindingSet,
         trusted: Sequence[tuple[str, str]] = (),
-        *,
         weights: ArrayLike | None = None,
         floor: float | None = None,
         method: RepairMethod = RepairMethod.COMPLETION,
+        *,
         timeout_s: float = DEFAULT_TIMEOUT_S,
     ) -> RepairReport:
         """Mend the set: fill in unknown and distrusted pairs, or find the nearest set that can exist."""
-        arguments = {"windings": windings, "trusted": trusted, "weights": weights, "floor": floor, "method": method}
+        arguments = {"windings": coils, "trusted": trusted, "weights": weights, "floor": floor, "method": method}
         report: RepairReport = self._call("repair", arguments, timeout_s)
         return report
 
-    def identify(self, labels: Sequence[str], readings: Sequence[Any], *, timeout_s: float = DEFAULT_TIMEOUT_S) -> Any:
+    def identify(
+        self, labels: Sequence[str], readings: Sequence[Reading], *, timeout_s: float = DEFAULT_TIMEOUT_S
+    ) -> Identification:
         """Find the set that explains the readings best, and how well each entry is known."""
-        return self._call("identify", {"labels": labels, "readings": readings}, timeout_s)
+        answer: Identification = self._call("identify", {"labels": labels, "readings": readings}, timeout_s)
+        return answer
 
-    def characterize(self, windings: WindingSet, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> Any:
-        """Return leakages, the inverse matrix, modes and equivalents."""
-        return self._call("characterize", {"windings": windings}, timeout_s)
+    def characterize(
+        self,
+        coils: WindingSet,
+        connections: Sequence[Connection] = (),
+        frequency_hz: ArrayLike | None = None,
+        *,
+        timeout_s: float = DEFAULT_TIMEOUT_S,
+    ) -> Characterization:
+        """Return leakages, the inverse matrix, modes, equivalents, and how paralleled windings share their current.
 
-    def stamp(self, network: Network, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> MnaSystem:
+        ``connections`` are made first, in order; ``frequency_hz``: where the sharing is wanted.
+        """
+        arguments = {"windings": coils, "connections": connections, "frequency_hz": frequency_hz}
+        answer: Characterization = self._call("characterize", arguments, timeout_s)
+        return answer
+
+    def stamp(self, net: Network, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> MnaSystem:
         """Return the matrices of G x + C dx/dt = B u."""
-        system: MnaSystem = self._call("stamp", {"network": network}, timeout_s)
+        system: MnaSystem = self._call("stamp", {"network": net}, timeout_s)
         return system
 
     def frequency_response(
         self,
-        network: Network,
+        net: Network,
         frequency_hz: ArrayLike | AdaptiveSweep,
-        *,
         observe: Sequence[Observable] | None = None,
+        *,
         timeout_s: float = DEFAULT_TIMEOUT_S,
         progress: Progress | None = None,
     ) -> FrequencyResponse:
         """Return complex peak values over frequency, driven by the sources' phasors."""
-        arguments = {"network": network, "frequency_hz": frequency_hz, "observe": observe}
+        arguments = {"network": net, "frequency_hz": frequency_hz, "observe": observe}
         response: FrequencyResponse = self._call("frequency_response", arguments, timeout_s, progress)
         return response
 
     def port_response(
         self,
-        network: Network,
+        net: Network,
         frequency_hz: ArrayLike,
         *,
         timeout_s: float = DEFAULT_TIMEOUT_S,
         progress: Progress | None = None,
     ) -> PortResponse:
         """Return impedance, admittance and scattering matrices of the ports over frequency."""
-        arguments = {"network": network, "frequency_hz": frequency_hz}
+        arguments = {"network": net, "frequency_hz": frequency_hz}
         response: PortResponse = self._call("port_response", arguments, timeout_s, progress)
         return response
 
     def time_response(
         self,
-        network: Network,
+        net: Network,
         stop_s: float,
         step_s: float,
-        *,
         observe: Sequence[Observable] | None = None,
         initial: Initial = None,
         tolerance: float = 1e-6,
+        *,
         timeout_s: float = DEFAULT_TIMEOUT_S,
         progress: Progress | None = None,
     ) -> TimeResponse:
         """Return samples at 0, step_s, 2 step_s, … stop_s."""
         arguments = {
-            "network": network, "stop_s": stop_s, "step_s": step_s,
+            "network": net, "stop_s": stop_s, "step_s": step_s,
             "observe": observe, "initial": initial, "tolerance": tolerance,
         }  # fmt: skip
         response: TimeResponse = self._call("time_response", arguments, timeout_s, progress)
@@ -167,20 +187,21 @@ class Client:
 
     def periodic_response(
         self,
-        network: Network,
+        net: Network,
         period_s: float,
         step_s: float,
-        *,
         observe: Sequence[Observable] | None = None,
         tolerance: float = 1e-6,
+        *,
         timeout_s: float = DEFAULT_TIMEOUT_S,
         progress: Progress | None = None,
-    ) -> Any:
+    ) -> PeriodicResponse:
         """Return one period of the steady state."""
         arguments = {
-            "network": network, "period_s": period_s, "step_s": step_s, "observe": observe, "tolerance": tolerance,
+            "network": net, "period_s": period_s, "step_s": step_s, "observe": observe, "tolerance": tolerance,
         }  # fmt: skip
-        return self._call("periodic_response", arguments, timeout_s, progress)
+        response: PeriodicResponse = self._call("periodic_response", arguments, timeout_s, progress)
+        return response
 
     def server_info(self, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> ServerInfo:
         """Return versions, limits and what the workers do; answered at once, however busy they are."""
