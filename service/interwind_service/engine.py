@@ -10,6 +10,8 @@ from collections.abc import Callable
 from dataclasses import replace
 from typing import Any, ParamSpec, TypeVar
 
+from numpy.typing import NDArray
+
 from interwind.model.characterization import Characterization
 from interwind.model.digest import request_digest
 from interwind.model.identification import Identification
@@ -17,6 +19,7 @@ from interwind.model.network import Network
 from interwind.model.periodic import PeriodicResponse
 from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import FrequencyResponse, MnaSystem, PortResponse, TimeResponse
+from interwind.model.vary import SampleWindings
 from interwind.model.windings import WindingSet
 from interwind_service.version import SERVICE_VERSION
 
@@ -124,3 +127,10 @@ def periodic_response(
     from interwind_service.response import periodic
 
     return periodic.periodic_response(network, period_s, step_s, observe, tolerance)
+
+
+def sample_windings(windings: WindingSet, sample: SampleWindings) -> NDArray[np.float64]:
+    """Draw random sets of windings, each of which can exist; shape (count, n, n), H."""
+    from interwind_service.windings import sampling
+
+    return sampling.sample_windings(windings, sample)
