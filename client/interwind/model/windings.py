@@ -21,6 +21,8 @@ from interwind.errors import InvalidRequest
 from interwind.model.frozen import FloatArray, frozen_floats, frozen_square, frozen_vector, labels_of
 from interwind.model.json_form import JsonForm
 
+DIAGONAL_ROUNDING = 1e-12  # a unit diagonal formed as (1 − k) + k, or M / sqrt(L L), is off by a few roundings
+
 
 @dataclass(frozen=True, slots=True, eq=False)
 class WindingSet(JsonForm):
@@ -96,11 +98,15 @@ class WindingSet(JsonForm):
         if self_h.shape != (len(names),):
             raise InvalidRequest.at("self_inductance_h", f"{self_h.size} values found for {len(names)} labels")
         k = frozen_square(coupling, "coupling", len(names))
-        if not np.all(k.diagonal() == 1.0):
-            position = int(np.flatnonzero(k.diagonal() != 1.0)[0])
+        off = np.abs(k.diagonal() - 1.0)
+        if not np.all(off <= DIAGONAL_ROUNDING):
+            position = int(np.argmax(~(off <= DIAGONAL_ROUNDING)))
             raise InvalidRequest.at(
-                f"coupling[{position}][{position}]", f"{k[position, position]!r} found; the diagonal of couplings is 1"
+                f"coupling[{position}][{position}]",
+                f"{float(k[position, position])!r} found; the diagonal of couplings is 1",
             )
+        k = k.copy()
+        np.fill_diagonal(k, 1.0)
         root = np.sqrt(np.where(self_h > 0, self_h, np.nan))
         inductance = k * np.outer(root, root)
         np.fill_diagonal(inductance, self_h)

@@ -16,22 +16,19 @@ def check_resistance(coils: WindingSet) -> list[Finding]:
     p = iᵀ R i must not be negative for any current. A diagonal of zero forces its row to be zero.
     """
     R = coils.resistance_ohm
-    own = np.broadcast_to(R, (coils.size,)) if R.ndim < 2 else R.diagonal()
+    if R.ndim == 0:
+        return [_negative(coils.labels, "resistance_ohm", float(R))] if R < 0 else []
+    own = R if R.ndim == 1 else R.diagonal()
     findings = [
-        Finding(
-            "NEGATIVE_RESISTANCE",
-            Severity.ERROR,
-            (coils.labels[i],),
-            f"resistance_ohm[{i}]" + f"[{i}]" * (R.ndim == 2) if R.ndim else "resistance_ohm",
-            f"The resistance of {coils.labels[i]} is {own[i]:.6g} ohm; a winding cannot deliver power.",
-            float(own[i]),
-            0.0,
-        )
+        _negative((coils.labels[i],), f"resistance_ohm[{i}]" + f"[{i}]" * (R.ndim - 1), float(own[i]))
         for i in np.flatnonzero(own < 0)
     ]
-    if R.ndim < 2 or findings:
-        return findings
-    return _matrix(coils)
+    return findings if R.ndim == 1 or findings else _matrix(coils)
+
+
+def _negative(labels: tuple[str, ...], field: str, value: float) -> Finding:
+    text = f"The resistance of {', '.join(labels)} is {value:.6g} ohm; a winding cannot deliver power."
+    return Finding("NEGATIVE_RESISTANCE", Severity.ERROR, labels, field, text, value, 0.0)
 
 
 def _matrix(coils: WindingSet) -> list[Finding]:
