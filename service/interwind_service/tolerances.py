@@ -53,6 +53,13 @@ SUFFICIENT_DECREASE = 1e-4
 # Repair. A leakage that moves by more than a tenth is named: printed leakages are rarely known better.
 LEAKAGE_MOVED_RATIO = 1.1
 
+# Characterization. A winding group whose scaled matrix is closer to singular than this leaves its currents open.
+SINGULAR_RECIPROCAL_CONDITION = 1e-13
+# The cantilever circuit of N windings has N²/2 branches; beyond this nobody reads it.
+EQUIVALENT_WINDINGS = 32
+# A star that misses a pair leakage by more than one per cent is said to be a fit: printed leakages are as good as that.
+STAR_ERROR = 0.01
+
 # --- network --------------------------------------------------------------------------------------------------------
 
 # A group whose smallest pivot is above this keeps 14 digits of every leakage in plain currents.
@@ -90,6 +97,18 @@ PASSIVITY_LIMIT = -1e-9
 EXPONENTIAL_BASE_NORM = 0.5
 # Terms of that series: 0.5^15 / 15! is below the unit roundoff.
 EXPONENTIAL_TAYLOR_DEGREE = 14
+# Structural pivots are sums of 0, +1, -1 and products of turns ratios: accepted ones exceed 1e-4, rejected ones are 0.
+STRUCTURAL_PIVOT = 1e-9
+# Among pivots within this share of the largest the storage of least energy is made the dependent one.
+STRUCTURAL_PIVOT_SHARE = 0.05
+# Entries of a product of structural matrices below this are sums that should be 0.
+STRUCTURAL_ROUNDING = 1e-11
+# Share of the largest entry of a null vector from which an element is named as a member.
+STRUCTURAL_MEMBER = 1e-6
+# A resolvent at s0 shows modes up to this many times s0 to 1e-12 of themselves; faster ones get an s0 of their own.
+BAND_REACH = 1e4
+# That s0 stands this much above the slowest mode of its block, so that it reaches two decades to each side.
+BAND_LEAD = 1e2
 # Corners of one waveform within one run: 4 million take 100 MB and a few seconds.
 MAX_WAVEFORM_CORNERS = 4_000_000
 
@@ -166,3 +185,11 @@ BATCH_STORE_RETRY_S = 2.0  # before the state folder is tried again once it coul
 BATCH_EXPIRE_EVERY_S = 60.0  # between two looks for batches whose time has come; retention is told in days
 BATCH_OPEN_COUNT = 8  # batches whose submitted numbers stay open: more run in turns rarely
 BATCH_PROVE_COUNT = 64  # newest result files read whole after a restart: what a disk may hold back unwritten
+BATCH_VARIANT_LIMIT = 1_000_000  # variants in one batch: its columns then stay within some tens of megabytes
+BATCH_POINT_LIMIT = 200_000  # points of a row: the grid still fits one message
+BATCH_CHUNK_ROWS = 4096  # most variants computed at a time
+BATCH_CHUNK_BYTES = 4 * 2**20  # numbers of a chunk: the front proves and streams it in a few milliseconds
+BATCH_CHUNK_S = 0.5  # work of a chunk: what an interactive call may have to wait for, and a stop may throw away
+BATCH_FORECAST_ROWS = 32  # variants tried for the forecast when the first was quick
+OUTPUT_GRID_SHARE = 1e-6  # of a step: the end of a grid may be off by so much
+WORKER_BASE_BYTES = 100 * 2**20  # resident memory of an idle worker: interpreter, NumPy, SciPy
