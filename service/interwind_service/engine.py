@@ -129,7 +129,7 @@ def periodic_response(
     return periodic.periodic_response(network, period_s, step_s, observe, tolerance)
 
 
-def sample_windings(windings: WindingSet, sample: SampleWindings) -> NDArray[np.float64]:
+def sample_windings(windings: WindingSet, sample: SampleWindings) -> NDArray[Any]:
     """Draw random sets of windings, each of which can exist; shape (count, n, n), H."""
     from interwind_service.windings import sampling
 

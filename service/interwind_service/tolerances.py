@@ -87,6 +87,9 @@ CONTRADICTION = 1e-13
 NULL_VECTOR_SHARE = 0.1
 # |b - A x| after one refinement is a few roundings; four digits more are left for large systems.
 RESIDUAL_LIMIT = 1e-11
+# Terminal quantities below this share of the apparent power behind them are seen against that share: 1e-5 keeps noise of
+# 1e-16 four digits below what is asked.
+NOISE_SHARE = 1e-5
 # Reciprocity and passivity of R, L, C, windings and ideal transformers, over the largest entry: what K-01 asks.
 RECIPROCITY_LIMIT = 1e-9
 PASSIVITY_LIMIT = -1e-9
@@ -122,12 +125,12 @@ SINGULAR_TABLEAU = 1e-30  # reciprocal condition after scaling; ε networks reac
 NULL_MEMBER = 1e-3  # share of the null vector from which an element is named
 EQUILIBRATION_PASSES = 4  # row and column passes; more change no exponent
 CONJUGATE_PAIR = 1e-6  # relative distance at which two eigenvalues are one pair
-NEAR_RESONANCE = 0.03  # |λ - s| span below which drive and mode are joined by Taylor terms; 0.03^8 / 9! is rounding
-RESONANCE_TERMS = 9  # highest power of t in that series
+NEAR_RESONANCE = 3e-3  # |λ - s| span below which drive and mode are joined by Taylor terms; else 1e-13 would be lost
+RESONANCE_TERMS = 6  # powers of t in that series; the next is 3e-3^6 / 7!
 SAME_INSTANT = 1e-14  # breakpoints closer than this share of the run are one
 MAXIMUM_BREAKPOINTS = 2_000_000  # drive changes in one run; 64 MB of segments
 GUARD_ROUNDING = 1e-12  # a guard above minus this share of its terms holds
-TERM_ROUNDING = 1e-18  # terms of a modal sum below this share of the largest are left out of a root search
+SUM_ROUNDING = 2e-15  # a modal sum below this share of its terms is zero as far as anyone can tell
 EVENT_INTERVAL = 1e-13  # share of its bracket to which an event is located
 TIME_ROUNDING = 2.3e-16  # and of the time itself
 EVENT_ITERATIONS = 120  # halvings always suffice

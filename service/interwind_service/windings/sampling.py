@@ -49,7 +49,7 @@ def sample_windings(windings: WindingSet, sample: SampleWindings) -> FloatArray:
         smallest = float(np.linalg.eigvalsh(nominal)[0])
         raise InvalidWindings.at(
             "windings",
-            f"the nominal coupling matrix has the eigenvalue {smallest:.6g}, above 0 is expected; mend it by repair first",
+            f"the nominal coupling matrix has the eigenvalue {smallest:.6g}, none at or below 0 may; mend it by repair",
             eigenvalue=smallest,
         ) from error
     generator = np.random.Generator(np.random.Philox(sample.seed))

@@ -1,0 +1,140 @@
+"""What a worker does for a batch: plan a submission, compute a chunk. It runs in workers, so it imports no gRPC."""
+
+from __future__ import annotations
+
+import functools
+import hashlib
+import time
+from math import inf
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+from google.protobuf.message import DecodeError
+
+from interwind.codec.array import array_to_message, stored_arrays
+from interwind.codec.batch import Submission, submission_from_message, submission_to_message
+from interwind.codec.observable import observables_to_messages
+from interwind.errors import InvalidRequest, field_path
+from interwind.model.batch import Analysis, CostForecast
+from interwind.v1 import array_pb2, batch_service_pb2
+from interwind_service.batch.chunk import Layout, layout_of, solve_rows
+from interwind_service.batch.folder import sync_folder, write_durably
+from interwind_service.batch.overrides import Overrides, lay_out
+from interwind_service.batch.work import ChunkAnswer, ChunkTask, Plan
+from interwind_service.tolerances import (
+    BATCH_CHUNK_BYTES,
+    BATCH_CHUNK_ROWS,
+    BATCH_CHUNK_S,
+    BATCH_FORECAST_ROWS,
+    BATCH_VARIANT_LIMIT,
+    WORKER_BASE_BYTES,
+)
+from interwind_service.workers.arrays import ArrayFolder
+
+
+def plan_submission(request: bytes, incoming: str, arrays: ArrayFolder) -> Plan:
+    """Check a submission, try a few of its variants, and write it down in the folder ``incoming``."""
+    try:
+        message = batch_service_pb2.SubmitBatchRequest.FromString(request)
+    except DecodeError as error:
+        raise InvalidRequest(
+            "the bytes are no SubmitBatchRequest; rebuild the caller", reason="MALFORMED_MESSAGE"
+        ) from error
+    with stored_arrays(arrays):
+        submission = submission_from_message(message)
+    with field_path("network"):
+        overrides, numbers = lay_out(submission.network, submission.columns)
+    if len(numbers) > BATCH_VARIANT_LIMIT:
+        raise InvalidRequest.at(
+            "columns", f"{len(numbers)} variants found; at most {BATCH_VARIANT_LIMIT} are allowed; submit several",
+            reason="TOO_MANY_VARIANTS", limit=BATCH_VARIANT_LIMIT,
+        )  # fmt: skip
+    if not len(numbers):
+        raise InvalidRequest.at("columns", "columns without a value found; at least one variant is expected")
+    layout = layout_of(submission.network, submission.analysis)
+    row_s = _seconds_a_row(overrides, submission.analysis, layout, numbers)
+    chunk_rows = max(1, min(BATCH_CHUNK_ROWS, int(BATCH_CHUNK_S / row_s), BATCH_CHUNK_BYTES // layout.row_bytes))
+    count = len(numbers)
+    recipe = recipe_of(overrides, submission.analysis)
+    columns = np.ascontiguousarray(numbers, dtype="<f8").tobytes()
+    if not submission.validate_only:
+        folder = Path(incoming)
+        folder.mkdir(mode=0o700)
+        write_durably(folder / "recipe", recipe)
+        write_durably(folder / "columns", columns)
+        sync_folder(folder)
+    recipe_sha256, columns_sha256 = (hashlib.sha256(data).hexdigest() for data in (recipe, columns))
+    return Plan(
+        folder="" if submission.validate_only else Path(incoming).name,
+        request_id=submission.request_id,
+        content_sha256=hashlib.sha256((recipe_sha256 + columns_sha256).encode()).hexdigest(),
+        recipe_sha256=recipe_sha256,
+        columns_sha256=columns_sha256,
+        width=overrides.width,
+        variant_count=count,
+        chunk_rows=chunk_rows,
+        header=_header(layout, count),
+        forecast=CostForecast(
+            duration_s=row_s * count,
+            result_bytes=layout.row_bytes * count,
+            memory_bytes=WORKER_BASE_BYTES + 4 * layout.row_bytes * chunk_rows + 3 * len(recipe),
+            chunk_count=-(-count // chunk_rows),
+        ),
+    )
+
+
+def solve_chunk(task: ChunkTask) -> ChunkAnswer:
+    """Compute the rows of a chunk; their numbers go to a durable file, or home in the answer."""
+    overrides, analysis, layout = _recipe(task.recipe)
+    numbers = np.frombuffer(task.columns, "<f8").reshape(task.row_count, overrides.width)
+    rows = solve_rows(overrides, analysis, layout, numbers, task.first_row)
+    values = np.ascontiguousarray(rows.values, dtype=layout.dtype)
+    data = memoryview(values.reshape(-1).view(np.uint8))
+    if task.path:
+        write_durably(Path(task.path), data)
+    return ChunkAnswer(
+        statuses=rows.statuses,
+        reasons=rows.reasons,
+        size_bytes=len(data),
+        sha256=hashlib.sha256(data).hexdigest(),
+        values=b"" if task.path else bytes(data),
+    )
+
+
+def recipe_of(overrides: Overrides, analysis: Analysis) -> bytes:
+    """Return all of a submission but the numbers that vary, the same bytes for the same content."""
+    message = submission_to_message(Submission(overrides.network, analysis, overrides.heads))
+    message.ClearField("size")
+    return bytes(message.SerializeToString(deterministic=True))
+
+
+@functools.lru_cache(maxsize=4)
+def _recipe(recipe: bytes) -> tuple[Overrides, Analysis, Layout]:
+    submission = submission_from_message(batch_service_pb2.SubmitBatchRequest.FromString(recipe))
+    overrides = Overrides(submission.network, submission.columns)
+    return overrides, submission.analysis, layout_of(submission.network, submission.analysis)
+
+
+def _seconds_a_row(overrides: Overrides, analysis: Analysis, layout: Layout, numbers: Any) -> float:
+    """Time the first variants: one, and a few more when it was quick."""
+    row_s = inf
+    for count in (1, 1, BATCH_FORECAST_ROWS):  # the first one pays for what a worker loads once
+        if row_s < inf and row_s * count > BATCH_CHUNK_S:
+            break
+        began_s = time.perf_counter()
+        solve_rows(overrides, analysis, layout, numbers[:count], 0)
+        row_s = (time.perf_counter() - began_s) / min(count, len(numbers))
+    return max(row_s, 1e-9)
+
+
+def _header(layout: Layout, variant_count: int) -> bytes:
+    message = batch_service_pb2.BatchResultHeader(
+        variant_count=variant_count,
+        columns=observables_to_messages(layout.observables, "observe"),
+        dtype=array_pb2.DTYPE_COMPLEX128 if layout.dtype.kind == "c" else array_pb2.DTYPE_FLOAT64,
+        point_count=layout.points.size,
+        point_name=layout.point_name,
+        points=array_to_message(layout.points),
+    )
+    return bytes(message.SerializeToString())
