@@ -64,7 +64,7 @@ def blank(answer: Any, title: str, *, rows: int) -> Figure:
 
 
 def _draw_intervals(report: ValidityReport, axes: Axes) -> None:
-    """One cell a pair: the couplings that would cure; grey where no value does, framed where it is the culprit."""
+    """One cell a pair: the couplings that would do; grey where none does, framed where it is to blame."""
     count = len(report.labels)
     width = report.feasible_high - report.feasible_low
     shown = np.where(np.eye(count, dtype=bool), np.nan, width)
@@ -75,7 +75,10 @@ def _draw_intervals(report: ValidityReport, axes: Axes) -> None:
     culprits = {frozenset(culprit.pair) for culprit in report.culprits}
     for row in range(count):
         for column in range(count):
-            if row == column or np.isnan(width[row, column]):
+            if row == column:
+                continue
+            if np.isnan(width[row, column]):
+                axes.text(column, row, "none", ha="center", va="center", fontsize=8, color="0.5")
                 continue
             text = f"{report.feasible_low[row, column]:.5f}\n{report.feasible_high[row, column]:.5f}"
             blamed = frozenset((report.labels[row], report.labels[column])) in culprits
@@ -97,6 +100,7 @@ def _draw_frequency(answer: FrequencyResponse | PortResponse, magnitude: Axes, p
     magnitude.set_ylabel("magnitude, peak")
     phase.set_ylabel("phase, degrees")
     phase.set_xlabel("frequency, Hz")
+    phase.grid(visible=True, linewidth=0.3)
     _legend(magnitude, len(curves))
 
 
