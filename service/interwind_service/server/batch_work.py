@@ -13,7 +13,12 @@ import numpy as np
 from google.protobuf.message import DecodeError
 
 from interwind.codec.array import array_to_message, stored_arrays
-from interwind.codec.batch import Submission, submission_from_message, submission_to_message
+from interwind.codec.batch import (
+    Submission,
+    submission_from_message,
+    submission_to_message,
+    summary_to_messages,
+)
 from interwind.codec.observable import observables_to_messages
 from interwind.errors import InvalidRequest, field_path
 from interwind.model.batch import Analysis, CostForecast
@@ -21,6 +26,7 @@ from interwind.v1 import array_pb2, batch_service_pb2
 from interwind_service.batch.chunk import Layout, layout_of, solve_rows
 from interwind_service.batch.folder import sync_folder, write_durably
 from interwind_service.batch.overrides import Overrides, lay_out
+from interwind_service.batch.summary import StoredRows, summarize
 from interwind_service.batch.work import ChunkAnswer, ChunkTask, Plan
 from interwind_service.tolerances import (
     BATCH_CHUNK_BYTES,
@@ -100,6 +106,15 @@ def solve_chunk(task: ChunkTask) -> ChunkAnswer:
         sha256=hashlib.sha256(data).hexdigest(),
         values=b"" if task.path else bytes(data),
     )
+
+
+def summary_frames(
+    folder: str, chunks: tuple[StoredRows, ...], levels: tuple[float, ...], extreme_count: int
+) -> list[bytes]:
+    """Summarize the rows of a batch; return the response messages, serialized."""
+    _, _, layout = _recipe((Path(folder) / "recipe").read_bytes())
+    summary = summarize(Path(folder), chunks, layout, levels, extreme_count)
+    return [frame.SerializeToString() for frame in summary_to_messages(summary)]
 
 
 def recipe_of(overrides: Overrides, analysis: Analysis) -> bytes:

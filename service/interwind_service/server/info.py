@@ -38,13 +38,12 @@ class Info:
         return [Rpc("/interwind.v1.ServerService/GetServerInfo", self._answer)]
 
     async def _answer(self, request: bytes, call: Call) -> bytes:
-        known = self._threads.done() and not self._threads.cancelled() and self._threads.exception() is None
         answer = messages.GetServerInfoResponse(
             service_version=SERVICE_VERSION,
             api_version=API_VERSION,
             worker_count=self._pool.count,
             busy_worker_count=self._pool.busy,
-            blas_thread_count=self._threads.result() if known else 0,
+            blas_thread_count=self._known_threads(),
             queue_limit_count=self._admission.queue_limit,
             queued_count=self._admission.queued,
             memory_limit_bytes=self._admission.memory_bytes,
@@ -54,3 +53,12 @@ class Info:
             library_versions=self._libraries,
         )
         return bytes(answer.SerializeToString())
+
+    def _known_threads(self) -> int:
+        """Return what the first worker measured; 0 as long as it has not, asked again if it died over it."""
+        if not self._threads.done():
+            return 0
+        if self._threads.cancelled() or self._threads.exception() is not None:
+            self._threads = self._pool.call(blas_threads)
+            return 0
+        return int(self._threads.result())

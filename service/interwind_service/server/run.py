@@ -36,6 +36,7 @@ from interwind_service.workers.process import Guards
 
 PRELOAD = (
     "interwind_service.workers.job",
+    "threadpoolctl",
     "interwind_service.windings.verdict",
     "interwind_service.network.system",
     "interwind_service.response.frequency",
