@@ -68,6 +68,8 @@ LOOSE_PIVOT = 1e-2
 PIVOT_SHARE = 0.02
 # A pivot of at most this many times n is rounding of the stated matrix: the coupling is perfect.
 PERFECT_COUPLING_PIVOT = 4 * 2.0**-52
+# Dense matrices of this many unknowns take 2 x 200 MB.
+DENSE_UNKNOWNS = 5000
 
 # --- response: frequency --------------------------------------------------------------------------------------------
 
@@ -87,9 +89,9 @@ CONTRADICTION = 1e-13
 NULL_VECTOR_SHARE = 0.1
 # |b - A x| after one refinement is a few roundings; four digits more are left for large systems.
 RESIDUAL_LIMIT = 1e-11
-# Terminal quantities below this share of the apparent power behind them are seen against that share: 1e-5 keeps noise of
-# 1e-16 four digits below what is asked.
-NOISE_SHARE = 1e-5
+# Terminal quantities are seen against this share of the largest that the solution could have shown: 1e-6 stands ten digits
+# above its rounding noise.
+NOISE_SHARE = 1e-6
 # Reciprocity and passivity of R, L, C, windings and ideal transformers, over the largest entry: what K-01 asks.
 RECIPROCITY_LIMIT = 1e-9
 PASSIVITY_LIMIT = -1e-9
@@ -112,6 +114,15 @@ STRUCTURAL_MEMBER = 1e-6
 BAND_REACH = 1e4
 # That s0 stands this much above the slowest mode of its block, so that it reaches two decades to each side.
 BAND_LEAD = 1e2
+# Net current into a part without a return that counts as rounding, as a share of the largest source.
+FORCED_CURRENT_ROUNDING = 1e-12
+# Entries of the observability matrix of one block, 4 MB: it stays in the cache while all blocks pass by.
+BLOCK_ENTRIES = 2**19
+# Steps of a block, as powers of two: fewer than 8 cost calls, more than 256 cost the walk through blocks with events.
+LEAST_BLOCK_BITS = 3
+MOST_BLOCK_BITS = 8
+# Samples computed at once, 2 MB: what one chunk holds is bounded, whatever the length of the run.
+CHUNK_ENTRIES = 2**18
 # Corners of one waveform within one run: 4 million take 100 MB and a few seconds.
 MAX_WAVEFORM_CORNERS = 4_000_000
 
@@ -143,6 +154,13 @@ GRID_COARSEST = 24  # looks in the longest span, at least
 GRID_ALIVE = 14.0  # an oscillation decayed by e to this power no longer needs looks
 GRID_RADIANS = 0.7  # largest step of a living oscillation
 GRID_POINTS = 4096  # looks kept for one piece; a longer span is run in several
+GAUSS_NODES = 32  # Gauss-Legendre points; exact to rounding for |a τ| up to GAUSS_REACH
+GAUSS_REACH = 20.0  # beyond it the upward recurrence is stable for every power used
+SEGMENTS_TOGETHER = 256  # segments worked on at once: 20 MB for 50 rows of 20 terms
+SAMPLES_TOGETHER = 4096  # samples worked on at once
+SETTLED = 40.0  # time constants after which a jump is over: e^-40 is rounding
+SETTLE_SHARE = 1e-3  # share of the sample step in which a jump at a sample must be over
+JUMP_SHARE = 0.5  # share of its decay in stand-ins of ideal elements that makes a mode a jump
 PIECES_KEPT = 512  # combinations of device states kept
 PIVOTS = 200  # pivots of the complementarity problem; three is the most seen
 PIVOT_PATIENCE = 5  # block pivots without progress before the least-index rule takes over
@@ -178,6 +196,7 @@ ESTIMATE_MATRICES = 6  # dense complex copies a solve holds at once: matrix, fac
 ESTIMATE_COPIES = 4  # copies of a request in flight: received, piped, parsed, decoded
 LOG_QUEUE_LINES = 10_000  # lines that may wait for a slow reader of stderr; later ones are counted and dropped
 TOKEN_RELOAD_INTERVAL_S = 1.0  # how often the token file is looked at, at most
+PROGRESS_INTERVAL_S = 0.1  # progress is for eyes; more often it only costs
 PARENT_POLL_S = 0.2  # how often an embedded server looks whether its parent lives
 
 # --- batches --------------------------------------------------------------------------------------------------------
@@ -196,3 +215,7 @@ BATCH_CHUNK_S = 0.5  # work of a chunk: what an interactive call may have to wai
 BATCH_FORECAST_ROWS = 32  # variants tried for the forecast when the first was quick
 OUTPUT_GRID_SHARE = 1e-6  # of a step: the end of a grid may be off by so much
 WORKER_BASE_BYTES = 100 * 2**20  # resident memory of an idle worker: interpreter, NumPy, SciPy
+BATCH_SUMMARY_BYTES = 64 * 2**20  # numbers a summary holds at a time
+BATCH_SUMMARY_ROWS = 10_000  # extreme rows named at each end: beyond, stream the rows themselves
+BATCH_PAGE_SIZE = 100  # batches a page, when the caller does not say
+BATCH_PAGE_LIMIT = 1000  # batches a page at most: some hundred kilobytes

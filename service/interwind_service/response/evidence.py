@@ -18,45 +18,43 @@ ComplexArray = NDArray[np.complex128]
 FloatArray = NDArray[np.float64]
 
 
-def terminal_matrix(band: Band) -> ComplexArray:
-    """Return the hybrid matrix H (f, d, d) of the drives: current into the network per volt, port voltage per ampere.
+def terminal_matrix(band: Band) -> tuple[ComplexArray, NDArray[np.bool_]]:
+    """Return the hybrid matrix H (f, d, d) of the drives, and which of them (d,) impose a voltage.
 
-    Over voltage drives alone it is the admittance matrix, over current drives alone the impedance matrix. Mixed, rows
-    and columns are scaled so that both kinds weigh alike.
+    H holds the current into the network per volt and the port voltage per ampere: over voltage drives alone the
+    admittance matrix, over current drives alone the impedance matrix. The rows and columns of each kind are divided by
+    the root of its largest entry, or of what stands well above rounding noise where no entry does.
     """
     tree = band.tree
     rows = np.zeros((len(tree.drives), band.Z.shape[1]))
-    voltage = np.zeros(len(tree.drives), dtype=bool)
+    voltage = np.array([drive.out_of < 0 for drive in tree.drives])
     for k, drive in enumerate(tree.drives):
-        if drive.out_of < 0:
-            voltage[k] = True
+        if voltage[k]:
             rows[k, tree.current[drive.branch]] = -1.0
         else:
             rows[k, : len(tree.tree)] = tree.paths[drive.into] - tree.paths[drive.out_of]
     H = rows @ band.Z
-    if voltage.any() and not voltage.all():
-        scale = np.ones(H.shape[:2])
-        for kind in (voltage, ~voltage):
+    scale = np.ones(H.shape[:2])
+    noise = tol.NOISE_SHARE * (band.scale @ np.abs(rows).T) * band.largest
+    for kind in (voltage, ~voltage):
+        if kind.any():
             size = np.abs(H[:, kind][:, :, kind]).max(axis=(1, 2))
-            scale[:, kind] = np.where(size > 0.0, 1.0 / np.sqrt(np.where(size > 0.0, size, 1.0)), 1.0)[:, None]
-        H = H * scale[:, :, None] * scale[:, None, :]
-    return H
+            size = np.maximum(size, noise[:, kind].max(axis=1))
+            scale[:, kind] = np.sqrt(np.divide(1.0, size, out=np.ones_like(size), where=size > 0.0))[:, None]
+    return H * scale[:, :, None] * scale[:, None, :], voltage
 
 
-def reciprocity_and_passivity(H: ComplexArray, voltage: NDArray[np.bool_]) -> tuple[float, float]:
-    """Return max |H − H'| / max |H| and min eig (H + Hᴴ)/2 over |H|, worst over frequency; H' is Hᵀ, mixed blocks negated."""
-    H = H[np.isfinite(H).all(axis=(1, 2))]
-    if not H.size:
-        return math.nan, math.nan
-    largest = np.abs(H).max(axis=(1, 2))
-    H, largest = H[largest > 0.0], largest[largest > 0.0]
-    if not H.size:
-        return 0.0, 0.0
+def asymmetry(H: ComplexArray, voltage: NDArray[np.bool_]) -> FloatArray:
+    """Return max |H − H'| / max(|H|, 1), shape (f,); H' is Hᵀ, negated between voltage and current drives."""
     sign = np.where(voltage[:, None] == voltage[None, :], 1.0, -1.0)
-    gap = np.abs(H - sign * H.transpose(0, 2, 1)).max(axis=(1, 2)) / largest
+    gap: FloatArray = np.abs(H - sign * H.transpose(0, 2, 1)).max(axis=(1, 2))
+    return gap / np.maximum(np.abs(H).max(axis=(1, 2)), 1.0)
+
+
+def passivity(H: ComplexArray) -> FloatArray:
+    """Return the smallest eigenvalue of (H + Hᴴ)/2 over max(‖H‖₂, 1), shape (f,)."""
     hermitian = 0.5 * (H + H.conj().transpose(0, 2, 1))
-    lowest = np.linalg.eigvalsh(hermitian)[:, 0] / np.linalg.norm(H, ord=2, axis=(1, 2))
-    return float(gap.max()), float(lowest.min())
+    return np.linalg.eigvalsh(hermitian)[:, 0] / np.maximum(np.linalg.norm(H, ord=2, axis=(1, 2)), 1.0)
 
 
 def gather(topology: Topology, method: str, bands: Sequence[Band], *, drives_alone: bool) -> Evidence:
@@ -64,18 +62,21 @@ def gather(topology: Topology, method: str, bands: Sequence[Band], *, drives_alo
     residual = np.concatenate([band.residual for band in bands])
     condition = np.concatenate([band.condition for band in bands])
     finite = np.isfinite(condition)
-    reciprocity, passivity = math.nan, math.nan
-    if drives_alone and bands and bands[0].tree.drives and not topology.controls:
-        voltage = np.array([drive.out_of < 0 for drive in bands[0].tree.drives])
-        pairs = [reciprocity_and_passivity(terminal_matrix(band), voltage) for band in bands]
-        reciprocity = max((p[0] for p in pairs if p[0] == p[0]), default=math.nan)
-        passivity = min((p[1] for p in pairs if p[1] == p[1]), default=math.nan)
+    gap, lowest = math.nan, math.nan
+    if drives_alone and finite.any() and bands[0].tree.drives and not topology.controls:
+        gaps, margins = [], []
+        for band in bands:
+            H, voltage = terminal_matrix(band)
+            H = H[np.isfinite(band.condition)]
+            gaps.append(asymmetry(H, voltage))
+            margins.append(passivity(H))
+        gap, lowest = float(np.concatenate(gaps).max()), float(np.concatenate(margins).min())
     return Evidence(
         method=method,
         residual=float(residual[finite].max(initial=0.0)),
         condition=float(condition[finite].max(initial=1.0)),
-        reciprocity_error=reciprocity,
-        passivity_margin=passivity,
+        reciprocity_error=gap,
+        passivity_margin=lowest,
     )
 
 

@@ -18,12 +18,14 @@ FloatArray = NDArray[np.float64]
 class Solutions:
     """``x`` (f, n, m); ``residual`` (f,) = |b − A x|∞ / (|A|∞ |x|∞ + |b|∞); ``condition`` (f,) after scaling, 1-norm.
 
-    Where A is singular, x and the residual are NaN and the condition is inf.
+    ``scale`` (f, n) and ``largest`` (f, m): an entry of x below ε scale largest is rounding noise. Where A is singular, x and the residual are NaN and the condition is inf.
     """
 
     x: ComplexArray
     residual: FloatArray
     condition: FloatArray
+    scale: FloatArray
+    largest: FloatArray
 
 
 def solve(A: ComplexArray, b: ComplexArray) -> Solutions:
@@ -33,7 +35,7 @@ def solve(A: ComplexArray, b: ComplexArray) -> Solutions:
     """
     f, n, m = b.shape
     if n == 0 or f == 0:
-        return Solutions(np.zeros(b.shape, np.complex128), np.zeros(f), np.ones(f))
+        return Solutions(np.zeros(b.shape, np.complex128), np.zeros(f), np.ones(f), np.ones((f, n)), np.ones((f, m)))
     scaled, rows, columns = equilibrate(A)
     right = b * rows[:, :, None]
     if n <= tol.STACKED_SOLVE_SIZE:
@@ -43,11 +45,13 @@ def solve(A: ComplexArray, b: ComplexArray) -> Solutions:
     singular = ~(condition < tol.SINGULAR_CONDITION)
     x[singular] = np.nan
     gap = np.abs(right - scaled @ x).max(axis=(1, 2)) if m else np.zeros(f)
-    size = np.abs(scaled).sum(axis=2).max(axis=1) * np.abs(x).max(axis=(1, 2), initial=0.0)
+    largest = np.abs(x).max(axis=1)
+    size = np.abs(scaled).sum(axis=2).max(axis=1) * largest.max(axis=1, initial=0.0)
     size += np.abs(right).max(axis=(1, 2), initial=0.0)
     residual = np.divide(gap, size, out=np.zeros(f), where=size > 0.0)
     residual[singular] = np.nan
-    return Solutions(x * columns[:, :, None], residual, np.where(singular, np.inf, condition))
+    condition = np.where(singular, np.inf, condition)
+    return Solutions(x * columns[:, :, None], residual, condition, columns, largest)
 
 
 def equilibrate(A: ComplexArray) -> tuple[ComplexArray, FloatArray, FloatArray]:

@@ -9,17 +9,18 @@ from numpy.typing import NDArray
 
 from interwind.errors import InvalidNetwork
 from interwind.model.elements import CurrentSource, VoltageSource
-from interwind.model.finding import Finding, Severity
 from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.response import FrequencyResponse
 from interwind_service.network.kind import Kind
-from interwind_service.network.topology import Topology, number
+from interwind_service.network.topology import Topology
+from interwind_service.response.admit import admit
 from interwind_service.response.evidence import gather, require
+from interwind_service.response.findings import open_end_findings, singular_finding
 from interwind_service.response.frequency_tree import Drive
 from interwind_service.response.observe import Phasors, evaluate, resolve
 from interwind_service.response.spectrum import Band, checked_frequencies, spectrum
-from interwind_service.response.undetermined import Undetermined, node_list, refuse, suspects, undetermined
+from interwind_service.response.undetermined import Undetermined, refuse, undetermined
 
 ComplexArray = NDArray[np.complex128]
 
@@ -47,7 +48,7 @@ def frequency_response(
     AccuracyNotReached : residual, reciprocity or passivity beyond its limit.
     """
     f = checked_frequencies(frequency_hz)
-    topology = number(network)
+    topology = admit(network)
     asked = resolve(topology, observe)
     drives, u = drives_of(topology)
     samples = np.full((len(f), len(asked)), np.nan, dtype=np.complex128)
@@ -59,12 +60,12 @@ def frequency_response(
         singular = ~np.isfinite(band.condition)
         if band.s[0] != 0.0:
             refuse(open_ends)
-            findings += [x for x in _open_ends(band, open_ends) if x not in findings]
+            findings += [x for x in open_end_findings(band.tree, open_ends) if x not in findings]
         elif not open_ends.nothing:
             singular[:] = True
         alone &= open_ends.nothing
         findings += [
-            _singular(band, float(f[k]), complex(s), open_ends)
+            singular_finding(band.tree, float(f[k]), complex(s), open_ends)
             for k, s in zip(band.index[singular], band.s[singular], strict=True)
         ]
         samples[band.index] = _observe(topology, band, u, open_ends, asked)
@@ -91,7 +92,7 @@ def drives_of(topology: Topology) -> tuple[tuple[Drive, ...], ComplexArray]:
             drives.append(Drive(branch))
         given = source.phasor if isinstance(source, VoltageSource | CurrentSource) else None
         phasors.append(0j if given is None else given)
-    for position, port in enumerate(topology.network.ports):
+    for position in range(len(topology.network.ports)):
         a, b = port_nodes(topology, position)
         if topology.parts.of_node[a] == topology.parts.of_node[b]:
             drives.append(Drive(-1, out_of=b, into=a))
@@ -134,40 +135,3 @@ def _observe(
 
     phasors = Phasors(topology, band.s.imag, voltage, current, between)
     return np.stack([evaluate(phasors, item) for item in asked], axis=1) if asked else np.empty((len(z), 0))
-
-
-def _open_ends(band: Band, open_ends: Undetermined) -> list[Finding]:
-    findings = []
-    if open_ends.nodes.size:
-        findings.append(
-            Finding(
-                "UNDEFINED_POTENTIAL", Severity.WARNING, field="elements",
-                message=f"nodes {node_list(band.tree, open_ends.nodes)} are cut off by open switches; their voltages are NaN",
-            )
-        )  # fmt: skip
-    if open_ends.currents.size:
-        names = dict.fromkeys(band.tree.topology.names[k] for k in open_ends.currents)
-        findings.append(
-            Finding(
-                "UNDETERMINED_CURRENT", Severity.WARNING, field="elements",
-                message=f"the current shared by {', '.join(map(repr, names))} is undetermined, for they close a loop "
-                "without resistance; their currents are NaN; give one of them the resistance it has",
-            )
-        )  # fmt: skip
-    return findings
-
-
-def _singular(band: Band, frequency_hz: float, s: complex, open_ends: Undetermined) -> Finding:
-    if open_ends.nothing:
-        what = f"{suspects(band.tree, s)} carry a resonance without loss or a current that nothing determines"
-    elif open_ends.contradiction:
-        what = open_ends.contradiction
-    elif open_ends.nodes.size:
-        what = f"nodes {node_list(band.tree, open_ends.nodes)} hang on capacitors alone"
-    else:
-        names = dict.fromkeys(band.tree.topology.names[k] for k in open_ends.currents)
-        what = f"{', '.join(map(repr, names))} close a loop without resistance"
-    return Finding(
-        "SINGULAR_AT_FREQUENCY", Severity.WARNING, field="frequency_hz",
-        message=f"at {frequency_hz:.9g} Hz the network has no unique solution: {what}", measured=frequency_hz,
-    )  # fmt: skip

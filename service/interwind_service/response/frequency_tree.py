@@ -124,7 +124,6 @@ def frequency_tree(
     component = components(nodes, topology.start[conducting], topology.finish[conducting])
     paths = path_matrix(nodes, topology.start, topology.finish, tree)
     Q = (paths[topology.start] - paths[topology.finish]).T
-    T = len(tree)
 
     columns = tree.tolist()
     groups = []

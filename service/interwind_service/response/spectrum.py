@@ -25,7 +25,8 @@ class Band:
     """Frequencies solved in one tree.
 
     ``index`` (f,) positions in the list asked for; ``s`` (f,) = jω; ``Z`` (f, columns, drives), one column of solutions
-    per unit of each drive, NaN where singular; ``residual``, ``condition`` (f,).
+    per unit of each drive, NaN where singular; ``residual``, ``condition`` (f,). An entry of Z below
+    ε ``scale`` (f, columns) times ``largest`` (f, drives) is rounding noise.
     """
 
     tree: FrequencyTree
@@ -34,6 +35,8 @@ class Band:
     Z: ComplexArray
     residual: FloatArray
     condition: FloatArray
+    scale: FloatArray
+    largest: FloatArray
 
 
 def checked_frequencies(frequency_hz: object) -> FloatArray:
@@ -84,4 +87,6 @@ def solve_band(tree: FrequencyTree, index: NDArray[np.int64], s: ComplexArray) -
     Z = np.empty((len(s), M.shape[2], len(tree.drives)), dtype=np.complex128)
     Z[:, unknown] = answer.x
     Z[:, tree.known] = tree.imposed
-    return Band(tree, index, s, Z, answer.residual, answer.condition)
+    scale = np.zeros((len(s), M.shape[2]))
+    scale[:, unknown] = answer.scale
+    return Band(tree, index, s, Z, answer.residual, answer.condition, scale, answer.largest)
