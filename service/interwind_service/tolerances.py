@@ -130,11 +130,10 @@ MAX_WAVEFORM_CORNERS = 4_000_000
 
 IDEAL_EPSILON = 1e-9  # ideal 0 ohm and 0 S stand as this times Z0 and 1/Z0; smaller loses lossless loops, larger shows
 PERFECT_COUPLING_FACTOR = 1e-11  # eigenvalues of a coupling matrix below this carry no state of their own
-COUPLING_ROUNDING = 1e-10  # eigenvalues of a coupling matrix above minus this are rounding, not impossibility
 DEPENDENT_ROW = 1e-9  # a unit voltage row that keeps less than this beside the others closes a loop
 SINGULAR_TABLEAU = 1e-30  # reciprocal condition after scaling; ε networks reach 1e-20 and are solved well all the same
 NULL_MEMBER = 1e-3  # share of the null vector from which an element is named
-EQUILIBRATION_PASSES = 4  # row and column passes; more change no exponent
+MODAL_EQUILIBRATION_PASSES = 4  # row and column passes; more change no exponent
 CONJUGATE_PAIR = 1e-6  # relative distance at which two eigenvalues are one pair
 NEAR_RESONANCE = 3e-3  # |λ - s| span below which drive and mode are joined by Taylor terms; else 1e-13 would be lost
 RESONANCE_TERMS = 6  # powers of t in that series; the next is 3e-3^6 / 7!

@@ -16,7 +16,7 @@ FloatArray = NDArray[np.float64]
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Corners:
-    """From ``time_s[j]`` on the value is ``value[j]`` + ``slope_per_s[j]`` (t − time_s[j]); the first time is at or before 0."""
+    """From ``time_s[j]`` on the value is ``value[j]`` + ``slope_per_s[j]`` (t − time_s[j]); ``time_s[0]`` <= 0."""
 
     time_s: FloatArray
     value: FloatArray

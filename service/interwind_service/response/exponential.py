@@ -1,8 +1,8 @@
 """Matrix exponentials that keep slow modes beside fast ones, and the Gramian of a flow.
 
-The flow is y' = M y. A ladder holds E_j = e^(M span/2^j) − I for j = 0, 1, .. until |M| span/2^j is small; every rung comes
-from the finer one by Y <- 2Y + Y Y, so that a mode of rate λ keeps its own relative accuracy however fast its neighbours
-are (Moler & Van Loan 1978, scaling and squaring applied to e^X − I).
+The flow is y' = M y. A ladder holds E_j = e^(M span/2^j) − I for j = 0, 1, .. until |M| span/2^j is small; every rung
+comes from the finer one by Y <- 2Y + Y Y, so that a mode of rate λ keeps its own relative accuracy however fast its
+neighbours are (Moler & Van Loan 1978, scaling and squaring applied to e^X − I).
 """
 
 from __future__ import annotations
@@ -63,8 +63,8 @@ class Ladder:
     ) -> FloatArray:
         """Return e^(M duration) applied to each state; each duration is below span/2^from_level.
 
-        ``states`` shape (count, n), ``duration_s`` shape (count,). Binary digits of the duration choose the rungs, a Taylor
-        series does the rest. ``gram`` takes the Gramian of the way.
+        ``states`` shape (count, n), ``duration_s`` shape (count,). Binary digits of the duration choose the rungs, a
+        Taylor series does the rest. ``gram`` takes the Gramian of the way.
         """
         states = states.copy()
         fraction = duration_s * (2.0**from_level / self.span)
@@ -95,8 +95,8 @@ class Ladder:
 class Gramian:
     """∫ y y' dt along pieces of a flow, each a state that runs for span/2^level, s.
 
-    Pieces of one level are summed as y y'; a coarse piece is two finer ones, G + E G E', and the finest is integrated by
-    Gauss's rule on e^(M t). All terms are positive semidefinite: nothing cancels.
+    Pieces of one level are summed as y y'; a coarse piece is two finer ones, G + E G E', and the finest is integrated
+    by Gauss's rule on e^(M t). All terms are positive semidefinite: nothing cancels.
     """
 
     def __init__(self, ladder: Ladder) -> None:

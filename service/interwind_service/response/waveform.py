@@ -1,14 +1,14 @@
 """Waveforms as generators: ξ' = S ξ, u = h ξ between events, ξ known in closed form at every instant.
 
-Constants, sines, exponentials and t^n e^(−t/τ) are generators of 1, 2, 1 and n + 1 states; everything made of straight
-lines is a generator (value, slope) whose state changes at its corners, the events. So every drive is exact at any instant,
-and a run never depends on how its output grid falls on the waveform (Van Loan 1978).
+Constants, sines, exponentials and t^n e^(−t/τ) are generators of 1, 2, 1 and n + 1 states; everything made of
+straight lines is a generator (value, slope) whose state changes at its corners, the events. So every drive is exact at
+any instant, and a run never depends on how its output grid falls on the waveform (Van Loan 1978).
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable, Hashable
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
@@ -20,28 +20,28 @@ from interwind_service.response.impulse_shapes import SHAPES
 
 FloatArray = NDArray[np.float64]
 _LINE = np.array([[0.0, 1.0], [0.0, 0.0]])
-_NO_EVENTS = np.empty(0)
 
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Channel:
     """One generator and how its source reads it.
 
-    ``matrix`` S (g, g), 1/s; ``output`` h (g,); ``state`` maps times (T,) to ξ (T, g), limits from the right; ``events``
-    (E,) rising, s, where ξ changes otherwise than by S; channels of one ``key`` are one generator (None: its own).
+    ``matrix`` S (g, g), 1/s; ``output`` h (g,); ``state`` maps times (T,) to ξ (T, g), limits from the right;
+    ``events`` (E,) rising, s, where ξ changes otherwise than by S; channels of one ``key`` are one generator (None: its
+    own).
     """
 
     matrix: FloatArray
     output: FloatArray
     state: Callable[[FloatArray], FloatArray]
-    events: FloatArray = _NO_EVENTS
+    events: FloatArray = field(default_factory=lambda: np.empty(0))
     key: Hashable = None
 
 
 def channels_of(waveform: wf.Waveform, stop_s: float, step_s: float) -> list[Channel]:
     """Return the generators whose outputs add up to a waveform from 0 to ``stop_s``.
 
-    Corners within rounding of a multiple of ``step_s`` are put on it, so that a sample there is the limit from the right.
+    Corners within rounding of a multiple of ``step_s`` are put on it: a sample there is the limit from the right.
 
     Raises
     ------
@@ -113,7 +113,7 @@ def _exponential(amplitude: float, rate: float) -> Channel:
 
 
 def _power(amplitude: float, power: int, decay_s: float) -> Channel:
-    """amplitude (t/decay)^power e^(−t/decay): a Jordan chain of power + 1 states."""
+    """Amplitude (t/decay)^power e^(−t/decay): a Jordan chain of power + 1 states."""
     orders = np.arange(power + 1)
     matrix = (np.diag(orders[1:].astype(float), -1) - np.eye(power + 1)) / decay_s
     output = np.zeros(power + 1)
@@ -164,13 +164,13 @@ def _until(channel: Channel, end: FloatArray) -> Channel:
 
 
 def _finite(waveform: wf.Waveform, *fields: str) -> None:
-    for field in fields:
-        if not np.isfinite(getattr(waveform, field)):
-            raise InvalidRequest.at(field, f"{getattr(waveform, field)!r} found; a finite number is expected")
+    for name in fields:
+        if not np.isfinite(getattr(waveform, name)):
+            raise InvalidRequest.at(name, f"{getattr(waveform, name)!r} found; a finite number is expected")
 
 
 def _positive(waveform: wf.Waveform, *fields: str) -> None:
-    for field in fields:
-        value = getattr(waveform, field)
+    for name in fields:
+        value = getattr(waveform, name)
         if not (np.isfinite(value) and value > 0.0):
-            raise InvalidRequest.at(field, f"{value!r} found; a finite time above 0 is expected")
+            raise InvalidRequest.at(name, f"{value!r} found; a finite time above 0 is expected")

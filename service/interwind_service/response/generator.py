@@ -1,0 +1,95 @@
+"""All sources of a network as one generator ξ' = S ξ, u = U ξ, with the instants at which ξ changes otherwise."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+import scipy.linalg as sl
+from numpy.typing import NDArray
+
+from interwind.errors import InvalidNetwork, field_path
+from interwind.model.elements import CurrentSource, VoltageSource
+from interwind.model.waveform import Waveform
+from interwind_service.network.topology import Topology
+from interwind_service.response.waveform import Channel, channels_of
+from interwind_service.tolerances import FORCED_CURRENT_ROUNDING
+
+FloatArray = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Generator:
+    """``S`` (g, g), 1/s; ``U`` (inputs, g); ``events`` (E,) rising, distinct, s."""
+
+    S: FloatArray
+    U: FloatArray
+    events: FloatArray
+    states: tuple[Callable[[FloatArray], FloatArray], ...]
+
+    def state(self, time_s: FloatArray) -> FloatArray:
+        """Return ξ at times (T,), shape (T, g), limits from the right."""
+        if not self.states:
+            return np.zeros((len(time_s), 0))
+        return np.hstack([state(time_s) for state in self.states])
+
+    def before(self, events: FloatArray) -> FloatArray:
+        """Return ξ just before each event, shape (E, g)."""
+        return self.state(np.nextafter(events, -np.inf))
+
+
+def generator_of(topology: Topology, stop_s: float, step_s: float) -> Generator:
+    """Join the waveforms of all independent sources; equal generators are shared.
+
+    Raises
+    ------
+    InvalidRequest : a waveform number outside its domain, by its path.
+    InvalidNetwork : current is driven into a part of the network without a return.
+    """
+    sources: list[list[Channel]] = []
+    for branch in topology.input_branch.tolist():
+        position = int(topology.element[branch])
+        element = topology.network.elements[position]
+        waveform: Waveform | None = element.waveform if isinstance(element, VoltageSource | CurrentSource) else None
+        with field_path(f"elements[{position}].waveform"):
+            sources.append([] if waveform is None else channels_of(waveform, stop_s, step_s))
+    generator = _join(sources, stop_s)
+    forced = topology.parts.forced @ generator.U
+    if forced.size and np.abs(forced).max() > FORCED_CURRENT_ROUNDING * np.abs(generator.U).max(initial=0.0):
+        part = int(np.argmax(np.abs(forced).max(axis=1)))
+        inside = [topology.nodes[k] for k in np.flatnonzero(topology.parts.of_node == part)][:8]
+        raise InvalidNetwork.at(
+            "elements",
+            f"current is driven into the part of nodes {', '.join(inside)}, which has no return path; connect it to "
+            f"{topology.network.reference!r} or drive as much out of it",
+            reason="FORCED_CURRENT",
+        )
+    return generator
+
+
+def _join(sources: Sequence[Sequence[Channel]], stop_s: float) -> Generator:
+    matrices: list[FloatArray] = []
+    states: list[Callable[[FloatArray], FloatArray]] = []
+    events: list[FloatArray] = [np.zeros(0)]
+    place: dict[object, slice] = {}
+    reads: list[tuple[int, slice, FloatArray]] = []
+    size = 0
+    for source, channels in enumerate(sources):
+        for channel in channels:
+            where = place.get(channel.key) if channel.key is not None else None
+            if where is None:
+                where = slice(size, size + len(channel.matrix))
+                size = where.stop
+                matrices.append(channel.matrix)
+                states.append(channel.state)
+                events.append(channel.events)
+                if channel.key is not None:
+                    place[channel.key] = where
+            reads.append((source, where, channel.output))
+    U = np.zeros((len(sources), size))
+    for source, where, output in reads:
+        U[source, where] += output
+    times = np.unique(np.concatenate(events))
+    S = sl.block_diag(*matrices) if matrices else np.zeros((0, 0))
+    return Generator(S, U, times[(times > 0.0) & (times <= stop_s)], tuple(states))

@@ -1,0 +1,246 @@
+"""Exact propagation of a flow y' = M y over a uniform grid, in blocks of steps by matrix products.
+
+y = (x, ξ), x the states of the network, ξ those of its drives. ξ is known beforehand at every instant, so only x is
+carried: over a block without events the samples are one product with the block's observability matrix and the starts of
+all blocks follow from a doubling scan. Blocks with events step through together, one grid step of all of them at a
+time, and a step with events inside takes the exact response between its events. No step error enters at any step size.
+
+References: Van Loan 1978 (integrals of the exponential); Hillis & Steele 1986 (the scan).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind_service import tolerances as tol
+from interwind_service.response.exponential import Gramian, Ladder
+from interwind_service.response.generator import Generator
+
+FloatArray = NDArray[np.float64]
+IntArray = NDArray[np.int64]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class EventSteps:
+    """Events by grid step: step k runs from k h to (k + 1) h and owns the events in (k h, (k + 1) h].
+
+    ``steps`` (K,) rising, distinct; ``inside`` : the events strictly inside, as (step, time) rows sorted by time.
+    """
+
+    steps: IntArray
+    inside_step: IntArray
+    inside_time: FloatArray
+
+    @classmethod
+    def of(cls, events: FloatArray, step_s: float) -> EventSteps:
+        """Sort events into the steps of a grid."""
+        nearest = np.rint(events / step_s)
+        on_grid = nearest * step_s == events
+        below = np.floor(events / step_s)
+        below = np.where(below * step_s > events, below - 1.0, below)
+        below = np.where((below + 1.0) * step_s <= events, below + 1.0, below)
+        step = np.where(on_grid, nearest - 1.0, below).astype(np.int64)
+        return cls(np.unique(step), step[~on_grid], events[~on_grid])
+
+
+class Propagation:
+    """One run of ``steps`` grid steps of ``step_s`` from x = ``start``; iterate `rows` once, then read the totals.
+
+    Parameters
+    ----------
+    matrix : M, shape (n + g, n + g), 1/s; the last g states are those of ``generator``.
+    generator : ξ at every instant, and the events.
+    start : x(0+), shape (n,).
+    readout : rows of the samples, shape (p, n + g).
+    """
+
+    def __init__(
+        self,
+        matrix: FloatArray,
+        generator: Generator,
+        start: FloatArray,
+        readout: FloatArray,
+        *,
+        step_s: float,
+        steps: int,
+    ) -> None:
+        self.generator, self.readout, self.step_s, self.steps = generator, readout, step_s, steps
+        self.n, self.size = len(start), len(matrix)
+        self._x = start.astype(np.float64)
+        width = max(1, len(readout)) * self.size
+        block_bits = int(np.clip(np.log2(tol.BLOCK_ENTRIES / width), tol.LEAST_BLOCK_BITS, tol.MOST_BLOCK_BITS))
+        self._block_bits = min(block_bits, max(0, int(np.ceil(np.log2(max(steps, 1))))))
+        block = 1 << self._block_bits
+        self.block = block
+        chunk_bits = int(max(0.0, np.log2(max(1.0, tol.CHUNK_ENTRIES / (block * max(len(readout), self.size))))))
+        self._chunk_bits = min(chunk_bits, max(0, int(np.ceil(np.log2(max(1.0, steps / block))))))
+        self.chunk = 1 << self._chunk_bits
+        step_level = self._chunk_bits + self._block_bits
+        self.ladder = Ladder.of(matrix, step_s * block * self.chunk, least_depth=step_level)
+        self.gram = Gramian(self.ladder)
+        self.step_level = step_level
+        self._step = self.ladder.transition(step_level)
+        self._block = self.ladder.transition(self._chunk_bits)
+        self._observe = _observability(readout, self.ladder, step_level, self._block_bits)
+        self.events = EventSteps.of(generator.events, step_s)
+        self.end = np.concatenate((self._x, generator.state(np.zeros(1))[0]))
+
+    def rows(self) -> Iterator[FloatArray]:
+        """Yield the samples 0 .. steps in order, in pieces of shape (any, p)."""
+        for first in range(0, self.steps, self.block * self.chunk):
+            yield self._advance_chunk(first)
+        yield (self.readout @ self.end)[None]
+
+    def gramian(self) -> FloatArray:
+        """Return ∫ y yᵀ dt over the run, shape (n + g, n + g)."""
+        return self.gram.total()
+
+    def _advance_chunk(self, first: int) -> FloatArray:
+        blocks = min(self.chunk, -(-(self.steps - first) // self.block))
+        starts = first + self.block * np.arange(blocks)
+        xi = self.generator.state(starts * self.step_s)
+        stop = min(self.steps, first + blocks * self.block)
+        low, high = np.searchsorted(self.events.steps, (first, stop))
+        eventful = self.events.steps[low:high]
+        stepped = np.zeros(blocks, dtype=bool)
+        stepped[(eventful - first) // self.block] = True
+        stepped[-1] |= stop < first + blocks * self.block
+        walk = _Walk(self, first, stop, np.flatnonzero(stepped), eventful) if stepped.any() else None
+
+        n = self.n
+        ends = np.empty((blocks + 1, n))
+        ends[0] = self._x
+        ends[1:] = xi @ self._block[:n, n:].T
+        if walk is not None:
+            at_rest = np.hstack((np.zeros((len(walk.blocks), n)), xi[walk.blocks]))
+            ends[walk.blocks + 1] = walk.go(at_rest)[:, :n]
+        for bit in range(self._chunk_bits + 1):
+            shift = 1 << bit
+            if shift > blocks:
+                break
+            ends[shift:] += ends[:-shift] @ self.ladder.transition(self._chunk_bits - bit)[:n, :n].T
+        y = np.hstack((ends[:-1], xi))
+
+        samples = np.empty((blocks, self.block, len(self.readout)))
+        smooth = np.flatnonzero(~stepped)
+        if smooth.size:
+            own = y if smooth.size == blocks else y[smooth]
+            self.gram.add(self._chunk_bits, own)
+            samples[smooth] = (own @ self._observe).reshape(len(smooth), self.block, -1)
+        end_state = np.concatenate((ends[-1], np.zeros(self.size - n)))
+        if walk is not None:
+            last = walk.go(y[walk.blocks], samples)
+            if walk.blocks[-1] == blocks - 1:
+                end_state = last[-1].copy()
+        self._x = end_state[:n]
+        end_state[n:] = self.generator.state(np.array([stop * self.step_s]))[0]
+        self.end = end_state
+        return samples.reshape(blocks * self.block, -1)[: stop - first]
+
+
+class _Walk:
+    """Blocks that are stepped through, all together: those with events and a last one that is not full."""
+
+    def __init__(self, run: Propagation, first: int, stop: int, blocks: IntArray, eventful: IntArray) -> None:
+        self.run, self.first, self.stop, self.blocks = run, first, stop, blocks
+        place = np.full(int(blocks[-1]) + 1, -1, dtype=np.int64)
+        place[blocks] = np.arange(len(blocks))
+        self.row = place[(eventful - first) // run.block]
+        self.local = (eventful - first) % run.block
+        self.after = run.generator.state((eventful + 1) * run.step_s)
+        low, high = np.searchsorted(run.events.inside_step, (first, stop))
+        step, time_s = run.events.inside_step[low:high], run.events.inside_time[low:high]
+        self.pieces = _Pieces(run, step, time_s)
+        self.kinked = np.searchsorted(eventful, self.pieces.steps)
+        self.forced = np.zeros((len(eventful), run.n))
+        self.forced[self.kinked] = self.pieces.forced()
+        self.is_kinked = np.zeros(len(eventful), dtype=bool)
+        self.is_kinked[self.kinked] = True
+        self.by_local = np.argsort(self.local, kind="stable")
+        self.bounds = np.searchsorted(self.local[self.by_local], np.arange(run.block + 1))
+
+    def go(self, y: FloatArray, samples: FloatArray | None = None) -> FloatArray:
+        """Step from the starts of the blocks to their ends; with ``samples``, fill in theirs and gather the Gramian."""
+        run, n = self.run, self.run.n
+        steps = np.minimum(run.block, self.stop - (self.first + self.blocks * run.block))
+        move = run._step.T
+        at_kinks = np.zeros((len(self.local), n))
+        for local in range(int(steps.max())):
+            owned = self.by_local[self.bounds[local] : self.bounds[local + 1]]
+            kinked = owned[self.is_kinked[owned]]
+            if samples is not None:
+                samples[self.blocks, local] = y @ run.readout.T
+                whole = steps > local
+                whole[self.row[kinked]] = False
+                run.gram.add(run.step_level, y if whole.all() else y[whole])
+                at_kinks[kinked] = y[self.row[kinked], :n]
+            moved = y @ move
+            if owned.size:
+                if kinked.size:
+                    row = self.row[kinked]
+                    moved[row, :n] = y[row, :n] @ move[:n, :n] + self.forced[kinked]
+                moved[self.row[owned], n:] = self.after[owned]
+            if steps[-1] <= local:
+                moved[-1] = y[-1]
+            y = moved
+        if samples is not None and len(self.kinked):
+            self.pieces.gather(at_kinks[self.kinked])
+        return y
+
+
+class _Pieces:
+    """The pieces between the events of each step that has some strictly inside."""
+
+    def __init__(self, run: Propagation, step: IntArray, time_s: FloatArray) -> None:
+        self.run = run
+        self.steps, first, self.count = np.unique(step, return_index=True, return_counts=True)
+        order = np.arange(len(step)) + np.searchsorted(self.steps, step) + 1
+        begin = np.empty(len(step) + len(self.steps))
+        begin[order] = time_s
+        self.head = first + np.arange(len(first))
+        begin[self.head] = self.steps * run.step_s
+        self.begin = begin
+        self.owner = np.repeat(np.arange(len(self.steps)), self.count + 1)
+        end = np.append(begin[1:], 0.0)
+        tail = self.head + self.count
+        close = (self.steps + 1) * run.step_s
+        end[tail] = close
+        self.length = end - begin
+        self.rest = close[self.owner] - end
+        self.xi = run.generator.state(begin)
+
+    def forced(self) -> FloatArray:
+        """What the drives alone add to x over each step, shape (steps, n)."""
+        run, n = self.run, self.run.n
+        total = np.zeros((len(self.steps), n))
+        if not len(self.steps):
+            return total
+        state = np.hstack((np.zeros((len(self.begin), n)), self.xi))
+        state = run.ladder.advance(state, self.length, from_level=run.step_level)
+        state[:, n:] = 0.0
+        state = run.ladder.advance(state, self.rest, from_level=run.step_level)
+        np.add.at(total, self.owner, state[:, :n])
+        return total
+
+    def gather(self, x: FloatArray) -> None:
+        """Add the Gramian of these steps, x (steps, n) being the states at their starts."""
+        run, n = self.run, self.run.n
+        for order in range(int(self.count.max()) + 1):
+            rows = np.flatnonzero(self.count >= order)
+            piece = self.head[rows] + order
+            state = np.hstack((x[rows], self.xi[piece]))
+            moved = run.ladder.advance(state, self.length[piece], from_level=run.step_level, gram=run.gram)
+            x = x.copy()
+            x[rows] = moved[:, :n]
+
+
+def _observability(readout: FloatArray, ladder: Ladder, step_level: int, bits: int) -> FloatArray:
+    """Samples of a block from its start: shape (size, block p), column i p + j is output j after i steps."""
+    rows = readout
+    for bit in range(bits):
+        rows = np.vstack((rows, rows @ ladder.transition(step_level - bit)))
+    return np.ascontiguousarray(rows.T)
