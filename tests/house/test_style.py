@@ -116,3 +116,14 @@ def test_no_boolean_by_position(modules):
                 flags = [a.arg for a in positional if isinstance(a.annotation, ast.Name) and a.annotation.id == "bool"]
                 offenders.extend(f"{name}:{node.lineno} {node.name}({flag})" for flag in flags)
     assert [] == offenders
+
+
+def test_no_threshold_is_named_twice(modules):
+    """A second assignment of the same name would silently change the first one's value."""
+    names = [
+        node.targets[0].id
+        for node in modules["interwind_service.tolerances"].body
+        if isinstance(node, ast.Assign) and isinstance(node.targets[0], ast.Name)
+    ]
+
+    assert len(set(names)) == len(names)
