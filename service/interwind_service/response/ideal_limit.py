@@ -1,0 +1,128 @@
+"""What stands in for ideal elements: 0 ohm becomes ε Z0, 0 S becomes ε / Z0, with ε told in the evidence.
+
+The same pair cuts the two structures in which states would jump with every source: loops of capacitors and voltage
+sources get ε Z0 in series, cutsets of inductors and current sources ε / Z0 across. A jump is then a transient far
+shorter than anything in the network, in which flux and charge are conserved by Kirchhoff's laws themselves, and what
+it loses is dissipated where it can be counted (Heemels, Çamlıbel & Schumacher 2002 give the limit).
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.errors import InvalidNetwork, InvalidWindings
+from interwind_service import tolerances as tol
+from interwind_service.network.forest import components
+from interwind_service.network.groups import WindingGroup
+from interwind_service.network.kind import Kind
+from interwind_service.network.topology import Topology
+from interwind_service.network.winding_coordinates import winding_coordinates
+
+FloatArray = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class IdealLimit:
+    """``short_ohm``, ``open_ohm`` for ideal elements; ``series_ohm`` (branches,) in loops; ``leaks`` (node, S) at cutsets."""
+
+    short_ohm: float
+    open_ohm: float
+    series_ohm: FloatArray
+    leaks: tuple[tuple[int, float], ...]
+
+    def winding_resistance(self, group: WindingGroup) -> FloatArray:
+        """Return R of a group; perfectly coupled windings without resistance get ε Z0, for they close loops by flux."""
+        resistance = group.resistance_ohm.copy()
+        if winding_factor(group).shape[1] < group.size:
+            bare = np.flatnonzero(resistance.diagonal() == 0.0)
+            resistance[bare, bare] = self.short_ohm
+        return resistance
+
+
+def winding_factor(group: WindingGroup) -> FloatArray:
+    """Return S, shape (n, rank), with L = S S', from the coordinates that keep the digits of each leakage.
+
+    Raises
+    ------
+    InvalidWindings : the inductance matrix has a negative pivot beyond rounding.
+    """
+    coordinates = winding_coordinates(group)
+    inverse = np.linalg.inv(coordinates.N)
+    if coordinates.rank == group.size:
+        try:
+            return inverse.T @ np.linalg.cholesky(coordinates.S)
+        except np.linalg.LinAlgError as error:
+            raise InvalidWindings.at(
+                f"elements[{group.position}].windings",
+                "the coupling matrix has an eigenvalue below 0; check() names the entry to blame",
+            ) from error
+    leakage = coordinates.S.diagonal()
+    kept = leakage > 0.0
+    return inverse.T[:, kept] * np.sqrt(leakage[kept])
+
+
+def ideal_limit_of(topology: Topology, time_scale_s: float, epsilon: float = tol.IDEAL_EPSILON) -> IdealLimit:
+    """Choose the impedance scale Z0 = geometric mean of the resistances and of L / time scale, and find the structures."""
+    resistances = topology.value[topology.of_kind(Kind.RESISTOR)]
+    inductances = [topology.value[k] for k in topology.of_kind(Kind.INDUCTOR)]
+    inductances += [max(group.inductance_h.diagonal()) for group in topology.groups]
+    scales = [value for value in resistances if value > 0.0]
+    scales += [2.0 * np.pi * value / time_scale_s for value in inductances if value > 0.0]
+    scales = scales or [1.0]
+    z0 = float(np.exp(np.mean(np.log(scales))))
+    short, leak = epsilon * z0, epsilon / z0
+    return IdealLimit(short, z0 / epsilon, _loop_resistance(topology, short), _cutset_leaks(topology, leak))
+
+
+def _loop_resistance(topology: Topology, short_ohm: float) -> FloatArray:
+    """Give a series resistance to each capacitor or transformer whose voltage the ones before it already fix."""
+    series = np.zeros(len(topology.kind))
+    incidence = topology.incidence().T
+    incidence[:, topology.parts.reference] = 0.0
+    rows: list[tuple[int, FloatArray]] = [(int(k), incidence[k]) for k in topology.of_kind(Kind.VOLTAGE_SOURCE)]
+    for control in topology.controls:
+        if topology.kind[control.branch] == Kind.CONTROLLED_VOLTAGE:
+            row = incidence[control.branch].copy()
+            if control.sensed < 0:
+                row[control.start] -= control.gain
+                row[control.finish] += control.gain
+            rows.append((control.branch, row))
+    for pair in topology.transformers:
+        rows.append((pair.first, incidence[pair.first] - pair.ratio * incidence[pair.second]))
+    capacitors = [int(k) for k in topology.of_kind(Kind.CAPACITOR) if topology.value[k] > 0.0]
+    rows += [(k, incidence[k]) for k in sorted(capacitors, key=lambda k: -topology.value[k])]
+    basis: list[FloatArray] = []
+    for branch, row in rows:
+        norm = np.linalg.norm(row)
+        rest = row / norm if norm else row
+        for _ in range(2):  # twice is enough (Parlett 1980)
+            for direction in basis:
+                rest = rest - direction * (direction @ rest)
+        if np.linalg.norm(rest) > tol.DEPENDENT_ROW:
+            basis.append(rest / np.linalg.norm(rest))
+        elif topology.kind[branch] in (Kind.CAPACITOR, Kind.TRANSFORMER):
+            series[branch] = short_ohm
+        else:
+            raise InvalidNetwork.at(
+                f"elements[{topology.element[branch]}]",
+                f"{topology.names[branch]!r} closes a loop of voltage sources; their voltages contradict or their "
+                "currents have no value; put a resistance into the loop",
+            )
+    return series
+
+
+def _cutset_leaks(topology: Topology, leak_s: float) -> tuple[tuple[int, float], ...]:
+    """Leak each set of nodes that only inductors, windings, transformers or current sources reach."""
+    conducting = np.isin(topology.kind, [Kind.RESISTOR, Kind.CAPACITOR, Kind.VOLTAGE_SOURCE, Kind.SWITCH, Kind.DIODE])
+    conducting &= ~((topology.kind == Kind.CAPACITOR) & (topology.value == 0.0))
+    conducting |= (topology.kind == Kind.INDUCTOR) & (topology.value == 0.0)
+    of_node = components(len(topology.nodes), topology.start[conducting], topology.finish[conducting])
+    held = {int(of_node[node]) for node in topology.parts.reference}
+    leaks = []
+    for component in range(int(of_node.max()) + 1):
+        if component not in held:
+            leaks.append((int(np.flatnonzero(of_node == component)[0]), leak_s))
+    return tuple(leaks)

@@ -1,0 +1,128 @@
+"""A trajectory: the segments of a run, each a modal sum, and whatever is read from it: samples, integrals, peaks."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind_service import tolerances as tol
+from interwind_service.response.piece import Piece
+
+FloatArray = NDArray[np.float64]
+ComplexArray = NDArray[np.complex128]
+IntArray = NDArray[np.int64]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Rows:
+    """Rows over the signals y = (s, x) with a constant: ``over`` (r, m + n), ``offset`` (r,)."""
+
+    over: FloatArray
+    offset: FloatArray
+
+    def coefficients(self, piece: Piece, kappa: ComplexArray, w: ComplexArray) -> ComplexArray:
+        """Return the rows as sums over the basis of each segment, shape (segments, r, h + b)."""
+        modes = piece.modes
+        free = (self.over @ modes.signal)[None] * kappa[:, None, :]
+        forced = np.tensordot(self.over, modes.forced, axes=1)
+        constant = int(np.flatnonzero((modes.exponent == 0.0) & (modes.power == 0))[0])
+        forced[:, constant, 0] += self.offset
+        return np.concatenate([free, np.tensordot(w, forced, axes=(1, 2))], axis=2)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Group:
+    """All segments of one piece: positions in the run, starts, spans, amplitudes κ (S, h), drives w (S, k)."""
+
+    piece: Piece
+    position: IntArray
+    start_s: FloatArray
+    span_s: FloatArray
+    kappa: ComplexArray
+    w: ComplexArray
+
+    def part(self, chosen: IntArray | slice) -> Group:
+        """Return some of the segments."""
+        return Group(
+            self.piece, self.position[chosen], self.start_s[chosen], self.span_s[chosen], self.kappa[chosen],
+            self.w[chosen],
+        )  # fmt: skip
+
+
+@dataclass(slots=True, eq=False)
+class Trajectory:
+    """Segments in order, and the changes of device modes (time, device, new mode)."""
+
+    piece: list[Piece] = field(default_factory=list)
+    start_s: list[float] = field(default_factory=list)
+    span_s: list[float] = field(default_factory=list)
+    kappa: list[ComplexArray] = field(default_factory=list)
+    w: list[ComplexArray] = field(default_factory=list)
+    changes: list[tuple[float, int, int]] = field(default_factory=list)
+
+    def add(self, piece: Piece, start_s: float, span_s: float, kappa: ComplexArray, w: ComplexArray) -> None:
+        """Append one segment."""
+        self.piece.append(piece)
+        self.start_s.append(start_s)
+        self.span_s.append(span_s)
+        self.kappa.append(kappa)
+        self.w.append(w)
+
+    def groups(self, limit: int = tol.SEGMENTS_TOGETHER) -> Iterator[Group]:
+        """Yield the segments by piece, at most ``limit`` at once."""
+        members: dict[int, list[int]] = {}
+        for position, piece in enumerate(self.piece):
+            members.setdefault(id(piece), []).append(position)
+        start, span = np.array(self.start_s), np.array(self.span_s)
+        for positions in members.values():
+            for first in range(0, len(positions), limit):
+                own = np.array(positions[first : first + limit])
+                yield Group(
+                    self.piece[own[0]],
+                    own,
+                    start[own],
+                    span[own],
+                    np.array([self.kappa[k] for k in own]),
+                    np.array([self.w[k] for k in own]),
+                )
+
+    def segment_of(self, time_s: FloatArray, settle_s: float) -> tuple[IntArray, NDArray[np.bool_]]:
+        """Return the segment each sample belongs to, and whether it stands at an event (then: after what settles at once)."""
+        start = np.array(self.start_s)
+        own = np.maximum(np.searchsorted(start, time_s, side="right") - 1, 0)
+        end = float(start[-1] + self.span_s[-1])
+        near = np.minimum(np.searchsorted(start, time_s), len(start) - 1)
+        rounding = tol.SAME_INSTANT * end
+        at_event = (np.abs(start[near] - time_s) <= rounding) | (np.abs(start[own] - time_s) <= rounding)
+        settled = np.maximum(np.searchsorted(start, time_s + settle_s, side="right") - 1, 0)
+        return np.where(at_event, settled, own), at_event
+
+    def samples(self, rows_of: dict[int, Rows] | Rows, time_s: FloatArray, settle_s: float) -> FloatArray:
+        """Return rows at instants, shape (T, r): limits from the right, a jump at an instant already made."""
+        segment, at_event = self.segment_of(time_s, settle_s)
+        order = np.argsort(segment, kind="stable")
+        width = (rows_of if isinstance(rows_of, Rows) else next(iter(rows_of.values()))).over.shape[0]
+        found = np.empty((len(time_s), width))
+        ranked = segment[order]
+        for group in self.groups():
+            first = np.searchsorted(ranked, group.position, side="left")
+            last = np.searchsorted(ranked, group.position, side="right")
+            counts = last - first
+            if not counts.any():
+                continue
+            which = np.repeat(np.arange(len(counts)), counts)
+            taken = order[np.concatenate([np.arange(a, b) for a, b in zip(first, last, strict=True) if b > a])]
+            rows = rows_of if isinstance(rows_of, Rows) else rows_of[group.piece.number]
+            coefficients = rows.coefficients(group.piece, group.kappa, group.w)
+            for low in range(0, len(taken), tol.SAMPLES_TOGETHER):
+                some, of = taken[low : low + tol.SAMPLES_TOGETHER], which[low : low + tol.SAMPLES_TOGETHER]
+                basis = group.piece.basis(time_s[some] - group.start_s[of])
+                gone = at_event[some]
+                if gone.any():
+                    dead = np.flatnonzero(group.piece.jump & (group.piece.speed * settle_s > tol.SETTLED))
+                    basis[np.ix_(gone, dead)] = 0.0
+                found[some] = np.einsum("tb,trb->tr", basis, coefficients[of]).real
+        return found
