@@ -24,10 +24,6 @@ UNITLESS = {
     "StandardImpulse": {"peak"},
     "DampedSine": {"amplitude"},
     "OffsetFaultCurrent": {"amplitude"},
-    "SampledRecord": {"value"},
-    "StandardImpulse": {"peak"},
-    "DampedSine": {"amplitude"},
-    "OffsetFaultCurrent": {"amplitude"},
     "DoubleList": {"values"},
     "InitialValue": {"value"},
     # Couplings, ratios, gains, scattering and exponents have none.

@@ -21,10 +21,11 @@ SAID = {
     "ComputeTimeResponse": "Client.time_response",
     "ComputePeriodicResponse": "Client.periodic_response",
     "SubmitBatch": "Client.submit_batch",
-    "GetBatch": "Batch.done",
+    "GetBatch": "Batch.progress",
     "ListBatches": "Client.batches",
-    "WatchBatch": "Batch.progress",
+    "WatchBatch": "Batch.watch",
     "StreamBatchResults": "Batch.result",
+    "SummarizeBatch": "Batch.summary",
     "CancelBatch": "Batch.cancel",
     "DeleteBatch": "Batch.delete",
     "PutArray": "Client.check",  # arrays too large for one message go this way by themselves, with any call
