@@ -4,6 +4,7 @@ Start with `connect`, `WindingSet` and `Network`; `InterwindError` is the root o
 """
 
 import interwind.codec  # noqa: F401  loads to_json and from_json
+from interwind.batch import Batch
 from interwind.client import Client, connect
 from interwind.errors import (
     AccuracyNotReached,
@@ -30,6 +31,7 @@ from interwind.errors import (
 from interwind.model.batch import (
     BatchProgress,
     BatchResult,
+    BatchRow,
     BatchState,
     BatchSummary,
     CheckAnalysis,
@@ -123,8 +125,10 @@ __all__ = [
     "AdaptiveSweep",
     "ArrayEvicted",
     "Arrester",
+    "Batch",
     "BatchProgress",
     "BatchResult",
+    "BatchRow",
     "BatchState",
     "BatchSummary",
     "Cancelled",

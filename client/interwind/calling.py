@@ -52,6 +52,11 @@ class Caller:
         self._closed = threading.Event()
         self._version_seen = False
 
+    @property
+    def retries(self) -> int:
+        """How often a pure call is sent again."""
+        return self._policy.retries
+
     def close(self) -> None:
         """Hang up; calls that run end as `Cancelled`."""
         self._closed.set()

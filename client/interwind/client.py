@@ -3,19 +3,23 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Callable, Sequence
+import uuid
+from collections.abc import Callable, Iterator, Sequence
 from importlib.metadata import version
 from types import TracebackType
 from typing import Any
 
 from numpy.typing import ArrayLike
 
+from interwind.batch import Batch, list_batches, submit
 from interwind.calling import Caller, Deadline
 from interwind.channel import DEFAULT_TIMEOUT_S, RetryPolicy, Target
 from interwind.codec.array import stored_arrays
+from interwind.codec.batch import Submission
 from interwind.codec.calls import BY_ENGINE
 from interwind.embedded import EmbeddedServer
 from interwind.errors import InterwindError, InvalidRequest, Unavailable
+from interwind.model.batch import Analysis, BatchProgress, CostForecast
 from interwind.model.characterization import Characterization
 from interwind.model.connection import Connection
 from interwind.model.identification import Identification
@@ -33,6 +37,7 @@ from interwind.model.response import (
     TimeResponse,
 )
 from interwind.model.server_info import ServerInfo
+from interwind.model.vary import Column
 from interwind.model.windings import WindingSet
 from interwind.uploads import ServerArrays
 from interwind.v1 import server_service_pb2
@@ -203,6 +208,34 @@ class Client:
         response: PeriodicResponse = self._call("periodic_response", arguments, timeout_s, progress)
         return response
 
+    def submit_batch(
+        self,
+        net: Network,
+        analysis: Analysis,
+        vary: Sequence[Column],
+        request_id: str | None = None,
+        *,
+        timeout_s: float = DEFAULT_TIMEOUT_S,
+    ) -> Batch:
+        """Store many variants of one network to be computed; the same ``request_id`` returns the same batch."""
+        submission = Submission(net, analysis, tuple(vary), request_id or str(uuid.uuid4()))
+        return Batch(self._caller, self._submit(submission, timeout_s).batch_id)
+
+    def forecast_batch(
+        self, net: Network, analysis: Analysis, vary: Sequence[Column], *, timeout_s: float = DEFAULT_TIMEOUT_S
+    ) -> CostForecast:
+        """Check a batch and say what it would take; nothing is stored."""
+        forecast = self._submit(Submission(net, analysis, tuple(vary), validate_only=True), timeout_s).forecast
+        return forecast or CostForecast()
+
+    def batch(self, batch_id: str) -> Batch:
+        """Take up a batch by its id, whoever submitted it with this token."""
+        return Batch(self._caller, batch_id)
+
+    def batches(self, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> Iterator[BatchProgress]:
+        """Yield the batches of this token, newest first."""
+        return list_batches(self._caller, Deadline(timeout_s))
+
     def server_info(self, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> ServerInfo:
         """Return versions, limits and what the workers do; answered at once, however busy they are."""
         deadline = Deadline(timeout_s)
@@ -226,12 +259,18 @@ class Client:
             return False
         return bool(answer == b"\x08\x01")  # status = SERVING
 
-    def _call(self, engine: str, arguments: dict[str, Any], timeout_s: float, progress: Progress | None = None) -> Any:
-        call, deadline = BY_ENGINE[engine], Deadline(timeout_s)
-        arrays = ServerArrays(
+    def _submit(self, submission: Submission, timeout_s: float) -> BatchProgress:
+        return submit(self._caller, submission, self._arrays, Deadline(timeout_s))
+
+    def _arrays(self, deadline: Deadline) -> ServerArrays:
+        return ServerArrays(
             lambda path, request, kind: self._caller.unary(path, request, kind, deadline),
             lambda path, request, kind: self._caller.stream(path, request, kind, deadline),
         )
+
+    def _call(self, engine: str, arguments: dict[str, Any], timeout_s: float, progress: Progress | None = None) -> Any:
+        call, deadline = BY_ENGINE[engine], Deadline(timeout_s)
+        arrays = self._arrays(deadline)
 
         def attempt() -> Any:
             with stored_arrays(arrays):

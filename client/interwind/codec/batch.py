@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -18,14 +18,18 @@ from interwind.codec.observable import (
     observables_from_messages,
     observables_to_messages,
 )
+from interwind.codec.stream import NamedArray, decode_stream, encode_stream
 from interwind.errors import InvalidRequest, field_path
 from interwind.model import batch as model
 from interwind.model import vary
+from interwind.model.finding import Evidence
 from interwind.model.network import Network
+from interwind.model.observables import Observable
 from interwind.model.response import SteadyStart
 from interwind.v1 import batch_pb2, batch_service_pb2, response_pb2
 
 STATUSES = tuple(model.VariantStatus)  # the wire numbers are 1 + the position
+_STATES = {batch_pb2.BatchState.Value(f"BATCH_STATE_{state.value}"): state for state in model.BatchState}
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -212,7 +216,7 @@ def progress_from_message(message: Any) -> model.BatchProgress:
     forecast = message.forecast
     return model.BatchProgress(
         batch_id=message.batch_id,
-        state=model.BatchState(batch_pb2.BatchState.Name(message.state).removeprefix("BATCH_STATE_")),
+        state=_STATES.get(message.state, model.BatchState.WAITING),
         variant_count=message.variant_count,
         ok_count=message.ok_count,
         invalid_count=message.invalid_count,
@@ -235,3 +239,51 @@ def statuses_from_message(statuses: Sequence[int]) -> NDArray[np.object_]:
     """Return the status of each row of a chunk."""
     table = np.array([None, *STATUSES], dtype=object)
     return np.asarray(table[np.asarray(statuses, dtype=np.int64)])
+
+
+def header_from_message(header: Any) -> tuple[tuple[Observable | str, ...], NDArray[np.float64]]:
+    """Return what the columns of a result are and its points; after a check the one column is ``eigenvalues``."""
+    columns: tuple[Observable | str, ...] = observables_from_messages(header.columns, "columns")
+    points = array_from_message(header.points, "points")
+    return columns or ("eigenvalues",), points
+
+
+def summary_to_messages(summary: model.BatchSummary) -> Iterator[Any]:
+    """Yield the response messages of a summary."""
+    keys = tuple(summary.quantiles)
+    columns = tuple(key for key in keys if not isinstance(key, str))
+
+    def side_by_side(name: str) -> NamedArray:
+        return NamedArray(name, np.stack([getattr(summary, name)[key] for key in keys], axis=-1), columns)
+
+    arrays = [NamedArray("levels", summary.levels), NamedArray("points", summary.points)]
+    arrays += [side_by_side(name) for name in _SIDE_BY_SIDE]
+    arrays.append(NamedArray("row_count", np.array(summary.row_count, dtype=np.int64)))
+    yield from encode_stream(batch_service_pb2.SummarizeBatchResponse, arrays, _Plain())
+
+
+def summary_from_messages(messages: Iterable[Any]) -> model.BatchSummary:
+    """Return the summary of its response messages."""
+    result = decode_stream(messages)
+    keys: tuple[Observable | str, ...] = result.columns["quantiles"] or ("eigenvalues",)
+
+    def by_key(name: str) -> dict[Observable | str, Any]:
+        return {key: result.arrays[name][..., k] for k, key in enumerate(keys)}
+
+    return model.BatchSummary(
+        levels=result.arrays["levels"],
+        points=result.arrays["points"],
+        row_count=int(result.arrays["row_count"]),
+        **{name: by_key(name) for name in _SIDE_BY_SIDE},
+    )
+
+
+_SIDE_BY_SIDE = ("quantiles", "highest_rows", "highest", "lowest_rows", "lowest")
+
+
+class _Plain:
+    """An answer that carries no evidence of its own."""
+
+    evidence = Evidence()
+    findings: tuple[Any, ...] = ()
+    cautions: tuple[Any, ...] = ()

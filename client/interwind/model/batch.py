@@ -94,10 +94,10 @@ ANALYSES: tuple[type[Any], ...] = (FrequencyAnalysis, TimeAnalysis, PeriodicAnal
 class CostForecast:
     """What a batch will take: seconds of all workers together, bytes of its results, bytes of memory a worker."""
 
-    duration_s: float
-    result_bytes: int
-    memory_bytes: int
-    chunk_count: int
+    duration_s: float = 0.0
+    result_bytes: int = 0
+    memory_bytes: int = 0
+    chunk_count: int = 0
 
 
 @dataclass(frozen=True, slots=True)
@@ -150,6 +150,16 @@ class BatchResult:
     def ok(self) -> NDArray[np.bool_]:
         """Which rows are OK, shape (V,)."""
         return np.asarray(self.status == VariantStatus.OK, dtype=np.bool_)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class BatchRow:
+    """One row of a batch: ``table[observable]`` (P,), NaN where not OK; ``reason`` is empty when OK."""
+
+    index: int
+    status: VariantStatus
+    reason: str
+    table: Mapping[Observable | str, FloatArray | ComplexArray]
 
 
 @dataclass(frozen=True, slots=True, eq=False)

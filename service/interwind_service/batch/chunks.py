@@ -53,6 +53,14 @@ class ChunkLedger:
         ):  # fmt: skip
             yield chunk_of(row)
 
+    def of_batch(self, batch_id: str) -> list[Chunk]:
+        """Return the chunks of a batch in the order of their rows."""
+        rows = self._journal.read(
+            "SELECT chunk.*, batch_id FROM chunk JOIN batch ON batch.key = chunk.batch"
+            " WHERE batch_id = ? ORDER BY first_row", batch_id,
+        )  # fmt: skip
+        return [chunk_of(row) for row in rows]
+
     def finish(self, chunk: Chunk, answer: ChunkAnswer, part: Path) -> Future[bool]:
         """Give the rows of a chunk, their numbers durable in ``part``, a place; True when they were the first."""
 

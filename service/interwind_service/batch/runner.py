@@ -89,6 +89,8 @@ class Runner:
 
     def stop(self) -> None:
         """Hand out nothing more and free the workers; what they were at stays pending."""
+        if self._stopping:
+            return
         self._stopping = True
         self._stop_listening()
         self.wake()

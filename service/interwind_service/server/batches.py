@@ -19,12 +19,11 @@ from interwind.v1 import batch_pb2, response_pb2
 from interwind.v1 import batch_service_pb2 as messages
 from interwind_service.batch.folder import prove, rows_name
 from interwind_service.batch.rows import Chunk
-from interwind_service.batch.runner import Runner
 from interwind_service.batch.schema import PENDING
-from interwind_service.batch.store import Store
 from interwind_service.batch.summary import StoredRows
 from interwind_service.batch.work import CANCELLED_CODE
 from interwind_service.server.admission import Admission
+from interwind_service.server.batch_room import BatchRoom
 from interwind_service.server.batch_work import plan_submission, summary_frames
 from interwind_service.server.boundary import Call, Rpc
 from interwind_service.server.limits import compute_bytes, read_size, size_header
@@ -38,11 +37,9 @@ SERVICE = "/interwind.v1.BatchService/"
 class BatchDoor:
     """Answers BatchService. Files and the database are touched beside the event loop."""
 
-    def __init__(
-        self, *, store: Store, runner: Runner, pool: WorkerPool, admission: Admission, arrays: ArrayFolder
-    ) -> None:
-        self._store = store
-        self._runner = runner
+    def __init__(self, *, room: BatchRoom, pool: WorkerPool, admission: Admission, arrays: ArrayFolder) -> None:
+        self._store = room.store
+        self._runner = room.runner
         self._pool = pool
         self._admission = admission
         self._arrays = arrays

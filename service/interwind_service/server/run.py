@@ -21,6 +21,8 @@ from grpc_reflection.v1alpha import reflection
 from interwind_service.server.admission import Admission
 from interwind_service.server.arrays import ArrayDoor
 from interwind_service.server.auth import TokenGate, Tokens, client_of
+from interwind_service.server.batch_room import BatchRoom, batch_room
+from interwind_service.server.batches import BatchDoor
 from interwind_service.server.boundary import Boundary, Rpc
 from interwind_service.server.compute import Compute, remove_spools_of_the_dead
 from interwind_service.server.doors import CHANNEL_OPTIONS, open_door
@@ -36,6 +38,7 @@ from interwind_service.workers.process import Guards
 
 PRELOAD = (
     "interwind_service.workers.job",
+    "interwind_service.server.batch_work",
     "threadpoolctl",
     "interwind_service.windings.verdict",
     "interwind_service.network.system",
@@ -63,10 +66,11 @@ async def _serve(settings: Settings) -> int:
         guards = Guards(WORKER_BASE_ADDRESS_BYTES + settings.memory_bytes, str(spool))
         pool = WorkerPool(settings.worker_count, guards=guards, preload=PRELOAD)
         try:
-            async with _serving(settings, pool, spool) as address:
-                print(json.dumps({"listening": address}), flush=True)
-                emit("listening", address=address, version=SERVICE_VERSION, pid=os.getpid(), workers=pool.count)
-                await _until(stop, settings.parent_pid)
+            with batch_room(settings, pool, spool) as batches:
+                async with _serving(settings, pool, spool, batches) as address:
+                    print(json.dumps({"listening": address}), flush=True)
+                    emit("listening", address=address, version=SERVICE_VERSION, pid=os.getpid(), workers=pool.count)
+                    await _until(stop, settings.parent_pid)
         finally:
             await asyncio.to_thread(pool.shutdown, cancel_futures=True)
     emit("stopped")
@@ -74,7 +78,7 @@ async def _serve(settings: Settings) -> int:
 
 
 @contextlib.asynccontextmanager
-async def _serving(settings: Settings, pool: WorkerPool, spool: Path) -> AsyncIterator[str]:
+async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: BatchRoom) -> AsyncIterator[str]:
     """Serve inside; drain at the end: first say so, then let running calls finish within the grace."""
     admission = Admission(
         workers=pool.count,
@@ -86,6 +90,7 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path) -> AsyncIt
     table = rpcs(
         Compute(pool=pool, admission=admission, arrays=arrays, spool=spool),
         ArrayDoor(arrays),
+        BatchDoor(room=batches, pool=pool, admission=admission, arrays=arrays),
         Info(settings=settings, pool=pool, admission=admission),
     )
     gates = [TokenGate(Tokens(settings.token_file))] if settings.token_file else []
@@ -109,6 +114,7 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path) -> AsyncIt
     finally:
         emit("draining", grace_s=settings.grace_s)
         admission.draining = True
+        await asyncio.to_thread(batches.runner.stop)
         await health_servicer.enter_graceful_shutdown()
         await server.stop(settings.grace_s)
 

@@ -9,15 +9,16 @@ import grpc
 
 from interwind.codec.calls import CALLS
 from interwind_service.server.arrays import ArrayDoor
+from interwind_service.server.batches import BatchDoor
 from interwind_service.server.boundary import Boundary, Rpc
 from interwind_service.server.compute import Compute
 from interwind_service.server.info import Info
 
 
-def rpcs(compute: Compute, arrays: ArrayDoor, info: Info) -> list[Rpc]:
+def rpcs(compute: Compute, arrays: ArrayDoor, batches: BatchDoor, info: Info) -> list[Rpc]:
     """Return every RPC of the server."""
     computing = [Rpc(path, compute.frames, streaming=call.streaming) for path, call in CALLS.items()]
-    return [*computing, *arrays.rpcs(), *info.rpcs()]
+    return [*computing, *arrays.rpcs(), *batches.rpcs(), *info.rpcs()]
 
 
 def generic_handlers(table: Iterable[Rpc], boundary: Boundary) -> list[grpc.GenericRpcHandler]:
