@@ -74,7 +74,7 @@ class RunningService:
         return descendants_of(self.pid)
 
     def workers(self) -> list[int]:
-        """Return the worker processes: those below the server that no other of them is below of, the forkserver aside."""
+        """Return the worker processes: those that stand below the forkserver."""
         every = self.descendants()
         return [pid for pid in every if _parent(pid) in every]
 

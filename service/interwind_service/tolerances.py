@@ -14,6 +14,10 @@ COUPLING_ROUNDING = 1e-15
 PARALLEL_SINE_SQUARED = 1e-12
 # At most this many culprits are listed; the rest can be read off the feasible intervals.
 CULPRITS_LISTED = 2000
+# Ranking of culprits: weight of the logarithm of the smallest eigenvalue against the weakest link of the polygon.
+CULPRIT_MARGIN_WEIGHT = 0.1
+# Ranking of culprits: cubes of windings worked through; about half a second.
+CULPRIT_RANKING_WORK = 2e7
 # Two ends of a feasible interval closer than this are one value, reached by different roundings.
 INTERVAL_ROUNDING = 1e-12
 # A winding is named in a verdict when it carries at least this share of the squared witness vector.
@@ -59,6 +63,42 @@ SINGULAR_RECIPROCAL_CONDITION = 1e-13
 EQUIVALENT_WINDINGS = 32
 # A star that misses a pair leakage by more than one per cent is said to be a fit: printed leakages are as good as that.
 STAR_ERROR = 0.01
+
+# Intake. A reading within one per cent of the bare inductance is usable as it stands: bench readings are no better.
+CORRECTION_NEGLIGIBLE = 0.01
+# A correction by more than half of the bare value rests on its capacitance, resistance or Q more than on the reading.
+CORRECTION_LIMIT = 0.5
+# Relative step of a central difference: the cube root of the rounding, about.
+DERIVATIVE_STEP = 1e-5
+# First guess. A pair that nothing speaks of starts half coupled: at zero a short-circuit reading has no slope.
+FIRST_COUPLING = 0.5
+# Noise that reads |k| above 1 starts just inside; the whole matrix starts with this smallest eigenvalue at least.
+FIRST_COUPLING_LARGEST = 0.999999
+FIRST_MARGIN = 1e-6
+# Fit. Marquardt damping: start, the least that still steers, and the one at which no step gains any more.
+FIT_DAMPING_START = 1e-3
+FIT_DAMPING_LEAST = 1e-15
+FIT_DAMPING_LARGEST = 1e12
+# The steps have settled when chi-square falls by less than this part of itself; steps allowed (10 to 30 are usual).
+FIT_GAIN = 1e-14
+FIT_STEPS = 500
+# Readings scaled to norm 1 that determine a direction only below this say nothing about it beyond rounding.
+UNDETERMINED_SINGULAR_VALUE = 1e-9
+# A residual that keeps less than this part of its variance belongs to a reading that alone decides its own value.
+FREE_READING = 1e-9
+# One false alarm in a hundred identifications, whatever the number of readings (Bonferroni).
+OUTLIER_PROBABILITY = 0.01
+# Chi-square beyond its one-in-a-thousand point: the uncertainties do not hold.
+CONTRADICTION_PROBABILITY = 1e-3
+# Standardised residuals within this part of each other belong to one and the same contradiction.
+SAME_RESIDUAL = 1e-6
+# A free step gaining more than this part of chi-square: the fit is held by the edge of the cone. Also the way back in.
+EDGE_GAIN = 1e-6
+# Readings left out in turn when the fit is on the edge: a fit each, some ten milliseconds.
+EDGE_REFITS = 100
+# Next reading. Each candidate is taken to be read to one per cent; a gain of less than five per cent is none.
+NEXT_READING_UNCERTAINTY = 0.01
+NEXT_READING_GAIN = 0.05
 
 # --- network --------------------------------------------------------------------------------------------------------
 
@@ -126,6 +166,20 @@ LEAST_BLOCK_BITS = 3
 MOST_BLOCK_BITS = 8
 # Samples computed at once, 2 MB: what one chunk holds is bounded, whatever the length of the run.
 CHUNK_ENTRIES = 2**18
+# Default for the energy error and the residual of a time response (contract of the call).
+TIME_TOLERANCE = 1e-6
+# Stop over step may miss a whole number by this much: the rounding of decimal times, never a misread grid.
+GRID_MISFIT = 1e-6
+# Steps of one run: at 30 ns a step and 8 bytes a value a minute and the largest file a caller would read.
+MAX_TIME_STEPS = 500_000_000
+# Values of one response held at once: 512 MB. A streamed response has no such limit.
+MAX_RESPONSE_VALUES = 64_000_000
+# Share of the stored energy above which a jump at the start is worth saying.
+INCONSISTENT_START = 1e-12
+# Relative size of a singular value of A that counts as none when a point of rest is sought.
+REST_RESIDUAL = 1e-13
+# States kept during a run to test the equations at.
+TESTED_STATES = 64
 # Corners of one waveform within one run: 4 million take 100 MB and a few seconds.
 MAX_WAVEFORM_CORNERS = 4_000_000
 
@@ -173,6 +227,25 @@ PIVOTS = 200  # pivots of the complementarity problem; three is the most seen
 PIVOT_PATIENCE = 5  # block pivots without progress before the least-index rule takes over
 
 # --- cautions -------------------------------------------------------------------------------------------------------
+
+# Steady touch limits, IEC 62368-1:2018 Table 4, from memory: below ES1 nothing is felt that hurts, above ES2 it may kill.
+# The alternating ones hold up to 1 kHz and are kept above it, on the safe side.
+ES1_PEAK_V = 42.4
+ES2_PEAK_V = 70.7
+ES1_DIRECT_V = 60.0
+ES2_DIRECT_V = 120.0
+# Charge of a touchable capacitor, IEC 60335-1 clause 8.1.4 as quoted in a public forum thread (looked up): 45 µC, which is
+# also 0.1 µF at 450 V.
+TOUCH_CHARGE_C = 45e-6
+# Capacitors from 100 V and 10 J on: shock; below 100 V from 100 J on: burns. Electrical safety manual of a national
+# laboratory (LBNL), tables 2.2.13 and 2.3.5, looked up. The 10 J are taken for magnetic fields too: common practice, no source.
+SHOCK_CAPACITOR_V = 100.0
+SHOCK_ENERGY_J = 10.0
+THERMAL_ENERGY_J = 100.0
+# What counts as a current transformer that stands open: turns ratio, coupling and burden. Common practice, no source.
+CURRENT_TRANSFORMER_RATIO = 10.0
+CURRENT_TRANSFORMER_COUPLING = 0.9
+CURRENT_TRANSFORMER_BURDEN_OHM = 10e3
 
 # --- service: workers and front -------------------------------------------------------------------------------------
 WORKER_OOM_SCORE_ADJUST = 700  # the kernel, short of memory, takes a worker and not the server

@@ -15,6 +15,7 @@ from interwind.model.observables import NodeVoltage
 from interwind.model.report import ValidityReport
 from interwind.model.response import TimeResponse
 from interwind_service import engine
+from interwind_service.progress import report
 
 real_check = engine.check
 
@@ -42,8 +43,10 @@ def check(windings):
 
 
 def time_response(network, stop_s, step_s, observe=None, initial=None, tolerance=1e-6):
+    report(0, 2)
     count = round(stop_s / step_s) + 1
     time_s = np.arange(count) * step_s
+    report(2, 2)
     return TimeResponse((NodeVoltage("a"),), np.sin(time_s)[:, None], time_s=time_s)
 
 

@@ -12,7 +12,15 @@ import pytest
 
 from interwind.channel import Target
 from interwind.client import Client
-from interwind.errors import Cancelled, DeadlineExceeded, InternalError, InvalidRequest, Overloaded, Unavailable, WorkerLost
+from interwind.errors import (
+    Cancelled,
+    DeadlineExceeded,
+    InternalError,
+    InvalidRequest,
+    Overloaded,
+    Unavailable,
+    WorkerLost,
+)
 from interwind_service.testing import alive, wait_until
 
 
@@ -29,7 +37,7 @@ def worker_cpu_s(service) -> float:
 
 
 def test_killed_worker_fails_its_own_call_only(service, client, order):
-    """kill -9 of one of two computing workers: one call lost, the other answered, the next served within 1 s."""
+    """A kill -9 of one of two computing workers: one call lost, the other answered, the next served within 1 s."""
     with ThreadPoolExecutor(2) as threads:
         calls = [threads.submit(client.check, order("sleep", 1.0)) for _ in range(2)]
         wait_until(lambda: busy(client) == 2, 5)
@@ -64,7 +72,7 @@ def test_call_that_kills_its_worker_every_time_is_given_up(service, order):
 
 
 def test_killed_server_leaves_no_process_and_no_file(lone_service, order):
-    """kill -9 of the server while it computes: 2 s later no child and no spool is left."""
+    """A kill -9 of the server while it computes: 2 s later no child and no spool is left."""
     with Client(Target(lone_service.address), retries=0) as client, ThreadPoolExecutor(1) as threads:
         call = threads.submit(client.check, order("spin", 20))
         wait_until(lambda: busy(client) == 1, 5)

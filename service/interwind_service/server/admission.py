@@ -53,9 +53,13 @@ class Admission:
         needed = compute_bytes + result_bytes
         if needed > self.memory_bytes:
             raise InvalidRequest.at(
-                "size", f"the call needs about {needed} bytes, the server has {self.memory_bytes}; ask for fewer points "
-                "or observables, or split the windings", reason="TOO_LARGE", estimate_bytes=needed, limit_bytes=self.memory_bytes,
-            )  # fmt: skip
+                "size",
+                f"the call needs about {needed} bytes, the server has {self.memory_bytes}; ask for fewer points or "
+                "observables, or split the windings",
+                reason="TOO_LARGE",
+                estimate_bytes=needed,
+                limit_bytes=self.memory_bytes,
+            )
         if self.computing >= self.workers + self.queue_limit:
             self._refuse("QUEUE_FULL", f"{self.queued} calls wait, at most {self.queue_limit} may")
         if self._by_client[client] >= self.client_limit:

@@ -14,7 +14,7 @@ from interwind_service.server.admission import Admission
 from interwind_service.server.boundary import Call, PackedError
 from interwind_service.server.limits import compute_bytes, read_size, result_bytes, size_header
 from interwind_service.workers.arrays import ArrayFolder
-from interwind_service.workers.job import CallAnswer, CallWork, run_call
+from interwind_service.workers.job import CallAnswer, CallWork, Early, run_call
 from interwind_service.workers.pool import Job, WorkerPool
 from interwind_service.workers.spool import Spooled, SpoolReader
 
@@ -39,7 +39,10 @@ class Compute:
             job, notes = self._start(work)
             reader: SpoolReader | None = None
             try:
-                while isinstance(note := await notes.get(), Spooled):
+                while isinstance(note := await notes.get(), Spooled | Early):
+                    if isinstance(note, Early):
+                        yield note.frame
+                        continue
                     reader = reader or SpoolReader(str(path))
                     for frame in reader.frames(note.size_bytes):
                         yield frame

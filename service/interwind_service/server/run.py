@@ -88,7 +88,7 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
     )
     arrays = ArrayFolder(spool / "arrays", settings.array_store_bytes)
     table = rpcs(
-        Compute(pool=pool, admission=admission, arrays=arrays, spool=spool),
+        Compute(pool=pool, admission=admission, arrays=arrays, spool=spool / "calls"),
         ArrayDoor(arrays),
         BatchDoor(room=batches, pool=pool, admission=admission, arrays=arrays),
         Info(settings=settings, pool=pool, admission=admission),
@@ -141,7 +141,8 @@ def _spool(settings: Settings) -> Iterator[Path]:
         folder = Path(tempfile.mkdtemp(prefix=f"interwind-spool-{os.getpid()}-", dir=parent))
     except OSError as error:
         raise SettingsError(f"--spool-dir: {error}") from error
-    (folder / "arrays").mkdir()
+    for room in ("arrays", "calls"):
+        (folder / room).mkdir()
     try:
         yield folder
     finally:

@@ -164,7 +164,7 @@ def _flag(name: str) -> str:
 def _parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
         prog="interwind-service",
-        description="Serve interwind.v1. Every flag may also stand in the environment (INTERWIND_...) or in a TOML file; "
+        description="Serve interwind.v1. Every flag may stand in the environment (INTERWIND_...) or a TOML file, too; "
         "flag > environment > file > default.",
         allow_abbrev=False,
     )

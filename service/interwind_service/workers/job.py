@@ -14,10 +14,12 @@ import scipy.linalg  # noqa: F401  preloaded for the workers
 from google.protobuf.message import DecodeError
 
 from interwind.codec.array import stored_arrays
-from interwind.codec.calls import CALLS
+from interwind.codec.calls import CALLS, Call
 from interwind.codec.errors import to_status
 from interwind.errors import InterwindError, InvalidRequest, Overloaded
+from interwind.v1 import response_pb2
 from interwind_service import engine
+from interwind_service.progress import listening
 from interwind_service.tolerances import SPOOL_FULL_RETRY_S
 from interwind_service.workers.arrays import ArrayFolder
 from interwind_service.workers.spool import SpoolWriter
@@ -32,6 +34,13 @@ class CallWork:
     size_header: bytes
     spool_path: str
     arrays: ArrayFolder
+
+
+@dataclass(frozen=True, slots=True)
+class Early:
+    """A response message that goes out while the call still computes."""
+
+    frame: bytes
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,7 +63,7 @@ def run_call(work: CallWork, *, notify: Callable[[Any], None]) -> CallAnswer:
     try:
         message = _parse(call.request_class, work.request)
         _same_size(message, work.size_header)
-        with stored_arrays(work.arrays):
+        with stored_arrays(work.arrays), listening(_teller(call, notify)):
             result = getattr(engine, call.engine)(**call.decode(message))
             for response in call.encode(result):
                 spool.write(response.SerializeToString())
@@ -77,6 +86,17 @@ def run_call(work: CallWork, *, notify: Callable[[Any], None]) -> CallAnswer:
     if spool.frames:
         return CallAnswer(frames=tuple(spool.frames), solve_s=solve_s)
     return CallAnswer(spooled_bytes=spool.size_bytes, solve_s=solve_s)
+
+
+def _teller(call: Call, notify: Callable[[Any], None]) -> Callable[[int, int], None]:
+    """Return what makes progress a response message, where the answer is a stream that has a part for it."""
+
+    def tell(done: int, total: int) -> None:
+        if call.streaming:
+            part = call.response_class(progress=response_pb2.Progress(done_count=done, total_count=total))
+            notify(Early(part.SerializeToString()))
+
+    return tell
 
 
 def _parse(message_class: Any, data: bytes) -> Any:
