@@ -18,6 +18,14 @@ CULPRITS_LISTED = 2000
 CULPRIT_MARGIN_WEIGHT = 0.1
 # Ranking of culprits: cubes of windings worked through; about half a second.
 CULPRIT_RANKING_WORK = 2e7
+# Smallest impossible subsets: triples are tested by their determinant, up to this many windings (1.3 million triples).
+SUBSET_TRIPLE_WINDINGS = 200
+# Larger subsets take an eigenvalue problem each; this many take about a quarter of a second.
+SUBSETS_EXAMINED = 30_000
+# Taking windings off one by one costs a decomposition each; above this many the subset found is left as it is.
+SUBSET_DELETION_WINDINGS = 100
+# At most this many impossible subsets are named, the most impossible first.
+SUBSETS_NAMED = 10
 # Two ends of a feasible interval closer than this are one value, reached by different roundings.
 INTERVAL_ROUNDING = 1e-12
 # A winding is named in a verdict when it carries at least this share of the squared witness vector.
@@ -80,7 +88,7 @@ FIT_DAMPING_START = 1e-3
 FIT_DAMPING_LEAST = 1e-15
 FIT_DAMPING_LARGEST = 1e12
 # The steps have settled when chi-square falls by less than this part of itself; steps allowed (10 to 30 are usual).
-FIT_GAIN = 1e-14
+FIT_GAIN = 1e-10
 FIT_STEPS = 500
 # Readings scaled to norm 1 that determine a direction only below this say nothing about it beyond rounding.
 UNDETERMINED_SINGULAR_VALUE = 1e-9
@@ -222,6 +230,11 @@ PEAK_HEADROOM = 1.1  # a grid of 0.7 rad misses a crest by 6 % at most
 PEAK_ROUNDS = 5  # each narrows a crest tenfold; its height is then right to the square of that
 PEAK_POINTS = 21  # looks in a round
 JUMP_SPAN = 1e-3  # a segment shorter than this share of the settling time is part of a jump
+DEFAULT_TOLERANCE = 1e-6  # of the energy ledger and the residual, where the caller states none
+GRID_MISMATCH = 1e-6  # of a step, within which the step divides the stop
+MAXIMUM_SAMPLES = 50_000_000  # samples of one observable: 400 MB
+REST_RANK = 1e-14  # singular values below this share are currents and voltages that rest does not fix
+RESIDUAL_LOOKS = 16  # segment ends of a piece at which the equations are checked
 PIECES_KEPT = 512  # combinations of device states kept
 PIVOTS = 200  # pivots of the complementarity problem; three is the most seen
 PIVOT_PATIENCE = 5  # block pivots without progress before the least-index rule takes over

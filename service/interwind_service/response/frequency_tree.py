@@ -136,7 +136,8 @@ def frequency_tree(
         current[branch] = len(columns)
         columns.append(int(branch))
     known = np.array([k for k, branch in enumerate(tree.tolist()) if role[branch] == Role.VOLTAGE], dtype=np.int64)
-    imposed = np.array([[float(d.branch == branch) for d in drives] for branch in imposing]).reshape(-1, len(drives))
+    imposed = np.array([[float(d.branch == branch) for d in drives] for branch in imposing])
+    imposed = imposed.reshape(len(imposing), len(drives))
     equations = _Equations(topology, coordinates, roles, drives, Q, paths, groups, current, len(columns))
     M, J = equations.write(imposing)
     return FrequencyTree(

@@ -88,6 +88,7 @@ class Propagation:
         self._observe = _observability(readout, self.ladder, step_level, self._block_bits)
         self.events = EventSteps.of(generator.events, step_s)
         self.end = np.concatenate((self._x, generator.state(np.zeros(1))[0]))
+        self._seen: list[FloatArray] = [self.end[None]]
 
     def rows(self) -> Iterator[FloatArray]:
         """Yield the samples 0 .. steps in order, in pieces of shape (any, p)."""
@@ -98,6 +99,15 @@ class Propagation:
     def gramian(self) -> FloatArray:
         """Return ∫ y yᵀ dt over the run, shape (n + g, n + g)."""
         return self.gram.total()
+
+    def some_states(self) -> FloatArray:
+        """Return y at some samples spread over the run, the first and the last among them, shape (some, n + g)."""
+        seen = np.vstack((*self._seen, self.end[None]))
+        return seen[:: max(1, len(seen) // tol.TESTED_STATES)]
+
+    def peak_energy(self, V: FloatArray) -> float:
+        """Return the largest ½ |V x|² among those samples."""
+        return 0.5 * float(np.square(self.some_states()[:, : self.n] @ V.T).sum(axis=1).max())
 
     def _advance_chunk(self, first: int) -> FloatArray:
         blocks = min(self.chunk, -(-(self.steps - first) // self.block))
@@ -124,6 +134,7 @@ class Propagation:
                 break
             ends[shift:] += ends[:-shift] @ self.ladder.transition(self._chunk_bits - bit)[:n, :n].T
         y = np.hstack((ends[:-1], xi))
+        self._seen.append(y[:: max(1, blocks * self.block * tol.TESTED_STATES // self.steps)])
 
         samples = np.empty((blocks, self.block, len(self.readout)))
         smooth = np.flatnonzero(~stepped)

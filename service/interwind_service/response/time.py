@@ -1,0 +1,203 @@
+"""Time response: exact for linear networks, whatever the output step."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.errors import AccuracyNotReached, InvalidNetwork, InvalidRequest
+from interwind.model.finding import Evidence
+from interwind.model.network import Network
+from interwind.model.observables import Observable
+from interwind.model.response import EnergyLedger, Initial, TimeResponse
+from interwind_service import tolerances as tol
+from interwind_service.network.kind import Kind
+from interwind_service.network.topology import Topology, number
+from interwind_service.response.generator import Generator, generator_of
+from interwind_service.response.initial import Start, start_of
+from interwind_service.response.ledger import ledger_of
+from interwind_service.response.observe import resolve
+from interwind_service.response.propagation import Propagation
+from interwind_service.response.readout import Readout, readout_of
+from interwind_service.response.state_space import StateSpace
+from interwind_service.response.time_model import model_of
+
+FloatArray = NDArray[np.float64]
+RowSink = Callable[[int, FloatArray], None]
+
+_SWITCHED = (Kind.SWITCH, Kind.DIODE, Kind.ARRESTER, Kind.SATURABLE)
+
+
+def time_response(
+    network: Network,
+    stop_s: float,
+    step_s: float,
+    observe: Sequence[Observable] | None = None,
+    initial: Initial = None,
+    tolerance: float = tol.TIME_TOLERANCE,
+    *,
+    sink: RowSink | None = None,
+) -> TimeResponse:
+    """Compute the response from 0 to ``stop_s``, sampled every ``step_s``.
+
+    x' = A x + B u, u and the response exact at every sample: ``step_s`` is the output grid only.
+
+    Parameters
+    ----------
+    network : its sources by ``waveform``.
+    stop_s, step_s : s; the stop is a multiple of the step to 1e-6 of a step.
+    observe : observables; None = all node voltages and winding currents.
+    initial : stated values, the rest 0; or `SteadyStart`. None = all 0.
+    tolerance : largest energy error and residual at which the response is returned.
+    sink : takes (index of the first sample, samples (any, observables)) as they are made; the response then holds none.
+
+    Returns
+    -------
+    TimeResponse : samples at k step_s, limits from the right, with the energy ledger and the evidence.
+
+    Raises
+    ------
+    InvalidRequest : a grid, an initial value or an observable that does not fit, before memory is taken.
+    InvalidNetwork : the network has no unique solution.
+    AccuracyNotReached : the energy ledger does not close to ``tolerance``, or the equations are not met to it.
+    """
+    steps = steps_of(stop_s, step_s)
+    if not (np.isfinite(tolerance) and tolerance > 0.0):
+        raise InvalidRequest.at("tolerance", f"{tolerance!r} found; a finite number above 0 is expected")
+    topology = number(network)
+    if topology.of_kind(*_SWITCHED).size:
+        raise InvalidNetwork.at(
+            "elements", "switches, diodes and nonlinear elements are not offered over time", reason="NOT_OFFERED"
+        )
+    asked = resolve(topology, observe)
+    if sink is None and (steps + 1) * len(asked) > tol.MAX_RESPONSE_VALUES:
+        raise InvalidRequest.at(
+            "observe",
+            f"{steps + 1} samples of {len(asked)} observables found; at most {tol.MAX_RESPONSE_VALUES} values are "
+            "held; observe less or choose a larger step_s",
+        )
+    generator = generator_of(topology, stop_s, step_s)
+    space = model_of(topology, 1.0 / np.sqrt(step_s * stop_s))
+    start = start_of(space, initial, generator.U @ generator.state(np.zeros(1))[0])
+    readout = readout_of(topology, asked)
+    signals = signal_rows(space, generator)
+    run = Propagation(
+        flow_matrix(space, generator), generator, start.x, readout.rows @ signals, step_s=step_s, steps=steps
+    )
+    samples = _collect(run, readout, len(asked), sink)
+    ledger = ledger_of(space, generator, start, signals, run.gramian(), run.end)
+    evidence = _evidence(topology, space, run, start, ledger, signals)
+    _require(evidence, tolerance)
+    return TimeResponse(
+        asked,
+        samples,
+        time_s=step_s * np.arange(len(samples)),
+        ledger=ledger,
+        findings=(*topology.findings, *start.findings),
+        evidence=evidence,
+    )
+
+
+def steps_of(stop_s: float, step_s: float) -> int:
+    """Return the number of steps; a stop that is no multiple of the step is refused with the two nearest."""
+    for field, value in (("stop_s", stop_s), ("step_s", step_s)):
+        if not (np.isfinite(value) and value > 0.0):
+            raise InvalidRequest.at(field, f"{value!r} s found; a finite time above 0 is expected")
+    ratio = stop_s / step_s
+    if not ratio <= tol.MAX_TIME_STEPS:
+        raise InvalidRequest.at(
+            "step_s", f"{ratio:.3g} steps found; at most {tol.MAX_TIME_STEPS} are allowed; choose a larger step_s"
+        )
+    steps = round(ratio)
+    if steps < 1 or abs(ratio - steps) > tol.GRID_MISFIT:
+        below = max(1, int(np.floor(ratio)))
+        raise InvalidRequest.at(
+            "stop_s",
+            f"{stop_s!r} s found; a multiple of step_s = {step_s!r} s is expected: {below * step_s!r} s or "
+            f"{(below + 1) * step_s!r} s",
+        )
+    return steps
+
+
+def flow_matrix(space: StateSpace, generator: Generator) -> FloatArray:
+    """Return M of y = (x, ξ), y' = M y, shape (n + g, n + g)."""
+    n, g = space.states, len(generator.S)
+    M = np.zeros((n + g, n + g))
+    M[:n, :n], M[:n, n:], M[n:, n:] = space.A, space.B @ generator.U, generator.S
+    return M
+
+
+def signal_rows(space: StateSpace, generator: Generator) -> FloatArray:
+    """Return every signal as a row on y = (x, ξ), shape (signals, n + g)."""
+    return np.hstack((space.C, space.D @ generator.U + space.Y1 @ (generator.U @ generator.S)))
+
+
+def _collect(run: Propagation, readout: Readout, columns: int, sink: RowSink | None) -> FloatArray:
+    samples = np.empty((0 if sink else run.steps + 1, columns))
+    done = 0
+    for piece in run.rows():
+        rows = readout.finish(piece)
+        if sink is not None:
+            sink(done, rows)
+        else:
+            samples[done : done + len(rows)] = rows
+        done += len(rows)
+    return samples
+
+
+def _evidence(
+    topology: Topology,
+    space: StateSpace,
+    run: Propagation,
+    start: Start,
+    ledger: EnergyLedger,
+    signals: FloatArray,
+) -> Evidence:
+    size = max(abs(ledger.supplied_j), start.stored_before_j, start.stored_after_j, run.peak_energy(space.V))
+    return Evidence(
+        method="structural reduction, resolvent blocks, exact propagation",
+        residual=max(space.residual, equation_residual(topology, run, signals)),
+        condition=space.condition,
+        energy_error=abs(ledger.numerical_j) / size if size > 0.0 else 0.0,
+    )
+
+
+def equation_residual(topology: Topology, run: Propagation, signals: FloatArray) -> float:
+    """Return how far some samples miss the current law and the laws of storage, as shares of the largest terms."""
+    y = run.some_states()
+    branches = len(topology.kind)
+    value = signals @ y.T
+    slope = signals @ (run.ladder.matrix @ y.T)
+    voltage, current = value[:branches], value[branches : 2 * branches]
+    kirchhoff = np.zeros((len(topology.nodes), y.shape[0]))
+    np.add.at(kirchhoff, topology.start, current)
+    np.add.at(kirchhoff, topology.finish, -current)
+    capacitors, inductors = topology.of_kind(Kind.CAPACITOR), topology.of_kind(Kind.INDUCTOR)
+    laws = [voltage[inductors] - topology.value[inductors][:, None] * slope[branches + inductors]]
+    for group in topology.groups:
+        law = group.resistance_ohm @ current[group.branches] + group.inductance_h @ slope[branches + group.branches]
+        laws.append(voltage[group.branches] - law)
+    currents = (kirchhoff, current[capacitors] - topology.value[capacitors][:, None] * slope[capacitors])
+    return max(_share(np.vstack(currents), current), _share(np.vstack(laws), voltage))
+
+
+def _share(gap: FloatArray, terms: FloatArray) -> float:
+    largest = float(np.abs(terms).max(initial=0.0))
+    return float(np.abs(gap).max(initial=0.0)) / largest if largest > 0.0 else 0.0
+
+
+def _require(evidence: Evidence, tolerance: float) -> None:
+    if not evidence.energy_error <= tolerance:
+        raise AccuracyNotReached(
+            f"energy_error: {evidence.energy_error:.3g} found; tolerance is {tolerance:.3g}; the energy ledger does "
+            "not close, so the response is not returned",
+            evidence=evidence,
+        )
+    if not evidence.residual <= tolerance:
+        raise AccuracyNotReached(
+            f"residual: {evidence.residual:.3g} found; tolerance is {tolerance:.3g}; the equations are not met, so the "
+            "response is not returned",
+            evidence=evidence,
+        )
