@@ -85,4 +85,23 @@ _WINDINGS = {
     ),
 }
 
-FINDING_CODES = MappingProxyType({**_WINDINGS})
+_NETWORK = {
+    "ISOLATED_PART": FindingCode(
+        "A part of the network has no conducting path to the reference; its voltages count from a node of its own.",
+        "Nothing, when the isolation is meant; name its zero in references to choose another node.",
+    ),
+    "SINGULAR_AT_FREQUENCY": FindingCode(
+        "At this frequency the network has no unique solution; the row is NaN.",
+        "Give the elements named the losses they have, or leave the frequency out.",
+    ),
+    "UNDEFINED_POTENTIAL": FindingCode(
+        "Ideal open switches or blocked diodes leave a node without any path; its voltage is NaN.",
+        "Give the switch the leakage it has, or put a large resistor across it.",
+    ),
+    "UNDETERMINED_CURRENT": FindingCode(
+        "Elements without resistance close a loop, so nothing decides how they share the current; it is NaN.",
+        "Give one of the elements named the resistance it has.",
+    ),
+}
+
+FINDING_CODES = MappingProxyType({**_WINDINGS, **_NETWORK})

@@ -46,7 +46,7 @@ def divide(
     kind: IntArray,
     input_branch: IntArray,
 ) -> tuple[Parts, tuple[Finding, ...]]:
-    """Divide the nodes into parts and give each its zero: the reference, a stated one, else its first winding's finish."""
+    """Divide the nodes into parts; the zero of each is the reference, a stated one, else its first winding's finish."""
     of_node = components(len(nodes), start[connecting], finish[connecting])
     count = int(of_node.max()) + 1
     zero = np.full(count, -1, dtype=np.int64)

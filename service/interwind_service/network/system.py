@@ -11,6 +11,7 @@ from interwind.model.network import Network
 from interwind.model.observables import ElementCurrent, NodeVoltage, Observable, WindingCurrent
 from interwind.model.response import MnaSystem
 from interwind_service import tolerances as tol
+from interwind_service.network.hazards import hazards
 from interwind_service.network.kind import Kind
 from interwind_service.network.stamps import Stamps
 from interwind_service.network.topology import Topology, number
@@ -48,7 +49,8 @@ def stamp(network: Network) -> MnaSystem:
     if len(unknowns) > tol.DENSE_UNKNOWNS:
         raise InvalidNetwork.at(
             "elements",
-            f"{len(unknowns)} unknowns found; dense matrices are given up to {tol.DENSE_UNKNOWNS}; ask for a response instead",
+            f"{len(unknowns)} unknowns found; dense matrices are given up to {tol.DENSE_UNKNOWNS}; ask for a response "
+            "instead",
         )
     stamps = Stamps(len(unknowns), len(topology.inputs))
     a, b = rows[topology.start].tolist(), rows[topology.finish].tolist()
@@ -76,7 +78,7 @@ def stamp(network: Network) -> MnaSystem:
             gain = -control.gain if k in currents else control.gain
             stamps.current_by_current(a[k], b[k], currents[control.sensed], gain)
     return MnaSystem(
-        stamps.G, stamps.C, stamps.B, tuple(unknowns), topology.inputs, topology.findings,
+        stamps.G, stamps.C, stamps.B, tuple(unknowns), topology.inputs, topology.findings, hazards(topology),
         evidence=Evidence(method="modified nodal analysis"),
     )  # fmt: skip
 
@@ -100,9 +102,7 @@ def _resistances(topology: Topology) -> dict[int, float]:
     return found
 
 
-def _unknowns(
-    topology: Topology, resistance: dict[int, float]
-) -> tuple[np.ndarray, dict[int, int], list[Observable]]:
+def _unknowns(topology: Topology, resistance: dict[int, float]) -> tuple[np.ndarray, dict[int, int], list[Observable]]:
     rows = np.full(len(topology.nodes) + 1, -1, dtype=np.int64)  # the last entry serves index -1: no node
     kept = np.setdiff1d(np.arange(len(topology.nodes)), topology.parts.reference)
     rows[kept] = np.arange(len(kept))

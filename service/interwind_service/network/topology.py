@@ -52,7 +52,8 @@ _GAIN = {
 class Control:
     """A controlled source: ``branch`` carries ``gain`` times its control.
 
-    The control is the voltage ``start`` to ``finish`` (nodes), or the current of branch ``sensed`` (then the nodes are -1).
+    The control is the voltage of node ``start`` against ``finish``, or the current of branch ``sensed`` (then both are
+    -1).
     """
 
     branch: int
@@ -126,7 +127,7 @@ class Topology:
         return self.nodes.index(name) if name in self.nodes else -1
 
     def incidence(self) -> FloatArray:
-        """Return the full incidence matrix, shape (nodes, branches): +1 at the start, −1 at the finish, reference rows kept."""
+        """Return the full incidence matrix (nodes, branches): +1 at the start, −1 at the finish, every node a row."""
         matrix = np.zeros((len(self.nodes), len(self.kind)))
         np.add.at(matrix, (self.start, np.arange(len(self.kind))), 1.0)
         np.add.at(matrix, (self.finish, np.arange(len(self.kind))), -1.0)

@@ -39,7 +39,7 @@ def admit(network: Network) -> Topology:
 
 
 def _require_valid(coils: WindingSet) -> list[Finding]:
-    """Judge a set by one Cholesky factorization of its couplings, shifted by what rounding can move; refuse with the full verdict."""
+    """Judge a set by one Cholesky factorization, shifted by what rounding can move; refuse it with the full verdict."""
     require_finite(coils)
     band = stated_band(coils)
     errors = check_resistance(coils) + non_positive(coils)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
@@ -11,7 +12,6 @@ from numpy.typing import NDArray
 from interwind.errors import AccuracyNotReached
 from interwind.model.finding import Evidence
 from interwind_service import tolerances as tol
-from interwind_service.network.topology import Topology
 from interwind_service.response.spectrum import Band
 
 ComplexArray = NDArray[np.complex128]
@@ -57,26 +57,38 @@ def passivity(H: ComplexArray) -> FloatArray:
     return np.linalg.eigvalsh(hermitian)[:, 0] / np.maximum(np.linalg.norm(H, ord=2, axis=(1, 2)), 1.0)
 
 
-def gather(topology: Topology, method: str, bands: Sequence[Band], *, drives_alone: bool) -> Evidence:
-    """Gather the evidence of solved bands; ``drives_alone`` = each drive was solved for by itself."""
-    residual = np.concatenate([band.residual for band in bands])
-    condition = np.concatenate([band.condition for band in bands])
-    finite = np.isfinite(condition)
-    gap, lowest = math.nan, math.nan
-    if drives_alone and finite.any() and bands[0].tree.drives and not topology.controls:
-        gaps, margins = [], []
-        for band in bands:
-            H, voltage = terminal_matrix(band)
-            H = H[np.isfinite(band.condition)]
-            gaps.append(asymmetry(H, voltage))
-            margins.append(passivity(H))
-        gap, lowest = float(np.concatenate(gaps).max()), float(np.concatenate(margins).min())
+@dataclass(frozen=True, slots=True)
+class Judgement:
+    """The worst figures of one band; NaN where a figure does not apply."""
+
+    residual: float
+    condition: float
+    asymmetry: float
+    passivity: float
+
+
+def judge(band: Band, *, drives_alone: bool) -> Judgement:
+    """Judge a solved band; ``drives_alone`` = each drive was solved for by itself, so that a terminal matrix exists."""
+    solved = np.isfinite(band.condition)
+    residual = float(band.residual[solved].max(initial=0.0))
+    condition = float(band.condition[solved].max(initial=1.0))
+    if not (drives_alone and solved.any() and band.tree.drives) or band.tree.topology.controls:
+        return Judgement(residual, condition, math.nan, math.nan)
+    H, voltage = terminal_matrix(band)
+    H = H[solved]
+    return Judgement(residual, condition, float(asymmetry(H, voltage).max()), float(passivity(H).min()))
+
+
+def gather(method: str, judged: Sequence[Judgement]) -> Evidence:
+    """Gather the judgements of all bands."""
+    gaps = [x.asymmetry for x in judged if not math.isnan(x.asymmetry)]
+    margins = [x.passivity for x in judged if not math.isnan(x.passivity)]
     return Evidence(
         method=method,
-        residual=float(residual[finite].max(initial=0.0)),
-        condition=float(condition[finite].max(initial=1.0)),
-        reciprocity_error=gap,
-        passivity_margin=lowest,
+        residual=max(x.residual for x in judged),
+        condition=max(x.condition for x in judged),
+        reciprocity_error=max(gaps, default=math.nan),
+        passivity_margin=min(margins, default=math.nan),
     )
 
 

@@ -18,7 +18,8 @@ FloatArray = NDArray[np.float64]
 class Solutions:
     """``x`` (f, n, m); ``residual`` (f,) = |b − A x|∞ / (|A|∞ |x|∞ + |b|∞); ``condition`` (f,) after scaling, 1-norm.
 
-    ``scale`` (f, n) and ``largest`` (f, m): an entry of x below ε scale largest is rounding noise. Where A is singular, x and the residual are NaN and the condition is inf.
+    ``scale`` (f, n) and ``largest`` (f, m): an entry of x below ε scale largest is rounding noise. Where A is singular,
+    x and the residual are NaN and the condition is inf.
     """
 
     x: ComplexArray
@@ -55,7 +56,7 @@ def solve(A: ComplexArray, b: ComplexArray) -> Solutions:
 
 
 def equilibrate(A: ComplexArray) -> tuple[ComplexArray, FloatArray, FloatArray]:
-    """Return (diag(r) A diag(c), r, c), r and c powers of two, so that every row and column has a largest entry near 1."""
+    """Return (diag(r) A diag(c), r, c), r and c powers of two; each row and column then has its largest entry near 1."""
     size = np.abs(A)
     f, n = A.shape[:2]
     r, c = np.ones((f, n)), np.ones((f, A.shape[2]))

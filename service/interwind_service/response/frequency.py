@@ -15,12 +15,14 @@ from interwind.model.response import FrequencyResponse
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
-from interwind_service.response.evidence import gather, require
+from interwind_service.response.cautions import cautions_of
+from interwind_service.response.evidence import gather, judge, require
 from interwind_service.response.findings import open_end_findings, singular_finding
 from interwind_service.response.frequency_tree import Drive
-from interwind_service.response.observe import Phasors, evaluate, resolve
-from interwind_service.response.spectrum import Band, checked_frequencies, spectrum
-from interwind_service.response.undetermined import Undetermined, refuse, undetermined
+from interwind_service.response.observe import evaluate, resolve
+from interwind_service.response.phasors import Phasors, StressGauge
+from interwind_service.response.spectrum import checked_frequencies, spectrum
+from interwind_service.response.undetermined import refuse, undetermined
 
 ComplexArray = NDArray[np.complex128]
 
@@ -34,27 +36,31 @@ def frequency_response(
 
     Parameters
     ----------
-    network : its sources by ``phasor``; a switch stands as at t = 0.
-    frequency_hz : shape (F,), Hz, from 0 on.
-    observe : observables; None = all node voltages and winding currents.
+    network : Network
+        Its sources by ``phasor``; a switch stands as at t = 0.
+    frequency_hz : array_like, shape (F,)
+        Hz, from 0 on.
+    observe : sequence of Observable, optional
+        None = all node voltages and winding currents.
 
     Returns
     -------
-    FrequencyResponse : complex (F,) per observable, a NaN row and a finding where the network is singular.
+    FrequencyResponse
+        Complex (F,) per observable; a NaN row and a finding where the network is singular.
 
     Raises
     ------
-    InvalidNetwork : sources contradict each other, or the network is singular at every frequency asked for.
-    AccuracyNotReached : residual, reciprocity or passivity beyond its limit.
+    InvalidNetwork
+        Sources contradict each other, or the network is singular at every frequency asked for.
+    AccuracyNotReached
+        Residual, reciprocity or passivity beyond its limit.
     """
     f = checked_frequencies(frequency_hz)
     topology = admit(network)
     asked = resolve(topology, observe)
     drives, u = drives_of(topology)
     samples = np.full((len(f), len(asked)), np.nan, dtype=np.complex128)
-    findings = list(topology.findings)
-    bands: list[Band] = []
-    alone = True
+    findings, judged, gauge = list(topology.findings), [], StressGauge(topology)
     for band in spectrum(topology, f, drives):
         open_ends = undetermined(band.tree, u)
         singular = ~np.isfinite(band.condition)
@@ -63,22 +69,32 @@ def frequency_response(
             findings += [x for x in open_end_findings(band.tree, open_ends) if x not in findings]
         elif not open_ends.nothing:
             singular[:] = True
-        alone &= open_ends.nothing
         findings += [
             singular_finding(band.tree, float(f[k]), complex(s), open_ends)
             for k, s in zip(band.index[singular], band.s[singular], strict=True)
         ]
-        samples[band.index] = _observe(topology, band, u, open_ends, asked)
+        phasors = Phasors(band, u, open_ends)
+        for column, item in enumerate(asked):
+            samples[band.index, column] = evaluate(phasors, item)
         samples[band.index[singular]] = np.nan
-        bands.append(band)
+        if not singular.any():
+            gauge.take(phasors)
+        judged.append(judge(band, drives_alone=open_ends.nothing))
     found = [x for x in findings if x.code == "SINGULAR_AT_FREQUENCY"]
     if len(found) == len(f):
         raise InvalidNetwork.at(
             "elements", f"no solution at any frequency asked for; {found[0].message}", reason="SINGULAR"
         )
-    evidence = gather(topology, "frequency tree, LU, one refinement", bands, drives_alone=alone)
+    evidence = gather("frequency tree, LU, one refinement", judged)
     require(evidence)
-    return FrequencyResponse(asked, samples, frequency_hz=f, findings=tuple(findings), evidence=evidence)
+    return FrequencyResponse(
+        asked,
+        samples,
+        frequency_hz=f,
+        findings=tuple(findings),
+        cautions=cautions_of(topology, gauge.stress()),
+        evidence=evidence,
+    )
 
 
 def drives_of(topology: Topology) -> tuple[tuple[Drive, ...], ComplexArray]:
@@ -109,29 +125,3 @@ def port_nodes(topology: Topology, position: int) -> tuple[int, int]:
                 f"ports[{position}].{field}", f"{getattr(port, field)!r} found; no element touches that node"
             )
     return topology.node(port.a), topology.node(port.b)
-
-
-def _observe(
-    topology: Topology, band: Band, u: ComplexArray, open_ends: Undetermined, asked: tuple[Observable, ...]
-) -> ComplexArray:
-    tree = band.tree
-    z = band.Z @ u
-    floating = set(open_ends.nodes.tolist())
-
-    def between(one: int, other: int) -> ComplexArray:
-        if one == other:
-            return np.full(len(z), np.nan if one in floating else 0.0, dtype=np.complex128)
-        if tree.component[one] != tree.component[other]:
-            return np.full(len(z), np.nan, dtype=np.complex128)
-        return z[:, : len(tree.tree)] @ (tree.paths[one] - tree.paths[other])
-
-    def voltage(branch: int) -> ComplexArray:
-        return between(int(topology.start[branch]), int(topology.finish[branch]))
-
-    def current(branch: int) -> ComplexArray:
-        if branch in open_ends.currents:
-            return np.full(len(z), np.nan, dtype=np.complex128)
-        return tree.branch_current(branch, z, band.s, u)
-
-    phasors = Phasors(topology, band.s.imag, voltage, current, between)
-    return np.stack([evaluate(phasors, item) for item in asked], axis=1) if asked else np.empty((len(z), 0))

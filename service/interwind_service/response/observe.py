@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 
 import numpy as np
 from numpy.typing import NDArray
@@ -10,8 +10,10 @@ from numpy.typing import NDArray
 from interwind.errors import InvalidNetwork, InvalidRequest, field_path
 from interwind.model import observables as ob
 from interwind.model.elements import Windings
+from interwind_service.network.groups import WindingGroup
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
+from interwind_service.response.phasors import Phasors
 
 ComplexArray = NDArray[np.complex128]
 
@@ -66,24 +68,6 @@ def _check(topology: Topology, item: ob.Observable) -> None:
             )
 
 
-class Phasors:
-    """Voltages and currents of the branches over frequency, as functions of the branch number.
-
-    ``voltage(branch)``, ``current(branch)`` and ``between(node, node)`` each return shape (f,); ``omega`` (f,), rad/s.
-    """
-
-    def __init__(
-        self,
-        topology: Topology,
-        omega: NDArray[np.float64],
-        voltage: Callable[[int], ComplexArray],
-        current: Callable[[int], ComplexArray],
-        between: Callable[[int, int], ComplexArray],
-    ) -> None:
-        self.topology, self.omega = topology, omega
-        self.voltage, self.current, self.between = voltage, current, between
-
-
 def evaluate(phasors: Phasors, item: ob.Observable) -> ComplexArray:
     """Return one observable over frequency, shape (f,), complex peak; power ½ V conj(I), energy the mean.
 
@@ -118,7 +102,7 @@ def _units(topology: Topology, name: str) -> list[int]:
     return branches[:1] if topology.kind[branches[0]] == Kind.WINDING else branches
 
 
-def _group(phasors: Phasors, name: str):
+def _group(phasors: Phasors, name: str) -> tuple[WindingGroup, ComplexArray]:
     group = next(g for g in phasors.topology.groups if g.name == name)
     return group, np.stack([phasors.current(int(k)) for k in group.branches], axis=1)
 

@@ -12,9 +12,10 @@ from interwind.model import elements as el
 from interwind.model.network import Network
 from interwind.model.response import PortResponse
 from interwind_service import tolerances as tol
+from interwind_service.network.hazards import hazards
 from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
-from interwind_service.response.evidence import asymmetry, gather, require, terminal_matrix
+from interwind_service.response.evidence import asymmetry, gather, judge, require, terminal_matrix
 from interwind_service.response.findings import singular_finding
 from interwind_service.response.frequency import port_nodes
 from interwind_service.response.frequency_tree import Drive
@@ -91,9 +92,11 @@ def port_response(network: Network, frequency_hz: object) -> PortResponse:
         raise InvalidNetwork.at(
             "elements", f"no solution at any frequency asked for; {findings[-1].message}", reason="SINGULAR"
         )
-    evidence = gather(plain, "frequency tree, LU, one refinement", bands, drives_alone=True)
+    evidence = gather("frequency tree, LU, one refinement", [judge(band, drives_alone=True) for band in bands])
     require(evidence)
-    return PortResponse(tuple(port.name for port in network.ports), f, Z, Y, S, tuple(findings), evidence=evidence)
+    return PortResponse(
+        tuple(port.name for port in network.ports), f, Z, Y, S, tuple(findings), hazards(plain), evidence
+    )
 
 
 def _names(network: Network) -> list[str]:
@@ -140,7 +143,7 @@ def _admittance(topology: Topology, f: FloatArray, count: int) -> ComplexArray:
 
 
 def _possible(band: Band) -> bool:
-    """Whether each drive can be met by itself: none closes a loop of imposed voltages or forces a current without return."""
+    """Whether each drive can be met by itself: none closes a loop of imposed voltages or lacks a return."""
     units = np.eye(len(band.tree.drives), dtype=np.complex128)
     return not any(undetermined(band.tree, unit).contradiction for unit in units)
 

@@ -1,4 +1,4 @@
-"""What each branch is in the sinusoidal state: an admittance, an imposed voltage or current, or one with a law of its own."""
+"""What each branch is in the sinusoidal state: an admittance, an imposed quantity, or one with a law of its own."""
 
 from __future__ import annotations
 
@@ -43,7 +43,7 @@ _REFUSED = {Kind.DIODE: "a diode", Kind.ARRESTER: "an arrester", Kind.SATURABLE:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Roles:
-    """``role`` (branches,); an admittance is y(s) = conductance + s capacitance + reciprocal_inductance / s, each (branches,)."""
+    """``role`` (branches,), and of an admittance y(s) = conductance + s capacitance + reciprocal_inductance / s."""
 
     role: NDArray[np.int64]
     conductance: FloatArray
