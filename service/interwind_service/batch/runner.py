@@ -97,6 +97,8 @@ class Runner:
         self._thread.join()
         for running in list(self._running.values()):
             _end(running.future, Unavailable("the server is stopping", reason="DRAINING"))
+        for batch_id in list(self._open):
+            self._forget(batch_id)
 
     def damaged(self, chunk: Chunk) -> None:
         """Have a chunk computed again whose file failed its checksum."""
