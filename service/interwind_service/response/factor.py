@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.linalg import lapack
+from scipy.linalg import get_lapack_funcs
 
 from interwind_service import tolerances as tol
 
@@ -30,13 +30,13 @@ class Solutions:
 
 
 def solve(A: ComplexArray, b: ComplexArray) -> Solutions:
-    """Solve A x = b for stacks A (f, n, n) and b (f, n, m): equilibrate, factor, refine once.
+    """Solve A x = b for stacks A (f, n, n) and b (f, n, m), both real or both complex: equilibrate, factor, refine once.
 
     References: Ruiz 2001 (equilibration); Skeel 1980 (one refinement in working precision); Higham 2002, chapter 15.
     """
     f, n, m = b.shape
     if n == 0 or f == 0:
-        return Solutions(np.zeros(b.shape, np.complex128), np.zeros(f), np.ones(f), np.ones((f, n)), np.ones((f, m)))
+        return Solutions(np.zeros(b.shape, b.dtype), np.zeros(f), np.ones(f), np.ones((f, n)), np.ones((f, m)))
     scaled, rows, columns = equilibrate(A)
     right = b * rows[:, :, None]
     if n <= tol.STACKED_SOLVE_SIZE:
@@ -56,7 +56,7 @@ def solve(A: ComplexArray, b: ComplexArray) -> Solutions:
 
 
 def equilibrate(A: ComplexArray) -> tuple[ComplexArray, FloatArray, FloatArray]:
-    """Return (diag(r) A diag(c), r, c), r and c powers of two; each row and column then has its largest entry near 1."""
+    """Return (diag(r) A diag(c), r, c), r and c powers of two, every row and column near 1."""
     size = np.abs(A)
     f, n = A.shape[:2]
     r, c = np.ones((f, n)), np.ones((f, A.shape[2]))
@@ -90,18 +90,19 @@ def _norm_one(A: ComplexArray) -> FloatArray:
 
 
 def _by_factors(A: ComplexArray, b: ComplexArray) -> tuple[ComplexArray, FloatArray]:
-    x = np.full(b.shape, np.nan, dtype=np.complex128)
+    getrf, getrs, gecon = get_lapack_funcs(("getrf", "getrs", "gecon"), (A, b))
+    x = np.full(b.shape, np.nan, dtype=b.dtype)
     condition = np.full(len(A), np.inf)
     norm = _norm_one(A)
     for k in range(len(A)):
-        factors, pivots, info = lapack.zgetrf(A[k])
+        factors, pivots, info = getrf(A[k])
         if info != 0:
             continue
-        reciprocal, _ = lapack.zgecon(factors, norm[k])
+        reciprocal, _ = gecon(factors, norm[k])
         if reciprocal == 0.0:
             continue
         condition[k] = 1.0 / reciprocal
-        first, _ = lapack.zgetrs(factors, pivots, b[k])
-        step, _ = lapack.zgetrs(factors, pivots, b[k] - A[k] @ first)
+        first, _ = getrs(factors, pivots, b[k])
+        step, _ = getrs(factors, pivots, b[k] - A[k] @ first)
         x[k] = first + step
     return x, condition

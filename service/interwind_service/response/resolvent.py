@@ -70,11 +70,11 @@ def resolvent(basis: StateBasis, roles: Roles, s0: float) -> Resolvent:
     right = np.zeros((len(M), inputs + states))
     right[:, :inputs] = -tree.J - M[:, tree.known] @ tree.imposed
     right[:, inputs:] = _initial(tree, basis, s0)
-    answer = solve(np.ascontiguousarray(M[:, tree.unknown])[None].astype(complex), right[None].astype(complex))
+    answer = solve(np.ascontiguousarray(M[:, tree.unknown])[None], right[None])
     if not np.isfinite(answer.x).all():
         raise InvalidNetwork.at("elements", f"no unique solution at s = {s0:.3g} 1/s", reason="SINGULAR_NETWORK")
     z = np.zeros((M.shape[1], inputs + states))
-    z[tree.unknown] = answer.x[0].real
+    z[tree.unknown] = answer.x[0]
     z[tree.known, :inputs] = tree.imposed
     signals = _signals(tree, basis, s0, z)
     values = np.vstack(
