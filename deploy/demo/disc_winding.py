@@ -28,9 +28,9 @@ def discs(*, neighbours: int = COUNT) -> iw.WindingSet:
     return iw.WindingSet(labels, inductance_h, resistance_ohm=DATA["disc_resistance_ohm"])
 
 
-def network(coils: iw.WindingSet, waveform: iw.Waveform) -> iw.Network:
+def network(coils: iw.WindingSet, waveform: object) -> iw.Network:
     """The winding from line to ground: capacitance and loss across each disc, capacitance to ground at each node."""
-    elements: list[iw.Element] = [
+    elements = [
         iw.VoltageSource("impulse", "line", "ground", waveform=waveform, phasor=1.0),
         iw.Windings("winding", coils, dict(zip(coils.labels, pairwise(NODES), strict=True))),
     ]

@@ -78,7 +78,7 @@ def identify(labels: Any, readings: Any) -> Identification:
 
 
 @_with_provenance
-def characterize(windings: WindingSet, connections: Any = (), frequency_hz: Any = None) -> Characterization:
+def characterize(windings: WindingSet, connections: Any = (), frequency_hz: Any = ()) -> Characterization:
     """Read off what designers use."""
     from interwind_service.windings import characterize as desk
 

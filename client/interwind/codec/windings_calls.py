@@ -108,7 +108,7 @@ def _characterize_arguments(message: Any) -> dict[str, Any]:
     given = message.HasField("frequency_hz")
     return _check_arguments(message) | {
         "connections": tuple(connections),
-        "frequency_hz": array_from_message(message.frequency_hz, "frequency_hz") if given else None,
+        "frequency_hz": array_from_message(message.frequency_hz, "frequency_hz") if given else (),
     }
 
 
