@@ -17,6 +17,7 @@ COUNT = len(DATA["disc_inductance_h"])
 NODES = ["line", *(f"n{number}" for number in range(1, COUNT)), "ground"]
 INNER = [iw.NodeVoltage(node) for node in NODES[1:-1]]
 FULL_WAVE_V = 750e3  # what 1 p.u. stands for in the picture
+RUN_S = 150e-6  # within it the deepest swing below zero and the largest disc current of the golden run
 KEPT_NEIGHBOURS = 5
 
 
@@ -102,7 +103,7 @@ def show_impulse(solver: iw.Client, net: iw.Network, figures: Figures, output: P
     golden = DATA["golden"]
     first_disc = iw.WindingCurrent("winding", "disc 1")
     observe = [iw.NodeVoltage("line"), *INNER, first_disc]
-    surge = solver.time_response(net, stop_s=50e-6, step_s=20e-9, observe=observe)
+    surge = solver.time_response(net, stop_s=RUN_S, step_s=20e-9, observe=observe)
     to_ground = np.column_stack([surge[observable] for observable in INNER])
     time_us = surge.time_s * 1e6
 
