@@ -26,12 +26,33 @@ SUBSETS_EXAMINED = 30_000
 SUBSET_DELETION_WINDINGS = 100
 # At most this many impossible subsets are named, the most impossible first.
 SUBSETS_NAMED = 10
+# A leakage known worse than this is named; clamps and filters are designed on a tenth (common practice, no source).
+LEAKAGE_ACCURACY = 0.1
+# At most this many pairs are named one by one for one reason, the worst first.
+PAIRS_NAMED = 10
+# Couplings smaller than this may well be of either sign: a flip is only suggested above it.
+SIGN_MATTERS_ABOVE = 0.3
+# What slips of unit are made of: milli, micro and nano mistaken for one another.
+UNIT_SLIPS = (1e3, 1e-3, 1e6, 1e-6, 1e9, 1e-9)
+# Self-inductances further apart than the square of the largest turns ratios in practice, 1 : 10 000, are doubted.
+SELF_INDUCTANCE_RATIO = 1e8
+# Below a hundredth of a nanohenry there is no conductor, above ten kilohenries no winding (common practice, no source).
+SELF_INDUCTANCE_RANGE_H = (1e-11, 1e4)
+# A winding is doubted for a unit when all others couple at least this well and it would, too, with the unit mended.
+TIGHT_COUPLING = 0.9
+# Rules of thumb for units and sides take some decompositions a winding; up to this size below a tenth of a second.
+PLAUSIBILITY_WINDINGS = 40
+# A leakage looks referred to the other side when it is off by L_i / L_j to within this factor, and by more than the next.
+SIDE_FACTOR_MATCH = 2.0
+SIDE_FACTOR_LEAST = 4.0
+# Two windings whose every entry agrees to this are one conductor entered twice, or two that nothing tells apart.
+DUPLICATE_AGREEMENT = 1e-9
 # Two ends of a feasible interval closer than this are one value, reached by different roundings.
 INTERVAL_ROUNDING = 1e-12
 # A winding is named in a verdict when it carries at least this share of the squared witness vector.
 WITNESS_SHARE = 0.02
-# At most this many asymmetric pairs are named one by one, the worst first.
-ASYMMETRIC_PAIRS_NAMED = 10
+# Unknown pairs named one by one: each is a reading to take, so more of them than of others.
+UNKNOWN_PAIRS_NAMED = 100
 # Barrier method for unknown pairs: duality gap at which the best smallest eigenvalue counts as found.
 COMPLETION_GAP = 1e-10
 # The barrier is centred when the Newton decrement is below this: the gap is then within a few per cent of n mu.
@@ -88,7 +109,7 @@ FIT_DAMPING_START = 1e-3
 FIT_DAMPING_LEAST = 1e-15
 FIT_DAMPING_LARGEST = 1e12
 # The steps have settled when chi-square falls by less than this part of itself; steps allowed (10 to 30 are usual).
-FIT_GAIN = 1e-10
+FIT_GAIN = 1e-8
 FIT_STEPS = 500
 # Readings scaled to norm 1 that determine a direction only below this say nothing about it beyond rounding.
 UNDETERMINED_SINGULAR_VALUE = 1e-9
@@ -147,6 +168,27 @@ PASSIVITY_LIMIT = -1e-9
 # Rows of a Schur form substituted together: 16 to 64 cost the same within a third, 32 least.
 SCHUR_BLOCK = 32
 
+# One resolvent serves this ratio of frequencies: five decades leave 1e-10 in all but one of 200 random networks whose
+# values span twelve decades; that one is found at the ends of its band.
+SWEEP_BAND = 1e5
+# A span this little above a whole number of bands is one of them still.
+SWEEP_BAND_ROUNDING = 1e-3
+# Halvings of a band that the frequency tree contradicts, before its frequencies are solved one by one.
+SWEEP_HALVINGS = 3
+# Fewer frequencies than this are solved one by one sooner than by one reduction.
+SWEEP_POINTS = 40
+
+# Stacks of variants. Pivots of at least this share of their column: growth of 10 a step at most.
+STACK_PIVOT_SHARE = 0.1
+# A pivot that is what is left of terms so much larger may hide a singular system: one by one then.
+STACK_CANCELLATION = 1e-8
+# Componentwise |b - A x| over |A| |x| + |b|: some fifty roundings.
+STACK_BACKWARD_ERROR = 1e-14
+# Unknowns up to which a straight line of array operations beats a factorization each.
+STACK_UNKNOWNS = 40
+# Systems of a block: the arrays of a step then stay in the second-level cache.
+STACK_BLOCK = 4096
+
 # --- response: time -------------------------------------------------------------------------------------------------
 
 # Below this 1-norm the Taylor series of e^X needs no halving; at 0.5 degree 14 leaves 2e-17.
@@ -161,10 +203,10 @@ STRUCTURAL_PIVOT_SHARE = 0.05
 STRUCTURAL_ROUNDING = 1e-11
 # Share of the largest entry of a null vector from which an element is named as a member.
 STRUCTURAL_MEMBER = 1e-6
-# A resolvent at s0 shows modes up to this many times s0 to 1e-12 of themselves; faster ones get an s0 of their own.
-BAND_REACH = 1e4
-# That s0 stands this much above the slowest mode of its block, so that it reaches two decades to each side.
-BAND_LEAD = 1e2
+# A resolvent at s0 shows modes up to this many times s0 to 1e-13 of themselves; faster ones get an s0 of their own.
+BAND_REACH = 1e3
+# That s0 stands this much above the slowest mode of its block, so that it serves slower and faster ones of the block alike.
+BAND_LEAD = 1e1
 # Net current into a part without a return that counts as rounding, as a share of the largest source.
 FORCED_CURRENT_ROUNDING = 1e-12
 # Entries of the observability matrix of one block, 4 MB: it stays in the cache while all blocks pass by.
@@ -235,6 +277,31 @@ GRID_MISMATCH = 1e-6  # of a step, within which the step divides the stop
 MAXIMUM_SAMPLES = 50_000_000  # samples of one observable: 400 MB
 REST_RANK = 1e-14  # singular values below this share are currents and voltages that rest does not fix
 RESIDUAL_LOOKS = 16  # segment ends of a piece at which the equations are checked
+COMMENSURATE = 1e-9  # share of a cycle by which a drive may miss the period
+HARMONICS = 100  # harmonics that a periodic response carries
+WARM_UP_PERIODS = 5  # plain periods before Newton's method; from rest the first one is far from any steady state
+NEWTON_STEPS = 60  # steps of Newton's method in one go
+NEWTON_REFUSALS = 25  # steps that did not help before plain periods are run in bursts
+BURST_REFUSALS = 4  # the same after a burst
+BURSTS = 4  # bursts before a network counts as not periodic
+BURST_PERIODS = 150  # plain periods in a burst
+PLAIN_PERIODS = 2  # plain periods after a step that did not help
+LINE_SEARCH_TRIALS = 5  # shortenings of a step
+LINE_SEARCH_FACTOR = 0.4  # of its length
+LINE_SEARCH_DECREASE = 0.95  # share of the residual that must be left at most
+PERIODIC_RESIDUAL = 1e-10  # |P(x) - x| / |x| of a periodic state
+PERIODIC_STAGNATION = 1e-7  # the same where rounding times the condition of I - Phi allows no more
+UNDETERMINED_OFFSET = 1e-12  # singular values of I - Phi below this leave an offset undetermined
+SLOW_MULTIPLIER = 0.5  # multipliers above this are corrected when the full step does not help
+LONGEST_REPETITION = 8  # periods after which a repetition is looked for
+REPETITION_SPREAD = 1e-6  # relative spread that counts as a repetition
+UNSTABLE_MARGIN = 1e-9  # above 1 by which a multiplier is unstable and not rounding
+SLOW_WARNING = 0.9999  # a disturbance that keeps more than this over a period is told
+DOUBLING_WARNING = -0.8  # a real multiplier below this is close to period doubling
+REAL_MULTIPLIER = 1e-9  # relative imaginary part of a real multiplier
+OTHER_START = 1.5  # times the state found: the second start
+OTHER_START_PERIODS = 10  # periods spent on it
+SAME_SOLUTION = 1e-6  # relative distance of two answers that are one
 PIECES_KEPT = 512  # combinations of device states kept
 PIVOTS = 200  # pivots of the complementarity problem; three is the most seen
 PIVOT_PATIENCE = 5  # block pivots without progress before the least-index rule takes over
@@ -263,6 +330,7 @@ CURRENT_TRANSFORMER_BURDEN_OHM = 10e3
 # --- service: workers and front -------------------------------------------------------------------------------------
 WORKER_OOM_SCORE_ADJUST = 700  # the kernel, short of memory, takes a worker and not the server
 WORKER_RESPAWN_PAUSE_S = 0.2  # between tries to start a process when the system has none to give
+WORKER_LEAVE_S = 0.3  # a stopping server waits so long for its workers; they see its end by themselves
 INLINE_ANSWER_BYTES = 64 * 1024  # below this a file costs more than the pipe (measured: 0.4 ms against 0.3 ms)
 MAX_REQUEST_BYTES = 4 * 2**20  # what every gRPC library sends and takes unasked; larger arrays go through PutArray
 MAX_FRAME_BYTES = 2 * 2**20  # largest response message, half of what every client library takes unasked

@@ -1,4 +1,4 @@
-"""The periodic steady state: samples over one period, and figures taken from the exact solution, not from the samples."""
+"""The periodic steady state: samples over one period, and figures of the exact solution."""
 
 from __future__ import annotations
 
@@ -17,7 +17,8 @@ class PeriodicResponse(_Columns):
 
     Attributes
     ----------
-    time_s : shape (T,), s, k step_s for k = 0 .. period_s/step_s; ``samples`` shape (T, observables), limits from the right.
+    time_s : shape (T,), s, k step_s for k = 0 .. period_s/step_s; ``samples`` shape (T, observables), limits from the
+        right.
     means, rmses, peaks, peak_times_s : shape (observables,): mean, root of the mean square, largest magnitude (with its
         sign) and its instant, s, of the exact solution.
     harmonic_values : shape (observables, K), complex peak values c_k of harmonics k = 1 .. K:
@@ -56,7 +57,7 @@ class PeriodicResponse(_Columns):
         return float(self.peak_times_s[self._position(observable)])
 
     def harmonics(self, observable: Observable, count: int) -> ComplexArray:
-        """Return the complex peak values of harmonics 1 to ``count``, shape (count,): x = mean + Σ Re(c_k e^(j k 2π t/T))."""
+        """Return the complex peak values of harmonics 1 to ``count``: x = mean + Σ Re(c_k e^(j k 2π t / period))."""
         stated = self.harmonic_values.shape[1]
         if not 0 <= count <= stated:
             raise InvalidRequest.at("count", f"{count!r} found; a response carries harmonics 1 to {stated}")

@@ -53,7 +53,7 @@ class Device:
         return False
 
     def heat_offset(self, mode: int) -> float:
-        """Return the voltage below which dissipation is the device's own even when its slope stands for an ideal one."""
+        """Return the voltage whose product with the current is heat of the device itself, however ideal its slope."""
         return 0.0
 
 
@@ -68,9 +68,11 @@ class TimedSwitch(Device):
     words: ClassVar[dict[int, str]] = {0: "open", 1: "closed"}
 
     def ideal_in(self, mode: int) -> bool:
+        """Whether the resistance of a mode is not its own."""
         return self.ideal[mode]
 
     def law(self, mode: int) -> Law:
+        """Return the straight line of a mode."""
         return (1.0, -(self.closed_ohm if mode else self.open_ohm), 0.0, 0.0)
 
 
@@ -85,25 +87,29 @@ class LinearDiode(Device):
     words: ClassVar[dict[int, str]] = {0: "blocking", 1: "conducting"}
 
     def ideal_in(self, mode: int) -> bool:
+        """Whether the resistance of a mode is not its own."""
         return self.ideal[mode]
 
     def law(self, mode: int) -> Law:
+        """Return the straight line of a mode."""
         if mode:
             return (1.0, -self.on_ohm, 0.0, self.forward_v * (1.0 - self.on_ohm / self.off_ohm))
         return (1.0, -self.off_ohm, 0.0, 0.0)
 
     def guards(self, mode: int) -> tuple[Guard, ...]:
+        """Return what ends a mode."""
         if mode:
             return (Guard(-self.forward_v / self.off_ohm, 0.0, 1.0, 0.0, 0),)
         return (Guard(self.forward_v, -1.0, 0.0, 0.0, 1),)
 
     def heat_offset(self, mode: int) -> float:
+        """Return the forward voltage while conducting."""
         return self.forward_v if mode else 0.0
 
 
 @dataclass(frozen=True, slots=True, eq=False)
 class SaturableBranch(Device):
-    """Mode k: the k-th straight piece of the flux-current table (negative for negative flux), φ = sqrt(L0) x the state."""
+    """Mode k: the k-th straight piece of the table (negative for negative flux); the state is x = φ / sqrt(L0)."""
 
     root: float
     current_a: FloatArray
@@ -112,6 +118,7 @@ class SaturableBranch(Device):
     words: ClassVar[dict[int, str]] = {}
 
     def law(self, mode: int) -> Law:
+        """Return the straight line of a mode."""
         start, sign = abs(mode), (1.0 if mode >= 0 else -1.0)
         slope = self._slope(start)
         return (0.0, 1.0, slope * self.root, sign * (self.current_a[start] - slope * self.flux_wb[start]))
@@ -120,6 +127,7 @@ class SaturableBranch(Device):
         return (self.current_a[piece + 1] - self.current_a[piece]) / (self.flux_wb[piece + 1] - self.flux_wb[piece])
 
     def guards(self, mode: int) -> tuple[Guard, ...]:
+        """Return what ends a mode."""
         piece, sign, last = abs(mode), (1.0 if mode >= 0 else -1.0), len(self.flux_wb) - 2
         found = []
         if piece < last:
@@ -134,6 +142,15 @@ class SaturableBranch(Device):
         """Return the piece that holds a flux linkage."""
         piece = min(int(np.searchsorted(self.flux_wb, abs(flux_wb), side="right")) - 1, len(self.flux_wb) - 2)
         return piece if flux_wb >= 0 else -piece
+
+    def energy_line(self, mode: int) -> tuple[float, float, float]:
+        """Return (p, q, c) with the energy ½ p φ² + q φ + c on the piece of a mode."""
+        piece, sign = abs(mode), (1.0 if mode >= 0 else -1.0)
+        slope = self._slope(piece)
+        constant = self.current_a[piece] - slope * self.flux_wb[piece]
+        at = self.flux_wb[piece]
+        base = float(self.energy_j(np.array([at]))[0]) - 0.5 * slope * at**2 - constant * at
+        return slope, sign * constant, base
 
     def energy_j(self, flux_wb: FloatArray) -> FloatArray:
         """Return ∫ i dφ from 0."""

@@ -97,7 +97,7 @@ def power_terms(tableau: Tableau, mode: tuple[int, ...]) -> PowerTerms:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Energy:
-    """``ledger``, its error relative to the larger of supply and peak stored energy, and the energy each element absorbed, J."""
+    """``ledger``, its ``error`` over the larger of supply and peak stored energy, ``absorbed_j`` (elements,)."""
 
     ledger: EnergyLedger
     error: float

@@ -67,7 +67,7 @@ def first_event(driven: Driven, kappa: ComplexArray, span_s: float, fresh: int) 
             held = since[-1]
         found = _earliest(sums, times, g, dg, bad)
         if found is not None:
-            return found[0], Change(found[0], int(piece.rows.device[found[1]]), int(piece.rows.then[found[1]]))
+            return found[0], Change(float(found[0]), int(piece.rows.device[found[1]]), int(piece.rows.then[found[1]]))
         if last:
             break
         before, t_before, low, width = seen[-1], float(times[-1]), high, 2 * width

@@ -26,7 +26,7 @@ FloatArray = NDArray[np.float64]
 
 @dataclass(frozen=True, slots=True, eq=False)
 class IdealLimit:
-    """``short_ohm``, ``open_ohm`` for ideal elements; ``series_ohm`` (branches,) in loops; ``leaks`` (node, S) at cutsets."""
+    """``short_ohm``, ``open_ohm`` of ideal elements; ``series_ohm`` (branches,) in loops; ``leaks`` (node, S)."""
 
     short_ohm: float
     open_ohm: float
@@ -65,7 +65,7 @@ def winding_factor(group: WindingGroup) -> FloatArray:
 
 
 def ideal_limit_of(topology: Topology, time_scale_s: float, epsilon: float = tol.IDEAL_EPSILON) -> IdealLimit:
-    """Choose the impedance scale Z0 = geometric mean of the resistances and of L / time scale, and find the structures."""
+    """Choose Z0, the geometric mean of the resistances and of 2π L / time scale, and find the structures."""
     resistances = topology.value[topology.of_kind(Kind.RESISTOR)]
     inductances = [topology.value[k] for k in topology.of_kind(Kind.INDUCTOR)]
     inductances += [max(group.inductance_h.diagonal()) for group in topology.groups]

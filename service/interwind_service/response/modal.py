@@ -6,7 +6,7 @@ X = (s0 − A)⁻¹, solved directly from the companion network at s0: λ = s0 �
 
     dd/dt = A d + X B (s0 − W) w,        s = S_x d + S_0 w
 
-which never forms the response to a drive as a difference of two huge numbers, and is right for W with s = 0 beside λ = 0.
+which never forms the response to a drive as a difference of two huge numbers, and holds for s = 0 beside λ = 0.
 """
 
 from __future__ import annotations
@@ -31,8 +31,9 @@ class Modes:
 
         y(t) = Re Y (κ ∘ e^{λt}) + Re Σ_b (Y_b w0) t^q_b e^{s_b t} / q_b!,    κ = Λ (x0 − Re X_p w0)
 
-    ``eigenvalue`` (h,) one of each conjugate pair; ``left`` (h, n) with the factor 2 of a pair inside; ``signal`` (m + n, h);
-    ``exponent``, ``power`` (b,); ``forced`` (m + n, b, k); ``particular`` (n, k) its states at t = 0; ``condition`` of V.
+    ``eigenvalue`` (h,) one of each conjugate pair; ``left`` (h, n) with the factor 2 of a pair inside; ``signal``
+    (m + n, h); ``exponent``, ``power`` (b,); ``forced`` (m + n, b, k); ``particular`` (n, k) its states at t = 0;
+    ``condition`` of V.
     """
 
     eigenvalue: ComplexArray
@@ -60,7 +61,7 @@ class Modes:
 
 
 class Equilibrated:
-    """LU of a matrix whose rows and columns are scaled to powers of two (Ruiz 2001, from memory), with one refinement."""
+    """LU of a matrix, rows and columns scaled by powers of two (Ruiz 2001, from memory), with one refinement."""
 
     def __init__(self, matrix: FloatArray) -> None:
         size = len(matrix)
@@ -194,7 +195,7 @@ def _forced(
     eigenvalue: ComplexArray, xs: ComplexArray, s_of: ComplexArray, link: NDArray[np.int64],
     W: ComplexArray, rate: float, span: float,
 ) -> tuple[ComplexArray, NDArray[np.int64], ComplexArray]:  # fmt: skip
-    """Return basis functions t^q e^{st}/q! and the modal response in them to each channel, shape (modes, basis, channels).
+    """Return basis functions t^q e^{st}/q! and in them the modal response to each channel, (modes, basis, channels).
 
     To t^p e^{st}/p! a mode λ answers −Σ_r t^r e^{st} / (r! (λ−s)^{p−r+1}) beside its own e^{λt}; near resonance
     e^{st} Σ_k (λ−s)^k t^{k+p+1} / (k+p+1)! instead.

@@ -38,7 +38,7 @@ def _higher(n: int, a: ComplexArray, tau: FloatArray) -> ComplexArray:
     found = np.empty_like(z)
     near = np.abs(z) <= tol.GAUSS_REACH
     u = 0.5 * (1.0 + _NODES)
-    found[near] = tau[near] ** (n + 1) * (np.exp(z[near][:, None] * u) * u**n) @ (0.5 * _WEIGHTS)
+    found[near] = tau[near] ** (n + 1) * ((np.exp(z[near][:, None] * u) * u**n) @ (0.5 * _WEIGHTS))
     far, t = a[~near], tau[~near]
     with np.errstate(under="ignore"):
         end = np.exp(far * t)

@@ -1,4 +1,4 @@
-"""One piece of a piecewise-linear network, ready to run: its modes, its guards, and the instants at which to look at them."""
+"""One piece of a piecewise-linear network: its modes, its guards, and the instants at which to look at them."""
 
 from __future__ import annotations
 
@@ -19,7 +19,7 @@ ComplexArray = NDArray[np.complex128]
 
 @dataclass(frozen=True, slots=True, eq=False)
 class GuardRows:
-    """The guards of one piece: ``device``, ``then`` (g,); rows over s, over x, and the constant, (g, m), (g, n), (g,)."""
+    """The guards of one piece: ``device``, ``then`` (g,); rows over s (g, m), over x (g, n), the constant (g,)."""
 
     device: NDArray[np.int64]
     then: NDArray[np.int64]
@@ -241,7 +241,7 @@ class Pieces:
 
 
 def _jump_modes(tableau: Tableau, mode: Mode, modes: Modes) -> NDArray[np.bool_]:
-    """Return which modes are jumps of the ideal network: those whose energy goes mostly into stand-ins of ideal elements."""
+    """Return which modes are jumps of the ideal network: their energy goes mostly into stand-ins of ideal elements."""
     resistance, rows = tableau.stand_ins(mode)
     through = np.abs(rows @ modes.signal[: tableau.unknowns]) ** 2
     lost = resistance @ through if len(resistance) else np.zeros(len(modes.eigenvalue))

@@ -1,121 +1,133 @@
-"""Time response of networks with switches, piecewise-linear diodes and saturable branches: event to event, exactly."""
+"""Time response of networks with switches, piecewise-linear diodes and saturable branches."""
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from dataclasses import dataclass
+import math
+from collections.abc import Callable, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import InvalidNetwork
+from interwind.errors import AccuracyNotReached
+from interwind.model.finding import Evidence, Finding, Severity
+from interwind.model.network import Network
+from interwind.model.observables import Observable
+from interwind.model.response import Event, Initial, TimeResponse
 from interwind_service import tolerances as tol
-from interwind_service.response.complementarity import consistent_modes
-from interwind_service.response.device import SaturableBranch, TimedSwitch
-from interwind_service.response.drives import breakpoints, closed_at, drives_of
-from interwind_service.response.events import first_event
-from interwind_service.response.ideal_limit import ideal_limit_of
-from interwind_service.response.piece import Piece, Pieces
-from interwind_service.response.tableau import Mode, Tableau, tableau_of
-from interwind_service.response.trajectory import Trajectory
-from interwind_service.network.topology import Topology
+from interwind_service.response.admit import admit
+from interwind_service.response.energy import Energy, energy_of
+from interwind_service.response.observe import resolve
+from interwind_service.response.output_grid import output_grid
+from interwind_service.response.readings import Readings, readings_of
+from interwind_service.response.start import start_state
+from interwind_service.response.switched_network import SwitchedNetwork, switched_network
+from interwind_service.response.trajectory import Rows, Trajectory
 
 FloatArray = NDArray[np.float64]
-ComplexArray = NDArray[np.complex128]
 
 
-@dataclass(slots=True, eq=False)
-class SwitchedNetwork:
-    """A numbered network with its pieces, and the instants in [0, stop] at which a gate or waveform sets it anew."""
+def time_response_switching(
+    network: Network,
+    stop_s: float,
+    step_s: float,
+    observe: Sequence[Observable] | None = None,
+    initial: Initial = None,
+    tolerance: float = tol.DEFAULT_TOLERANCE,
+    progress: Callable[[int, int], None] | None = None,
+) -> TimeResponse:
+    """Run a network with piecewise-linear devices from event to event and sample it on a grid.
 
-    tableau: Tableau
-    pieces: Pieces
-    breakpoint_s: FloatArray
+        x(t) = Re V (κ ∘ e^{λt}) + particular solution,    between events, no time step
 
-    def start_mode(self, x: FloatArray) -> Mode:
-        """Return blocking diodes, open switches and the pieces that hold the residual fluxes."""
-        return tuple(
-            device.mode_at(device.root * x[device.state]) if isinstance(device, SaturableBranch) else 0
-            for device in self.tableau.devices
+    Returns
+    -------
+    TimeResponse : samples, limits from the right; events; the energy ledger.
+
+    Raises
+    ------
+    InvalidRequest, InvalidNetwork, InvalidWindings : bad input, by its path.
+    AccuracyNotReached : the energy ledger misses ``tolerance``.
+    """
+    time_s = output_grid(stop_s, step_s)
+    topology = admit(network)
+    observables = resolve(topology, observe)
+    prepared = switched_network(topology, float(time_s[-1]), step_s)
+    x = start_state(prepared, initial)
+    record = Trajectory()
+    end, _, _ = prepared.run(x, prepared.start_mode(x), record=record, progress=progress)
+    energy = energy_of(prepared.tableau, record, x, end, record.peak_j)
+    evidence = evidence_of(
+        prepared, energy, record, f"modal sums between events, ideal elements as {tol.IDEAL_EPSILON:g} Z0"
+    )
+    readings = {piece.number: readings_of(prepared.tableau, piece.mode, observables) for piece in record.distinct()}
+    require_accuracy(evidence, energy, tolerance)
+    return TimeResponse(
+        observables,
+        sample(record, readings, time_s, step_s),
+        time_s=time_s,
+        events=events_of(prepared, record),
+        ledger=energy.ledger,
+        findings=(*topology.findings, *undefined_findings(observables, readings)),
+        evidence=evidence,
+    )
+
+
+def sample(record: Trajectory, readings: dict[int, Readings], time_s: FloatArray, step_s: float) -> FloatArray:
+    """Return the observables at instants, shape (T, observables); NaN where nothing defines them."""
+    rows: dict[int, Rows] = {number: own.rows for number, own in readings.items()}
+
+    def finish(number: int, sampled: FloatArray) -> FloatArray:
+        value = readings[number].values(sampled)
+        value[:, readings[number].undefined] = np.nan
+        return value
+
+    return record.samples(rows, time_s, tol.SETTLE_SHARE * step_s, finish)
+
+
+def events_of(network: SwitchedNetwork, record: Trajectory) -> tuple[Event, ...]:
+    """Return the changes of switches and diodes in order; a saturable branch has none."""
+    found = []
+    for time_s, position, mode in record.changes:
+        device = network.tableau.devices[position]
+        if mode in device.words:
+            found.append(Event(float(time_s), device.name, device.words[mode]))
+    return tuple(found)
+
+
+def evidence_of(
+    network: SwitchedNetwork, energy: Energy, record: Trajectory, method: str, periods: int = 0
+) -> Evidence:
+    """Gather what vouches for a switched run."""
+    return Evidence(
+        method=method,
+        residual=record.residual(network.tableau),
+        condition=network.pieces.worst_condition,
+        energy_error=energy.error,
+        periods_propagated=periods,
+    )
+
+
+def require_accuracy(evidence: Evidence, energy: Energy, tolerance: float) -> None:
+    """Refuse numbers whose energy ledger or equations miss the tolerance."""
+    for name, value in (("energy_error", evidence.energy_error), ("residual", evidence.residual)):
+        if not (math.isfinite(value) and value <= tolerance):
+            raise AccuracyNotReached(
+                f"{name} is {value:.3g}; the tolerance is {tolerance:g}; {energy.ledger.numerical_j:.3g} J of "
+                f"{energy.ledger.supplied_j:.6g} J supplied are unaccounted for; check for loops without resistance, "
+                "or state a larger tolerance",
+                evidence=evidence,
+            )
+
+
+def undefined_findings(observables: Sequence[Observable], readings: dict[int, Readings]) -> tuple[Finding, ...]:
+    """Say which observables had no path that defines them for a stretch."""
+    ever = np.any([own.undefined for own in readings.values()], axis=0)
+    return tuple(
+        Finding(
+            "UNDEFINED_POTENTIAL",
+            Severity.WARNING,
+            field="observe",
+            message=f"{observables[k]!r} is NaN while ideal open switches and blocking diodes leave it without a path",
         )
-
-    def run(
-        self,
-        x: FloatArray,
-        mode: Mode,
-        *,
-        record: Trajectory | None = None,
-        monodromy: bool = False,
-        progress: Callable[[int, int], None] | None = None,
-    ) -> tuple[FloatArray, Mode, FloatArray | None]:
-        """Run from x over all intervals; return the end state, the end modes and, if asked, Φ = ∂x(end)/∂x(start)."""
-        phi = np.eye(self.tableau.states) if monodromy else None
-        intervals = len(self.breakpoint_s) - 1
-        for k in range(intervals):
-            start, stop = float(self.breakpoint_s[k]), float(self.breakpoint_s[k + 1])
-            x, mode, phi = self._interval(x, mode, start, stop, record, phi)
-            if progress is not None:
-                progress(k + 1, intervals)
-        return x, mode, phi
-
-    def _interval(self, x, mode, start, stop, record, phi):
-        inside = 0.5 * (start + stop)
-        w_inside = self.tableau.drives.state(inside)
-        w = self.tableau.drives.moved(w_inside, start - inside)
-        before = mode
-        mode = tuple(
-            int(closed_at(device.gate, inside)) if isinstance(device, TimedSwitch) else own
-            for device, own in zip(self.tableau.devices, mode, strict=True)
-        )
-        mode = consistent_modes(self.pieces, mode, x, w)
-        if record is not None:
-            record.changes += [(start, d, new) for d, (old, new) in enumerate(zip(before, mode, strict=True)) if old != new]
-        now, fresh, events = start, -1, 0
-        steady, driven = self.tableau.drives.steady, {}
-        while now < stop:
-            bound = driven.get(mode) if steady else None
-            if bound is None:
-                bound = driven[mode] = self.pieces.piece(mode).driven(w)
-            piece, modes = bound.piece, bound.piece.modes
-            kappa = modes.left @ (x - bound.particular)
-            span, change = first_event(bound, kappa, stop - now, fresh)
-            growth = piece.growth(span)
-            homogeneous, forced = growth[: len(kappa)], growth[len(kappa) :]
-            if record is not None:
-                record.add(piece, now, span, kappa, w)
-            V = modes.state_signal
-            if phi is not None:
-                phi = ((V * homogeneous) @ modes.left).real @ phi
-            x = (V @ (homogeneous * kappa) + bound.state @ forced).real
-            now = stop if span >= stop - now else now + span
-            if not steady:
-                w = self.tableau.drives.moved(w_inside, now - inside)
-            fresh = -1
-            if change is not None:
-                fresh = change.device
-                mode = (*mode[:fresh], change.then, *mode[fresh + 1 :])
-                events += 1
-                if record is not None:
-                    record.changes.append((now, fresh, change.then))
-                if events > tol.EVENTS_PER_INTERVAL:
-                    self._chattering(record, start, stop)
-        return x, mode, phi
-
-    def _chattering(self, record: Trajectory | None, start: float, stop: float) -> None:
-        last = record.changes[-tol.CHATTER_WINDOW :] if record is not None else []
-        names = sorted({self.tableau.devices[device].name for _, device, _ in last})
-        raise InvalidNetwork.at(
-            "elements",
-            f"more than {tol.EVENTS_PER_INTERVAL} changes between {start:.9g} s and {stop:.9g} s; "
-            f"{', '.join(names) or 'the diodes'} chatter; give them a resistance or a capacitance",
-        )
-
-
-def switched_network(topology: Topology, stop_s: float, step_s: float, period_s: float | None = None) -> SwitchedNetwork:
-    """Prepare a network for a run over [0, stop]."""
-    drives = drives_of(topology, stop_s, step_s)
-    at = breakpoints(topology, drives, stop_s, step_s)
-    longest = float(np.diff(at).max())
-    scale = period_s if period_s is not None else longest
-    tableau = tableau_of(topology, drives, ideal_limit_of(topology, scale))
-    return SwitchedNetwork(tableau, Pieces(tableau, 1.0 / scale, longest), at)
+        for k in np.flatnonzero(ever)
+    )

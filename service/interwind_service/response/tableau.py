@@ -71,7 +71,7 @@ class Tableau:
         return self.voltage_row(self.topology.start[branch], self.topology.finish[branch])
 
     def stand_ins(self, mode: Mode) -> tuple[FloatArray, FloatArray]:
-        """Return what stands for ideal elements: weights (q,) and rows over s (q, m) with the power Σ weight |row s|²."""
+        """Return what stands for ideal elements: weights (q,) and rows over s (q, m); power Σ weight |row s|²."""
         weight, rows = [], []
 
         def put(ohm: float, branch: int) -> None:

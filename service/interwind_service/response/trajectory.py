@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
 from interwind_service.response.piece import Piece
+from interwind_service.response.tableau import Tableau
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]
@@ -62,6 +63,7 @@ class Trajectory:
     kappa: list[ComplexArray] = field(default_factory=list)
     w: list[ComplexArray] = field(default_factory=list)
     changes: list[tuple[float, int, int]] = field(default_factory=list)
+    peak_j: float = 0.0
 
     def add(self, piece: Piece, start_s: float, span_s: float, kappa: ComplexArray, w: ComplexArray) -> None:
         """Append one segment."""
@@ -90,7 +92,7 @@ class Trajectory:
                 )
 
     def segment_of(self, time_s: FloatArray, settle_s: float) -> tuple[IntArray, NDArray[np.bool_]]:
-        """Return the segment each sample belongs to, and whether it stands at an event (then: after what settles at once)."""
+        """Return the segment of each sample, and whether it stands at an event (then: after what settles at once)."""
         start = np.array(self.start_s)
         own = np.maximum(np.searchsorted(start, time_s, side="right") - 1, 0)
         end = float(start[-1] + self.span_s[-1])
@@ -100,29 +102,60 @@ class Trajectory:
         settled = np.maximum(np.searchsorted(start, time_s + settle_s, side="right") - 1, 0)
         return np.where(at_event, settled, own), at_event
 
-    def samples(self, rows_of: dict[int, Rows] | Rows, time_s: FloatArray, settle_s: float) -> FloatArray:
-        """Return rows at instants, shape (T, r): limits from the right, a jump at an instant already made."""
+    def distinct(self) -> list[Piece]:
+        """Return the pieces met, each once."""
+        return list({piece.number: piece for piece in self.piece}.values())
+
+    def samples(
+        self,
+        rows_of: dict[int, Rows],
+        time_s: FloatArray,
+        settle_s: float,
+        finish: Callable[[int, FloatArray], FloatArray],
+    ) -> FloatArray:
+        """Return quantities at instants, shape (T, r): limits from the right, a jump at an instant already made.
+
+        ``rows_of`` the rows by piece number; ``finish`` turns sampled rows of a piece into the quantities.
+        """
         segment, at_event = self.segment_of(time_s, settle_s)
         order = np.argsort(segment, kind="stable")
-        width = (rows_of if isinstance(rows_of, Rows) else next(iter(rows_of.values()))).over.shape[0]
-        found = np.empty((len(time_s), width))
         ranked = segment[order]
+        found: FloatArray | None = None
         for group in self.groups():
             first = np.searchsorted(ranked, group.position, side="left")
-            last = np.searchsorted(ranked, group.position, side="right")
-            counts = last - first
+            counts = np.searchsorted(ranked, group.position, side="right") - first
             if not counts.any():
                 continue
             which = np.repeat(np.arange(len(counts)), counts)
-            taken = order[np.concatenate([np.arange(a, b) for a, b in zip(first, last, strict=True) if b > a])]
-            rows = rows_of if isinstance(rows_of, Rows) else rows_of[group.piece.number]
-            coefficients = rows.coefficients(group.piece, group.kappa, group.w)
+            taken = order[np.concatenate([np.arange(a, a + n) for a, n in zip(first, counts, strict=True) if n])]
+            coefficients = rows_of[group.piece.number].coefficients(group.piece, group.kappa, group.w)
+            dead = np.flatnonzero(group.piece.jump & (group.piece.speed * settle_s > tol.SETTLED))
             for low in range(0, len(taken), tol.SAMPLES_TOGETHER):
                 some, of = taken[low : low + tol.SAMPLES_TOGETHER], which[low : low + tol.SAMPLES_TOGETHER]
                 basis = group.piece.basis(time_s[some] - group.start_s[of])
-                gone = at_event[some]
-                if gone.any():
-                    dead = np.flatnonzero(group.piece.jump & (group.piece.speed * settle_s > tol.SETTLED))
-                    basis[np.ix_(gone, dead)] = 0.0
-                found[some] = np.einsum("tb,trb->tr", basis, coefficients[of]).real
-        return found
+                if dead.size:
+                    basis[np.ix_(at_event[some], dead)] = 0.0
+                value = finish(group.piece.number, np.einsum("tb,trb->tr", basis, coefficients[of]).real)
+                if found is None:
+                    found = np.empty((len(time_s), value.shape[1]))
+                found[some] = value
+        return found if found is not None else np.empty((len(time_s), 0))
+
+    def residual(self, tableau: Tableau) -> float:
+        """Return max |b − A s|∞ / (|A|∞ |s|∞ + |b|∞) rows of A scaled to sum 1, numerator and
+        denominator each the largest over the ends of some segments.
+        """
+        worst = largest = 0.0
+        for group in self.groups():
+            piece, size = group.piece, tableau.unknowns
+            M, N, F = tableau.with_modes(piece.mode)
+            chosen = slice(None, None, max(1, len(group.position) // tol.RESIDUAL_LOOKS))
+            part = group.part(chosen)
+            every = Rows(np.eye(size + tableau.states), np.zeros(size + tableau.states))
+            y = np.einsum("srb,sb->sr", every.coefficients(piece, part.kappa, part.w), piece.basis(part.span_s)).real
+            w = np.array([tableau.drives.moved(own, span) for own, span in zip(part.w, part.span_s, strict=True)])
+            s, right = y[:, :size], y[:, size:] @ N.T + (w @ F.T).real
+            scale = np.abs(M).sum(axis=1)
+            worst = max(worst, float((np.abs(s @ M.T - right) / scale).max(initial=0.0)))
+            largest = max(largest, float(np.abs(s).max(initial=0.0)) + float(np.abs(right / scale).max(initial=0.0)))
+        return worst / largest if largest > 0.0 else 0.0

@@ -1,0 +1,175 @@
+"""The cycle map P, from the state at the start of a period to that at its end, and the search for P(x) = x.
+
+Between events the flow is linear, and the laws of all devices are continuous, so the saltation factor is the identity
+(Aizerman & Gantmakher 1958) and Φ is the product of the segments' exponentials. Newton's method on P(x) − x reaches
+steady state in a few periods however slowly the network settles (Aprille & Trick 1972); P is continuous but kinked, so
+when Newton's step does not help, plain periods are run, then only the modes that decay slowly are corrected (Shroff &
+Keller 1993), and at last bursts of plain periods. What was done is said.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind_service import tolerances as tol
+from interwind_service.response.switched_network import SwitchedNetwork
+from interwind_service.response.tableau import Mode
+
+FloatArray = NDArray[np.float64]
+
+
+@dataclass(slots=True, eq=False)
+class CycleMap:
+    """One period of a switched network as a map of its state; counts the periods it has run."""
+
+    network: SwitchedNetwork
+    mode: Mode
+    periods: int = 0
+    limit: int | None = None
+
+    @property
+    def spent(self) -> bool:
+        """Whether the periods allowed have been run."""
+        return self.limit is not None and self.periods >= self.limit
+
+    def __call__(self, x: FloatArray) -> FloatArray:
+        """Return P(x)."""
+        end, self.mode, _ = self.network.run(x, self._start(x))
+        self.periods += 1
+        return end
+
+    def with_jacobian(self, x: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return P(x) and Φ."""
+        end, self.mode, phi = self.network.run(x, self._start(x), monodromy=True)
+        self.periods += 1
+        return end, np.eye(len(x)) if phi is None else phi
+
+    def _start(self, x: FloatArray) -> Mode:
+        fresh = self.network.start_mode(x)
+        return tuple(
+            now if device.state >= 0 else held
+            for device, now, held in zip(self.network.tableau.devices, fresh, self.mode, strict=True)
+        )
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class FixedPoint:
+    """``x`` with |P(x) − x| / |x| = ``residual``, whether that counts as found, by which means, and Φ there.
+
+    ``undetermined`` is the number of directions in which I − Φ is singular.
+    """
+
+    x: FloatArray
+    residual: float
+    found: bool
+    jacobian: FloatArray
+    means: tuple[str, ...] = field(default=())
+    undetermined: int = 0
+    repeats_after: int = 0
+
+
+def fixed_point(cycle: CycleMap, x: FloatArray, *, affine: bool, warm_up: int, rounds: int) -> FixedPoint:
+    """Search P(x) = x from ``x``: ``warm_up`` plain periods, Newton's method, and at most ``rounds`` bursts of periods.
+
+    ``affine`` says that no device changes by itself, so that one Newton step is the answer.
+    """
+    means: list[str] = []
+    for _ in range(0 if affine else warm_up):
+        x = cycle(x)
+    best = _newton(cycle, x, tol.NEWTON_REFUSALS, means)
+    for _ in range(rounds):
+        if best.found or affine:
+            break
+        means.append(f"a burst of {tol.BURST_PERIODS} plain periods")
+        x = best.x
+        for _ in range(tol.BURST_PERIODS):
+            x = cycle(x)
+        again = _newton(cycle, x, tol.BURST_REFUSALS, means)
+        if again.found or again.residual < best.residual:
+            best = again
+    said = tuple(dict.fromkeys(means))
+    repeats = 0 if best.found or affine or rounds == 0 else _repetition(cycle, best.x)
+    return FixedPoint(best.x, best.residual, best.found, best.jacobian, said, best.undetermined, repeats)
+
+
+def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> FixedPoint:
+    end, phi = cycle.with_jacobian(x)
+    residual = _distance(end, x)
+    best = FixedPoint(x, residual, False, phi)
+    partial = False
+    undetermined = 0
+    for _ in range(tol.NEWTON_STEPS):
+        if residual <= tol.PERIODIC_RESIDUAL:
+            return FixedPoint(x, residual, True, phi, undetermined=undetermined)
+        if refusals < 0 or cycle.spent:
+            break
+        step, undetermined = _slow_step(phi, end - x) if partial else _full_step(phi, end - x)
+        accepted = False
+        factor = 1.0
+        for _ in range(tol.LINE_SEARCH_TRIALS):
+            if cycle.spent:
+                break
+            trial = x + factor * step
+            trial_end, trial_phi = cycle.with_jacobian(trial)
+            trial_residual = _distance(trial_end, trial)
+            if trial_residual < tol.LINE_SEARCH_DECREASE * residual:
+                accepted = True
+                break
+            factor *= tol.LINE_SEARCH_FACTOR
+        if accepted:
+            x, end, phi, residual = trial, trial_end, trial_phi, trial_residual
+            if partial:
+                means.append("correction of the slow modes only")
+            partial = False
+        elif residual <= tol.PERIODIC_STAGNATION:
+            return FixedPoint(x, residual, True, phi, undetermined=undetermined)
+        else:
+            refusals -= 1
+            means.append("plain periods where Newton's step did not help")
+            for _ in range(tol.PLAIN_PERIODS):
+                x = end
+                end, phi = cycle.with_jacobian(x)
+            residual = _distance(end, x)
+            partial = not partial
+        if residual < best.residual:
+            best = FixedPoint(x, residual, False, phi, undetermined=undetermined)
+    found = best.residual <= tol.PERIODIC_STAGNATION
+    return FixedPoint(best.x, best.residual, found, best.jacobian, undetermined=best.undetermined)
+
+
+def _distance(end: FloatArray, x: FloatArray) -> float:
+    size = max(float(np.linalg.norm(end)), float(np.linalg.norm(x)))
+    return float(np.linalg.norm(end - x)) / size if size > 0.0 else 0.0
+
+
+def _full_step(phi: FloatArray, miss: FloatArray) -> tuple[FloatArray, int]:
+    """Return (I − Φ)⁺ (P(x) − x), and the number of singular directions, which are left as they are."""
+    U, s, Vt = np.linalg.svd(np.eye(len(phi)) - phi)
+    kept = s > tol.UNDETERMINED_OFFSET * max(1.0, s[0] if len(s) else 1.0)
+    return Vt[kept].T @ ((U.T[kept] @ miss) / s[kept]), int(np.count_nonzero(~kept))
+
+
+def _slow_step(phi: FloatArray, miss: FloatArray) -> tuple[FloatArray, int]:
+    """Return Newton's step in the modes |μ| > ½ and the plain period in the others."""
+    mu, V = np.linalg.eig(phi)
+    coefficient = np.linalg.lstsq(V, miss.astype(complex), rcond=None)[0]
+    slow = (np.abs(mu) > tol.SLOW_MULTIPLIER) & (np.abs(1.0 - mu) > tol.UNDETERMINED_OFFSET)
+    factor = np.where(slow, 1.0 / np.where(slow, 1.0 - mu, 1.0), 1.0)
+    return (V @ (factor * coefficient)).real, int(np.count_nonzero(np.abs(1.0 - mu) <= tol.UNDETERMINED_OFFSET))
+
+
+def _repetition(cycle: CycleMap, x: FloatArray) -> int:
+    """Return after how many periods the run repeats itself, 0 when after none that was looked for."""
+    for _ in range(tol.BURST_PERIODS):
+        x = cycle(x)
+    states = [x]
+    for _ in range(2 * tol.LONGEST_REPETITION):
+        states.append(cycle(states[-1]))
+    for multiple in range(2, tol.LONGEST_REPETITION + 1):
+        spread = max(_distance(states[k + multiple], states[k]) for k in range(len(states) - multiple))
+        if spread < tol.REPETITION_SPREAD:
+            return multiple
+    return 0

@@ -1,0 +1,134 @@
+"""A network of switches, piecewise-linear diodes and saturable branches, run from event to event."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.errors import InvalidNetwork
+from interwind_service import tolerances as tol
+from interwind_service.network.topology import Topology
+from interwind_service.response.complementarity import consistent_modes
+from interwind_service.response.device import SaturableBranch, TimedSwitch
+from interwind_service.response.drives import breakpoints, closed_at, drives_of
+from interwind_service.response.events import first_event
+from interwind_service.response.ideal_limit import ideal_limit_of
+from interwind_service.response.piece import Pieces
+from interwind_service.response.tableau import Mode, Tableau, tableau_of
+from interwind_service.response.trajectory import Trajectory
+
+FloatArray = NDArray[np.float64]
+ComplexArray = NDArray[np.complex128]
+
+
+@dataclass(slots=True, eq=False)
+class SwitchedNetwork:
+    """A numbered network with its pieces, and the instants in [0, stop] at which a gate or waveform sets it anew."""
+
+    tableau: Tableau
+    pieces: Pieces
+    breakpoint_s: FloatArray
+
+    def start_mode(self, x: FloatArray) -> Mode:
+        """Return blocking diodes, open switches and the pieces that hold the residual fluxes."""
+        return tuple(
+            device.mode_at(device.root * x[device.state]) if isinstance(device, SaturableBranch) else 0
+            for device in self.tableau.devices
+        )
+
+    def mode_at(self, mode: Mode, start: float, stop: float) -> Mode:
+        """Return the modes with the switches as they stand from ``start`` to ``stop``."""
+        inside = 0.5 * (start + stop)
+        return tuple(
+            int(closed_at(device.gate, inside)) if isinstance(device, TimedSwitch) else own
+            for device, own in zip(self.tableau.devices, mode, strict=True)
+        )
+
+    def consistent(self, mode: Mode, x: FloatArray, w: ComplexArray) -> Mode:
+        """Return the modes with the diodes in the one combination that x and w allow."""
+        return consistent_modes(self.pieces, mode, x, w)
+
+    def run(
+        self,
+        x: FloatArray,
+        mode: Mode,
+        *,
+        record: Trajectory | None = None,
+        monodromy: bool = False,
+        progress: Callable[[int, int], None] | None = None,
+    ) -> tuple[FloatArray, Mode, FloatArray | None]:
+        """Run from x over all intervals; return the end state, the end modes and, if asked, Φ = ∂x(end)/∂x(start)."""
+        phi = np.eye(self.tableau.states) if monodromy else None
+        intervals = len(self.breakpoint_s) - 1
+        for k in range(intervals):
+            start, stop = float(self.breakpoint_s[k]), float(self.breakpoint_s[k + 1])
+            x, mode, phi = self._interval(x, mode, start, stop, record, phi)
+            if progress is not None:
+                progress(k + 1, intervals)
+        return x, mode, phi
+
+    def _interval(self, x, mode, start, stop, record, phi):
+        inside = 0.5 * (start + stop)
+        w_inside = self.tableau.drives.state(inside)
+        w = self.tableau.drives.moved(w_inside, start - inside)
+        before = mode
+        mode = self.consistent(self.mode_at(mode, start, stop), x, w)
+        if record is not None:
+            record.changes += [
+                (start, d, new) for d, (old, new) in enumerate(zip(before, mode, strict=True)) if old != new
+            ]
+        now, fresh, events = start, -1, 0
+        steady, driven = self.tableau.drives.steady, {}
+        while now < stop:
+            bound = driven.get(mode) if steady else None
+            if bound is None:
+                bound = driven[mode] = self.pieces.piece(mode).driven(w)
+            piece, modes = bound.piece, bound.piece.modes
+            kappa = modes.left @ (x - bound.particular)
+            span, change = first_event(bound, kappa, stop - now, fresh)
+            growth = piece.growth(span)
+            homogeneous, forced = growth[: len(kappa)], growth[len(kappa) :]
+            if record is not None:
+                record.add(piece, now, span, kappa, w)
+                record.peak_j = max(record.peak_j, 0.5 * float(x @ x))
+            V = modes.state_signal
+            if phi is not None:
+                phi = ((V * homogeneous) @ modes.left).real @ phi
+            x = (V @ (homogeneous * kappa) + bound.state @ forced).real
+            now = stop if span >= stop - now else now + span
+            if not steady:
+                w = self.tableau.drives.moved(w_inside, now - inside)
+            fresh = -1
+            if change is not None:
+                fresh = change.device
+                mode = (*mode[:fresh], change.then, *mode[fresh + 1 :])
+                events += 1
+                if record is not None:
+                    record.changes.append((now, fresh, change.then))
+                if events > tol.EVENTS_PER_INTERVAL:
+                    self._chattering(record, start, stop)
+        return x, mode, phi
+
+    def _chattering(self, record: Trajectory | None, start: float, stop: float) -> None:
+        last = record.changes[-tol.CHATTER_WINDOW :] if record is not None else []
+        names = sorted({self.tableau.devices[device].name for _, device, _ in last})
+        raise InvalidNetwork.at(
+            "elements",
+            f"more than {tol.EVENTS_PER_INTERVAL} changes between {start:.9g} s and {stop:.9g} s; "
+            f"{', '.join(names) or 'the diodes'} chatter; give them a resistance or a capacitance",
+        )
+
+
+def switched_network(
+    topology: Topology, stop_s: float, step_s: float, period_s: float | None = None
+) -> SwitchedNetwork:
+    """Prepare a network for a run over [0, stop]."""
+    drives = drives_of(topology, stop_s, step_s)
+    at = breakpoints(topology, drives, stop_s, step_s)
+    longest = float(np.diff(at).max())
+    scale = period_s if period_s is not None else longest
+    tableau = tableau_of(topology, drives, ideal_limit_of(topology, scale))
+    return SwitchedNetwork(tableau, Pieces(tableau, 1.0 / scale, longest), at)
