@@ -15,6 +15,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy.linalg import lapack
 
 from interwind_service import tolerances as tol
 from interwind_service.network.groups import WindingGroup
@@ -39,8 +40,7 @@ def winding_coordinates(group: WindingGroup) -> WindingCoordinates:
         scale = np.exp2(np.round(np.log2(group.root)))
         base = group.inductance_h / np.outer(scale, scale)  # exact: powers of two
     preference = group.resistance_ohm.diagonal() / group.inductance_h.diagonal()
-    order, pivots, _ = _factor(_Pair(base), preference)
-    if pivots.min() > tol.LOOSE_PIVOT:
+    if _is_loose(base):
         return WindingCoordinates(np.diag(1.0 / scale), base, group.size)
     order, pivots, U = _factor(_Pair(base, np.zeros_like(base)), preference)
     zero = pivots <= tol.PERFECT_COUPLING_PIVOT * group.size * base.diagonal().max()
@@ -49,6 +49,12 @@ def winding_coordinates(group: WindingGroup) -> WindingCoordinates:
     N = np.zeros_like(inverse)
     N[order] = np.triu(inverse)
     return WindingCoordinates(N / scale[:, None], np.diag(pivots), int((~zero).sum()))
+
+
+def _is_loose(base: FloatArray) -> bool:
+    """Whether every pivot of the pivoted Cholesky factorization is large; LAPACK's stops at the first that is not."""
+    _, _, rank, _ = lapack.dpstrf(base, tol=tol.LOOSE_PIVOT)
+    return int(rank) == len(base)
 
 
 class _Pair:

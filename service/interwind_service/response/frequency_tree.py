@@ -158,7 +158,8 @@ def _order(topology: Topology, roles: Roles, omega: float) -> list[int]:
             size[group.branches] = np.where(impedance > 0.0, 1.0 / impedance, np.inf)
     rank = np.select([role == Role.VOLTAGE, role == Role.CONTROLLED_VOLTAGE, role >= Role.TRANSFORMER], [0, 1, 3], 2)
     order = np.lexsort((-size, rank))
-    return [int(k) for k in order if role[k] not in (Role.CURRENT, Role.OPEN)]
+    conducts = (role != Role.CURRENT) & (role != Role.OPEN)
+    return [int(k) for k in order[conducts[order]]]
 
 
 def _place(topology: Topology, branch: int) -> tuple[int, int]:
