@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-import interwind as iw
 import numpy as np
 import pytest
+
+import interwind as iw
 from interwind_service.network.topology import number
 from interwind_service.response.frequency import frequency_response
 from interwind_service.response.sweep import SweptBand, sweep

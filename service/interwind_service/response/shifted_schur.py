@@ -1,7 +1,7 @@
 """One Schur form, any number of shifts: (I + σ K) x = r for every σ by back-substitution alone.
 
-With K = U T Uᴴ, T upper triangular, each x = U t solves (I + σ T) t = Uᴴ r. All shifts go through the rows of T together:
-the products with T are matrix products over blocks of rows, so BLAS does the work.
+With K = U T Uᴴ, T upper triangular, each x = U t solves (I + σ T) t = Uᴴ r. All shifts go through the rows of T
+together: the products with T are matrix products over blocks of rows, so BLAS does the work.
 
 Reference: Laub 1981 (one Hessenberg form for many frequencies); here the Schur form, whose back-substitution blocks.
 """

@@ -4,8 +4,8 @@ In a band around s0 every signal of the network is
 
     q(s) = (I + (s − s0) K)⁻¹ r,   y(s) = y_r + (s − s0) (Y_1 − H q(s)),
 
-K, r, H, y_r from one solve at s0 (`resolvent`), and the Schur form of K serves all frequencies of the band. Each band is
-held against the frequency tree at its ends and where the answer is largest, and cut in two where they differ.
+K, r, H, y_r from one solve at s0 (`resolvent`), and the Schur form of K serves all frequencies of the band. Each band
+is held against the frequency tree at its ends and where the answer is largest, and cut in two where they differ.
 
 References: Laub 1981 (one reduction, many frequencies).
 """
