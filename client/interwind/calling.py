@@ -7,6 +7,7 @@ import threading
 import time
 import warnings
 from collections.abc import Callable, Generator
+from contextlib import suppress
 from typing import Any, TypeVar
 
 import grpc
@@ -25,6 +26,8 @@ from interwind.errors import (
 )
 
 T = TypeVar("T")
+
+RECONNECT_POLL_S = 0.2  # how often a waiting call looks whether the client was closed
 
 
 class Deadline:
@@ -50,7 +53,7 @@ class Caller:
         self._version = version
         self._channel = target.open()
         self._closed = threading.Event()
-        self._version_seen = False
+        self._answered = False
 
     @property
     def retries(self) -> int:
@@ -110,6 +113,20 @@ class Caller:
                     raise
             if self._closed.wait(pause):
                 raise Cancelled("this client was closed")
+            if lost_s is not None:
+                self._reconnect(min(lost_s + policy.lost_limit_s - time.monotonic(), deadline.remaining_s()))
+
+    def _reconnect(self, limit_s: float) -> None:
+        """Wait for a server that was there before, at most ``limit_s``; the next attempt says what came of it."""
+        if not self._answered:
+            return
+        ready = grpc.channel_ready_future(self._channel)
+        end_s = time.monotonic() + limit_s
+        while time.monotonic() < end_s and not self._closed.is_set():
+            with suppress(grpc.FutureTimeoutError):
+                ready.result(timeout=RECONNECT_POLL_S)
+                return
+        ready.cancel()
 
     def _open(self, path: str, kind: Callable[..., Any], response_class: type[Any]) -> Any:
         if self._closed.is_set():
@@ -121,9 +138,9 @@ class Caller:
 
     def _look_at_version(self, call: Any) -> None:
         """Warn once when the server is older than this client."""
-        if self._version_seen:
+        if self._answered:
             return
-        self._version_seen = True
+        self._answered = True
         theirs = dict(call.initial_metadata() or ()).get("interwind-version")
         if theirs is not None and _numbers(str(theirs)) < _numbers(self._version):
             warnings.warn(

@@ -18,7 +18,9 @@ def main() -> int:
             return 0
         from interwind_service.server.run import run
 
-        return run(settings)
+        status = run(settings)
+        sys.stdout.flush()
+        os._exit(status)  # all is kept and said; threads that still wait for a starting worker must not hold us up
     except SettingsError as error:
         print(f"interwind-service: {error}", file=sys.stderr)
         return 2

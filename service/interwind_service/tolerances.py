@@ -230,6 +230,9 @@ INCONSISTENT_START = 1e-12
 REST_RESIDUAL = 1e-13
 # States kept during a run to test the equations at.
 TESTED_STATES = 64
+# A block of modes is counted from its rest value beside a drive this many times slower: its Sylvester equation is then
+# as well conditioned as the block itself.
+REST_SEPARATION = 10.0
 # Corners of one waveform within one run: 4 million take 100 MB and a few seconds.
 MAX_WAVEFORM_CORNERS = 4_000_000
 

@@ -36,17 +36,6 @@ from interwind_service.workers.arrays import ArrayFolder
 from interwind_service.workers.pool import WorkerPool
 from interwind_service.workers.process import Guards
 
-PRELOAD = (
-    "interwind_service.workers.job",
-    "interwind_service.server.batch_work",
-    "threadpoolctl",
-    "interwind_service.windings.verdict",
-    "interwind_service.network.system",
-    "interwind_service.response.frequency",
-    "interwind_service.response.ports",
-    "interwind_service.response.time",
-)
-
 
 def run(settings: Settings) -> int:
     """Serve until asked to stop; return the exit status."""
@@ -64,7 +53,7 @@ async def _serve(settings: Settings) -> int:
         loop.add_signal_handler(number, stop.set)
     with _spool(settings) as spool:
         guards = Guards(WORKER_BASE_ADDRESS_BYTES + settings.memory_bytes, str(spool))
-        pool = WorkerPool(settings.worker_count, guards=guards, preload=PRELOAD)
+        pool = WorkerPool(settings.worker_count, guards=guards)
         try:
             with batch_room(settings, pool, spool) as batches:
                 async with _serving(settings, pool, spool, batches) as address:

@@ -8,11 +8,12 @@ from __future__ import annotations
 
 import heapq
 import itertools
+import logging
 import multiprocessing
 import os
 import threading
 import time
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 from concurrent.futures import Executor, Future
 from enum import IntEnum
 from multiprocessing.connection import Connection
@@ -20,8 +21,10 @@ from multiprocessing.process import BaseProcess
 from typing import Any
 
 from interwind.errors import InterwindError, Unavailable, WorkerLost
-from interwind_service.tolerances import WORKER_RESPAWN_PAUSE_S
+from interwind_service.tolerances import WORKER_LEAVE_S, WORKER_RESPAWN_PAUSE_S
 from interwind_service.workers.process import Done, Guards, Note, Raised, serve
+
+logger = logging.getLogger("interwind_service")
 
 SINGLE_THREAD = ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS", "NUMEXPR_NUM_THREADS")
 
@@ -81,16 +84,16 @@ class Job(Future):  # type: ignore[type-arg]
 
 
 class WorkerPool(Executor):
-    """``count`` workers by forkserver, ``preload`` imported once for all of them, one BLAS thread each.
+    """``count`` workers by forkserver, what they need imported once for all of them, one BLAS thread each.
 
     As an `Executor` it takes batch work (`submit`), which stands behind every call (`call`) in the queue.
     """
 
-    def __init__(self, count: int, *, guards: Guards, preload: Sequence[str] = ()) -> None:
+    def __init__(self, count: int, *, guards: Guards) -> None:
         for name in SINGLE_THREAD:
             os.environ[name] = "1"  # before the forkserver starts: BLAS reads it once, at its import
         self._context = multiprocessing.get_context("forkserver")
-        self._context.set_forkserver_preload(list(preload))
+        self._context.set_forkserver_preload(["interwind_service.workers.preload"])
         self._guards = guards
         self._queue: list[tuple[Priority, int, Job]] = []
         self._order = itertools.count()
@@ -147,8 +150,9 @@ class WorkerPool(Executor):
         for job in jobs:
             job.end(Unavailable("the server is stopping; send the call again to another one", reason="DRAINING"))
         if wait:
+            end_s = time.monotonic() + WORKER_LEAVE_S
             for keeper in self._keepers:
-                keeper.join()
+                keeper.join(max(0.0, end_s - time.monotonic()))
 
     def _take(self) -> Job | None:
         with self._ready:
@@ -200,7 +204,8 @@ class WorkerPool(Executor):
             try:
                 with self._spawning:
                     process.start()
-            except OSError:  # no process or memory to be had right now; the queue holds until there is
+            except (OSError, EOFError) as error:  # no process to be had right now; the queue holds until there is
+                logger.warning("no worker can be started", extra={"fields": {"error": str(error)}})
                 ours.close()
                 time.sleep(WORKER_RESPAWN_PAUSE_S)
                 continue
