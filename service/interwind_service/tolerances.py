@@ -32,6 +32,8 @@ LEAKAGE_ACCURACY = 0.1
 PAIRS_NAMED = 10
 # Couplings smaller than this may well be of either sign: a flip is only suggested above it.
 SIGN_MATTERS_ABOVE = 0.3
+# A slip explains a coupling when its feasible interval is narrower than this part of the value that would fit.
+SLIP_INTERVAL_SHARE = 0.25
 # What slips of unit are made of: milli, micro and nano mistaken for one another.
 UNIT_SLIPS = (1e3, 1e-3, 1e6, 1e-6, 1e9, 1e-9)
 # Self-inductances further apart than the square of the largest turns ratios in practice, 1 : 10 000, are doubted.
@@ -49,6 +51,8 @@ SIDE_FACTOR_LEAST = 4.0
 DUPLICATE_AGREEMENT = 1e-9
 # Two ends of a feasible interval closer than this are one value, reached by different roundings.
 INTERVAL_ROUNDING = 1e-12
+# A text lists this many labels and counts the rest; the finding itself holds all of them.
+LABELS_SPELLED_OUT = 12
 # A winding is named in a verdict when it carries at least this share of the squared witness vector.
 WITNESS_SHARE = 0.02
 # Unknown pairs named one by one: each is a reading to take, so more of them than of others.
@@ -125,6 +129,12 @@ SAME_RESIDUAL = 1e-6
 EDGE_GAIN = 1e-6
 # Readings left out in turn when the fit is on the edge: a fit each, some ten milliseconds.
 EDGE_REFITS = 100
+# Cauchy weights keep 95 % efficiency on Gaussian readings at this scale (Holland & Welsch 1977).
+CAUCHY_SCALE = 2.385
+# The scale comes down from the largest residual by this factor a fit: gross errors are let go of one by one.
+RELEASE_FACTOR = 4.0
+# A reading this near to a known slip (side, unit, factor two) of what the others say is told as that slip.
+SLIP_RATIO = 1.1
 # Next reading. Each candidate is taken to be read to one per cent; a gain of less than five per cent is none.
 NEXT_READING_UNCERTAINTY = 0.01
 NEXT_READING_GAIN = 0.05
@@ -187,7 +197,7 @@ STACK_BACKWARD_ERROR = 1e-14
 # Unknowns up to which a straight line of array operations beats a factorization each.
 STACK_UNKNOWNS = 40
 # Systems of a block: the arrays of a step then stay in the second-level cache.
-STACK_BLOCK = 4096
+STACK_BLOCK = 8192
 
 # --- response: time -------------------------------------------------------------------------------------------------
 
@@ -238,8 +248,8 @@ MAX_WAVEFORM_CORNERS = 4_000_000
 
 # --- response: switching and periodic -------------------------------------------------------------------------------
 
-IDEAL_EPSILON = 1e-9  # ideal 0 ohm and 0 S stand as this times Z0 and 1/Z0; smaller loses lossless loops, larger shows
-PERFECT_COUPLING_FACTOR = 1e-11  # eigenvalues of a coupling matrix below this carry no state of their own
+IDEAL_EPSILON = 1e-9  # ideal 0 ohm and 0 S stand as this times Z and 1/Z; smaller loses lossless loops, larger shows
+IMPEDANCE_REACH = 1e3  # farthest from the geometric mean that an impedance sets Z
 DEPENDENT_ROW = 1e-9  # a unit voltage row that keeps less than this beside the others closes a loop
 SINGULAR_TABLEAU = 1e-30  # reciprocal condition after scaling; ε networks reach 1e-20 and are solved well all the same
 NULL_MEMBER = 1e-3  # share of the null vector from which an element is named
@@ -376,7 +386,8 @@ BATCH_POINT_LIMIT = 200_000  # points of a row: the grid still fits one message
 BATCH_CHUNK_ROWS = 4096  # most variants computed at a time
 BATCH_CHUNK_BYTES = 4 * 2**20  # numbers of a chunk: the front proves and streams it in a few milliseconds
 BATCH_CHUNK_S = 0.5  # work of a chunk: what an interactive call may have to wait for, and a stop may throw away
-BATCH_FORECAST_ROWS = 32  # variants tried for the forecast when the first was quick
+BATCH_FORECAST_ROWS = (8, 64, 512)  # variants tried for the forecast, each while the one before was quick
+BATCH_FORECAST_S = 0.1  # what is no longer quick: the caller waits for the forecast
 OUTPUT_GRID_SHARE = 1e-6  # of a step: the end of a grid may be off by so much
 WORKER_BASE_BYTES = 100 * 2**20  # resident memory of an idle worker: interpreter, NumPy, SciPy
 BATCH_SUMMARY_BYTES = 64 * 2**20  # numbers a summary holds at a time

@@ -15,7 +15,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
-from interwind_service.response.switched_network import SwitchedNetwork
+from interwind_service.response.switched_network import Passage, SwitchedNetwork
 from interwind_service.response.tableau import Mode
 
 FloatArray = NDArray[np.float64]
@@ -29,23 +29,37 @@ class CycleMap:
     mode: Mode
     periods: int = 0
     limit: int | None = None
+    peak_j: float = 0.0
 
     @property
     def spent(self) -> bool:
         """Whether the periods allowed have been run."""
         return self.limit is not None and self.periods >= self.limit
 
+    @property
+    def size(self) -> float:
+        """The largest |x| met in the last period: what distances between states count against."""
+        return float(np.sqrt(2.0 * self.peak_j))
+
     def __call__(self, x: FloatArray) -> FloatArray:
         """Return P(x)."""
-        end, self.mode, _ = self.network.run(x, self._start(x))
-        self.periods += 1
-        return end
+        return self._run(x, monodromy=False).x
 
-    def with_jacobian(self, x: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return P(x) and Φ."""
-        end, self.mode, phi = self.network.run(x, self._start(x), monodromy=True)
+    def with_jacobian(self, x: FloatArray) -> tuple[FloatArray, FloatArray, float]:
+        """Return P(x), Φ, and |P(x) − x| over the largest |x| of the period."""
+        passage = self._run(x, monodromy=True)
+        jacobian = np.eye(len(x)) if passage.jacobian is None else passage.jacobian
+        return passage.x, jacobian, self.distance(passage.x, x)
+
+    def distance(self, one: FloatArray, other: FloatArray) -> float:
+        """Return the distance of two states over the largest |x| of the last period."""
+        return float(np.linalg.norm(one - other)) / self.size if self.size > 0.0 else 0.0
+
+    def _run(self, x: FloatArray, *, monodromy: bool) -> Passage:
+        passage = self.network.run(x, self._start(x), monodromy=monodromy)
+        self.mode, self.peak_j = passage.mode, passage.peak_j
         self.periods += 1
-        return end, np.eye(len(x)) if phi is None else phi
+        return passage
 
     def _start(self, x: FloatArray) -> Mode:
         fresh = self.network.start_mode(x)
@@ -57,7 +71,7 @@ class CycleMap:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class FixedPoint:
-    """``x`` with |P(x) − x| / |x| = ``residual``, whether that counts as found, by which means, and Φ there.
+    """``x`` with |P(x) − x| / max |x| = ``residual``, whether that counts as found, by which means, and Φ there.
 
     ``undetermined`` is the number of directions in which I − Φ is singular.
     """
@@ -96,8 +110,7 @@ def fixed_point(cycle: CycleMap, x: FloatArray, *, affine: bool, warm_up: int, r
 
 
 def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> FixedPoint:
-    end, phi = cycle.with_jacobian(x)
-    residual = _distance(end, x)
+    end, phi, residual = cycle.with_jacobian(x)
     best = FixedPoint(x, residual, False, phi)
     partial = False
     undetermined = 0
@@ -113,8 +126,7 @@ def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> 
             if cycle.spent:
                 break
             trial = x + factor * step
-            trial_end, trial_phi = cycle.with_jacobian(trial)
-            trial_residual = _distance(trial_end, trial)
+            trial_end, trial_phi, trial_residual = cycle.with_jacobian(trial)
             if trial_residual < tol.LINE_SEARCH_DECREASE * residual:
                 accepted = True
                 break
@@ -131,18 +143,12 @@ def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> 
             means.append("plain periods where Newton's step did not help")
             for _ in range(tol.PLAIN_PERIODS):
                 x = end
-                end, phi = cycle.with_jacobian(x)
-            residual = _distance(end, x)
+                end, phi, residual = cycle.with_jacobian(x)
             partial = not partial
         if residual < best.residual:
             best = FixedPoint(x, residual, False, phi, undetermined=undetermined)
     found = best.residual <= tol.PERIODIC_STAGNATION
     return FixedPoint(best.x, best.residual, found, best.jacobian, undetermined=best.undetermined)
-
-
-def _distance(end: FloatArray, x: FloatArray) -> float:
-    size = max(float(np.linalg.norm(end)), float(np.linalg.norm(x)))
-    return float(np.linalg.norm(end - x)) / size if size > 0.0 else 0.0
 
 
 def _full_step(phi: FloatArray, miss: FloatArray) -> tuple[FloatArray, int]:
@@ -169,7 +175,7 @@ def _repetition(cycle: CycleMap, x: FloatArray) -> int:
     for _ in range(2 * tol.LONGEST_REPETITION):
         states.append(cycle(states[-1]))
     for multiple in range(2, tol.LONGEST_REPETITION + 1):
-        spread = max(_distance(states[k + multiple], states[k]) for k in range(len(states) - multiple))
+        spread = max(cycle.distance(states[k + multiple], states[k]) for k in range(len(states) - multiple))
         if spread < tol.REPETITION_SPREAD:
             return multiple
     return 0

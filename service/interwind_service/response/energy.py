@@ -2,7 +2,7 @@
 
     supplied = Σ dissipated + Δ stored + lost in jumps + numerical
 
-What is dissipated in the stand-ins of ideal elements (ε Z0, ε / Z0) is what the ideal network loses in its jumps.
+What is dissipated in the stand-ins of ideal elements (ε Z, ε / Z) is what the ideal network loses in its jumps.
 The stored energy is taken from the states, the rest from ∫ v i dt, so the ledger closes only if both are right.
 """
 

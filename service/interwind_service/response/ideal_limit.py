@@ -1,7 +1,7 @@
-"""What stands in for ideal elements: 0 ohm becomes ε Z0, 0 S becomes ε / Z0, with ε told in the evidence.
+"""What stands in for ideal elements: 0 ohm becomes ε Z, 0 S becomes ε / Z, with ε told in the evidence.
 
 The same pair cuts the two structures in which states would jump with every source: loops of capacitors and voltage
-sources get ε Z0 in series, cutsets of inductors and current sources ε / Z0 across. A jump is then a transient far
+sources get ε Z in series, cutsets of inductors and current sources ε / Z across. A jump is then a transient far
 shorter than anything in the network, in which flux and charge are conserved by Kirchhoff's laws themselves, and what
 it loses is dissipated where it can be counted (Heemels, Çamlıbel & Schumacher 2002 give the limit).
 """
@@ -34,7 +34,7 @@ class IdealLimit:
     leaks: tuple[tuple[int, float], ...]
 
     def winding_resistance(self, group: WindingGroup) -> FloatArray:
-        """Return R of a group; perfectly coupled windings without resistance get ε Z0, for they close loops by flux."""
+        """Return R of a group; perfectly coupled windings without resistance get ε Z, for they close loops by flux."""
         resistance = group.resistance_ohm.copy()
         if winding_factor(group).shape[1] < group.size:
             bare = np.flatnonzero(resistance.diagonal() == 0.0)
@@ -65,16 +65,24 @@ def winding_factor(group: WindingGroup) -> FloatArray:
 
 
 def ideal_limit_of(topology: Topology, time_scale_s: float, epsilon: float = tol.IDEAL_EPSILON) -> IdealLimit:
-    """Choose Z0, the geometric mean of the resistances and of 2π L / time scale, and find the structures."""
-    resistances = topology.value[topology.of_kind(Kind.RESISTOR)]
+    """Choose the impedances of ideal elements and find the structures that need them.
+
+    Every resistance, 2π L / T and T / 2π C is an impedance of the network. A short is ε times the smallest of them and
+    an open end the largest over ε, each within ``IMPEDANCE_REACH`` of their geometric mean.
+    """
+    turn = 2.0 * np.pi / time_scale_s
+    scales = [value for value in topology.value[topology.of_kind(Kind.RESISTOR)] if value > 0.0]
     inductances = [topology.value[k] for k in topology.of_kind(Kind.INDUCTOR)]
-    inductances += [max(group.inductance_h.diagonal()) for group in topology.groups]
-    scales = [value for value in resistances if value > 0.0]
-    scales += [2.0 * np.pi * value / time_scale_s for value in inductances if value > 0.0]
-    scales = scales or [1.0]
-    z0 = float(np.exp(np.mean(np.log(scales))))
-    short, leak = epsilon * z0, epsilon / z0
-    return IdealLimit(short, z0 / epsilon, _loop_resistance(topology, short), _cutset_leaks(topology, leak))
+    for group in topology.groups:
+        inductances += list(group.inductance_h.diagonal())
+    scales += [turn * value for value in inductances if value > 0.0]
+    scales += [1.0 / (turn * topology.value[k]) for k in topology.of_kind(Kind.CAPACITOR) if topology.value[k] > 0.0]
+    logs = np.log(np.array(scales or [1.0]))
+    middle, reach = logs.mean(), np.log(tol.IMPEDANCE_REACH)
+    low = float(np.exp(max(logs.min(), middle - reach)))
+    high = float(np.exp(min(logs.max(), middle + reach)))
+    short, leak = epsilon * low, epsilon / high
+    return IdealLimit(short, high / epsilon, _loop_resistance(topology, short), _cutset_leaks(topology, leak))
 
 
 def _loop_resistance(topology: Topology, short_ohm: float) -> FloatArray:

@@ -62,16 +62,16 @@ def periodic_response(
         raise _not_periodic(found, period_s, cycle.periods)
     findings = _stability(found) + _other_start(cycle, found, affine)
     record = Trajectory()
-    end, _, _ = prepared.run(found.x, cycle.mode, record=record, progress=progress)
+    passage = prepared.run(found.x, cycle.mode, record=record, progress=progress)
     cycle.periods += 1
-    energy = energy_of(prepared.tableau, record, found.x, end, record.peak_j)
+    energy = energy_of(prepared.tableau, record, found.x, passage.x, passage.peak_j)
     method = "; ".join(
         (
             f"Newton's method on the cycle map, residual {found.residual:.1e}"
             if not affine
             else "direct, (I - Phi) x = q",
             *found.means,
-            f"ideal elements as {tol.IDEAL_EPSILON:g} Z0",
+            f"ideal elements as {tol.IDEAL_EPSILON:g} Z",
         )
     )
     evidence = evidence_of(prepared, energy, record, method, cycle.periods)
@@ -140,11 +140,12 @@ def _other_start(cycle: CycleMap, found: FixedPoint, affine: bool) -> tuple[Find
         return ()
     cycle.limit = cycle.periods + tol.OTHER_START_PERIODS
     other = fixed_point(cycle, tol.OTHER_START * found.x, affine=True, warm_up=0, rounds=0)
-    if not other.found or np.linalg.norm(other.x - found.x) <= tol.SAME_SOLUTION * np.linalg.norm(found.x):
+    apart = float(np.linalg.norm(other.x - found.x)) / cycle.size if cycle.size > 0.0 else 0.0
+    if not other.found or apart <= tol.SAME_SOLUTION:
         return ()
     return (
         Finding("SEVERAL_PERIODIC_STATES", Severity.WARNING, field="period_s",
-                measured=float(np.linalg.norm(other.x - found.x) / np.linalg.norm(found.x)), limit=tol.SAME_SOLUTION,
+                measured=apart, limit=tol.SAME_SOLUTION,
                 message="another start led to a different periodic state; the one reached from rest is shown"),
     )  # fmt: skip
 

@@ -25,6 +25,16 @@ ComplexArray = NDArray[np.complex128]
 
 
 @dataclass(slots=True, eq=False)
+class Passage:
+    """Where a run stands: state, device modes, ∂x/∂x(start) if asked for, and the largest |x|²/2 met, J."""
+
+    x: FloatArray
+    mode: Mode
+    jacobian: FloatArray | None = None
+    peak_j: float = 0.0
+
+
+@dataclass(slots=True, eq=False)
 class SwitchedNetwork:
     """A numbered network with its pieces, and the instants in [0, stop] at which a gate or waveform sets it anew."""
 
@@ -59,27 +69,26 @@ class SwitchedNetwork:
         record: Trajectory | None = None,
         monodromy: bool = False,
         progress: Callable[[int, int], None] | None = None,
-    ) -> tuple[FloatArray, Mode, FloatArray | None]:
-        """Run from x over all intervals; return the end state, the end modes and, if asked, Φ = ∂x(end)/∂x(start)."""
-        phi = np.eye(self.tableau.states) if monodromy else None
+    ) -> Passage:
+        """Run from x over all intervals; with ``monodromy`` also Φ = ∂x(end)/∂x(start)."""
+        passage = Passage(x, mode, np.eye(self.tableau.states) if monodromy else None, 0.5 * float(x @ x))
         intervals = len(self.breakpoint_s) - 1
         for k in range(intervals):
-            start, stop = float(self.breakpoint_s[k]), float(self.breakpoint_s[k + 1])
-            x, mode, phi = self._interval(x, mode, start, stop, record, phi)
+            self._interval(passage, float(self.breakpoint_s[k]), float(self.breakpoint_s[k + 1]), record)
             if progress is not None:
                 progress(k + 1, intervals)
-        return x, mode, phi
+        return passage
 
-    def _interval(self, x, mode, start, stop, record, phi):
+    def _interval(self, passage: Passage, start: float, stop: float, record: Trajectory | None) -> None:
+        """Run from one change of the drives to the next."""
+        x, phi = passage.x, passage.jacobian
         inside = 0.5 * (start + stop)
         w_inside = self.tableau.drives.state(inside)
         w = self.tableau.drives.moved(w_inside, start - inside)
-        before = mode
-        mode = self.consistent(self.mode_at(mode, start, stop), x, w)
+        mode = self.consistent(self.mode_at(passage.mode, start, stop), x, w)
         if record is not None:
-            record.changes += [
-                (start, d, new) for d, (old, new) in enumerate(zip(before, mode, strict=True)) if old != new
-            ]
+            pairs = enumerate(zip(passage.mode, mode, strict=True))
+            record.changes += [(start, device, new) for device, (old, new) in pairs if old != new]
         now, fresh, events = start, -1, 0
         steady, driven = self.tableau.drives.steady, {}
         while now < stop:
@@ -93,7 +102,6 @@ class SwitchedNetwork:
             homogeneous, forced = growth[: len(kappa)], growth[len(kappa) :]
             if record is not None:
                 record.add(piece, now, span, kappa, w)
-                record.peak_j = max(record.peak_j, 0.5 * float(x @ x))
             V = modes.state_signal
             if phi is not None:
                 phi = ((V * homogeneous) @ modes.left).real @ phi
@@ -110,7 +118,8 @@ class SwitchedNetwork:
                     record.changes.append((now, fresh, change.then))
                 if events > tol.EVENTS_PER_INTERVAL:
                     self._chattering(record, start, stop)
-        return x, mode, phi
+            passage.peak_j = max(passage.peak_j, 0.5 * float(x @ x))
+        passage.x, passage.mode, passage.jacobian = x, mode, phi
 
     def _chattering(self, record: Trajectory | None, start: float, stop: float) -> None:
         last = record.changes[-tol.CHATTER_WINDOW :] if record is not None else []

@@ -54,10 +54,10 @@ def time_response_switching(
     prepared = switched_network(topology, float(time_s[-1]), step_s)
     x = start_state(prepared, initial)
     record = Trajectory()
-    end, _, _ = prepared.run(x, prepared.start_mode(x), record=record, progress=progress)
-    energy = energy_of(prepared.tableau, record, x, end, record.peak_j)
+    passage = prepared.run(x, prepared.start_mode(x), record=record, progress=progress)
+    energy = energy_of(prepared.tableau, record, x, passage.x, passage.peak_j)
     evidence = evidence_of(
-        prepared, energy, record, f"modal sums between events, ideal elements as {tol.IDEAL_EPSILON:g} Z0"
+        prepared, energy, record, f"modal sums between events, ideal elements as {tol.IDEAL_EPSILON:g} Z"
     )
     readings = {piece.number: readings_of(prepared.tableau, piece.mode, observables) for piece in record.distinct()}
     require_accuracy(evidence, energy, tolerance)

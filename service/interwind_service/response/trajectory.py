@@ -63,7 +63,6 @@ class Trajectory:
     kappa: list[ComplexArray] = field(default_factory=list)
     w: list[ComplexArray] = field(default_factory=list)
     changes: list[tuple[float, int, int]] = field(default_factory=list)
-    peak_j: float = 0.0
 
     def add(self, piece: Piece, start_s: float, span_s: float, kappa: ComplexArray, w: ComplexArray) -> None:
         """Append one segment."""
