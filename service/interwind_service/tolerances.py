@@ -351,8 +351,12 @@ MAX_ARRAY_PART_BYTES = 2**20  # one part of an array: the chunk size at which Py
 MAX_SIZE_HEADER_BYTES = 64  # five varints and their keys
 DEFAULT_QUEUE_PER_WORKER = 4  # waiting calls a worker: with calls of a second, nobody waits longer than a few
 DEFAULT_MAX_TIMEOUT_S = 600.0  # no call may hold a worker longer; batches are for that
-DEFAULT_MEMORY_SHARE = 0.5  # of the machine's memory for all calls together; the rest is for whoever else is on the node
-WORKER_BASE_ADDRESS_BYTES = 2 * 2**30  # address space of an idle worker (libraries, arenas), before its share of the budget
+DEFAULT_MEMORY_SHARE = (
+    0.5  # of the machine's memory for all calls together; the rest is for whoever else is on the node
+)
+WORKER_BASE_ADDRESS_BYTES = (
+    2 * 2**30
+)  # address space of an idle worker (libraries, arenas), before its share of the budget
 DEFAULT_ARRAY_STORE_BYTES = 512 * 2**20  # uploaded and fetched arrays together; the least recently used leave first
 ARRAY_UPLOAD_IDLE_S = 600.0  # an upload nobody continues is forgotten
 MAX_OPEN_UPLOADS = 64  # unfinished uploads at a time; the longest idle leaves first
@@ -366,7 +370,9 @@ MAX_CONNECTION_IDLE_MS = 300_000  # a connection without calls is closed; client
 KEEPALIVE_MIN_INTERVAL_MS = 30_000  # the client pings every 60 s while it has calls; twice as often is tolerated
 MAX_CONCURRENT_STREAMS = 256  # calls a connection may have open at once
 FIRST_CALL_S = 1.0  # what a call is taken to last before any was measured
-ESTIMATE_MATRICES = 6  # dense complex copies a solve holds at once: matrix, factor, right sides, scratch, two of headroom
+ESTIMATE_MATRICES = (
+    6  # dense complex copies a solve holds at once: matrix, factor, right sides, scratch, two of headroom
+)
 ESTIMATE_COPIES = 4  # copies of a request in flight: received, piped, parsed, decoded
 LOG_QUEUE_LINES = 10_000  # lines that may wait for a slow reader of stderr; later ones are counted and dropped
 TOKEN_RELOAD_INTERVAL_S = 1.0  # how often the token file is looked at, at most
@@ -387,7 +393,7 @@ BATCH_CHUNK_ROWS = 4096  # most variants computed at a time
 BATCH_CHUNK_BYTES = 4 * 2**20  # numbers of a chunk: the front proves and streams it in a few milliseconds
 BATCH_CHUNK_S = 0.5  # work of a chunk: what an interactive call may have to wait for, and a stop may throw away
 BATCH_FORECAST_ROWS = (8, 64, 512)  # variants tried for the forecast, each while the one before was quick
-BATCH_FORECAST_S = 0.1  # what is no longer quick: the caller waits for the forecast
+BATCH_FORECAST_S = 0.3  # what is no longer quick: the caller waits for the forecast
 OUTPUT_GRID_SHARE = 1e-6  # of a step: the end of a grid may be off by so much
 WORKER_BASE_BYTES = 100 * 2**20  # resident memory of an idle worker: interpreter, NumPy, SciPy
 BATCH_SUMMARY_BYTES = 64 * 2**20  # numbers a summary holds at a time

@@ -71,6 +71,58 @@ _WINDINGS = {
         "More single changes would cure than are listed.",
         "Read the remaining ones off the feasible intervals.",
     ),
+    "CULPRIT_WINDING": FindingCode(
+        "No single pair cures, but leaving this winding out does: several of its couplings are wrong.",
+        "Measure the couplings of that winding again, or look for a unit or a turns ratio that slipped for it.",
+    ),
+    "IMPOSSIBLE_SUBSET": FindingCode(
+        "These few windings alone cannot exist together, so the fault is among their couplings.",
+        "Measure the pairs of this subset again, starting with one that stands in several impossible subsets.",
+    ),
+    "SUBSETS_TRUNCATED": FindingCode(
+        "More subsets of windings are impossible than are named.",
+        "Mend the first ones and check again.",
+    ),
+    "SIGN_FLIPPED": FindingCode(
+        "The set would be possible with the sign of this pair turned, alone or together with the others named.",
+        "Check the dots of the two windings by an aiding and an opposing series reading.",
+    ),
+    "FACTOR_TWO": FindingCode(
+        "Twice or half the value of this pair would be possible; the value given is not.",
+        "Look for a mutual inductance counted once instead of twice, or a winding half measured.",
+    ),
+    "UNIT_SLIP": FindingCode(
+        "The value times a power of a thousand would be possible, or as tightly coupled as all others.",
+        "Check the unit of that entry; the value that would fit is given.",
+    ),
+    "OTHER_SIDE": FindingCode(
+        "The leakage of a pair differs from the others by the ratio of the self-inductances.",
+        "Find out from which winding it was measured and refer it to that side; the coupling that would fit is given.",
+    ),
+    "UNLIKELY_MAGNITUDE": FindingCode(
+        "A self-inductance lies where no winding does, or further from all others than any turns ratio.",
+        "Check its unit; the value that would fit is given.",
+    ),
+    "LEAKAGE_DIGITS": FindingCode(
+        "The digits or the uncertainty of a coupling leave its leakage inductance too uncertain to design with.",
+        "Measure the leakage inductance itself, or state the coupling with the decimals named.",
+    ),
+    "DUPLICATE_WINDINGS": FindingCode(
+        "Two windings agree in every entry.",
+        "Leave one out if the same conductor was entered twice; otherwise nothing.",
+    ),
+    "REVERSAL_NOT_SHOWN": FindingCode(
+        "A whole winding entered the wrong way round cannot be seen in couplings.",
+        "Take an aiding and an opposing series reading of each winding against one other.",
+    ),
+    "REFERRAL_NOT_SHOWN": FindingCode(
+        "A leakage referred to the wrong side of a turns ratio usually leaves the set possible.",
+        "Check against a short-circuit reading that names its driven winding.",
+    ),
+    "NO_UNCERTAINTY_STATED": FindingCode(
+        "No uncertainty is stated, so the verdict allows for rounding only.",
+        "State the printed decimals, or standard deviations, of the couplings or of the inductances.",
+    ),
     "NEGATIVE_RESISTANCE": FindingCode(
         "A winding resistance is negative: the winding would deliver power.",
         "Check the sign of the entry and the subtraction of the leads.",

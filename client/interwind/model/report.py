@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import math
+from dataclasses import dataclass, field
 from enum import Enum
+
+import numpy as np
 
 from interwind.model.finding import NO_EVIDENCE, Caution, Evidence, Finding, Verdict
 from interwind.model.frozen import FloatArray
@@ -28,7 +31,10 @@ class ValidityReport(JsonForm):
     ``eigenvalues`` (n,) ascending, of the unit-diagonal coupling matrix; ``eigenvalues_h`` (n,), H, of L;
     ``witness_current_a`` (n,) = D^(−½) v scaled to 1 A for the smallest eigenvalue, D = diag L;
     ``witness_energy_j`` = ½ iᵀ L i; ``culprits`` ranked, empty when no single change cures;
-    ``feasible_low``, ``feasible_high`` (n, n): interval of each coupling, the others held, NaN where no value cures.
+    ``feasible_low``, ``feasible_high`` (n, n): interval of each coupling, the others held, NaN where no value cures;
+    ``margin``: what the stated band, or rounding, can move the smallest eigenvalue; ``impossible_subsets``: the
+    smallest groups of windings that cannot exist together, the worst first; ``blame`` (n,): share of each winding in
+    the negative energy, sum 1, all zero where there is none.
     """
 
     verdict: Verdict
@@ -43,6 +49,9 @@ class ValidityReport(JsonForm):
     findings: tuple[Finding, ...] = ()
     cautions: tuple[Caution, ...] = ()
     evidence: Evidence = NO_EVIDENCE
+    margin: float = math.nan
+    impossible_subsets: tuple[tuple[str, ...], ...] = ()
+    blame: FloatArray = field(default_factory=lambda: np.empty(0))
 
 
 class RepairMethod(Enum):

@@ -9,11 +9,12 @@ from interwind.model.finding import Finding, Severity
 from interwind.model.frozen import FloatArray
 from interwind.model.windings import WindingSet
 from interwind_service.tolerances import (
-    ASYMMETRIC_PAIRS_NAMED,
     ASYMMETRY_ERROR_DEVIATIONS,
     COUPLING_ROUNDING,
+    PAIRS_NAMED,
     STATED_DEVIATIONS,
     SYMMETRY_ROUNDING,
+    UNKNOWN_PAIRS_NAMED,
 )
 from interwind_service.windings.margin import Band
 
@@ -66,8 +67,9 @@ def non_positive(coils: WindingSet) -> list[Finding]:
 def symmetric_coupling(coils: WindingSet, band: Band) -> tuple[FloatArray, list[Finding]]:
     """Return the symmetric part of the couplings, NaN where a pair is unknown, and what was noticed on the way."""
     K, findings = coils.coupling, []
-    half = np.isnan(K) & ~np.isnan(K.T)
-    for i, j in np.argwhere(half):
+    unknown = np.isnan(K)
+    half = unknown & ~unknown.T if np.any(unknown) else unknown
+    for i, j in np.argwhere(half)[:PAIRS_NAMED]:
         findings.append(
             Finding(
                 "HALF_STATED_PAIR",
@@ -78,13 +80,17 @@ def symmetric_coupling(coils: WindingSet, band: Band) -> tuple[FloatArray, list[
                 float(K[j, i]),
             )
         )
-    K = np.where(half, K.T, K)
+    if findings:
+        K = np.where(half, K.T, K)
     findings += _asymmetry(coils, K, band)
     return 0.5 * (K + K.T), findings
 
 
 def _asymmetry(coils: WindingSet, K: FloatArray, band: Band) -> list[Finding]:
-    difference = np.triu(np.abs(K - K.T), 1)
+    difference = np.abs(K - K.T)
+    if not np.any(difference > SYMMETRY_ROUNDING):
+        return []
+    difference = np.triu(difference, 1)
     difference[np.isnan(difference)] = 0.0
     noise = np.sqrt(2.0) * np.nan_to_num(band.deviation)
     rounding = np.maximum(SYMMETRY_ROUNDING, 2.0 * np.where(noise > 0, 0.0, band.half_width))
@@ -93,9 +99,9 @@ def _asymmetry(coils: WindingSet, K: FloatArray, band: Band) -> list[Finding]:
     wrong = np.where(noise > 0, deviations > STATED_DEVIATIONS, difference > rounding * (1 + SYMMETRY_ROUNDING))
     wrong &= difference > SYMMETRY_ROUNDING
     places = np.argwhere(wrong)
-    rank = np.argsort([-difference[i, j] for i, j in places], kind="stable")
+    rank = np.argsort(-difference[tuple(places.T)], kind="stable")
     findings = []
-    for i, j in places[rank][:ASYMMETRIC_PAIRS_NAMED]:
+    for i, j in places[rank][:PAIRS_NAMED]:
         pair = f"{coils.labels[i]}-{coils.labels[j]}"
         found = (
             f"The two entries of {pair} differ by {difference[i, j]:.3g} in coupling ({K[i, j]:.6g} and {K[j, i]:.6g})"
@@ -109,7 +115,7 @@ def _asymmetry(coils: WindingSet, K: FloatArray, band: Band) -> list[Finding]:
             text = f"{found}; what is stated allows {rounding[i, j]:.3g}."
             measured, limit = float(difference[i, j]), float(rounding[i, j])
         text += " Reciprocity wants them equal: find the misread one, or state the uncertainty."
-        if len(places) > ASYMMETRIC_PAIRS_NAMED:
+        if len(places) > PAIRS_NAMED:
             text += f" ({len(places)} pairs in all.)"
         severity = Severity.ERROR if certain else Severity.WARNING
         field = f"{'coupling' if coils.stated_as_coupling else 'inductance_h'}[{i}][{j}]"
@@ -123,7 +129,8 @@ def beyond_one(coils: WindingSet, K: FloatArray, band: Band) -> list[Finding]:
     """One finding for every pair whose coupling exceeds 1 by more than its own band."""
     limit = 1.0 + COUPLING_ROUNDING + band.half_width
     with np.errstate(invalid="ignore"):
-        places = np.argwhere(np.triu(np.abs(K) > limit, 1))
+        beyond = np.abs(K) > limit
+    places = np.argwhere(np.triu(beyond, 1))[:PAIRS_NAMED] if np.any(beyond) else []
     return [
         Finding(
             "COUPLING_ABOVE_ONE",
@@ -140,7 +147,9 @@ def beyond_one(coils: WindingSet, K: FloatArray, band: Band) -> list[Finding]:
 
 
 def unknown_pairs(coils: WindingSet, K: FloatArray) -> list[Finding]:
-    """One finding for every pair that is not known."""
+    """One finding for every pair that is not known, as far as they can be read."""
+    places = np.argwhere(np.triu(np.isnan(K), 1))
+    more = f" ({len(places)} pairs in all.)" if len(places) > UNKNOWN_PAIRS_NAMED else ""
     return [
         Finding(
             "UNKNOWN_PAIR",
@@ -148,7 +157,7 @@ def unknown_pairs(coils: WindingSet, K: FloatArray) -> list[Finding]:
             (coils.labels[i], coils.labels[j]),
             f"coupling[{i}][{j}]",
             f"The coupling of {coils.labels[i]}-{coils.labels[j]} is not known and is not taken as zero; "
-            "measure it or fill it with repair before solving.",
+            f"measure it or fill it with repair before solving.{more}",
         )
-        for i, j in np.argwhere(np.triu(np.isnan(K), 1))
+        for i, j in places[:UNKNOWN_PAIRS_NAMED]
     ]

@@ -40,6 +40,20 @@ def feasible_intervals(spectrum: Spectrum) -> tuple[FloatArray, FloatArray]:
     return low, high
 
 
+def cured_without(spectrum: Spectrum) -> NDArray[np.bool_]:
+    """Tell for every winding, shape (n,), whether the others alone are semidefinite.
+
+    P_ii = Σ v_i² / λ over the eigenvalues that are not zero has the sign of det K without winding i over det K; with
+    one negative eigenvalue the rest is semidefinite when P_ii ≤ 0, to within what rounding does to it, ε ‖P e_i‖².
+    """
+    if spectrum.negative != 1:
+        return np.full(len(spectrum.values), spectrum.negative == 0)
+    kept = np.abs(spectrum.values) > spectrum.rounding
+    shares = spectrum.vectors[:, kept] ** 2
+    own, square = shares @ (1.0 / spectrum.values[kept]), shares @ spectrum.values[kept] ** -2.0
+    return np.asarray(own <= spectrum.rounding * square)
+
+
 def _inverse(spectrum: Spectrum, kept: NDArray[np.bool_]) -> tuple[FloatArray, FloatArray]:
     """Return P, the inverse on the eigenvectors kept, and Δ_ij = P_ii P_jj − P_ij², both (n, n).
 
@@ -66,11 +80,9 @@ def _inverse(spectrum: Spectrum, kept: NDArray[np.bool_]) -> tuple[FloatArray, F
 def _ends(spectrum: Spectrum, P: FloatArray, determinant: FloatArray) -> tuple[FloatArray, FloatArray]:
     """Ends K − 1/(P ± σ); the one of the two sums that cancels is taken from their product, −Δ."""
     own = P.diagonal().copy()
-    stuck = np.zeros(len(own), dtype=bool)
+    stuck = ~cured_without(spectrum)
     if spectrum.negative:
-        slack = spectrum.rounding * np.einsum("ij,ij->j", P, P)
-        stuck = own > slack
-        own[own > -slack] = 0.0
+        own[np.abs(own) <= spectrum.rounding * np.einsum("ij,ij->j", P, P)] = 0.0
     root = np.sqrt(np.abs(own))
     sign = np.where(P >= 0, 1.0, -1.0)
     far = np.abs(P)

@@ -8,6 +8,7 @@ from interwind.model.finding import Finding, Severity
 from interwind.model.windings import WindingSet
 from interwind_service.tolerances import SYMMETRY_ROUNDING, WITNESS_SHARE
 from interwind_service.windings.spectrum import rounding_bound
+from interwind_service.windings.wording import spelled
 
 
 def check_resistance(coils: WindingSet) -> list[Finding]:
@@ -62,7 +63,7 @@ def _matrix(coils: WindingSet) -> list[Finding]:
     names = tuple(coils.labels[k] for k in np.flatnonzero(V[:, 0] ** 2 >= WITNESS_SHARE))
     text = (
         f"The resistance matrix, scaled to a unit diagonal, has the eigenvalue {values[0]:.4g}: currents in "
-        f"{', '.join(names)} would deliver power. Check their mutual resistances."
+        f"{spelled(names)} would deliver power. Check their mutual resistances."
     )
     return [
         Finding(

@@ -11,8 +11,9 @@ from interwind.model.frozen import FloatArray
 from interwind.model.report import Culprit, ValidityReport
 from interwind.model.windings import WindingSet
 from interwind_service.tolerances import WITNESS_SHARE
+from interwind_service.windings.audit import audit, blamed_windings, blind_spots, name_subsets
 from interwind_service.windings.completable import complete, completion_intervals
-from interwind_service.windings.culprit import rank_culprits
+from interwind_service.windings.culprit import blame, rank_culprits
 from interwind_service.windings.entries import (
     beyond_one,
     non_positive,
@@ -24,6 +25,8 @@ from interwind_service.windings.intervals import feasible_intervals
 from interwind_service.windings.margin import Band, stated_band
 from interwind_service.windings.resistance import check_resistance
 from interwind_service.windings.spectrum import Spectrum, spectrum, witness
+from interwind_service.windings.subsets import impossible_subsets
+from interwind_service.windings.wording import spelled
 
 METHOD = "symmetric eigendecomposition of the unit-diagonal coupling matrix"
 
@@ -49,7 +52,7 @@ def check(windings: WindingSet) -> ValidityReport:
     K, noticed = symmetric_coupling(windings, band)
     findings += noticed + beyond_one(windings, K, band) + unknown_pairs(windings, K)
     judged = _judge(windings, K, band)
-    findings += judged.findings
+    findings += judged.findings + blind_spots(windings, band)
     verdict = Verdict.INVALID if any(f.severity is Severity.ERROR for f in findings) else judged.verdict
     return ValidityReport(
         verdict=verdict,
@@ -63,6 +66,9 @@ def check(windings: WindingSet) -> ValidityReport:
         feasible_high=judged.high,
         findings=tuple(findings),
         evidence=judged.evidence,
+        margin=judged.margin,
+        impossible_subsets=judged.subsets,
+        blame=judged.blame,
     )
 
 
@@ -78,6 +84,9 @@ class _Judged:
     high: FloatArray
     findings: list[Finding]
     evidence: Evidence
+    margin: float
+    subsets: tuple[tuple[str, ...], ...]
+    blame: FloatArray
 
 
 def _judge(coils: WindingSet, K: FloatArray, band: Band) -> _Judged:
@@ -96,24 +105,42 @@ def _judge(coils: WindingSet, K: FloatArray, band: Band) -> _Judged:
     else:
         s = spectrum(K)
         low, high = feasible_intervals(s)
-    verdict, margin = _verdict(coils, s, band, tolerance, unknown=unknown)
-    findings += margin
-    current, energy = witness(s, coils.self_inductance_h)
+    bound = band.bound + max(s.rounding, tolerance)
+    verdict, finding = _verdict(coils, s, band, bound, unknown=unknown)
+    findings += finding
     culprits: tuple[Culprit, ...] = ()
+    subsets: tuple[tuple[str, ...], ...] = ()
     if s.values[0] < -max(s.rounding, tolerance):
-        culprits, count = rank_culprits(coils.labels, K, low, high)
+        found = impossible_subsets(K, s)
+        subsets = tuple(tuple(coils.labels[w] for w in subset) for subset in found.subsets)
+        culprits, count = rank_culprits(coils.labels, s, low, high)
         findings += _blame(coils, K, culprits, count)
+        findings += name_subsets(coils, K, band, found)
+        findings += blamed_windings(coils, s) if not culprits else []
+    findings += audit(coils, K, s, low, high, band)
+    current, energy = witness(s, coils.self_inductance_h)
     root = np.sqrt(coils.self_inductance_h)
-    evidence = Evidence(method=METHOD, residual=s.residual, condition=s.condition)
-    henries = np.linalg.eigvalsh(s.matrix * np.outer(root, root))
-    return _Judged(verdict, s.values, henries, current, energy, culprits, low, high, findings, evidence)
+    return _Judged(
+        verdict=verdict,
+        eigenvalues=s.values,
+        eigenvalues_h=np.linalg.eigvalsh(s.matrix * np.outer(root, root)),
+        witness_current_a=current,
+        witness_energy_j=energy,
+        culprits=culprits,
+        low=low,
+        high=high,
+        findings=findings,
+        evidence=Evidence(method=METHOD, residual=s.residual, condition=s.condition),
+        margin=bound,
+        subsets=subsets,
+        blame=blame(s),
+    )
 
 
 def _verdict(
-    coils: WindingSet, s: Spectrum, band: Band, tolerance: float, *, unknown: bool
+    coils: WindingSet, s: Spectrum, band: Band, bound: float, *, unknown: bool
 ) -> tuple[Verdict, list[Finding]]:
-    least, rounding = float(s.values[0]), max(s.rounding, tolerance)
-    bound = band.bound + rounding
+    least = float(s.values[0])
     share = s.vectors[:, 0] ** 2
     names = tuple(coils.labels[k] for k in np.flatnonzero(share >= WITNESS_SHARE))
     which = "the best completion of the coupling matrix" if unknown else "the coupling matrix"
@@ -121,7 +148,7 @@ def _verdict(
     if least < -bound:
         text = (
             f"The smallest eigenvalue of {which} is {least:.6g}; {stated}. The witness current, carried by "
-            f"{', '.join(names)}, would store negative energy: no such windings exist."
+            f"{spelled(names)}, would store negative energy: no such windings exist."
         )
         code = "NO_VALID_COMPLETION" if unknown else "INDEFINITE"
         return Verdict.INVALID, [Finding(code, Severity.ERROR, names, "coupling", text, least, -bound)]
@@ -136,7 +163,7 @@ def _verdict(
             Finding("WITHIN_UNCERTAINTY", Severity.WARNING, names, "coupling", text, least, bound)
         ]
     text = (
-        f"The smallest eigenvalue of {which} is {least:.3g}, zero within rounding ({bound:.2g}): {', '.join(names)} "
+        f"The smallest eigenvalue of {which} is {least:.3g}, zero within rounding ({bound:.2g}): {spelled(names)} "
         "are perfectly coupled, which is accepted as an idealisation; their leakage is zero."
     )
     return Verdict.VALID, [Finding("PERFECT_COUPLING", Severity.INFO, names, "coupling", text, least, bound)]
@@ -186,7 +213,19 @@ def _undecided(coils: WindingSet, findings: list[Finding]) -> _Judged:
     finding = Finding("COMPLETION_NOT_SEARCHED", Severity.WARNING, (), "coupling", text)
     nan, square = np.full(coils.size, np.nan), np.full((coils.size, coils.size), np.nan)
     return _Judged(
-        Verdict.UNDECIDED, nan, nan, nan, np.nan, (), square, square, [*findings, finding], Evidence(method=METHOD)
+        verdict=Verdict.UNDECIDED,
+        eigenvalues=nan,
+        eigenvalues_h=nan,
+        witness_current_a=nan,
+        witness_energy_j=np.nan,
+        culprits=(),
+        low=square,
+        high=square,
+        findings=[*findings, finding],
+        evidence=Evidence(method=METHOD),
+        margin=np.nan,
+        subsets=(),
+        blame=np.zeros(coils.size),
     )
 
 
@@ -211,4 +250,5 @@ def _without_scale(coils: WindingSet, findings: list[Finding]) -> ValidityReport
         feasible_high=square,
         findings=tuple(findings),
         evidence=Evidence(method="self-inductances"),
+        blame=current,
     )
