@@ -8,7 +8,7 @@ from __future__ import annotations
 import functools
 from collections.abc import Callable
 from dataclasses import replace
-from typing import Any, ParamSpec, TypeVar
+from typing import TYPE_CHECKING, Any, ParamSpec, TypeVar
 
 from numpy.typing import NDArray
 
@@ -22,6 +22,9 @@ from interwind.model.response import FrequencyResponse, MnaSystem, PortResponse,
 from interwind.model.vary import SampleWindings
 from interwind.model.windings import WindingSet
 from interwind_service.version import SERVICE_VERSION
+
+if TYPE_CHECKING:
+    from interwind_service.response.stack import Stack
 
 P = ParamSpec("P")
 R = TypeVar("R")
@@ -134,3 +137,17 @@ def sample_windings(windings: WindingSet, sample: SampleWindings) -> NDArray[Any
     from interwind_service.windings import sampling
 
     return sampling.sample_windings(windings, sample)
+
+
+def prepare_stack(network: Network, frequency_hz: Any, observe: Any = None) -> Stack | None:
+    """Prepare the frequency responses of many variants of a network; None when it is no case for that."""
+    from interwind_service.response import stack
+
+    return stack.prepare(network, frequency_hz, observe)
+
+
+def stacked_responses(stack: Stack, columns: Any, into: NDArray[Any]) -> NDArray[Any]:
+    """Fill ``into`` (observables, V, F) with the responses of the variants; return which were answered, shape (V,)."""
+    from interwind_service.response import stack as desk
+
+    return desk.stacked_responses(stack, columns, into)

@@ -279,6 +279,7 @@ SEGMENTS_TOGETHER = 256  # segments worked on at once: 20 MB for 50 rows of 20 t
 SAMPLES_TOGETHER = 4096  # samples worked on at once
 SETTLED = 40.0  # time constants after which a jump is over: e^-40 is rounding
 SETTLE_SHARE = 1e-3  # share of the sample step in which a jump at a sample must be over
+JUMP_WEIGHT = 1e-9  # share of the state in quick modes from which a jump is under way
 JUMP_SHARE = 0.5  # share of its decay in stand-ins of ideal elements that makes a mode a jump
 PANEL_NODES = 12  # Gauss-Legendre points a panel; 0.7 rad, or half a turn of a harmonic, to rounding
 PEAK_HEADROOM = 1.1  # a grid of 0.7 rad misses a crest by 6 % at most

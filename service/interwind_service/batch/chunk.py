@@ -95,15 +95,41 @@ def checked_windings(network: Network, analysis: CheckAnalysis) -> Windings:
     return found[0]
 
 
-def solve_rows(overrides: Overrides, analysis: Analysis, layout: Layout, numbers: FloatArray, first_row: int) -> Rows:
+@dataclass(frozen=True, slots=True, eq=False)
+class Desk:
+    """All that the variants of a batch share: what varies, the analysis, what a row holds, and the prepared stack."""
+
+    overrides: Overrides
+    analysis: Analysis
+    layout: Layout
+    stack: Any
+
+
+def desk_of(overrides: Overrides, analysis: Analysis) -> Desk:
+    """Prepare for the variants of a batch."""
+    layout = layout_of(overrides.network, analysis)
+    stack = None
+    if isinstance(analysis, FrequencyAnalysis):
+        try:
+            stack = engine.prepare_stack(overrides.network, layout.points, layout.observables)
+        except InterwindError:
+            pass  # the base network alone cannot be solved; its variants may well be
+    return Desk(overrides, analysis, layout, stack)
+
+
+def solve_rows(desk: Desk, numbers: FloatArray, first_row: int) -> Rows:
     """Compute the rows of some consecutive variants, ``numbers`` shape (rows, width)."""
+    layout = desk.layout
     values = np.full((layout.columns, len(numbers), layout.points.size), np.nan, dtype=layout.dtype)
     statuses = bytearray([OK_CODE]) * len(numbers)
     reasons: list[RowReason] = []
-    answer = _answerer(overrides.network, analysis, layout)
-    for k, row in enumerate(numbers):
+    answered = np.zeros(len(numbers), dtype=bool)
+    if desk.stack is not None:
+        answered = engine.stacked_responses(desk.stack, desk.overrides.columns(numbers), values)
+    answer = _answerer(desk.overrides.network, desk.analysis, layout)
+    for k in np.flatnonzero(~answered).tolist():
         try:
-            network = overrides.variant(row)
+            network = desk.overrides.variant(numbers[k])
             refusal = answer(network, values[:, k])
             if refusal is not None:
                 statuses[k] = INVALID_CODE

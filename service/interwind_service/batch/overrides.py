@@ -44,6 +44,20 @@ class Overrides:
         """Numbers in a row."""
         return self.spans[-1].stop
 
+    def columns(self, numbers: FloatArray) -> tuple[Column, ...]:
+        """Return the columns with the ``numbers`` (variants, width) of some variants in them."""
+        filled: list[Column] = []
+        for head, span in zip(self.heads, self.spans, strict=True):
+            own = numbers[:, span]
+            if isinstance(head, VaryMatrix):
+                size = head.inductance_h.shape[1]
+                filled.append(VaryMatrix(head.windings_name, own.reshape(-1, size, size)))
+            elif isinstance(head, VaryInductance):
+                filled.append(VaryInductance(head.windings_name, head.pair, own[:, 0]))
+            else:
+                filled.append(dataclasses.replace(head, values=own[:, 0]))
+        return tuple(filled)
+
     def variant(self, row: FloatArray) -> Network:
         """Return the network of one row, a new value; `InvalidRequest` names a column whose number cannot be used."""
         elements: dict[str, Element] = {}

@@ -60,7 +60,20 @@ def all_coordinates(topology: Topology) -> tuple[WindingCoordinates, ...]:
 
 def spectrum(topology: Topology, frequency_hz: FloatArray, drives: tuple[Drive, ...]) -> Iterator[Band]:
     """Solve for every drive at every frequency, in bands that share a tree, in rising order of frequency."""
-    coordinates = all_coordinates(topology)
+    for tree, index in bands(topology, all_coordinates(topology), frequency_hz, drives):
+        share = max(1, tol.STACK_ENTRIES // max(1, tree.M[0].size))
+        for begin in range(0, len(index), share):
+            part = index[begin : begin + share]
+            yield solve_band(tree, part, 2j * np.pi * frequency_hz[part])
+
+
+def bands(
+    topology: Topology,
+    coordinates: tuple[WindingCoordinates, ...],
+    frequency_hz: FloatArray,
+    drives: tuple[Drive, ...],
+) -> Iterator[tuple[FrequencyTree, NDArray[np.int64]]]:
+    """Yield the tree of each band and the positions of its frequencies, in rising order of frequency."""
     order = np.argsort(frequency_hz, kind="stable")
     omega = 2.0 * np.pi * frequency_hz[order]
     done = 0
@@ -70,11 +83,10 @@ def spectrum(topology: Topology, frequency_hz: FloatArray, drives: tuple[Drive, 
             int(np.searchsorted(omega, first * tol.TREE_BAND, side="right")) if first > 0.0 else int((omega == 0).sum())
         )
         roles = roles_of(topology, at_zero=first == 0.0)
-        tree = frequency_tree(topology, coordinates, roles, float(np.sqrt(first * omega[stop - 1])), drives)
-        share = max(1, tol.STACK_ENTRIES // max(1, tree.M[0].size))
-        for begin in range(done, stop, share):
-            end = min(stop, begin + share)
-            yield solve_band(tree, order[begin:end], 1j * omega[begin:end])
+        yield (
+            frequency_tree(topology, coordinates, roles, float(np.sqrt(first * omega[stop - 1])), drives),
+            order[done:stop],
+        )
         done = stop
 
 

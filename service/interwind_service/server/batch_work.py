@@ -5,7 +5,6 @@ from __future__ import annotations
 import functools
 import hashlib
 import time
-from math import inf
 from pathlib import Path
 from typing import Any
 
@@ -23,7 +22,7 @@ from interwind.codec.observable import observables_to_messages
 from interwind.errors import InvalidRequest, field_path
 from interwind.model.batch import Analysis, CostForecast
 from interwind.v1 import array_pb2, batch_service_pb2
-from interwind_service.batch.chunk import Layout, layout_of, solve_rows
+from interwind_service.batch.chunk import Desk, Layout, desk_of, layout_of, solve_rows
 from interwind_service.batch.folder import sync_folder, write_durably
 from interwind_service.batch.overrides import Overrides, lay_out
 from interwind_service.batch.summary import StoredRows, summarize
@@ -33,6 +32,7 @@ from interwind_service.tolerances import (
     BATCH_CHUNK_ROWS,
     BATCH_CHUNK_S,
     BATCH_FORECAST_ROWS,
+    BATCH_FORECAST_S,
     BATCH_VARIANT_LIMIT,
     WORKER_BASE_BYTES,
 )
@@ -58,10 +58,12 @@ def plan_submission(request: bytes, incoming: str, arrays: ArrayFolder) -> Plan:
         )  # fmt: skip
     if not len(numbers):
         raise InvalidRequest.at("columns", "columns without a value found; at least one variant is expected")
-    layout = layout_of(submission.network, submission.analysis)
-    row_s = _seconds_a_row(overrides, submission.analysis, layout, numbers)
+    desk = desk_of(overrides, submission.analysis)
+    layout = desk.layout
+    call_s, row_s = _seconds(desk, numbers)
     chunk_rows = max(1, min(BATCH_CHUNK_ROWS, int(BATCH_CHUNK_S / row_s), BATCH_CHUNK_BYTES // layout.row_bytes))
     count = len(numbers)
+    chunk_count = -(-count // chunk_rows)
     recipe = recipe_of(overrides, submission.analysis)
     columns = np.ascontiguousarray(numbers, dtype="<f8").tobytes()
     if not submission.validate_only:
@@ -82,20 +84,20 @@ def plan_submission(request: bytes, incoming: str, arrays: ArrayFolder) -> Plan:
         chunk_rows=chunk_rows,
         header=_header(layout, count),
         forecast=CostForecast(
-            duration_s=row_s * count,
+            duration_s=row_s * count + call_s * chunk_count,
             result_bytes=layout.row_bytes * count,
             memory_bytes=WORKER_BASE_BYTES + 4 * layout.row_bytes * chunk_rows + 3 * len(recipe),
-            chunk_count=-(-count // chunk_rows),
+            chunk_count=chunk_count,
         ),
     )
 
 
 def solve_chunk(task: ChunkTask) -> ChunkAnswer:
     """Compute the rows of a chunk; their numbers go to a durable file, or home in the answer."""
-    overrides, analysis, layout = _recipe(task.recipe)
-    numbers = np.frombuffer(task.columns, "<f8").reshape(task.row_count, overrides.width)
-    rows = solve_rows(overrides, analysis, layout, numbers, task.first_row)
-    values = np.ascontiguousarray(rows.values, dtype=layout.dtype)
+    desk = _desk(task.recipe)
+    numbers = np.frombuffer(task.columns, "<f8").reshape(task.row_count, desk.overrides.width)
+    rows = solve_rows(desk, numbers, task.first_row)
+    values = np.ascontiguousarray(rows.values, dtype=desk.layout.dtype)
     data = memoryview(values.reshape(-1).view(np.uint8))
     if task.path:
         write_durably(Path(task.path), data)
@@ -112,7 +114,8 @@ def summary_frames(
     folder: str, chunks: tuple[StoredRows, ...], levels: tuple[float, ...], extreme_count: int
 ) -> list[bytes]:
     """Summarize the rows of a batch; return the response messages, serialized."""
-    _, _, layout = _recipe((Path(folder) / "recipe").read_bytes())
+    submission = _submission((Path(folder) / "recipe").read_bytes())
+    layout = layout_of(submission.network, submission.analysis)
     summary = summarize(Path(folder), chunks, layout, levels, extreme_count)
     return [frame.SerializeToString() for frame in summary_to_messages(summary)]
 
@@ -125,22 +128,35 @@ def recipe_of(overrides: Overrides, analysis: Analysis) -> bytes:
 
 
 @functools.lru_cache(maxsize=4)
-def _recipe(recipe: bytes) -> tuple[Overrides, Analysis, Layout]:
-    submission = submission_from_message(batch_service_pb2.SubmitBatchRequest.FromString(recipe))
-    overrides = Overrides(submission.network, submission.columns)
-    return overrides, submission.analysis, layout_of(submission.network, submission.analysis)
+def _desk(recipe: bytes) -> Desk:
+    submission = _submission(recipe)
+    return desk_of(Overrides(submission.network, submission.columns), submission.analysis)
 
 
-def _seconds_a_row(overrides: Overrides, analysis: Analysis, layout: Layout, numbers: Any) -> float:
-    """Time the first variants: one, and a few more when it was quick."""
-    row_s = inf
-    for count in (1, 1, BATCH_FORECAST_ROWS):  # the first one pays for what a worker loads once
-        if row_s < inf and row_s * count > BATCH_CHUNK_S:
-            break
+def _submission(recipe: bytes) -> Submission:
+    return submission_from_message(batch_service_pb2.SubmitBatchRequest.FromString(recipe))
+
+
+def _seconds(desk: Desk, numbers: Any) -> tuple[float, float]:
+    """Time some variants from all over the batch: return the seconds of a call, and of each row in it.
+
+    The first look pays for what a worker loads once; more rows are tried while that is quick.
+    """
+    call_s = row_s = 0.0
+    for count in (1, 1, *BATCH_FORECAST_ROWS):
+        rows = numbers[np.linspace(0, len(numbers), min(count, len(numbers)) + 1)[1:].astype(np.int64) - 1]
         began_s = time.perf_counter()
-        solve_rows(overrides, analysis, layout, numbers[:count], 0)
-        row_s = (time.perf_counter() - began_s) / min(count, len(numbers))
-    return row_s
+        solve_rows(desk, rows, 0)
+        spent_s = time.perf_counter() - began_s
+        if len(rows) == 1:
+            call_s, row_s = 0.0, spent_s
+            first_s = spent_s
+        else:
+            row_s = max(spent_s - first_s, spent_s / 10) / len(rows)
+            call_s = max(spent_s - row_s * len(rows), 0.0)
+        if spent_s > BATCH_FORECAST_S:
+            break
+    return call_s, row_s
 
 
 def _header(layout: Layout, variant_count: int) -> bytes:
