@@ -21,10 +21,13 @@ FloatArray = NDArray[np.float64]
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Generator:
-    """``S`` (g, g), 1/s; ``U`` (inputs, g); ``events`` (E,) rising, distinct, s."""
+    """``S`` (g, g), 1/s; ``U`` (inputs, g); ``rate`` (g,) = largest |eigenvalue| of its channel, 1/s; ``events`` (E,)
+    rising, distinct, s.
+    """
 
     S: FloatArray
     U: FloatArray
+    rate: FloatArray
     events: FloatArray
     states: tuple[Callable[[FloatArray], FloatArray], ...]
 
@@ -92,4 +95,6 @@ def _join(sources: Sequence[Sequence[Channel]], stop_s: float) -> Generator:
         U[source, where] += output
     times = np.unique(np.concatenate(events))
     S = sl.block_diag(*matrices) if matrices else np.zeros((0, 0))
-    return Generator(S, U, times[(times > 0.0) & (times <= stop_s)], tuple(states))
+    rates = [np.full(len(matrix), np.abs(np.linalg.eigvals(matrix)).max()) for matrix in matrices]
+    rate = np.concatenate(rates) if rates else np.zeros(0)
+    return Generator(S, U, rate, times[(times > 0.0) & (times <= stop_s)], tuple(states))

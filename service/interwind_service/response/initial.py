@@ -72,8 +72,8 @@ def _rest(space: StateSpace, u: FloatArray) -> FloatArray:
         if gap > np.sqrt(REST_RESIDUAL) * np.abs(b).max(initial=0.0):
             raise InvalidNetwork.at(
                 "initial",
-                "SteadyStart found, but the sources at 0 have no point of rest: a voltage stands across inductors alone "
-                "or a current flows into capacitors alone; state the initial values instead",
+                "SteadyStart found, but the sources at 0 leave no point of rest: a voltage stands across inductors "
+                "alone or a current flows into capacitors alone; state the initial values instead",
                 reason="NO_POINT_OF_REST",
             )
         first += size

@@ -8,6 +8,7 @@ from numpy.typing import NDArray
 from interwind.model.response import EnergyLedger
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
+from interwind_service.response.flow import Flow
 from interwind_service.response.generator import Generator
 from interwind_service.response.initial import Start
 from interwind_service.response.readout import Signals
@@ -19,7 +20,7 @@ _SOURCES = (Kind.VOLTAGE_SOURCE, Kind.CURRENT_SOURCE, Kind.CONTROLLED_VOLTAGE, K
 
 
 def ledger_of(
-    space: StateSpace, generator: Generator, start: Start, rows: FloatArray, gramian: FloatArray, end: FloatArray
+    space: StateSpace, flow: Flow, generator: Generator, start: Start, gramian: FloatArray, end: FloatArray
 ) -> EnergyLedger:
     """Close the books: supplied = dissipated + Δstored + lost in jumps + numerical.
 
@@ -27,20 +28,18 @@ def ledger_of(
 
     Parameters
     ----------
-    rows : all signals on y, shape (signals, n + g).
     gramian : G, shape (n + g, n + g).
     end : y at the end, shape (n + g,).
     """
     topology = space.basis.storage.topology
     signals = Signals(topology)
-    voltage, current = rows[: signals.branches], rows[signals.branches : 2 * signals.branches]
+    voltage, current = flow.signals[: signals.branches], flow.signals[signals.branches : 2 * signals.branches]
     dissipated = _dissipated(topology, voltage, current, gramian)
     sources = topology.of_kind(*_SOURCES)
     supplied = -float(np.einsum("ka,ab,kb->", voltage[sources], gramian, current[sources]))
     from_jumps, lost = _jumps(space, generator)
     from_start = start.stored_after_j - start.stored_before_j + start.lost_j
-    n = space.states
-    stored_end = stored(space, end[:n], generator.U @ end[n:])
+    stored_end = stored(space, flow.energy @ end, generator.U @ end[flow.states :])
     supplied += from_jumps + from_start
     change = stored_end - start.stored_before_j
     lost += start.lost_j
@@ -55,11 +54,10 @@ def ledger_of(
     )
 
 
-def stored(space: StateSpace, x: FloatArray, u: FloatArray) -> float:
+def stored(space: StateSpace, q: FloatArray, u: FloatArray) -> float:
     """Return the stored energy ½ |q|² + ½ uᵀ (PᵀEP) u, J."""
     basis = space.basis
     rest = basis.P @ u
-    q = space.V @ x
     return 0.5 * float(q @ q) + 0.5 * float(rest @ basis.storage.weigh(rest[:, None])[:, 0])
 
 

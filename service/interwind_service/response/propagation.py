@@ -18,6 +18,7 @@ from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
 from interwind_service.response.exponential import Gramian, Ladder
+from interwind_service.response.flow import Flow
 from interwind_service.response.generator import Generator
 
 FloatArray = NDArray[np.float64]
@@ -52,15 +53,15 @@ class Propagation:
 
     Parameters
     ----------
-    matrix : M, shape (n + g, n + g), 1/s; the last g states are those of ``generator``.
+    flow : y' = M y and the jumps at events; the last g states are those of ``generator``.
     generator : ξ at every instant, and the events.
-    start : x(0+), shape (n,).
+    start : the states at 0+, shape (n,).
     readout : rows of the samples, shape (p, n + g).
     """
 
     def __init__(
         self,
-        matrix: FloatArray,
+        flow: Flow,
         generator: Generator,
         start: FloatArray,
         readout: FloatArray,
@@ -69,7 +70,7 @@ class Propagation:
         steps: int,
     ) -> None:
         self.generator, self.readout, self.step_s, self.steps = generator, readout, step_s, steps
-        self.n, self.size = len(start), len(matrix)
+        self.n, self.size, self.jump = len(start), len(flow.M), flow.jump.T
         self._x = start.astype(np.float64)
         width = max(1, len(readout)) * self.size
         block_bits = int(np.clip(np.log2(tol.BLOCK_ENTRIES / width), tol.LEAST_BLOCK_BITS, tol.MOST_BLOCK_BITS))
@@ -80,7 +81,7 @@ class Propagation:
         self._chunk_bits = min(chunk_bits, max(0, int(np.ceil(np.log2(max(1.0, steps / block))))))
         self.chunk = 1 << self._chunk_bits
         step_level = self._chunk_bits + self._block_bits
-        self.ladder = Ladder.of(matrix, step_s * block * self.chunk, least_depth=step_level)
+        self.ladder = Ladder.of(flow.M, step_s * block * self.chunk, least_depth=step_level)
         self.gram = Gramian(self.ladder)
         self.step_level = step_level
         self._step = self.ladder.transition(step_level)
@@ -105,9 +106,9 @@ class Propagation:
         seen = np.vstack((*self._seen, self.end[None]))
         return seen[:: max(1, len(seen) // tol.TESTED_STATES)]
 
-    def peak_energy(self, V: FloatArray) -> float:
-        """Return the largest ½ |V x|² among those samples."""
-        return 0.5 * float(np.square(self.some_states()[:, : self.n] @ V.T).sum(axis=1).max())
+    def peak_energy(self, energy: FloatArray) -> float:
+        """Return the largest ½ |energy y|² among those samples, ``energy`` (n, n + g)."""
+        return 0.5 * float(np.square(self.some_states() @ energy.T).sum(axis=1).max())
 
     def _advance_chunk(self, first: int) -> FloatArray:
         blocks = min(self.chunk, -(-(self.steps - first) // self.block))
@@ -191,6 +192,8 @@ class _Walk:
                 at_kinks[kinked] = y[self.row[kinked], :n]
             moved = y @ move
             if owned.size:
+                row = self.row[owned]
+                moved[row, :n] += (self.after[owned] - moved[row, n:]) @ run.jump
                 if kinked.size:
                     row = self.row[kinked]
                     moved[row, :n] = y[row, :n] @ move[:n, :n] + self.forced[kinked]
@@ -223,6 +226,9 @@ class _Pieces:
         self.length = end - begin
         self.rest = close[self.owner] - end
         self.xi = run.generator.state(begin)
+        self.next_xi = np.empty_like(self.xi)
+        self.next_xi[:-1] = self.xi[1:]
+        self.next_xi[tail] = run.generator.state(close)
 
     def forced(self) -> FloatArray:
         """What the drives alone add to x over each step, shape (steps, n)."""
@@ -232,6 +238,7 @@ class _Pieces:
             return total
         state = np.hstack((np.zeros((len(self.begin), n)), self.xi))
         state = run.ladder.advance(state, self.length, from_level=run.step_level)
+        state[:, :n] += (self.next_xi - state[:, n:]) @ run.jump
         state[:, n:] = 0.0
         state = run.ladder.advance(state, self.rest, from_level=run.step_level)
         np.add.at(total, self.owner, state[:, :n])
@@ -246,7 +253,7 @@ class _Pieces:
             state = np.hstack((x[rows], self.xi[piece]))
             moved = run.ladder.advance(state, self.length[piece], from_level=run.step_level, gram=run.gram)
             x = x.copy()
-            x[rows] = moved[:, :n]
+            x[rows] = moved[:, :n] + (self.next_xi[piece] - moved[:, n:]) @ run.jump
 
 
 def _observability(readout: FloatArray, ladder: Ladder, step_level: int, bits: int) -> FloatArray:

@@ -29,16 +29,18 @@ FloatArray = NDArray[np.float64]
 class StateSpace:
     """x' = A x + B u, y = C x + D u + Y_1 u'; the energy coordinates are q = V x and x = W q.
 
-    ``A`` (n, n), 1/s; ``B`` (n, inputs); ``C`` (signals, n); ``D``, ``Y1`` (signals, inputs); ``V``, ``W`` (n, n);
-    ``blocks`` : sizes; ``shifts`` : the s0 of each block; ``residual``, ``condition`` : worst of the solves.
+    ``A`` (n, n), 1/s; ``B`` (n, inputs); ``C`` (signals, n); ``Y1`` (signals, inputs); ``V``, ``W`` (n, n). D is stated
+    by what it makes exact: ``gain_at_shift`` (signals, inputs) = C (s0 − A)⁻¹ B + D at s0 = ``shift``. ``blocks`` :
+    sizes; ``shifts`` : the s0 of each block; ``residual``, ``condition`` : worst of the solves.
     """
 
     basis: StateBasis
     A: FloatArray
     B: FloatArray
     C: FloatArray
-    D: FloatArray
     Y1: FloatArray
+    shift: float
+    gain_at_shift: FloatArray
     V: FloatArray
     W: FloatArray
     blocks: tuple[int, ...]
@@ -60,11 +62,9 @@ class _Block:
 
 
 def state_space(basis: StateBasis, resolvent_at: Callable[[float], Resolvent], s0: float) -> StateSpace:
-    """Gather the blocks, the slowest from the resolvent at s0, 1/s, and join them.
-
-    D is such that y at s0 is exact: slow signals do not suffer from what the fast modes add and D takes away again.
-    """
-    blocks = _blocks(resolvent_at, basis.X.shape[1], s0)
+    """Gather the blocks, the slowest from the resolvent at s0, 1/s, and join them."""
+    main = resolvent_at(s0)
+    blocks = _blocks(resolvent_at, main, basis.X.shape[1])
     V = np.hstack([block.V for block in blocks])
     W = np.linalg.inv(V)
     A_parts, B_parts, C_parts = [], [], []
@@ -79,22 +79,20 @@ def state_space(basis: StateBasis, resolvent_at: Callable[[float], Resolvent], s
         C_parts.append(sl.lu_solve(inverse, (own.H @ block.V).T, trans=1).T if size else own.H @ block.V)
         first += size
     A, B, C = sl.block_diag(*A_parts), np.vstack(B_parts), np.hstack(C_parts)
-    main = blocks[0].resolvent
     node_impulse = main.tree.paths @ basis.voltage_impulse[main.tree.tree]
     Y1 = np.vstack((basis.voltage_impulse, basis.current_impulse, node_impulse))
-    D = main.y - s0 * Y1 - C @ np.linalg.solve(s0 * np.eye(len(A)) - A, B)
     return StateSpace(
-        basis, A, B, C, D, Y1, V, W,
+        basis, A, B, C, Y1, s0, main.y - s0 * Y1, V, W,
         tuple(len(block.T) for block in blocks), tuple(block.resolvent.s0 for block in blocks),
         max(block.resolvent.residual for block in blocks), max(block.resolvent.condition for block in blocks),
     )  # fmt: skip
 
 
-def _blocks(resolvent_at: Callable[[float], Resolvent], states: int, s0: float) -> list[_Block]:
+def _blocks(resolvent_at: Callable[[float], Resolvent], own: Resolvent, states: int) -> list[_Block]:
     blocks: list[_Block] = []
-    done, slower, shift = 0, 0.0, s0
+    done, slower = 0, -1.0
     while True:
-        own = resolvent_at(shift)
+        shift = own.s0
         speed = np.sort(_speed(np.linalg.eigvals(own.K), shift)) if states else np.zeros(0)
         left = speed[done:]
         cut = _cut(left, shift)
@@ -112,7 +110,7 @@ def _blocks(resolvent_at: Callable[[float], Resolvent], states: int, s0: float) 
         if done == states:
             return blocks
         slower = cut
-        shift = min(float(left[size]), shift * tol.BAND_REACH**2) * tol.BAND_LEAD
+        own = resolvent_at(min(float(left[size]), shift * tol.BAND_REACH**2) * tol.BAND_LEAD)
 
 
 def _speed(mu: NDArray[np.complex128], shift: float) -> FloatArray:

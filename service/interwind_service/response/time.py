@@ -15,7 +15,8 @@ from interwind.model.response import EnergyLedger, Initial, TimeResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology, number
-from interwind_service.response.generator import Generator, generator_of
+from interwind_service.response.flow import Flow, flow_of
+from interwind_service.response.generator import generator_of
 from interwind_service.response.initial import Start, start_of
 from interwind_service.response.ledger import ledger_of
 from interwind_service.response.observe import resolve
@@ -82,13 +83,12 @@ def time_response(
     space = model_of(topology, 1.0 / np.sqrt(step_s * stop_s))
     start = start_of(space, initial, generator.U @ generator.state(np.zeros(1))[0])
     readout = readout_of(topology, asked)
-    signals = signal_rows(space, generator)
-    run = Propagation(
-        flow_matrix(space, generator), generator, start.x, readout.rows @ signals, step_s=step_s, steps=steps
-    )
+    flow = flow_of(space, generator)
+    begin = flow.start(start.x, generator.state(np.zeros(1))[0])
+    run = Propagation(flow, generator, begin, readout.rows @ flow.signals, step_s=step_s, steps=steps)
     samples = _collect(run, readout, len(asked), sink)
-    ledger = ledger_of(space, generator, start, signals, run.gramian(), run.end)
-    evidence = _evidence(topology, space, run, start, ledger, signals)
+    ledger = ledger_of(space, flow, generator, start, run.gramian(), run.end)
+    evidence = _evidence(topology, space, flow, run, start, ledger)
     _require(evidence, tolerance)
     return TimeResponse(
         asked,
@@ -121,19 +121,6 @@ def steps_of(stop_s: float, step_s: float) -> int:
     return steps
 
 
-def flow_matrix(space: StateSpace, generator: Generator) -> FloatArray:
-    """Return M of y = (x, ξ), y' = M y, shape (n + g, n + g)."""
-    n, g = space.states, len(generator.S)
-    M = np.zeros((n + g, n + g))
-    M[:n, :n], M[:n, n:], M[n:, n:] = space.A, space.B @ generator.U, generator.S
-    return M
-
-
-def signal_rows(space: StateSpace, generator: Generator) -> FloatArray:
-    """Return every signal as a row on y = (x, ξ), shape (signals, n + g)."""
-    return np.hstack((space.C, space.D @ generator.U + space.Y1 @ (generator.U @ generator.S)))
-
-
 def _collect(run: Propagation, readout: Readout, columns: int, sink: RowSink | None) -> FloatArray:
     samples = np.empty((0 if sink else run.steps + 1, columns))
     done = 0
@@ -150,41 +137,47 @@ def _collect(run: Propagation, readout: Readout, columns: int, sink: RowSink | N
 def _evidence(
     topology: Topology,
     space: StateSpace,
+    flow: Flow,
     run: Propagation,
     start: Start,
     ledger: EnergyLedger,
-    signals: FloatArray,
 ) -> Evidence:
-    size = max(abs(ledger.supplied_j), start.stored_before_j, start.stored_after_j, run.peak_energy(space.V))
+    size = max(abs(ledger.supplied_j), start.stored_before_j, start.stored_after_j, run.peak_energy(flow.energy))
     return Evidence(
         method="structural reduction, resolvent blocks, exact propagation",
-        residual=max(space.residual, equation_residual(topology, run, signals)),
+        residual=max(space.residual, equation_residual(topology, run, flow.signals)),
         condition=space.condition,
         energy_error=abs(ledger.numerical_j) / size if size > 0.0 else 0.0,
     )
 
 
 def equation_residual(topology: Topology, run: Propagation, signals: FloatArray) -> float:
-    """Return how far some samples miss the current law and the laws of storage, as shares of the largest terms."""
+    """Return how far some samples miss the current law and the laws of storage, |b − A x| over |A| |x| + |b|."""
     y = run.some_states()
     branches = len(topology.kind)
     value = signals @ y.T
     slope = signals @ (run.ladder.matrix @ y.T)
     voltage, current = value[:branches], value[branches : 2 * branches]
-    kirchhoff = np.zeros((len(topology.nodes), y.shape[0]))
-    np.add.at(kirchhoff, topology.start, current)
-    np.add.at(kirchhoff, topology.finish, -current)
+    law, size = np.zeros((len(topology.nodes), len(y))), np.zeros((len(topology.nodes), len(y)))
+    for end, sign in ((topology.start, 1.0), (topology.finish, -1.0)):
+        np.add.at(law, end, sign * current)
+        np.add.at(size, end, np.abs(current))
+    worst = _share(law, size, current)
     capacitors, inductors = topology.of_kind(Kind.CAPACITOR), topology.of_kind(Kind.INDUCTOR)
-    laws = [voltage[inductors] - topology.value[inductors][:, None] * slope[branches + inductors]]
+    charging = topology.value[capacitors][:, None] * slope[capacitors]
+    worst = max(worst, _share(current[capacitors] - charging, np.abs(charging), current))
+    induced = topology.value[inductors][:, None] * slope[branches + inductors]
+    worst = max(worst, _share(voltage[inductors] - induced, np.abs(induced), voltage))
     for group in topology.groups:
-        law = group.resistance_ohm @ current[group.branches] + group.inductance_h @ slope[branches + group.branches]
-        laws.append(voltage[group.branches] - law)
-    currents = (kirchhoff, current[capacitors] - topology.value[capacitors][:, None] * slope[capacitors])
-    return max(_share(np.vstack(currents), current), _share(np.vstack(laws), voltage))
+        v, i, di = voltage[group.branches], current[group.branches], slope[branches + group.branches]
+        R, L = group.resistance_ohm, group.inductance_h
+        size = np.abs(v) + np.abs(R) @ np.abs(i) + np.abs(L) @ np.abs(di)
+        worst = max(worst, _share(v - R @ i - L @ di, size, voltage))
+    return worst
 
 
-def _share(gap: FloatArray, terms: FloatArray) -> float:
-    largest = float(np.abs(terms).max(initial=0.0))
+def _share(gap: FloatArray, terms: FloatArray, right: FloatArray) -> float:
+    largest = float(terms.max(initial=0.0)) + float(np.abs(right).max(initial=0.0))
     return float(np.abs(gap).max(initial=0.0)) / largest if largest > 0.0 else 0.0
 
 
