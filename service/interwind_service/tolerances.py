@@ -10,7 +10,7 @@ STATED_DEVIATIONS = 2.0
 ASYMMETRY_ERROR_DEVIATIONS = 5.0
 # |k| = 1 formed as M / sqrt(L_i L_j) carries three roundings on each side of 1.
 COUPLING_ROUNDING = 1e-15
-# Null directions of two windings count as parallel when the squared sine is below this: K is then within 1e-12 of singular.
+# Null directions of two windings count as parallel when the squared sine is below this: K is within 1e-12 of singular.
 PARALLEL_SINE_SQUARED = 1e-12
 # At most this many culprits are listed; the rest can be read off the feasible intervals.
 CULPRITS_LISTED = 2000
@@ -44,7 +44,7 @@ SELF_INDUCTANCE_RANGE_H = (1e-11, 1e4)
 TIGHT_COUPLING = 0.9
 # Rules of thumb for units and sides take some decompositions a winding; up to this size below a tenth of a second.
 PLAUSIBILITY_WINDINGS = 40
-# A leakage looks referred to the other side when it is off by L_i / L_j to within this factor, and by more than the next.
+# A leakage looks referred to the other side when off by L_i / L_j to within this factor, and by more than the next.
 SIDE_FACTOR_MATCH = 2.0
 SIDE_FACTOR_LEAST = 4.0
 # Two windings whose every entry agrees to this are one conductor entered twice, or two that nothing tells apart.
@@ -127,12 +127,8 @@ CONTRADICTION_PROBABILITY = 1e-3
 SAME_RESIDUAL = 1e-6
 # A free step gaining more than this part of chi-square: the fit is held by the edge of the cone. Also the way back in.
 EDGE_GAIN = 1e-6
-# Readings left out in turn when the fit is on the edge: a fit each, some ten milliseconds.
-EDGE_REFITS = 100
-# Cauchy weights keep 95 % efficiency on Gaussian readings at this scale (Holland & Welsch 1977).
-CAUCHY_SCALE = 2.385
-# The scale comes down from the largest residual by this factor a fit: gross errors are let go of one by one.
-RELEASE_FACTOR = 4.0
+# Readings left out in turn where some contradict: a fit each, some ten milliseconds.
+READINGS_LEFT_OUT = 60
 # A reading this near to a known slip (side, unit, factor two) of what the others say is told as that slip.
 SLIP_RATIO = 1.1
 # Next reading. Each candidate is taken to be read to one per cent; a gain of less than five per cent is none.
@@ -273,6 +269,8 @@ GRID_COARSEST = 24  # looks in the longest span, at least
 GRID_ALIVE = 14.0  # an oscillation decayed by e to this power no longer needs looks
 GRID_RADIANS = 0.7  # largest step of a living oscillation
 GRID_POINTS = 4096  # looks kept for one piece; a longer span is run in several
+SERIES_REACH = 0.5  # |a τ| up to which the integrals of t^n e^{at} are series
+SERIES_TERMS = 14  # of it: 0.5^15 / 15! is rounding
 GAUSS_NODES = 32  # Gauss-Legendre points; exact to rounding for |a τ| up to GAUSS_REACH
 GAUSS_REACH = 20.0  # beyond it the upward recurrence is stable for every power used
 SEGMENTS_TOGETHER = 256  # segments worked on at once: 20 MB for 50 rows of 20 terms
