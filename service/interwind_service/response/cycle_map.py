@@ -9,7 +9,7 @@ Keller 1993), and at last bursts of plain periods. What was done is said.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
@@ -71,18 +71,20 @@ class CycleMap:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class FixedPoint:
-    """``x`` with |P(x) − x| / max |x| = ``residual``, whether that counts as found, by which means, and Φ there.
-
-    ``undetermined`` is the number of directions in which I − Φ is singular.
-    """
+    """``x`` with |P(x) − x| / max |x| = ``residual``, whether that counts as found, by which means, and Φ there."""
 
     x: FloatArray
     residual: float
     found: bool
     jacobian: FloatArray
-    means: tuple[str, ...] = field(default=())
-    undetermined: int = 0
+    means: tuple[str, ...] = ()
     repeats_after: int = 0
+
+    @property
+    def undetermined(self) -> FloatArray:
+        """Directions that Φ leaves as they are, shape (n, d): any offset along them is a solution as well."""
+        s, Vt = np.linalg.svd(np.eye(len(self.x)) - self.jacobian)[1:]
+        return Vt[s <= _kept_above(s)].T
 
 
 def fixed_point(cycle: CycleMap, x: FloatArray, *, affine: bool, warm_up: int, rounds: int) -> FixedPoint:
@@ -106,20 +108,19 @@ def fixed_point(cycle: CycleMap, x: FloatArray, *, affine: bool, warm_up: int, r
             best = again
     said = tuple(dict.fromkeys(means))
     repeats = 0 if best.found or affine or rounds == 0 else _repetition(cycle, best.x)
-    return FixedPoint(best.x, best.residual, best.found, best.jacobian, said, best.undetermined, repeats)
+    return FixedPoint(best.x, best.residual, best.found, best.jacobian, said, repeats)
 
 
 def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> FixedPoint:
     end, phi, residual = cycle.with_jacobian(x)
     best = FixedPoint(x, residual, False, phi)
     partial = False
-    undetermined = 0
     for _ in range(tol.NEWTON_STEPS):
         if residual <= tol.PERIODIC_RESIDUAL:
-            return FixedPoint(x, residual, True, phi, undetermined=undetermined)
+            return FixedPoint(x, residual, True, phi)
         if refusals < 0 or cycle.spent:
             break
-        step, undetermined = _slow_step(phi, end - x) if partial else _full_step(phi, end - x)
+        step = _slow_step(phi, end - x) if partial else _full_step(phi, end - x)
         accepted = False
         factor = 1.0
         for _ in range(tol.LINE_SEARCH_TRIALS):
@@ -137,7 +138,7 @@ def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> 
                 means.append("correction of the slow modes only")
             partial = False
         elif residual <= tol.PERIODIC_STAGNATION:
-            return FixedPoint(x, residual, True, phi, undetermined=undetermined)
+            return FixedPoint(x, residual, True, phi)
         else:
             refusals -= 1
             means.append("plain periods where Newton's step did not help")
@@ -146,25 +147,30 @@ def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> 
                 end, phi, residual = cycle.with_jacobian(x)
             partial = not partial
         if residual < best.residual:
-            best = FixedPoint(x, residual, False, phi, undetermined=undetermined)
+            best = FixedPoint(x, residual, False, phi)
     found = best.residual <= tol.PERIODIC_STAGNATION
-    return FixedPoint(best.x, best.residual, found, best.jacobian, undetermined=best.undetermined)
+    return FixedPoint(best.x, best.residual, found, best.jacobian)
 
 
-def _full_step(phi: FloatArray, miss: FloatArray) -> tuple[FloatArray, int]:
-    """Return (I − Φ)⁺ (P(x) − x), and the number of singular directions, which are left as they are."""
+def _kept_above(singular: FloatArray) -> float:
+    return tol.UNDETERMINED_OFFSET * max(1.0, float(singular.max(initial=0.0)))
+
+
+def _full_step(phi: FloatArray, miss: FloatArray) -> FloatArray:
+    """Return (I − Φ)⁺ (P(x) − x); singular directions are left as they are."""
     U, s, Vt = np.linalg.svd(np.eye(len(phi)) - phi)
-    kept = s > tol.UNDETERMINED_OFFSET * max(1.0, s[0] if len(s) else 1.0)
-    return Vt[kept].T @ ((U.T[kept] @ miss) / s[kept]), int(np.count_nonzero(~kept))
+    kept = s > _kept_above(s)
+    step: FloatArray = Vt[kept].T @ ((U.T[kept] @ miss) / s[kept])
+    return step
 
 
-def _slow_step(phi: FloatArray, miss: FloatArray) -> tuple[FloatArray, int]:
+def _slow_step(phi: FloatArray, miss: FloatArray) -> FloatArray:
     """Return Newton's step in the modes |μ| > ½ and the plain period in the others."""
     mu, V = np.linalg.eig(phi)
     coefficient = np.linalg.lstsq(V, miss.astype(complex), rcond=None)[0]
     slow = (np.abs(mu) > tol.SLOW_MULTIPLIER) & (np.abs(1.0 - mu) > tol.UNDETERMINED_OFFSET)
     factor = np.where(slow, 1.0 / np.where(slow, 1.0 - mu, 1.0), 1.0)
-    return (V @ (factor * coefficient)).real, int(np.count_nonzero(np.abs(1.0 - mu) <= tol.UNDETERMINED_OFFSET))
+    return (V @ (factor * coefficient)).real
 
 
 def _repetition(cycle: CycleMap, x: FloatArray) -> int:

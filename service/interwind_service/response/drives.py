@@ -31,7 +31,8 @@ IntArray = NDArray[np.int64]
 class Drives:
     """``exponent`` (k,) s, 1/s; ``link`` (k,) the next channel of the chain, -1 for none; ``U`` (inputs, k).
 
-    ``turn`` (k, g) makes w of the states ξ of the generator; channel 0 stands beside them.
+    ``turn`` (k, g) makes w of the states ξ of the generator; channel 0 stands beside them. ``steady`` : w stands still
+    between breakpoints.
     """
 
     generator: Generator
@@ -39,6 +40,7 @@ class Drives:
     link: IntArray
     U: ComplexArray
     turn: ComplexArray
+    steady: bool
 
     @property
     def W(self) -> ComplexArray:
@@ -47,11 +49,6 @@ class Drives:
         linked = np.flatnonzero(self.link >= 0)
         matrix[linked, self.link[linked]] = 1.0
         return matrix
-
-    @property
-    def steady(self) -> bool:
-        """Whether w stands still between breakpoints."""
-        return bool(np.all(self.exponent == 0.0) and np.all(self.link < 0))
 
     def state(self, time_s: float) -> ComplexArray:
         """Return w at an instant that is no breakpoint, shape (k,)."""
@@ -88,8 +85,14 @@ def drives_of(topology: Topology, stop_s: float, step_s: float) -> Drives:
         placed[:, block] = turn
         turns.append(placed)
         reads.append(_reading(generator.U[:, block], turn))
+    steady = not any(exponent) and max(link) < 0
     return Drives(
-        generator, np.array(exponent, dtype=complex), np.array(link, dtype=np.int64), np.hstack(reads), np.vstack(turns)
+        generator,
+        np.array(exponent, dtype=complex),
+        np.array(link, dtype=np.int64),
+        np.hstack(reads),
+        np.vstack(turns),
+        steady,
     )
 
 

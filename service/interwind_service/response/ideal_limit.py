@@ -11,11 +11,11 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+import scipy.linalg as sl
 from numpy.typing import NDArray
 
 from interwind.errors import InvalidNetwork, InvalidWindings
 from interwind_service import tolerances as tol
-from interwind_service.network.forest import components
 from interwind_service.network.groups import WindingGroup
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
@@ -123,14 +123,27 @@ def _loop_resistance(topology: Topology, short_ohm: float) -> FloatArray:
 
 
 def _cutset_leaks(topology: Topology, leak_s: float) -> tuple[tuple[int, float], ...]:
-    """Leak each set of nodes that only inductors, windings, transformers or current sources reach."""
-    conducting = np.isin(topology.kind, [Kind.RESISTOR, Kind.CAPACITOR, Kind.VOLTAGE_SOURCE, Kind.SWITCH, Kind.DIODE])
-    conducting &= ~((topology.kind == Kind.CAPACITOR) & (topology.value == 0.0))
-    conducting |= (topology.kind == Kind.INDUCTOR) & (topology.value == 0.0)
-    of_node = components(len(topology.nodes), topology.start[conducting], topology.finish[conducting])
-    held = {int(of_node[node]) for node in topology.parts.reference}
-    leaks = []
-    for component in range(int(of_node.max()) + 1):
-        if component not in held:
-            leaks.append((int(np.flatnonzero(of_node == component)[0]), leak_s))
-    return tuple(leaks)
+    """Leak one node of each cutset that holds inductive branches and imposed currents only.
+
+    Such a cutset is a vector over the nodes with λ'A_k = 0 for every other branch, and λ'(A_1 − n A_2) = 0 for an ideal
+    transformer, whose two currents are one.
+    """
+    incidence = topology.incidence()
+    free = np.setdiff1d(np.arange(len(topology.nodes)), topology.parts.reference)
+    carrying = np.isin(
+        topology.kind,
+        [Kind.RESISTOR, Kind.CAPACITOR, Kind.VOLTAGE_SOURCE, Kind.SWITCH, Kind.DIODE, Kind.CONTROLLED_VOLTAGE],
+    )
+    carrying &= ~((topology.kind == Kind.CAPACITOR) & (topology.value == 0.0))
+    carrying |= (topology.kind == Kind.INDUCTOR) & (topology.value == 0.0)
+    for control in topology.controls:
+        carrying[control.branch] |= control.sensed < 0
+    columns = [incidence[:, carrying]]
+    columns += [(incidence[:, t.first] - t.ratio * incidence[:, t.second])[:, None] for t in topology.transformers]
+    carried = np.hstack(columns)[free]
+    if not free.size:
+        return ()
+    U, s, _ = np.linalg.svd(carried)
+    null = U[:, np.count_nonzero(s > tol.DEPENDENT_ROW * max(1.0, s.max(initial=0.0))) :]
+    pivots = sl.qr(null.T, mode="r", pivoting=True)[1][: null.shape[1]] if null.shape[1] else ()
+    return tuple((int(free[k]), leak_s) for k in pivots)

@@ -1,6 +1,6 @@
 """Integrals of products of modal sums, in closed form.
 
-    ∫₀^τ t^n e^{at} dt:    expm1(aτ)/a for n = 0, upward recurrence for large |aτ|, Gauss-Legendre else
+    ∫₀^τ t^n e^{at} dt:    expm1(aτ)/a for n = 0; else by series, Gauss-Legendre or upward recurrence as |aτ| grows
 
 so mean powers, mean squares and harmonics come from the exact solution and not from samples.
 """
@@ -36,16 +36,22 @@ def power_exponential(n: NDArray[np.int64], a: ComplexArray, tau: FloatArray) ->
 def _higher(n: int, a: ComplexArray, tau: FloatArray) -> ComplexArray:
     z = a * tau
     found = np.empty_like(z)
-    near = np.abs(z) <= tol.GAUSS_REACH
+    tiny = np.abs(z) <= tol.SERIES_REACH
+    series = np.zeros_like(z[tiny])
+    for k in range(tol.SERIES_TERMS, -1, -1):
+        series = series * z[tiny] / (k + 1) + 1.0 / (n + k + 1)
+    found[tiny] = tau[tiny] ** (n + 1) * series
+    near = ~tiny & (np.abs(z) <= tol.GAUSS_REACH)
     u = 0.5 * (1.0 + _NODES)
     found[near] = tau[near] ** (n + 1) * ((np.exp(z[near][:, None] * u) * u**n) @ (0.5 * _WEIGHTS))
-    far, t = a[~near], tau[~near]
+    rest = ~tiny & ~near
+    far, t = a[rest], tau[rest]
     with np.errstate(under="ignore"):
         end = np.exp(far * t)
     value = (end - 1.0) / far
     for k in range(1, n + 1):
         value = (t**k * end - k * value) / far
-    found[~near] = value
+    found[rest] = value
     return found
 
 

@@ -31,6 +31,7 @@ from interwind_service.response.switching import events_of, evidence_of, require
 from interwind_service.response.trajectory import Trajectory
 
 ComplexArray = NDArray[np.complex128]
+FloatArray = NDArray[np.float64]
 
 
 def periodic_response(
@@ -61,10 +62,11 @@ def periodic_response(
     if not found.found:
         raise _not_periodic(found, period_s, cycle.periods)
     findings = _stability(found) + _other_start(cycle, found, affine)
+    x = _without_offset(cycle, found)
     record = Trajectory()
-    passage = prepared.run(found.x, cycle.mode, record=record, progress=progress)
+    passage = prepared.run(x, cycle.mode, record=record, progress=progress)
     cycle.periods += 1
-    energy = energy_of(prepared.tableau, record, found.x, passage.x, passage.peak_j)
+    energy = energy_of(prepared.tableau, record, x, passage.x, passage.peak_j)
     method = "; ".join(
         (
             f"Newton's method on the cycle map, residual {found.residual:.1e}"
@@ -98,6 +100,18 @@ def periodic_response(
     )
 
 
+def _without_offset(cycle: CycleMap, found: FixedPoint) -> FloatArray:
+    """Return the state with the free offsets chosen so that their means over the period vanish."""
+    free = found.undetermined
+    if not free.shape[1]:
+        return found.x
+    record = Trajectory()
+    cycle.network.run(found.x, cycle.mode, record=record)
+    cycle.periods += 1
+    mean = record.state_integral(cycle.network.tableau) / float(cycle.network.breakpoint_s[-1])
+    return found.x - free @ (free.T @ mean)
+
+
 def multipliers_of(found: FixedPoint) -> ComplexArray:
     """Return the Floquet multipliers, largest first."""
     mu = np.linalg.eigvals(found.jacobian).astype(complex) if len(found.x) else np.zeros(0, complex)
@@ -108,7 +122,8 @@ def _stability(found: FixedPoint) -> tuple[Finding, ...]:
     mu = multipliers_of(found)
     largest = float(np.abs(mu[0])) if len(mu) else 0.0
     said = []
-    if found.undetermined:
+    offsets = found.undetermined.shape[1]
+    if offsets:
         said.append(
             Finding("OFFSET_UNDETERMINED", Severity.WARNING, field="elements", measured=largest, limit=1.0,
                     message=f"{found.undetermined} lossless direction(s) keep any constant current or voltage; "

@@ -181,6 +181,7 @@ class Pieces:
     span_s: float
     made: OrderedDict[Mode, Piece] = field(default_factory=OrderedDict)
     instants: OrderedDict[Mode, tuple[Instant, AtInstant]] = field(default_factory=OrderedDict)
+    bound: OrderedDict[tuple[Mode, bytes], Driven] = field(default_factory=OrderedDict)
     count: int = 0
     worst_condition: float = 1.0
 
@@ -203,6 +204,15 @@ class Pieces:
             self.instants[mode] = found
             if len(self.instants) > tol.PIECES_KEPT:
                 self.instants.popitem(last=False)
+        return found
+
+    def driven(self, mode: Mode, w: ComplexArray, key: bytes) -> Driven:
+        """Return a piece under drives that stand still, kept by ``key``, the bytes of w."""
+        found = self.bound.get((mode, key))
+        if found is None:
+            found = self.bound[mode, key] = self.piece(mode).driven(w)
+            if len(self.bound) > tol.PIECES_KEPT:
+                self.bound.popitem(last=False)
         return found
 
     def piece(self, mode: Mode) -> Piece:

@@ -90,11 +90,9 @@ class SwitchedNetwork:
             pairs = enumerate(zip(passage.mode, mode, strict=True))
             record.changes += [(start, device, new) for device, (old, new) in pairs if old != new]
         now, fresh, events = start, -1, 0
-        steady, driven = self.tableau.drives.steady, {}
+        steady, kept = self.tableau.drives.steady, w.tobytes()
         while now < stop:
-            bound = driven.get(mode) if steady else None
-            if bound is None:
-                bound = driven[mode] = self.pieces.piece(mode).driven(w)
+            bound = self.pieces.driven(mode, w, kept) if steady else self.pieces.piece(mode).driven(w)
             piece, modes = bound.piece, bound.piece.modes
             kappa = modes.left @ (x - bound.particular)
             span, change = first_event(bound, kappa, stop - now, fresh)

@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
+from interwind_service.response.modal_integrals import transform
 from interwind_service.response.piece import Piece
 from interwind_service.response.tableau import Tableau
 
@@ -91,15 +92,31 @@ class Trajectory:
                 )
 
     def segment_of(self, time_s: FloatArray, settle_s: float) -> tuple[IntArray, NDArray[np.bool_]]:
-        """Return the segment of each sample, and whether it stands at an event (then: after what settles at once)."""
+        """Return the segment of each sample, and whether it stands at an event (then: the one after the jump)."""
         start = np.array(self.start_s)
-        own = np.maximum(np.searchsorted(start, time_s, side="right") - 1, 0)
-        end = float(start[-1] + self.span_s[-1])
-        near = np.minimum(np.searchsorted(start, time_s), len(start) - 1)
-        rounding = tol.SAME_INSTANT * end
-        at_event = (np.abs(start[near] - time_s) <= rounding) | (np.abs(start[own] - time_s) <= rounding)
-        settled = np.maximum(np.searchsorted(start, time_s + settle_s, side="right") - 1, 0)
-        return np.where(at_event, settled, own), at_event
+        rounding = tol.SAME_INSTANT * float(start[-1] + self.span_s[-1])
+        own = np.maximum(np.searchsorted(start, time_s + rounding, side="right") - 1, 0)
+        at_event = np.abs(start[own] - time_s) <= rounding
+        for k in np.flatnonzero(at_event):
+            first = int(np.searchsorted(start, time_s[k] - rounding))
+            while first < own[k] or (self._jumps(first, settle_s) and self._ends(first) < time_s[k] + settle_s):
+                if first + 1 == len(start):
+                    break
+                first += 1
+            own[k] = first
+        return own, at_event
+
+    def _ends(self, segment: int) -> float:
+        return self.start_s[segment] + self.span_s[segment]
+
+    def _jumps(self, segment: int, settle_s: float) -> bool:
+        """Whether a jump of the ideal network is under way in a segment."""
+        piece, kappa = self.piece[segment], self.kappa[segment]
+        quick = piece.jump & (piece.speed * settle_s > tol.SETTLED)
+        if not quick.any():
+            return False
+        weight = np.abs(kappa) * np.linalg.norm(piece.modes.state_signal, axis=0)
+        return bool(weight[quick].max() > tol.JUMP_WEIGHT * weight.max())
 
     def distinct(self) -> list[Piece]:
         """Return the pieces met, each once."""
@@ -131,7 +148,7 @@ class Trajectory:
             dead = np.flatnonzero(group.piece.jump & (group.piece.speed * settle_s > tol.SETTLED))
             for low in range(0, len(taken), tol.SAMPLES_TOGETHER):
                 some, of = taken[low : low + tol.SAMPLES_TOGETHER], which[low : low + tol.SAMPLES_TOGETHER]
-                basis = group.piece.basis(time_s[some] - group.start_s[of])
+                basis = group.piece.basis(np.maximum(time_s[some] - group.start_s[of], 0.0))
                 if dead.size:
                     basis[np.ix_(at_event[some], dead)] = 0.0
                 value = finish(group.piece.number, np.einsum("tb,trb->tr", basis, coefficients[of]).real)
@@ -139,6 +156,19 @@ class Trajectory:
                     found = np.empty((len(time_s), value.shape[1]))
                 found[some] = value
         return found if found is not None else np.empty((len(time_s), 0))
+
+    def state_integral(self, tableau: Tableau) -> FloatArray:
+        """Return ∫ x dt over the run, shape (n,)."""
+        width = tableau.unknowns + tableau.states
+        rows = Rows(np.eye(width)[tableau.unknowns :], np.zeros(tableau.states))
+        total = np.zeros(tableau.states)
+        for group in self.groups():
+            straight, turned = transform(group.piece.rates, group.piece.order, group.span_s, np.zeros(1))
+            coefficients = rows.coefficients(group.piece, group.kappa, group.w)
+            both = np.einsum("srb,sb->r", coefficients, straight[:, :, 0])
+            both += np.einsum("srb,sb->r", coefficients.conj(), turned[:, :, 0])
+            total += 0.5 * both.real
+        return total
 
     def residual(self, tableau: Tableau) -> float:
         """Return max |b − A s|∞ / (|A|∞ |s|∞ + |b|∞) rows of A scaled to sum 1, numerator and
