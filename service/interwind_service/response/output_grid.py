@@ -2,35 +2,33 @@
 
 from __future__ import annotations
 
-import math
-
 import numpy as np
-from numpy.typing import NDArray
 
 from interwind.errors import InvalidRequest
 from interwind_service import tolerances as tol
 
 
-def output_grid(stop_s: float, step_s: float, field: str = "stop_s") -> NDArray[np.float64]:
-    """Return the sample times, shape (stop/step + 1,).
+def steps_of(stop_s: float, step_s: float, field: str = "stop_s") -> int:
+    """Return the number of steps; a stop that is no multiple of the step is refused with the two nearest.
 
     Raises
     ------
-    InvalidRequest : a length that is not positive, a step that does not divide the stop, or more samples than allowed.
+    InvalidRequest : a time that is not positive, too many steps, or a step that does not divide the stop.
     """
     for name, value in ((field, stop_s), ("step_s", step_s)):
-        if not (math.isfinite(value) and value > 0.0):
+        if not (np.isfinite(value) and value > 0.0):
             raise InvalidRequest.at(name, f"{value!r} s found; a finite time above 0 is expected")
-    count = stop_s / step_s
-    if count > tol.MAXIMUM_SAMPLES:
+    ratio = stop_s / step_s
+    if not ratio <= tol.MAX_TIME_STEPS:
         raise InvalidRequest.at(
-            "step_s", f"{step_s!r} s makes {count:.3g} samples; the limit is {tol.MAXIMUM_SAMPLES}; take a longer step"
+            "step_s", f"{ratio:.3g} steps found; at most {tol.MAX_TIME_STEPS} are allowed; choose a larger step_s"
         )
-    whole = round(count)
-    if whole < 1 or abs(count - whole) > tol.GRID_MISMATCH:
-        below, above = math.floor(count), math.ceil(count)
-        nearest = f"{below * step_s:.9g} s or {above * step_s:.9g} s" if below else f"{above * step_s:.9g} s"
+    steps = round(ratio)
+    if steps < 1 or abs(ratio - steps) > tol.GRID_MISFIT:
+        below = max(1, int(np.floor(ratio)))
         raise InvalidRequest.at(
-            field, f"{stop_s!r} s is no multiple of step_s, {step_s!r} s; the nearest are {nearest}"
+            field,
+            f"{stop_s!r} s found; a multiple of step_s = {step_s!r} s is expected: {below * step_s!r} s or "
+            f"{(below + 1) * step_s!r} s",
         )
-    return step_s * np.arange(whole + 1)
+    return steps

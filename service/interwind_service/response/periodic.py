@@ -23,7 +23,7 @@ from interwind_service.response.device import TimedSwitch
 from interwind_service.response.energy import energy_of
 from interwind_service.response.figures import figures_of
 from interwind_service.response.observe import resolve
-from interwind_service.response.output_grid import output_grid
+from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readings import readings_of
 from interwind_service.response.start import residual_state
 from interwind_service.response.switched_network import switched_network
@@ -50,7 +50,7 @@ def periodic_response(
     AccuracyNotReached : no periodic state was found (reason NOT_PERIODIC, with how it behaves instead), or the energy
         ledger misses ``tolerance``.
     """
-    time_s = output_grid(period_s, step_s, "period_s")
+    time_s = step_s * np.arange(steps_of(period_s, step_s, "period_s") + 1)
     require_commensurate(network, period_s)
     topology = admit(network)
     observables = resolve(topology, observe)

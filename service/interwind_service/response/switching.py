@@ -17,13 +17,14 @@ from interwind_service import tolerances as tol
 from interwind_service.response.admit import admit
 from interwind_service.response.energy import Energy, energy_of
 from interwind_service.response.observe import resolve
-from interwind_service.response.output_grid import output_grid
+from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readings import Readings, readings_of
 from interwind_service.response.start import start_state
 from interwind_service.response.switched_network import SwitchedNetwork, switched_network
 from interwind_service.response.trajectory import Rows, Trajectory
 
 FloatArray = NDArray[np.float64]
+RowSink = Callable[[int, FloatArray], None]
 
 
 def time_response_switching(
@@ -33,6 +34,8 @@ def time_response_switching(
     observe: Sequence[Observable] | None = None,
     initial: Initial = None,
     tolerance: float = tol.DEFAULT_TOLERANCE,
+    *,
+    sink: RowSink | None = None,
     progress: Callable[[int, int], None] | None = None,
 ) -> TimeResponse:
     """Run a network with piecewise-linear devices from event to event and sample it on a grid.
@@ -48,7 +51,7 @@ def time_response_switching(
     InvalidRequest, InvalidNetwork, InvalidWindings : bad input, by its path.
     AccuracyNotReached : the energy ledger misses ``tolerance``.
     """
-    time_s = output_grid(stop_s, step_s)
+    time_s = step_s * np.arange(steps_of(stop_s, step_s) + 1)
     topology = admit(network)
     observables = resolve(topology, observe)
     prepared = switched_network(topology, float(time_s[-1]), step_s)
@@ -61,9 +64,13 @@ def time_response_switching(
     )
     readings = {piece.number: readings_of(prepared.tableau, piece.mode, observables) for piece in record.distinct()}
     require_accuracy(evidence, energy, tolerance)
+    samples = sample(record, readings, time_s, step_s)
+    if sink is not None:
+        sink(0, samples)
+        samples, time_s = samples[:0], time_s[:0]
     return TimeResponse(
         observables,
-        sample(record, readings, time_s, step_s),
+        samples,
         time_s=time_s,
         events=events_of(prepared, record),
         ledger=energy.ledger,

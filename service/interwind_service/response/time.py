@@ -7,7 +7,7 @@ from collections.abc import Callable, Sequence
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import AccuracyNotReached, InvalidNetwork, InvalidRequest
+from interwind.errors import AccuracyNotReached, InvalidRequest
 from interwind.model.finding import Evidence
 from interwind.model.network import Network
 from interwind.model.observables import Observable
@@ -20,9 +20,11 @@ from interwind_service.response.generator import generator_of
 from interwind_service.response.initial import Start, start_of
 from interwind_service.response.ledger import ledger_of
 from interwind_service.response.observe import resolve
+from interwind_service.response.output_grid import steps_of
 from interwind_service.response.propagation import Propagation
 from interwind_service.response.readout import Readout, readout_of
 from interwind_service.response.state_space import StateSpace
+from interwind_service.response.switching import time_response_switching
 from interwind_service.response.time_model import model_of
 
 FloatArray = NDArray[np.float64]
@@ -68,10 +70,6 @@ def time_response(
     if not (np.isfinite(tolerance) and tolerance > 0.0):
         raise InvalidRequest.at("tolerance", f"{tolerance!r} found; a finite number above 0 is expected")
     topology = number(network)
-    if topology.of_kind(*_SWITCHED).size:
-        raise InvalidNetwork.at(
-            "elements", "switches, diodes and nonlinear elements are not offered over time", reason="NOT_OFFERED"
-        )
     asked = resolve(topology, observe)
     if sink is None and (steps + 1) * len(asked) > tol.MAX_RESPONSE_VALUES:
         raise InvalidRequest.at(
@@ -79,6 +77,8 @@ def time_response(
             f"{steps + 1} samples of {len(asked)} observables found; at most {tol.MAX_RESPONSE_VALUES} values are "
             "held; observe less or choose a larger step_s",
         )
+    if topology.of_kind(*_SWITCHED).size:
+        return time_response_switching(network, stop_s, step_s, asked, initial, tolerance, sink=sink)
     generator = generator_of(topology, stop_s, step_s)
     space = model_of(topology, 1.0 / np.sqrt(step_s * stop_s))
     start = start_of(space, initial, generator.U @ generator.state(np.zeros(1))[0])
@@ -98,27 +98,6 @@ def time_response(
         findings=(*topology.findings, *start.findings),
         evidence=evidence,
     )
-
-
-def steps_of(stop_s: float, step_s: float) -> int:
-    """Return the number of steps; a stop that is no multiple of the step is refused with the two nearest."""
-    for field, value in (("stop_s", stop_s), ("step_s", step_s)):
-        if not (np.isfinite(value) and value > 0.0):
-            raise InvalidRequest.at(field, f"{value!r} s found; a finite time above 0 is expected")
-    ratio = stop_s / step_s
-    if not ratio <= tol.MAX_TIME_STEPS:
-        raise InvalidRequest.at(
-            "step_s", f"{ratio:.3g} steps found; at most {tol.MAX_TIME_STEPS} are allowed; choose a larger step_s"
-        )
-    steps = round(ratio)
-    if steps < 1 or abs(ratio - steps) > tol.GRID_MISFIT:
-        below = max(1, int(np.floor(ratio)))
-        raise InvalidRequest.at(
-            "stop_s",
-            f"{stop_s!r} s found; a multiple of step_s = {step_s!r} s is expected: {below * step_s!r} s or "
-            f"{(below + 1) * step_s!r} s",
-        )
-    return steps
 
 
 def _collect(run: Propagation, readout: Readout, columns: int, sink: RowSink | None) -> FloatArray:
