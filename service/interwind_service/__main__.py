@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import os
 import sys
+from typing import NoReturn
 
 
 def main() -> int:
@@ -16,14 +17,22 @@ def main() -> int:
             print(settings.to_json())
         if options.print_config or options.check_config:
             return 0
+        from interwind_service.workers.forking import start_forkserver
+
+        start_forkserver()
         from interwind_service.server.run import run
 
-        status = run(settings)
-        sys.stdout.flush()
-        os._exit(status)  # all is kept and said; threads that still wait for a starting worker must not hold us up
+        _leave(run(settings))
     except SettingsError as error:
         print(f"interwind-service: {error}", file=sys.stderr)
-        return 2
+        _leave(2)
+
+
+def _leave(status: int) -> NoReturn:
+    """End the process: all is kept and said, and threads that wait for a starting worker must not hold it up."""
+    sys.stdout.flush()
+    sys.stderr.flush()
+    os._exit(status)
 
 
 if __name__ == "__main__":

@@ -156,6 +156,8 @@ EQUILIBRATION_PASSES = 3
 SINGULAR_CONDITION = 1e15
 # One tree serves frequencies within this ratio; a chord is then at most so much larger than its tree branches.
 TREE_BAND = 2.0
+# Within a tight group a resistance this much above the least one is written apart; below, the sum loses three digits.
+RESISTANCE_SPREAD = 1e3
 # Complex numbers held at once by a stack of matrices: 64 MB.
 STACK_ENTRIES = 4_000_000
 # Imposed voltages round a loop, or currents into a part, that cancel to this share agree: some hundred roundings.

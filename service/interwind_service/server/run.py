@@ -95,6 +95,7 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
         address = open_door(server, settings)
     except RuntimeError as error:
         raise SettingsError(f"--listen: {settings.listen} cannot be bound; is another server there?") from error
+    pool.start()
     await server.start()
     for name in ("", *names):
         await health_servicer.set(name, health_pb2.HealthCheckResponse.SERVING)

@@ -9,8 +9,6 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
 
-import numpy as np  # noqa: F401  preloaded for the workers
-import scipy.linalg  # noqa: F401  preloaded for the workers
 from google.protobuf.message import DecodeError
 
 from interwind.codec.array import stored_arrays

@@ -9,8 +9,6 @@ from __future__ import annotations
 import heapq
 import itertools
 import logging
-import multiprocessing
-import os
 import threading
 import time
 from collections.abc import Callable
@@ -22,11 +20,10 @@ from typing import Any
 
 from interwind.errors import InterwindError, Unavailable, WorkerLost
 from interwind_service.tolerances import WORKER_LEAVE_S, WORKER_RESPAWN_PAUSE_S
+from interwind_service.workers.forking import start_forkserver
 from interwind_service.workers.process import Done, Guards, Note, Raised, serve
 
 logger = logging.getLogger("interwind_service")
-
-SINGLE_THREAD = ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS", "NUMEXPR_NUM_THREADS")
 
 
 class Priority(IntEnum):
@@ -90,10 +87,7 @@ class WorkerPool(Executor):
     """
 
     def __init__(self, count: int, *, guards: Guards) -> None:
-        for name in SINGLE_THREAD:
-            os.environ[name] = "1"  # before the forkserver starts: BLAS reads it once, at its import
-        self._context = multiprocessing.get_context("forkserver")
-        self._context.set_forkserver_preload(["interwind_service.workers.preload"])
+        self._context = start_forkserver()
         self._guards = guards
         self._queue: list[tuple[Priority, int, Job]] = []
         self._order = itertools.count()
@@ -107,6 +101,9 @@ class WorkerPool(Executor):
             threading.Thread(target=self._keep, args=(slot,), name=f"keeper-{slot}", daemon=True)
             for slot in range(count)
         ]
+
+    def start(self) -> None:
+        """Start the workers; what was queued before waits for them."""
         for keeper in self._keepers:
             keeper.start()
 
@@ -151,7 +148,7 @@ class WorkerPool(Executor):
             job.end(Unavailable("the server is stopping; send the call again to another one", reason="DRAINING"))
         if wait:
             end_s = time.monotonic() + WORKER_LEAVE_S
-            for keeper in self._keepers:
+            for keeper in filter(threading.Thread.is_alive, self._keepers):
                 keeper.join(max(0.0, end_s - time.monotonic()))
 
     def _take(self) -> Job | None:

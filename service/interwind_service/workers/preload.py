@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import atexit
 import importlib
 import os
 
@@ -13,12 +14,16 @@ MODULES = (
     "threadpoolctl",
     "interwind_service.workers.job",
     "interwind_service.windings.verdict",
+    "interwind_service.windings.repair",
+    "interwind_service.windings.identify",
+    "interwind_service.windings.characterize",
     "interwind_service.network.system",
     "interwind_service.response.frequency",
     "interwind_service.response.ports",
     "interwind_service.response.time",
 )
 
+atexit.register(os._exit, 0)  # the forkserver has nothing to tidy up; it leaves as soon as the server is gone
 _parent = os.getppid()
 for _name in MODULES:
     importlib.import_module(_name)
