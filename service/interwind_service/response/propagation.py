@@ -106,9 +106,11 @@ class Propagation:
         seen = np.vstack((*self._seen, self.end[None]))
         return seen[:: max(1, len(seen) // tol.TESTED_STATES)]
 
-    def peak_energy(self, energy: FloatArray) -> float:
-        """Return the largest ½ |energy y|² among those samples, ``energy`` (n, n + g)."""
-        return 0.5 * float(np.square(self.some_states() @ energy.T).sum(axis=1).max())
+    def peak_energy(self, energy: FloatArray, gramian: FloatArray) -> float:
+        """Return the largest ½ |energy y|², ``energy`` (n, n + g), among those samples, or its mean over the run."""
+        seen = float(np.square(self.some_states() @ energy.T).sum(axis=1).max())
+        mean = float(np.einsum("ka,ab,kb->", energy, gramian, energy)) / (self.steps * self.step_s)
+        return 0.5 * max(seen, mean)
 
     def _advance_chunk(self, first: int) -> FloatArray:
         blocks = min(self.chunk, -(-(self.steps - first) // self.block))
@@ -135,7 +137,7 @@ class Propagation:
                 break
             ends[shift:] += ends[:-shift] @ self.ladder.transition(self._chunk_bits - bit)[:n, :n].T
         y = np.hstack((ends[:-1], xi))
-        self._seen.append(y[:: max(1, blocks * self.block * tol.TESTED_STATES // self.steps)])
+        self._seen.append(y[:: max(1, self.steps // (self.block * tol.TESTED_STATES))])
 
         samples = np.empty((blocks, self.block, len(self.readout)))
         smooth = np.flatnonzero(~stepped)

@@ -17,12 +17,13 @@ from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology, number
 from interwind_service.response.flow import Flow, flow_of
 from interwind_service.response.generator import generator_of
-from interwind_service.response.initial import Start, start_of
+from interwind_service.response.initial import start_of
 from interwind_service.response.ledger import ledger_of
 from interwind_service.response.observe import resolve
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.propagation import Propagation
 from interwind_service.response.readout import Readout, readout_of
+from interwind_service.response.residual import equation_residual
 from interwind_service.response.state_space import StateSpace
 from interwind_service.response.switching import time_response_switching
 from interwind_service.response.time_model import model_of
@@ -87,8 +88,10 @@ def time_response(
     begin = flow.start(start.x, generator.state(np.zeros(1))[0])
     run = Propagation(flow, generator, begin, readout.rows @ flow.signals, step_s=step_s, steps=steps)
     samples = _collect(run, readout, len(asked), sink)
-    ledger = ledger_of(space, flow, generator, start, run.gramian(), run.end)
-    evidence = _evidence(topology, space, flow, run, start, ledger)
+    gramian = run.gramian()
+    ledger = ledger_of(space, flow, generator, start, gramian, run.end)
+    peak = max(start.stored_before_j, start.stored_after_j, run.peak_energy(flow.energy, gramian))
+    evidence = _evidence(topology, space, flow, run, ledger, peak)
     _require(evidence, tolerance)
     return TimeResponse(
         asked,
@@ -118,46 +121,16 @@ def _evidence(
     space: StateSpace,
     flow: Flow,
     run: Propagation,
-    start: Start,
     ledger: EnergyLedger,
+    peak_j: float,
 ) -> Evidence:
-    size = max(abs(ledger.supplied_j), start.stored_before_j, start.stored_after_j, run.peak_energy(flow.energy))
+    size = max(abs(ledger.supplied_j), peak_j)
     return Evidence(
         method="structural reduction, resolvent blocks, exact propagation",
-        residual=max(space.residual, equation_residual(topology, run, flow.signals)),
+        residual=max(space.residual, equation_residual(topology, flow.signals, flow.M, run.some_states(), space.shift)),
         condition=space.condition,
         energy_error=abs(ledger.numerical_j) / size if size > 0.0 else 0.0,
     )
-
-
-def equation_residual(topology: Topology, run: Propagation, signals: FloatArray) -> float:
-    """Return how far some samples miss the current law and the laws of storage, |b − A x| over |A| |x| + |b|."""
-    y = run.some_states()
-    branches = len(topology.kind)
-    value = signals @ y.T
-    slope = signals @ (run.ladder.matrix @ y.T)
-    voltage, current = value[:branches], value[branches : 2 * branches]
-    law, size = np.zeros((len(topology.nodes), len(y))), np.zeros((len(topology.nodes), len(y)))
-    for end, sign in ((topology.start, 1.0), (topology.finish, -1.0)):
-        np.add.at(law, end, sign * current)
-        np.add.at(size, end, np.abs(current))
-    worst = _share(law, size, current)
-    capacitors, inductors = topology.of_kind(Kind.CAPACITOR), topology.of_kind(Kind.INDUCTOR)
-    charging = topology.value[capacitors][:, None] * slope[capacitors]
-    worst = max(worst, _share(current[capacitors] - charging, np.abs(charging), current))
-    induced = topology.value[inductors][:, None] * slope[branches + inductors]
-    worst = max(worst, _share(voltage[inductors] - induced, np.abs(induced), voltage))
-    for group in topology.groups:
-        v, i, di = voltage[group.branches], current[group.branches], slope[branches + group.branches]
-        R, L = group.resistance_ohm, group.inductance_h
-        size = np.abs(v) + np.abs(R) @ np.abs(i) + np.abs(L) @ np.abs(di)
-        worst = max(worst, _share(v - R @ i - L @ di, size, voltage))
-    return worst
-
-
-def _share(gap: FloatArray, terms: FloatArray, right: FloatArray) -> float:
-    largest = float(terms.max(initial=0.0)) + float(np.abs(right).max(initial=0.0))
-    return float(np.abs(gap).max(initial=0.0)) / largest if largest > 0.0 else 0.0
 
 
 def _require(evidence: Evidence, tolerance: float) -> None:
