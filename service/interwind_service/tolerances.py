@@ -345,7 +345,6 @@ WORKER_RESPAWN_PAUSE_S = 0.2  # between tries to start a process when the system
 WORKER_LEAVE_S = 0.3  # a stopping server waits so long for its workers; they see its end by themselves
 INLINE_ANSWER_BYTES = 64 * 1024  # below this a file costs more than the pipe (measured: 0.4 ms against 0.3 ms)
 MAX_REQUEST_BYTES = 4 * 2**20  # what every gRPC library sends and takes unasked; larger arrays go through PutArray
-MAX_FRAME_BYTES = 2 * 2**20  # largest response message, half of what every client library takes unasked
 MAX_ARRAY_PART_BYTES = 2**20  # one part of an array: the chunk size at which Python streams fastest
 MAX_SIZE_HEADER_BYTES = 64  # five varints and their keys
 DEFAULT_QUEUE_PER_WORKER = 4  # waiting calls a worker: with calls of a second, nobody waits longer than a few
@@ -365,13 +364,16 @@ RETRY_AFTER_FLOOR_S = 0.1  # shortest wait asked of a refused caller
 RETRY_AFTER_CEILING_S = 5.0  # longest wait asked of a refused caller; load changes faster than that
 DEFAULT_GRACE_S = 10.0  # a drain waits so long for running calls, below the 30 s service supervisors allow
 HANDSHAKE_TIMEOUT_MS = 5_000  # a connection that says nothing is closed
+MAX_CONNECTION_AGE_MS = 1_800_000  # after that a client connects anew, and so finds servers that were added
 MAX_CONNECTION_IDLE_MS = 300_000  # a connection without calls is closed; clients reconnect by themselves
 KEEPALIVE_MIN_INTERVAL_MS = 30_000  # the client pings every 60 s while it has calls; twice as often is tolerated
 MAX_CONCURRENT_STREAMS = 256  # calls a connection may have open at once
+CALL_MEAN_WEIGHT = 0.1  # weight of the newest call in the running mean of call seconds
 FIRST_CALL_S = 1.0  # what a call is taken to last before any was measured
 ESTIMATE_MATRICES = (
     6  # dense complex copies a solve holds at once: matrix, factor, right sides, scratch, two of headroom
 )
+UNSTATED_BYTES = 64 * 2**20  # what a request may cost beyond its stated size: enough to type small ones by hand
 ESTIMATE_COPIES = 4  # copies of a request in flight: received, piped, parsed, decoded
 LOG_QUEUE_LINES = 10_000  # lines that may wait for a slow reader of stderr; later ones are counted and dropped
 TOKEN_RELOAD_INTERVAL_S = 1.0  # how often the token file is looked at, at most

@@ -7,6 +7,7 @@ current as an unknown (Ho, Ruehli & Brennan 1975).
 from __future__ import annotations
 
 import mpmath as mp
+
 from interwind.model import elements as el
 from interwind.model.network import Network, element_nodes
 
@@ -118,7 +119,7 @@ class Reference:
 
 
 def _eliminate(A, b):
-    """Gaussian elimination with row scaling and partial pivoting on sparse rows; a vanished pivot column means singular."""
+    """Gaussian elimination with row scaling and pivoting on sparse rows; a column without pivot means singular."""
     n = A.rows
     rows = []
     for i in range(n):

@@ -1,8 +1,10 @@
-"""Random networks of every linear element, seeded: value ranges of twelve decades, loops, cut-sets, perfect coupling, islands."""
+"""Random networks of every linear element, seeded: twelve decades, loops, cut-sets, perfect coupling, islands."""
+# ruff: noqa: E501  (a case a line reads best)
 
 from __future__ import annotations
 
 import numpy as np
+
 from interwind.model import elements as el
 from interwind.model.network import Network, Port
 from interwind.model.windings import WindingSet
@@ -86,10 +88,14 @@ def random_network(seed: int, spread: str = "wide", *, active: bool = False, los
         elements.append(el.CurrentByVoltage("G", a, b, (c, d), float(10 ** rng.uniform(-4, -1))))
         elements.append(el.VoltageByVoltage("E", "e", main[0], (c, d), float(10 ** rng.uniform(-1, 2))))
         elements.append(el.Resistor("RE", "e", main[-1], draw("R")))
-        passive = [x.name for x in elements if isinstance(x, el.Resistor | el.Capacitor | el.Inductor | el.VoltageSource)]
+        passive = [
+            x.name for x in elements if isinstance(x, el.Resistor | el.Capacitor | el.Inductor | el.VoltageSource)
+        ]
         a, b = (str(x) for x in rng.choice(main, 2, replace=False))
         elements.append(el.CurrentByCurrent("F", a, b, str(rng.choice(passive)), float(10 ** rng.uniform(-1, 1))))
-        elements.append(el.VoltageByCurrent("H", "h", main[0], str(rng.choice(passive)), float(10 ** rng.uniform(0, 3))))
+        elements.append(
+            el.VoltageByCurrent("H", "h", main[0], str(rng.choice(passive)), float(10 ** rng.uniform(0, 3)))
+        )
         elements.append(el.Resistor("RH", "h", main[-1], draw("R")))
     order = rng.permutation(len(elements))
     shuffled = [elements[k] for k in order]

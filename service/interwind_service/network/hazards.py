@@ -96,8 +96,9 @@ def _open_current_transformers(topology: Topology) -> list[Caution]:
                         Caution(
                             "OPEN_CURRENT_TRANSFORMER_SECONDARY",
                             f"Winding {group.labels[i]} of {group.name} stands open, or can be opened, while the "
-                            f"current of {group.labels[j]} is forced. Never open the secondary of an energised current "
-                            "transformer: it answers with lethal voltage and may explode. Short it first (IEC 61869-1).",
+                            f"current of {group.labels[j]} is forced. Never open the secondary of an energised "
+                            "current transformer: it answers with lethal voltage and may explode. Short it first "
+                            "(IEC 61869-1).",
                             measured=float(ratio),
                             threshold=tol.CURRENT_TRANSFORMER_RATIO,
                         )

@@ -11,25 +11,58 @@ Mutual inductance stands only in C.
 
 from __future__ import annotations
 
+from collections.abc import Callable
+from typing import Any
+
 import numpy as np
 from numpy.typing import NDArray
+from scipy import sparse
 
 from interwind_service.network.groups import WindingGroup
 
 FloatArray = NDArray[np.float64]
 
 
+class Triplets:
+    """A matrix that only grows: what is added is kept as (row, column, value) until it is made sparse."""
+
+    def __init__(self, shape: tuple[int, int]) -> None:
+        self._shape = shape
+        self._rows: list[FloatArray] = []
+        self._columns: list[FloatArray] = []
+        self._values: list[FloatArray] = []
+
+    def __getitem__(self, place: Any) -> float:
+        return 0.0  # so that m[row, column] += value hands over value alone
+
+    def __setitem__(self, place: Any, value: Any) -> None:
+        rows, columns, values = np.broadcast_arrays(*place, value)
+        self._rows.append(rows.ravel())
+        self._columns.append(columns.ravel())
+        self._values.append(np.array(values, dtype=np.float64).ravel())
+
+    def sparse(self) -> sparse.csc_matrix:
+        """Return the matrix, entries of the same place summed."""
+        if not self._rows:
+            return sparse.csc_matrix(self._shape)
+        rows, columns = np.concatenate(self._rows), np.concatenate(self._columns)
+        return sparse.csc_matrix((np.concatenate(self._values), (rows, columns)), shape=self._shape)
+
+
 class Stamps:
-    """G (m, m), C (m, m), B (m, inputs) while they are written; a row of −1 is a zero node and takes nothing."""
+    """G (m, m), C (m, m), B (m, inputs) while they are written; a row of −1 is a zero node and takes nothing.
 
-    def __init__(self, size: int, inputs: int) -> None:
-        self.G, self.C, self.B = np.zeros((size, size)), np.zeros((size, size)), np.zeros((size, inputs))
+    ``matrix`` makes G and C: dense zeros, or `Triplets` for networks that are sparse.
+    """
 
-    def _add(self, matrix: FloatArray, row: int, column: int, value: float) -> None:
+    def __init__(self, size: int, inputs: int, matrix: Callable[[tuple[int, int]], Any] = np.zeros) -> None:
+        self.G, self.C, self.B = matrix((size, size)), matrix((size, size)), np.zeros((size, inputs))
+
+    def _add(self, matrix: Any, row: int, column: int, value: float) -> None:
         if row >= 0 and column >= 0:
             matrix[row, column] += value
 
-    def _between(self, matrix: FloatArray, a: int, b: int, value: float) -> None:
+    def _between(self, matrix: Any, a: int, b: int, value: float) -> None:
         for row, column, sign in ((a, a, 1.0), (b, b, 1.0), (a, b, -1.0), (b, a, -1.0)):
             self._add(matrix, row, column, sign * value)
 

@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
+
 import numpy as np
+from numpy.typing import NDArray
 
 from interwind.errors import InvalidNetwork
 from interwind.model import elements as el
@@ -44,15 +47,42 @@ def stamp(network: Network) -> MnaSystem:
         An element without a linear stamp, or more unknowns than dense matrices are given for.
     """
     topology = number(network)
-    resistance = _resistances(topology)
-    rows, currents, unknowns = _unknowns(topology, resistance)
-    if len(unknowns) > tol.DENSE_UNKNOWNS:
+    plan = plan_of(topology)
+    if len(plan.unknowns) > tol.DENSE_UNKNOWNS:
         raise InvalidNetwork.at(
             "elements",
-            f"{len(unknowns)} unknowns found; dense matrices are given up to {tol.DENSE_UNKNOWNS}; ask for a response "
-            "instead",
+            f"{len(plan.unknowns)} unknowns found; dense matrices are given up to {tol.DENSE_UNKNOWNS}; ask for a "
+            "response instead",
         )
-    stamps = Stamps(len(unknowns), len(topology.inputs))
+    stamps = assemble(topology, plan, Stamps(len(plan.unknowns), len(topology.inputs)))
+    return MnaSystem(
+        stamps.G, stamps.C, stamps.B, plan.unknowns, topology.inputs, topology.findings, hazards(topology),
+        evidence=Evidence(method="modified nodal analysis"),
+    )  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Plan:
+    """Where everything stands: ``rows`` (nodes + 1,) of node voltages, −1 for zero nodes; ``currents`` by branch;
+    ``resistance_ohm`` of resistors and switches by branch; ``unknowns`` in row order.
+    """
+
+    rows: NDArray[np.int64]
+    currents: dict[int, int]
+    resistance_ohm: dict[int, float]
+    unknowns: tuple[Observable, ...]
+
+
+def plan_of(topology: Topology) -> Plan:
+    """Number the unknowns of a network; an element without a linear stamp is refused."""
+    resistance = _resistances(topology)
+    rows, currents, unknowns = _unknowns(topology, resistance)
+    return Plan(rows, currents, resistance, tuple(unknowns))
+
+
+def assemble(topology: Topology, plan: Plan, stamps: Stamps) -> Stamps:
+    """Let every element write its stamp."""
+    rows, currents, resistance = plan.rows, plan.currents, plan.resistance_ohm
     a, b = rows[topology.start].tolist(), rows[topology.finish].tolist()
     column = {int(branch): k for k, branch in enumerate(topology.input_branch)}
     for k in range(len(topology.kind)):
@@ -77,10 +107,7 @@ def stamp(network: Network) -> MnaSystem:
         else:
             gain = -control.gain if k in currents else control.gain
             stamps.current_by_current(a[k], b[k], currents[control.sensed], gain)
-    return MnaSystem(
-        stamps.G, stamps.C, stamps.B, tuple(unknowns), topology.inputs, topology.findings, hazards(topology),
-        evidence=Evidence(method="modified nodal analysis"),
-    )  # fmt: skip
+    return stamps
 
 
 def _resistances(topology: Topology) -> dict[int, float]:

@@ -43,8 +43,8 @@ def _touchable(stress: Stress) -> list[Caution]:
     return [
         Caution(
             "TOUCHABLE_VOLTAGE",
-            f"Node {node!r} reaches {volt:.4g} V, above {safe:g} V ({count} in all do); such a voltage {grade}. Keep it "
-            "out of reach, disconnect and prove dead before touching; IEC 62368-1 or the standard of the equipment "
+            f"Node {node!r} reaches {volt:.4g} V, above {safe:g} V ({count} in all do); such a voltage {grade}. Keep "
+            "it out of reach, disconnect and prove dead before touching; IEC 62368-1 or the standard of the equipment "
             "decides what may be touched.",
             measured=volt,
             threshold=safe,

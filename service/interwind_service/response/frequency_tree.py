@@ -8,7 +8,8 @@ with, and no voltage appears as a difference of node voltages. The equations are
     M(s) z + J u = 0,   M(s) = M0 + s M1 + M2 / s,   z = (v_T, y, i),
 
 y the coordinates of the winding groups, i the currents of imposed voltages, ideal transformers and controlled sources,
-u the drives: voltages of sources, currents of sources, currents into ports.
+u the drives: voltages of sources, currents of sources, currents into ports. In a tight group whose resistances differ
+by orders, i also holds the drop e of each large one, e/R = N_w y, which would swamp the others in Nᵀ R N.
 
 References: Bryant 1962 (fundamental cut-sets); Stewart 1989 and Vavasis 1994 (stable methods for the weighted problem).
 """
@@ -20,6 +21,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from interwind_service import tolerances as tol
 from interwind_service.network.forest import components, path_matrix, spanning_forest
 from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import WindingCoordinates
@@ -135,10 +137,12 @@ def frequency_tree(
     for branch in [*imposing, *(t.first for t in topology.transformers), *(c.branch for c in topology.controls)]:
         current[branch] = len(columns)
         columns.append(int(branch))
+    apart = _apart(topology, coordinates)
+    columns += [int(topology.groups[g].branches[w]) for g, w in apart]
     known = np.array([k for k, branch in enumerate(tree.tolist()) if role[branch] == Role.VOLTAGE], dtype=np.int64)
     imposed = np.array([[float(d.branch == branch) for d in drives] for branch in imposing])
     imposed = imposed.reshape(len(imposing), len(drives))
-    equations = _Equations(topology, coordinates, roles, drives, Q, paths, groups, current, len(columns))
+    equations = _Equations(topology, coordinates, roles, drives, Q, paths, groups, current, apart, len(columns))
     M, J = equations.write(imposing)
     return FrequencyTree(
         topology, coordinates, roles, drives, tree, Q, paths, component, M, J, known, imposed,
@@ -162,6 +166,17 @@ def _order(topology: Topology, roles: Roles, omega: float) -> list[int]:
     return [int(k) for k in order[conducts[order]]]
 
 
+def _apart(topology: Topology, coordinates: tuple[WindingCoordinates, ...]) -> list[tuple[int, int]]:
+    """Return (group, winding) of the resistances that are written apart: those well above the least of their group."""
+    apart = []
+    for g, (group, own) in enumerate(zip(topology.groups, coordinates, strict=True)):
+        plain = np.count_nonzero(group.resistance_ohm) == np.count_nonzero(group.resistance_ohm.diagonal())
+        if plain and np.count_nonzero(own.N) > group.size:
+            weight = group.resistance_ohm.diagonal() * np.abs(own.N).max(axis=1) ** 2
+            apart += [(g, int(w)) for w in np.flatnonzero(weight > tol.RESISTANCE_SPREAD * weight.min())]
+    return apart
+
+
 def _place(topology: Topology, branch: int) -> tuple[int, int]:
     for k, group in enumerate(topology.groups):
         if group.branches[0] <= branch <= group.branches[-1]:
@@ -182,10 +197,12 @@ class _Equations:
         paths: FloatArray,
         groups: list[slice],
         current: IntArray,
+        apart: list[tuple[int, int]],
         columns: int,
     ) -> None:
         self.topology, self.coordinates, self.roles, self.drives = topology, coordinates, roles, drives
         self.Q, self.paths, self.groups, self.current, self.columns = Q, paths, groups, current, columns
+        self.apart = apart
 
     def write(self, imposing: list[int]) -> tuple[tuple[FloatArray, FloatArray, FloatArray], FloatArray]:
         Q, roles, T = self.Q, self.roles, len(self.Q)
@@ -195,11 +212,7 @@ class _Equations:
         for target, value in ((M0, roles.conductance), (M1, roles.capacitance), (M2, roles.reciprocal_inductance)):
             part = value != 0.0
             target[:T, :T] = (Q[:, part] * value[part]) @ Q[:, part].T
-        for group, where, own in zip(self.topology.groups, self.groups, self.coordinates, strict=True):
-            cuts = Q[:, group.branches] @ own.N
-            M0[:T, where], M0[where, :T] = cuts, -cuts.T
-            M0[where, where] = own.N.T @ group.resistance_ohm @ own.N
-            M1[where, where] = own.S
+        self._write_groups(M0, M1)
         for branch in imposing:
             M0[:T, self.current[branch]] = Q[:, branch]
         row = self.groups[-1].stop if self.groups else T
@@ -223,6 +236,20 @@ class _Equations:
                 self._subtract_current(control.sensed, control.gain, row, (M0, M1, M2), J)
             row += 1
         return (M0, M1, M2), J
+
+    def _write_groups(self, M0: FloatArray, M1: FloatArray) -> None:
+        T, own_row, own_column = len(self.Q), len(M0) - len(self.apart), self.columns - len(self.apart)
+        for g, (group, where, own) in enumerate(zip(self.topology.groups, self.groups, self.coordinates, strict=True)):
+            cuts = self.Q[:, group.branches] @ own.N
+            M0[:T, where], M0[where, :T] = cuts, -cuts.T
+            resistance = group.resistance_ohm
+            for w in [w for one, w in self.apart if one == g]:
+                resistance = resistance * (np.arange(group.size) != w)
+                M0[where, own_column], M0[own_row, where] = own.N[w], -own.N[w]
+                M0[own_row, own_column] = 1.0 / group.resistance_ohm[w, w]
+                own_row, own_column = own_row + 1, own_column + 1
+            M0[where, where] = own.N.T @ resistance @ own.N
+            M1[where, where] = own.S
 
     def _subtract_current(
         self, branch: int, gain: float, row: int, M: tuple[FloatArray, FloatArray, FloatArray], J: FloatArray

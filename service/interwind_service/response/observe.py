@@ -10,7 +10,6 @@ from numpy.typing import NDArray
 from interwind.errors import InvalidNetwork, InvalidRequest, field_path
 from interwind.model import observables as ob
 from interwind.model.elements import Windings
-from interwind_service.network.groups import WindingGroup
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
 from interwind_service.response.phasors import Phasors
@@ -88,8 +87,8 @@ def evaluate(phasors: Phasors, item: ob.Observable) -> ComplexArray:
             (_energy(phasors, k) for k in _units(topology, item.name)), np.zeros(len(phasors.omega), np.complex128)
         )
     if isinstance(item, ob.FluxLinkage):
-        group, currents = _group(phasors, item.name)
-        return currents @ group.inductance_h[group.labels.index(item.label)]
+        place = _group(topology, item.name)
+        return phasors.flux_linkages(place)[:, topology.groups[place].labels.index(item.label)]
     if isinstance(item, ob.WindingVoltage | ob.WindingCurrent):
         branch = topology.winding(item.name, item.label)
         return phasors.voltage(branch) if isinstance(item, ob.WindingVoltage) else phasors.current(branch)
@@ -102,18 +101,19 @@ def _units(topology: Topology, name: str) -> list[int]:
     return branches[:1] if topology.kind[branches[0]] == Kind.WINDING else branches
 
 
-def _group(phasors: Phasors, name: str) -> tuple[WindingGroup, ComplexArray]:
-    group = next(g for g in phasors.topology.groups if g.name == name)
-    return group, np.stack([phasors.current(int(k)) for k in group.branches], axis=1)
+def _group(topology: Topology, name: str) -> int:
+    return next(k for k, group in enumerate(topology.groups) if group.name == name)
 
 
 def _power(phasors: Phasors, branch: int) -> ComplexArray:
     topology, kind = phasors.topology, phasors.topology.kind[branch]
     value = topology.value[branch]
     if kind == Kind.WINDING:
-        group, i = _group(phasors, topology.names[branch])
-        loss = np.einsum("fi,ij,fj->f", i.conj(), group.resistance_ohm, i)
-        return 0.5 * (loss + 1j * phasors.omega * np.einsum("fi,ij,fj->f", i.conj(), group.inductance_h, i))
+        place = _group(topology, topology.names[branch])
+        group = topology.groups[place]
+        i = np.stack([phasors.current(int(k)) for k in group.branches], axis=1)
+        loss = np.einsum("fi,fi->f", i.conj(), i @ group.resistance_ohm)
+        return 0.5 * (loss + 1j * phasors.omega * phasors.field(place))
     if kind == Kind.RESISTOR:
         return 0.5 * value * np.abs(phasors.current(branch)) ** 2 + 0j
     if kind == Kind.INDUCTOR:
@@ -127,8 +127,7 @@ def _energy(phasors: Phasors, branch: int) -> ComplexArray:
     topology, kind = phasors.topology, phasors.topology.kind[branch]
     value = topology.value[branch]
     if kind == Kind.WINDING:
-        group, i = _group(phasors, topology.names[branch])
-        return 0.25 * np.einsum("fi,ij,fj->f", i.conj(), group.inductance_h, i)
+        return 0.25 * phasors.field(_group(topology, topology.names[branch])) + 0j
     if kind == Kind.INDUCTOR:
         return 0.25 * value * np.abs(phasors.current(branch)) ** 2 + 0j
     if kind == Kind.CAPACITOR:

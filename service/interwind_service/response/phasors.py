@@ -47,6 +47,16 @@ class Phasors:
             return np.full(len(self.omega), np.nan, dtype=np.complex128)
         return self.tree.branch_current(branch, self._z, self._s, self._u)
 
+    def field(self, group: int) -> FloatArray:
+        """Return iᴴ L i of a winding group, in the coordinates that keep its leakage."""
+        y = self._z[:, self.tree.groups[group]]
+        return np.einsum("fi,fi->f", y.conj(), y @ self.tree.coordinates[group].S).real
+
+    def flux_linkages(self, group: int) -> ComplexArray:
+        """Return L i of a winding group, shape (f, n): the solution of Nᵀ λ = S y."""
+        own = self.tree.coordinates[group]
+        return np.linalg.solve(own.N.T, own.S @ self._z[:, self.tree.groups[group]].T).T
+
     def node_peaks(self) -> FloatArray:
         """Return the largest magnitude of each node voltage against its zero, shape (nodes,); NaN without a zero."""
         paths = self.tree.paths - self.tree.paths[self.topology.parts.reference[self.topology.parts.of_node]]
@@ -74,9 +84,8 @@ class StressGauge:
         for k in self._topology.of_kind(Kind.INDUCTOR).tolist():
             energy = 0.5 * self._topology.value[k] * np.abs(phasors.current(k)) ** 2
             self._keep(self._topology.names[k], energy)
-        for group in self._topology.groups:
-            i = np.stack([phasors.current(int(k)) for k in group.branches], axis=1)
-            self._keep(group.name, 0.5 * np.einsum("fi,fi->f", i.conj(), i @ group.inductance_h).real)
+        for k, group in enumerate(self._topology.groups):
+            self._keep(group.name, 0.5 * phasors.field(k))
 
     def stress(self) -> Stress:
         """Return the largest magnitudes found."""
