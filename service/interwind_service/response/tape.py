@@ -137,7 +137,7 @@ class Program:
         place: dict[int, FloatArray] = {omega.index: values}
         self._inputs = [np.empty((rows, 1)) for _ in inputs]
         place |= {node.index: array for node, array in zip(inputs, self._inputs, strict=True)}
-        self._steps: list[tuple[Any, tuple[Any, ...]]] = []
+        self._steps: list[tuple[Any, tuple[Any, ...], FloatArray]] = []
         free: dict[tuple[int, ...], list[FloatArray]] = {}
         own: set[int] = set()  # nodes whose place is a register
         for index in sorted(last):
@@ -157,7 +157,7 @@ class Program:
             stock = free.setdefault(shape, [])
             place[index] = stock.pop() if stock else np.empty(shape)
             own.add(index)
-            self._steps.append((function, (*arrays, place[index])))
+            self._steps.append((function, tuple(arrays), place[index]))
             for operand in done:
                 if place[operand].shape != shape:
                     free.setdefault(place[operand].shape, []).append(place[operand])
@@ -172,8 +172,8 @@ class Program:
         for array, column in zip(self._inputs, columns, strict=True):
             array[: len(column)] = column
             array[len(column) :] = column[0]
-        for function, arrays in self._steps:
-            function(*arrays)
+        for function, arrays, out in self._steps:
+            function(*arrays, out=out)
         return self._outputs
 
 
