@@ -197,12 +197,21 @@ STACK_UNKNOWNS = 40
 # Systems of a block: the arrays of a step then stay in the second-level cache.
 STACK_BLOCK = 8192
 
+# From this many nodes and branches on, networks of small winding groups are solved by sparse factors of the nodal matrix.
+SPARSE_UNKNOWNS = 3000
+# Coupled pairs an unknown up to which a network counts as sparse: windings in groups of up to some twenty.
+SPARSE_COUPLING = 20
+# A residual above this is more than the rounding of one sparse solve, and worth a refinement.
+SPARSE_REFINED_RESIDUAL = 1e-15
+
 # --- response: time -------------------------------------------------------------------------------------------------
 
-# Below this 1-norm the Taylor series of e^X needs no halving; at 0.5 degree 14 leaves 2e-17.
-EXPONENTIAL_BASE_NORM = 0.5
-# Terms of that series: 0.5^15 / 15! is below the unit roundoff.
-EXPONENTIAL_TAYLOR_DEGREE = 14
+# Below this 1-norm the Taylor series of e^X needs no halving. Rungs are cheaper than terms where many states advance.
+EXPONENTIAL_BASE_NORM = 2.0**-7
+# Terms of that series: 2^-49 / 7! = 4e-19 is below the unit roundoff.
+EXPONENTIAL_TAYLOR_DEGREE = 6
+# Points of Gauss's rule for the integral of a product of two such series: its error is 1e-17.
+EXPONENTIAL_GAUSS_POINTS = 3
 # Structural pivots are sums of 0, +1, -1 and products of turns ratios: accepted ones exceed 1e-4, rejected ones are 0.
 STRUCTURAL_PIVOT = 1e-9
 # Among pivots within this share of the largest the storage of least energy is made the dependent one.
@@ -219,11 +228,15 @@ BAND_LEAD = 1e1
 FORCED_CURRENT_ROUNDING = 1e-12
 # Entries of the observability matrix of one block, 4 MB: it stays in the cache while all blocks pass by.
 BLOCK_ENTRIES = 2**19
-# Steps of a block, as powers of two: fewer than 8 cost calls, more than 256 cost the walk through blocks with events.
+# Steps of a block, as powers of two: fewer than 8 cost calls, more than 256 bring nothing.
 LEAST_BLOCK_BITS = 3
 MOST_BLOCK_BITS = 8
-# Samples computed at once, 2 MB: what one chunk holds is bounded, whatever the length of the run.
-CHUNK_ENTRIES = 2**18
+# The same where events are dense: all blocks of a chunk take a step together, so few steps and many blocks are best.
+WALKED_BLOCK_BITS = 5
+# More events than one in so many steps count as dense.
+SPARSE_EVENTS = 256
+# Samples computed at once, 4 MB: what one chunk holds is bounded, whatever the length of the run.
+CHUNK_ENTRIES = 2**19
 # Default for the energy error and the residual of a time response (contract of the call).
 TIME_TOLERANCE = 1e-6
 # Stop over step may miss a whole number by this much: the rounding of decimal times, never a misread grid.

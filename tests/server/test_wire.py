@@ -111,5 +111,5 @@ def test_every_call_is_one_line_of_json(service, client, order):
     wait_until(lambda: bool(lines()), 2)
     line = lines()[-1]
 
-    assert {"time", "level", "duration_s", "peer", "client", "id", "bytes_in", "queue_s", "work_s"} <= set(line)
+    assert {"time", "level", "duration_s", "peer", "client", "id", "bytes_in", "queue_s", "solve_s"} <= set(line)
     assert "visible_label" not in service.log_text()

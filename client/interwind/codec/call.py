@@ -56,6 +56,13 @@ def size_of_network(network: Network) -> dict[str, int]:
     }
 
 
+def column_count(network: Network, observe: Any) -> int:
+    """Return how many columns an answer has: what is observed, else all node voltages and winding currents."""
+    if observe:
+        return len(observe)
+    return len(network.nodes) + sum(item.windings.size for item in network.elements if isinstance(item, Windings))
+
+
 def point_count(stop_s: float, step_s: float) -> int:
     """Return about how many samples a run has, for admission; 0 where the numbers make no sense."""
     ratio = stop_s / step_s if step_s > 0 and stop_s >= 0 else 0.0

@@ -6,7 +6,7 @@ from typing import Any
 
 from interwind.codec import response as responses
 from interwind.codec.array import array_from_message, array_to_message
-from interwind.codec.call import Arguments, Call, point_count, size_of_network
+from interwind.codec.call import Arguments, Call, column_count, point_count, size_of_network
 from interwind.codec.network import network_from_message, network_to_message
 from interwind.codec.observable import (
     observable_from_message,
@@ -39,7 +39,7 @@ def _frequency_request(arguments: Arguments) -> Any:
     message = response_service_pb2.ComputeFrequencyResponseRequest(
         size=response_pb2.Size(
             point_count=0 if frequency_hz is None else frequency_hz.size,
-            observable_count=len(observe),
+            observable_count=column_count(network, observe),
             **size_of_network(network),
         ),
         network=network_to_message(network),
@@ -75,7 +75,7 @@ def _ports_request(arguments: Arguments) -> Any:
     frequency_hz = frozen_vector(_at_least_1d(arguments["frequency_hz"]), "frequency_hz")
     return response_service_pb2.ComputePortResponseRequest(
         size=response_pb2.Size(
-            point_count=frequency_hz.size, observable_count=len(network.ports) ** 2, **size_of_network(network)
+            point_count=frequency_hz.size, observable_count=3 * len(network.ports) ** 2, **size_of_network(network)
         ),
         network=network_to_message(network),
         frequency_hz=array_to_message(frequency_hz),
@@ -93,7 +93,9 @@ def _time_request(arguments: Arguments) -> Any:
     stop_s, step_s = float(arguments["stop_s"]), float(arguments["step_s"])
     message = response_service_pb2.ComputeTimeResponseRequest(
         size=response_pb2.Size(
-            point_count=point_count(stop_s, step_s), observable_count=len(observe), **size_of_network(network)
+            point_count=point_count(stop_s, step_s),
+            observable_count=column_count(network, observe),
+            **size_of_network(network),
         ),
         network=network_to_message(network),
         stop_s=stop_s,
@@ -144,7 +146,9 @@ def _periodic_request(arguments: Arguments) -> Any:
     period_s, step_s = float(arguments["period_s"]), float(arguments["step_s"])
     return response_service_pb2.ComputePeriodicResponseRequest(
         size=response_pb2.Size(
-            point_count=point_count(period_s, step_s), observable_count=len(observe), **size_of_network(network)
+            point_count=point_count(period_s, step_s),
+            observable_count=column_count(network, observe),
+            **size_of_network(network),
         ),
         network=network_to_message(network),
         period_s=period_s,

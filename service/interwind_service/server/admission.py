@@ -8,9 +8,7 @@ from collections import Counter
 from dataclasses import dataclass
 
 from interwind.errors import InvalidRequest, Overloaded, Unavailable
-from interwind_service.tolerances import FIRST_CALL_S, RETRY_AFTER_CEILING_S, RETRY_AFTER_FLOOR_S
-
-SMOOTHING = 0.1  # weight of the newest call in the running mean of call seconds
+from interwind_service.tolerances import CALL_MEAN_WEIGHT, FIRST_CALL_S, RETRY_AFTER_CEILING_S, RETRY_AFTER_FLOOR_S
 
 
 @dataclass(slots=True)
@@ -81,7 +79,7 @@ class Admission:
         self.computing -= 1
         self.reserved_bytes += result_bytes - ticket.compute_bytes - ticket.result_bytes
         ticket.result_bytes = result_bytes
-        self._mean_s += SMOOTHING * (time.monotonic() - ticket.entered_s - self._mean_s)
+        self._mean_s += CALL_MEAN_WEIGHT * (time.monotonic() - ticket.entered_s - self._mean_s)
 
     def leave(self, ticket: Ticket) -> None:
         """Give back all that the call still holds."""

@@ -26,9 +26,10 @@ from interwind_service.server.admission import Admission
 from interwind_service.server.batch_room import BatchRoom
 from interwind_service.server.batch_work import plan_submission, summary_frames
 from interwind_service.server.boundary import Call, Rpc
-from interwind_service.server.limits import compute_bytes, read_size, size_header
+from interwind_service.server.limits import read_size, size_header
 from interwind_service.tolerances import BATCH_PAGE_LIMIT, BATCH_PAGE_SIZE, MAX_ARRAY_PART_BYTES
 from interwind_service.workers.arrays import ArrayFolder
+from interwind_service.workers.estimate import compute_bytes
 from interwind_service.workers.pool import WorkerPool
 
 SERVICE = "/interwind.v1.BatchService/"

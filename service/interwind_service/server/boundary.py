@@ -13,7 +13,7 @@ import time
 import uuid
 from collections.abc import AsyncIterator, Awaitable, Callable
 from dataclasses import dataclass, field
-from typing import Any
+from typing import Any, Protocol
 
 import grpc
 from google.rpc import status_pb2
@@ -56,13 +56,23 @@ class Rpc:
     streaming: bool = False
 
 
-class Boundary:
-    """Wraps handlers. ``on_call`` hears of every ended call: (rpc, code name, seconds)."""
+class Listener(Protocol):
+    """Hears of calls as they begin and end."""
 
-    def __init__(self, *, max_timeout_s: float, client_of: Callable[[Any], str], on_call: Callable[..., None]) -> None:
+    def begun(self, rpc: Rpc) -> None:
+        """A call arrived."""
+
+    def ended(self, rpc: Rpc, code: str, seconds: float, log: dict[str, object]) -> None:
+        """It ended with this code after so many seconds; ``log`` holds what its handler measured."""
+
+
+class Boundary:
+    """Wraps handlers; ``metrics`` hears of every call."""
+
+    def __init__(self, *, max_timeout_s: float, client_of: Callable[[Any], str], metrics: Listener) -> None:
         self._max_timeout_s = max_timeout_s
         self._client_of = client_of
-        self._on_call = on_call
+        self._metrics = metrics
 
     def method_handler(self, rpc: Rpc) -> grpc.RpcMethodHandler:
         """Return what grpc registers: raw bytes in, raw bytes out."""
@@ -85,7 +95,8 @@ class Boundary:
         timeout_s = self._max_timeout_s if remaining is None else min(remaining, self._max_timeout_s)
         call = Call(rpc.method, self._client_of(context), timeout_s)
         started_s = time.monotonic()
-        status, reason, incident = b"", "", None
+        status, reason = b"", ""
+        self._metrics.begun(rpc)
         code = "CANCELLED"  # what it is when nothing below gets to say otherwise
         try:
             await context.send_initial_metadata((VERSION_HEADER,))
@@ -111,7 +122,7 @@ class Boundary:
                 packed = status_pb2.Status.FromString(status)
                 code = CODES[packed.code].name
             seconds = time.monotonic() - started_s
-            self._on_call(rpc, code, seconds)
+            self._metrics.ended(rpc, code, seconds, call.log)
             emit(
                 "call", method=rpc.method, code=code, reason=reason, duration_s=round(seconds, 6), peer=context.peer(),
                 client=call.client, id=call.id, bytes_in=len(request), **call.log,

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import asyncio
 import os
-import time
 from collections.abc import AsyncIterator
 from pathlib import Path
 from typing import Any
@@ -12,8 +11,9 @@ from typing import Any
 from interwind.errors import Cancelled
 from interwind_service.server.admission import Admission
 from interwind_service.server.boundary import Call, PackedError
-from interwind_service.server.limits import compute_bytes, read_size, result_bytes, size_header
+from interwind_service.server.limits import read_size, size_header
 from interwind_service.workers.arrays import ArrayFolder
+from interwind_service.workers.estimate import compute_bytes, result_bytes
 from interwind_service.workers.job import CallAnswer, CallWork, Early, run_call
 from interwind_service.workers.pool import Job, WorkerPool
 from interwind_service.workers.spool import Spooled, SpoolReader
@@ -76,13 +76,13 @@ def _answer(job: Job, call: Call) -> CallAnswer:
         raise job.reason or Cancelled("the call was withdrawn")
     if job.started_s is not None:
         call.log["queue_s"] = round(job.started_s - job.submitted_s, 6)
-        call.log["work_s"] = round(time.monotonic() - job.started_s, 6)
     error = job.exception()
     if error is not None:
         if job.trace:
             error.add_note(job.trace)
         raise error
     answer: CallAnswer = job.result()
+    call.log["solve_s"] = round(answer.solve_s, 6)
     if answer.status:
         if answer.trace:
             call.log["trace"] = answer.trace

@@ -12,18 +12,24 @@ from interwind_service.tolerances import (
     HANDSHAKE_TIMEOUT_MS,
     KEEPALIVE_MIN_INTERVAL_MS,
     MAX_CONCURRENT_STREAMS,
+    MAX_CONNECTION_AGE_MS,
     MAX_CONNECTION_IDLE_MS,
     MAX_REQUEST_BYTES,
 )
 
-CHANNEL_OPTIONS: list[tuple[str, Any]] = [
-    ("grpc.max_receive_message_length", MAX_REQUEST_BYTES),
-    ("grpc.so_reuseport", 0),  # otherwise a second server on the same port silently takes half of the connections
-    ("grpc.server_handshake_timeout_ms", HANDSHAKE_TIMEOUT_MS),
-    ("grpc.max_connection_idle_ms", MAX_CONNECTION_IDLE_MS),
-    ("grpc.http2.min_recv_ping_interval_without_data_ms", KEEPALIVE_MIN_INTERVAL_MS),
-    ("grpc.max_concurrent_streams", MAX_CONCURRENT_STREAMS),
-]
+
+def channel_options(settings: Settings) -> list[tuple[str, Any]]:
+    """Return the limits of a connection. Its age never cuts a call that is allowed to last."""
+    return [
+        ("grpc.max_receive_message_length", MAX_REQUEST_BYTES),
+        ("grpc.so_reuseport", 0),  # otherwise a second server on the same port silently takes half of the connections
+        ("grpc.server_handshake_timeout_ms", HANDSHAKE_TIMEOUT_MS),
+        ("grpc.max_connection_idle_ms", MAX_CONNECTION_IDLE_MS),
+        ("grpc.max_connection_age_ms", MAX_CONNECTION_AGE_MS),
+        ("grpc.max_connection_age_grace_ms", round(settings.max_timeout_s * 1000)),
+        ("grpc.http2.min_recv_ping_interval_without_data_ms", KEEPALIVE_MIN_INTERVAL_MS),
+        ("grpc.max_concurrent_streams", MAX_CONCURRENT_STREAMS),
+    ]
 
 
 def open_door(server: grpc.aio.Server, settings: Settings) -> str:

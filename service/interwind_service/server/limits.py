@@ -1,4 +1,4 @@
-"""How large a call is, read from its first bytes alone, and how much memory that will take."""
+"""How large a call is, read from its first bytes alone."""
 
 from __future__ import annotations
 
@@ -6,12 +6,7 @@ from google.protobuf.message import DecodeError
 
 from interwind.errors import InvalidRequest
 from interwind.v1 import response_pb2
-from interwind_service.tolerances import (
-    ESTIMATE_COPIES,
-    ESTIMATE_MATRICES,
-    MAX_SIZE_HEADER_BYTES,
-    MAX_WINDINGS,
-)
+from interwind_service.tolerances import MAX_SIZE_HEADER_BYTES, MAX_WINDINGS
 
 SIZE_KEY = 0x0A  # field 1, length-delimited: how every request of a compute call begins
 
@@ -39,14 +34,3 @@ def read_size(header: bytes) -> response_pb2.Size:
             reason="TOO_LARGE",
         )  # fmt: skip
     return size
-
-
-def result_bytes(size: response_pb2.Size) -> int:
-    """Return the bytes of the answer: complex columns over points."""
-    return 16 * (size.observable_count + 1) * size.point_count
-
-
-def compute_bytes(size: response_pb2.Size, request_bytes: int) -> int:
-    """Return the bytes a worker needs: 16 m² a dense complex matrix, times the copies a solve holds, and the result."""
-    largest = max(size.winding_count, size.unknown_count)
-    return ESTIMATE_MATRICES * 16 * largest**2 + ESTIMATE_COPIES * request_bytes + result_bytes(size)

@@ -23,13 +23,15 @@ from interwind_service.server.arrays import ArrayDoor
 from interwind_service.server.auth import TokenGate, Tokens, client_of
 from interwind_service.server.batch_room import BatchRoom, batch_room
 from interwind_service.server.batches import BatchDoor
-from interwind_service.server.boundary import Boundary, Rpc
+from interwind_service.server.boundary import Boundary
 from interwind_service.server.compute import Compute, remove_spools_of_the_dead
-from interwind_service.server.doors import CHANNEL_OPTIONS, open_door
+from interwind_service.server.doors import channel_options, open_door
 from interwind_service.server.info import Info
 from interwind_service.server.logs import configure, emit
+from interwind_service.server.metrics import Metrics
 from interwind_service.server.servicers import generic_handlers, rpcs, service_names
 from interwind_service.server.settings import Settings, SettingsError
+from interwind_service.server.supervisor import say_alive, tell
 from interwind_service.tolerances import PARENT_POLL_S, WORKER_BASE_ADDRESS_BYTES
 from interwind_service.version import SERVICE_VERSION
 from interwind_service.workers.arrays import ArrayFolder
@@ -83,8 +85,9 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
         Info(settings=settings, pool=pool, admission=admission),
     )
     gates = [TokenGate(Tokens(settings.token_file))] if settings.token_file else []
-    server = grpc.aio.server(options=CHANNEL_OPTIONS, interceptors=gates)
-    boundary = Boundary(max_timeout_s=settings.max_timeout_s, client_of=client_of, on_call=_count)
+    server = grpc.aio.server(options=channel_options(settings), interceptors=gates)
+    metrics = Metrics(pool=pool, admission=admission)
+    boundary = Boundary(max_timeout_s=settings.max_timeout_s, client_of=client_of, metrics=metrics)
     server.add_generic_rpc_handlers(generic_handlers(table, boundary))
     names = service_names(table)
     health_servicer = health.aio.HealthServicer()
@@ -95,22 +98,24 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
         address = open_door(server, settings)
     except RuntimeError as error:
         raise SettingsError(f"--listen: {settings.listen} cannot be bound; is another server there?") from error
+    if settings.metrics_listen:
+        metrics.serve(settings.metrics_listen)
     pool.start()
     await server.start()
     for name in ("", *names):
         await health_servicer.set(name, health_pb2.HealthCheckResponse.SERVING)
+    alive = asyncio.create_task(say_alive())
+    tell("READY=1")
     try:
         yield address
     finally:
+        tell("STOPPING=1")
+        alive.cancel()
         emit("draining", grace_s=settings.grace_s)
         admission.draining = True
         await asyncio.to_thread(batches.runner.stop)
         await health_servicer.enter_graceful_shutdown()
         await server.stop(settings.grace_s)
-
-
-def _count(rpc: Rpc, code: str, seconds: float) -> None:
-    """Hear of every ended call."""
 
 
 async def _until(stop: asyncio.Event, parent_pid: int) -> None:

@@ -20,6 +20,7 @@ from interwind_service import engine
 from interwind_service.progress import listening
 from interwind_service.tolerances import SPOOL_FULL_RETRY_S
 from interwind_service.workers.arrays import ArrayFolder
+from interwind_service.workers.estimate import check_size
 from interwind_service.workers.spool import SpoolWriter
 
 
@@ -60,9 +61,14 @@ def run_call(work: CallWork, *, notify: Callable[[Any], None]) -> CallAnswer:
     started_s = time.monotonic()
     try:
         message = _parse(call.request_class, work.request)
-        _same_size(message, work.size_header)
+        sized = "size" in message.DESCRIPTOR.fields_by_name
+        if sized and type(message.size).FromString(work.size_header) != message.size:
+            raise InvalidRequest.at("size", "it is not the first field, or stands twice; send one size, first")
         with stored_arrays(work.arrays), listening(_teller(call, notify)):
-            result = getattr(engine, call.engine)(**call.decode(message))
+            arguments = call.decode(message)
+            if sized:
+                check_size(message.size, arguments)
+            result = getattr(engine, call.engine)(**arguments)
             for response in call.encode(result):
                 spool.write(response.SerializeToString())
     except InterwindError as error:
@@ -105,11 +111,3 @@ def _parse(message_class: Any, data: bytes) -> Any:
             f"the bytes are no {message_class.DESCRIPTOR.full_name}; regenerate the caller from the published contract",
             reason="MALFORMED_MESSAGE",
         ) from error
-
-
-def _same_size(message: Any, size_header: bytes) -> None:
-    """Refuse a request that was admitted by another size than the one it carries."""
-    if not any(field.name == "size" for field in message.DESCRIPTOR.fields):
-        return
-    if type(message.size).FromString(size_header) != message.size:
-        raise InvalidRequest.at("size", "it does not stand first, or stands twice; send one size, as the first field")

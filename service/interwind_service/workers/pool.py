@@ -11,6 +11,7 @@ import itertools
 import logging
 import threading
 import time
+from collections import Counter
 from collections.abc import Callable
 from concurrent.futures import Executor, Future
 from enum import IntEnum
@@ -95,7 +96,7 @@ class WorkerPool(Executor):
         self._spawning = threading.Lock()
         self._closing = False
         self.count = count
-        self.restarts = 0
+        self.restarts: Counter[str] = Counter()
         self._current: dict[int, Job] = {}
         self._keepers = [
             threading.Thread(target=self._keep, args=(slot,), name=f"keeper-{slot}", daemon=True)
@@ -163,7 +164,7 @@ class WorkerPool(Executor):
         process, pipe = self._spawn()
         while (job := self._take()) is not None:
             if not process.is_alive():  # it died while idle: nobody's call is lost
-                process, pipe = self._replace(process, pipe)
+                process, pipe = self._replace(process, pipe, "died idle")
             if not job.begin(process):
                 continue
             self._current[slot] = job
@@ -176,7 +177,7 @@ class WorkerPool(Executor):
                 process.join()
                 lost = WorkerLost("the worker that computed this call died; send the call again", retry_after_s=0.0)
                 exit_code = process.exitcode
-                process, pipe = self._replace(process, pipe)
+                process, pipe = self._replace(process, pipe, reason.reason.lower() if reason else "lost")
                 lost.metadata["exit_code"] = str(exit_code)
                 job.set_exception(reason or lost)
             elif isinstance(reply, Raised):
@@ -187,11 +188,11 @@ class WorkerPool(Executor):
         pipe.close()  # the worker sees the end of the pipe and leaves
         process.join()
 
-    def _replace(self, process: BaseProcess, pipe: Connection) -> tuple[BaseProcess, Connection]:
+    def _replace(self, process: BaseProcess, pipe: Connection, reason: str) -> tuple[BaseProcess, Connection]:
         pipe.close()
         process.join()
         process.close()
-        self.restarts += 1
+        self.restarts[reason] += 1
         return self._spawn()
 
     def _spawn(self) -> tuple[BaseProcess, Connection]:
