@@ -62,7 +62,7 @@ COMPLETION_GAP = 1e-10
 # The barrier is centred when the Newton decrement is below this: the gap is then within a few per cent of n mu.
 BARRIER_DECREMENT = 1e-2
 # Factor of the barrier parameter between centrings; a shorter one takes fewer steps each and more centrings.
-BARRIER_SHRINK = 0.2
+BARRIER_SHRINK = 0.01
 # A centring that takes more Newton steps than this is stalled by rounding; the next one starts from where it is.
 BARRIER_STEPS = 40
 # Newton steps solve one dense system in the unknown pairs; 300 of them take some seconds.
@@ -129,6 +129,8 @@ SAME_RESIDUAL = 1e-6
 EDGE_GAIN = 1e-6
 # Readings left out in turn where some contradict: a fit each, some ten milliseconds.
 READINGS_LEFT_OUT = 60
+# Without the wrong reading a fit settles in 10 to 20 steps; one that does not still holds it.
+LEFT_OUT_STEPS = 30
 # A reading this near to a known slip (side, unit, factor two) of what the others say is told as that slip.
 SLIP_RATIO = 1.1
 # Next reading. Each candidate is taken to be read to one per cent; a gain of less than five per cent is none.
