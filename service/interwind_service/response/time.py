@@ -14,7 +14,8 @@ from interwind.model.observables import Observable
 from interwind.model.response import EnergyLedger, Initial, TimeResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
-from interwind_service.network.topology import Topology, number
+from interwind_service.network.topology import Topology
+from interwind_service.response.admit import admit
 from interwind_service.response.flow import Flow, flow_of
 from interwind_service.response.generator import generator_of
 from interwind_service.response.initial import start_of
@@ -64,13 +65,14 @@ def time_response(
     Raises
     ------
     InvalidRequest : a grid, an initial value or an observable that does not fit, before memory is taken.
+    InvalidWindings : a winding set cannot exist.
     InvalidNetwork : the network has no unique solution.
     AccuracyNotReached : the energy ledger does not close to ``tolerance``, or the equations are not met to it.
     """
     steps = steps_of(stop_s, step_s)
     if not (np.isfinite(tolerance) and tolerance > 0.0):
         raise InvalidRequest.at("tolerance", f"{tolerance!r} found; a finite number above 0 is expected")
-    topology = number(network)
+    topology = admit(network)
     asked = resolve(topology, observe)
     if sink is None and (steps + 1) * len(asked) > tol.MAX_RESPONSE_VALUES:
         raise InvalidRequest.at(
