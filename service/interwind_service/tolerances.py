@@ -62,13 +62,15 @@ COMPLETION_GAP = 1e-10
 # The barrier is centred when the Newton decrement is below this: the gap is then within a few per cent of n mu.
 BARRIER_DECREMENT = 1e-2
 # Factor of the barrier parameter between centrings; a shorter one takes fewer steps each and more centrings.
-BARRIER_SHRINK = 0.01
+BARRIER_SHRINK = 0.1
 # A centring that takes more Newton steps than this is stalled by rounding; the next one starts from where it is.
 BARRIER_STEPS = 40
-# Newton steps solve one dense system in the unknown pairs; 300 of them take some seconds.
-COMPLETION_UNKNOWNS = 300
+# Newton steps solve one dense system in the unknown pairs; fifty steps with 1000 of them take some seconds.
+COMPLETION_UNKNOWNS = 1000
 # Intervals over every completion of a loose pattern take two barrier solutions a pair: below a second up to here.
-COMPLETION_INTERVAL_WINDINGS = 8
+COMPLETION_INTERVAL_WINDINGS = 10
+# Beyond that, only pairs the certificate weighs most are tried as culprits: cubes of unknown pairs worked through.
+COMPLETION_CULPRIT_WORK = 1e6
 
 # Completion. Newton decrement at which log det is within its square, 1e-20, of the largest.
 COMPLETION_DECREMENT = 1e-10

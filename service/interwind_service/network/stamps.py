@@ -28,25 +28,26 @@ class Triplets:
 
     def __init__(self, shape: tuple[int, int]) -> None:
         self._shape = shape
-        self._rows: list[FloatArray] = []
-        self._columns: list[FloatArray] = []
-        self._values: list[FloatArray] = []
+        self._single: list[tuple[int, int, float]] = []
+        self._blocks: list[tuple[FloatArray, FloatArray, FloatArray]] = []
 
     def __getitem__(self, place: Any) -> float:
         return 0.0  # so that m[row, column] += value hands over value alone
 
     def __setitem__(self, place: Any, value: Any) -> None:
-        rows, columns, values = np.broadcast_arrays(*place, value)
-        self._rows.append(rows.ravel())
-        self._columns.append(columns.ravel())
-        self._values.append(np.array(values, dtype=np.float64).ravel())
+        if isinstance(value, float):
+            self._single.append((*place, value))
+        else:
+            rows, columns, values = np.broadcast_arrays(*place, value)
+            self._blocks.append((rows.ravel(), columns.ravel(), values.ravel()))
 
     def sparse(self) -> sparse.csc_matrix:
         """Return the matrix, entries of the same place summed."""
-        if not self._rows:
-            return sparse.csc_matrix(self._shape)
-        rows, columns = np.concatenate(self._rows), np.concatenate(self._columns)
-        return sparse.csc_matrix((np.concatenate(self._values), (rows, columns)), shape=self._shape)
+        single = np.array(self._single, dtype=np.float64).reshape(-1, 3)
+        rows, columns, values = (
+            np.concatenate([part, *(block[k] for block in self._blocks)]) for k, part in enumerate(single.T)
+        )
+        return sparse.csc_matrix((values, (rows.astype(np.int64), columns.astype(np.int64))), shape=self._shape)
 
 
 class Stamps:
