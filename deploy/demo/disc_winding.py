@@ -17,6 +17,7 @@ COUNT = len(DATA["disc_inductance_h"])
 NODES = ["line", *(f"n{number}" for number in range(1, COUNT)), "ground"]
 INNER = [iw.NodeVoltage(node) for node in NODES[1:-1]]
 FULL_WAVE_V = 750e3  # what 1 p.u. stands for in the picture
+PATIENCE_S = 120.0  # a busy machine takes a multiple of the usual seconds
 RUN_S = 150e-6  # within it the deepest swing below zero and the largest disc current of the golden run
 KEPT_NEIGHBOURS = 5
 
@@ -67,7 +68,7 @@ def show(solver: iw.Client, figures: Figures, output: Path) -> None:
 
 def show_modes(solver: iw.Client, net: iw.Network, figures: Figures, output: Path) -> iw.FrequencyResponse:
     """Find the first modes: around each peak of a sweep, one pole is fitted to the responses of all nodes."""
-    sweep = solver.frequency_response(net, frequency_hz=np.arange(20e3, 320e3, 250.0), observe=INNER)
+    sweep = solver.frequency_response(net, np.arange(20e3, 320e3, 250.0), observe=INNER, timeout_s=PATIENCE_S)
     height = np.linalg.norm(sweep.samples, axis=1)
     peaks = np.flatnonzero((height[1:-1] > height[:-2]) & (height[1:-1] > height[2:])) + 1
     around_hz = np.linspace(-500.0, 500.0, 9)

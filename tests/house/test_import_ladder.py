@@ -23,7 +23,7 @@ SERVICE: dict[str, tuple[set[str], set[str]]] = {
     "batch": (GROUND | {"engine", "workers"}, LANGUAGE),
     "server": (GROUND | {"engine", "workers", "batch"}, LANGUAGE | {"codec", "v1"}),
     "testing": (set(), set()),
-    "__main__": ({"server"}, set()),
+    "__main__": ({"workers", "server"}, set()),
     "": (set(), set()),
 }
 CLIENT: dict[str, set[str]] = {
