@@ -40,7 +40,8 @@ class RunningService:
         line = self._first_line()
         if not line:
             self.stop(signal.SIGKILL)
-            raise RuntimeError(f"the server did not start: {self.log_text()}")
+            with self._log:
+                raise RuntimeError(f"the server did not start: {self.log_text()}")
         self.address: str = json.loads(line)["listening"]
 
     def __enter__(self) -> RunningService:

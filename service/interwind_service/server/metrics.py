@@ -45,13 +45,14 @@ class Metrics:
         if isinstance(log.get("solve_s"), float):
             self._solve.labels(labels[2]).observe(cast(float, log["solve_s"]))
 
-    def serve(self, address: str) -> None:
-        """Answer scrapes on ``address`` from a thread of its own, as long as the process lives."""
+    def serve(self, address: str) -> str:
+        """Answer scrapes on ``address`` from a thread of its own; return the address with the port that was found."""
         host, port = split_address(address, "--metrics-listen")
         try:
-            start_http_server(port, host, registry=self.registry)
+            server, _ = start_http_server(port, host, registry=self.registry)
         except OSError as error:
             raise SettingsError(f"--metrics-listen: {address} cannot be bound: {error.strerror}") from error
+        return f"{host}:{server.server_port}"
 
 
 class _State:

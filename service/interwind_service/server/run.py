@@ -99,7 +99,7 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
     except RuntimeError as error:
         raise SettingsError(f"--listen: {settings.listen} cannot be bound; is another server there?") from error
     if settings.metrics_listen:
-        metrics.serve(settings.metrics_listen)
+        emit("metrics", metrics=metrics.serve(settings.metrics_listen))
     pool.start()
     await server.start()
     for name in ("", *names):
