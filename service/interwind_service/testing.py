@@ -41,7 +41,9 @@ class RunningService:
         if not line:
             self.stop(signal.SIGKILL)
             with self._log:
-                raise RuntimeError(f"the server did not start: {self.log_text()}")
+                told = self.log_text()
+            self._log.close()
+            raise RuntimeError(f"the server did not start: {told}")
         self.address: str = json.loads(line)["listening"]
 
     def __enter__(self) -> RunningService:
