@@ -1,5 +1,4 @@
 """Random networks of every linear element, seeded: twelve decades, loops, cut-sets, perfect coupling, islands."""
-# ruff: noqa: E501  (a case a line reads best)
 
 from __future__ import annotations
 

@@ -220,6 +220,6 @@ def _controls(
                     f"{element.control!r} has {len(sensed)} windings; sense a voltage source of 0 V in series instead",
                 )
             if sensed[0] == branch:
-                raise InvalidRequest.at(field, f"{element.control!r} found, the source itself; name the element it senses")
+                raise InvalidRequest.at(field, f"{element.control!r} found, the source itself; name what it senses")
             controls.append(Control(branch, gain, -1, -1, sensed[0]))
     return tuple(controls)

@@ -30,7 +30,7 @@ class Solutions:
 
 
 def solve(A: ComplexArray, b: ComplexArray) -> Solutions:
-    """Solve A x = b for stacks A (f, n, n) and b (f, n, m), both real or both complex: equilibrate, factor, refine once.
+    """Solve A x = b for stacks A (f, n, n) and b (f, n, m), both real or complex: equilibrate, factor, refine once.
 
     References: Ruiz 2001 (equilibration); Skeel 1980 (one refinement in working precision); Higham 2002, chapter 15.
     """
