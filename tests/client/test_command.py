@@ -117,6 +117,38 @@ def test_a_run_over_time_is_a_table(run, tmp_path):
     assert (tmp_path / "run.png").read_bytes().startswith(b"\x89PNG")
 
 
+def test_a_batch_is_a_table_of_variants(run):
+    """One row a variant and point; a variant that cannot exist is a row with its reason, and no failure."""
+    column = {
+        "coupling": {
+            "windings_name": "T1",
+            "label_a": "drive",
+            "label_b": "rail",
+            "values": {"values": {"values": [0.5, 1.5]}},
+        }
+    }
+    request = {"network": NETWORK, "frequency": {"frequency_hz": SWEEP["frequency_hz"]}, "columns": [column]}
+    status, out, _ = run("batch", request)
+    rows = list(csv.DictReader(io.StringIO(out)))
+    assert 0 == status
+    assert ["OK", "OK", "INVALID", "INVALID"] == [row["status"] for row in rows]
+    assert ["0", "0", "1", "1"] == [row["variant"] for row in rows]
+    assert rows[2]["reason"]
+    assert "nan" == rows[2]["node_voltage out real"]
+
+
+def test_repair_prints_every_change(run):
+    """The mended coupling of an impossible set is among the named values."""
+    k = [1.0, 0.9, -0.9, 0.9, 1.0, 0.9, -0.9, 0.9, 1.0]
+    form = {
+        "self_inductance_h": {"values": {"values": [1.0, 1.0, 1.0]}},
+        "coupling": {"shape": [3, 3], "values": {"values": k}},
+    }
+    status, out, _ = run("repair", {"windings": {"labels": ["a", "b", "c"], "coupling_form": form}})
+    assert 0 == status
+    assert any(line.startswith("changes[0].after ") for line in out.splitlines())
+
+
 def test_cautions_go_to_standard_error(run):
     """What was noticed is told beside the data, never among it."""
     _, out, err = run("frequency", SWEEP)

@@ -11,6 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind.codec.observable import observable_heading
+from interwind.model.batch import BatchResult
 from interwind.model.finding import Caution, Evidence, Finding
 from interwind.model.response import PortResponse
 
@@ -21,6 +22,8 @@ MATRICES = ("impedance_ohm", "admittance_s", "scattering")
 
 def columns_of(answer: Any) -> Columns:
     """Return the columns of a response, its axis first: ``time_s``, ``node_voltage out``; empty for other answers."""
+    if isinstance(answer, BatchResult):
+        return _rows_of(answer)
     axis = next((name for name in AXES if hasattr(answer, name)), None)
     if axis is None:
         return {}
@@ -33,6 +36,20 @@ def columns_of(answer: Any) -> Columns:
                     columns[f"{name} {into} {driven}"] = matrix[:, row, column]
     else:
         columns |= {observable_heading(observable): answer[observable] for observable in answer}
+    return columns
+
+
+def _rows_of(batch: BatchResult) -> Columns:
+    """Return a batch as one row a variant and point: variant, status, reason, point, then its columns."""
+    variants, points = len(batch.status), len(batch.points)
+    columns: Columns = {
+        "variant": np.repeat(np.arange(variants), points),
+        "status": np.repeat(np.array([status.name for status in batch.status]), points),
+        "reason": np.repeat(np.array(batch.reason, dtype=np.str_), points),
+        "point": np.tile(batch.points, variants),
+    }
+    for key, table in batch.table.items():
+        columns[key if isinstance(key, str) else observable_heading(key)] = table.reshape(-1)
     return columns
 
 

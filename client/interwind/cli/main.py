@@ -15,11 +15,14 @@ from google.rpc import code_pb2
 import interwind
 from interwind.cli.columns import noticed_in
 from interwind.cli.output import check_ending, write
+from interwind.codec.batch import Submission, submission_from_message
 from interwind.codec.calls import BY_ENGINE
 from interwind.codec.json import message_from_json
 from interwind.errors import InterwindError, InvalidRequest, Unavailable
+from interwind.model.batch import VariantStatus
+from interwind.v1 import batch_service_pb2
 
-USAGE, REFUSED, INTERRUPTED = 2, 64, 130
+FAILED, USAGE, REFUSED, INTERRUPTED = 1, 2, 64, 130
 HEALTH_TIMEOUT_S = 5.0
 
 # Each command that takes a request: the call it makes, and what it does in words.
@@ -29,6 +32,7 @@ REQUESTS = {
     "frequency": ("frequency_response", "solve a network over frequency"),
     "time": ("time_response", "solve a network over time"),
     "periodic": ("periodic_response", "find the periodic steady state of a network"),
+    "batch": ("submit_batch", "compute many variants of one network and wait for all of them"),
 }
 
 
@@ -58,21 +62,24 @@ def main(arguments: Sequence[str] | None = None) -> int:
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
     except (OSError, InvalidRequest) as error:
         return _say(f"interwind: {error}", USAGE)
-    return 0
+    failed = isinstance(answer, interwind.BatchResult) and VariantStatus.FAILED in answer.status
+    return FAILED if failed else 0
 
 
 def _parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
         prog="interwind",
         description="Judge windings and solve the networks they stand in.",
-        epilog="Exit status: 0 answered, 2 the command or its file cannot be understood, 64 + n the service refused "
-        "with gRPC status n, 130 interrupted. INTERWIND_ADDRESS names the service; without it one is started.",
+        epilog="Exit status: 0 answered, 1 a variant of a batch failed, 2 the command or its file cannot be "
+        "understood, 64 + n the service refused with gRPC status n, 130 interrupted. INTERWIND_ADDRESS names the "
+        "service; without it one is started.",
     )
     commands = parser.add_subparsers(dest="command", required=True, metavar="COMMAND")
     for name, (_, purpose) in REQUESTS.items():
         command = commands.add_parser(name, help=purpose, description=purpose[0].upper() + purpose[1:] + ".")
         command.add_argument("file", metavar="FILE", help="the request as JSON, fields as in the contract; - = stdin")
-        command.add_argument("--timeout-s", type=float, default=30.0, help="time allowed for the call (default 30)")
+        allowed = "for the batch (default: as long as it takes)" if name == "batch" else "for the call (default 30)"
+        command.add_argument("--timeout-s", type=float, help=f"seconds allowed {allowed}")
         command.add_argument("--plot", metavar="FILE.png", help="draw the answer into this file, too")
         _add_common(command)
     for name, purpose in (("health", "say whether the service serves"), ("info", "show versions, limits and workers")):
@@ -96,14 +103,25 @@ def _read(options: argparse.Namespace) -> Callable[[interwind.Client], Any]:
         return _health
     if options.command == "info":
         return lambda solver: solver.server_info()
-    method = REQUESTS[options.command][0]
     text = sys.stdin.read() if options.file == "-" else Path(options.file).read_text(encoding="utf-8")
+    extra: dict[str, Any] = {} if options.timeout_s is None else {"timeout_s": options.timeout_s}
+    shown: dict[str, Any] = {"progress": _show_progress} if sys.stderr.isatty() else {}
+    if options.command == "batch":
+        submission = submission_from_message(message_from_json(batch_service_pb2.SubmitBatchRequest(), text))
+        return lambda solver: _batch(solver, submission, extra | shown)
+    method = REQUESTS[options.command][0]
     call = BY_ENGINE[method]
     subject, *others = call.decode(message_from_json(call.request_class(), text)).items()
-    extra = dict(others) | {"timeout_s": options.timeout_s}
-    if call.streaming and sys.stderr.isatty():
-        extra["progress"] = _show_progress
+    extra |= dict(others) | (shown if call.streaming else {})
     return lambda solver: getattr(solver, method)(subject[1], **extra)
+
+
+def _batch(solver: interwind.Client, submission: Submission, waiting: dict[str, Any]) -> interwind.BatchResult:
+    batch = solver.submit_batch(
+        submission.network, submission.analysis, submission.columns, submission.request_id or None
+    )
+    _say(f"batch {batch.id}")
+    return batch.result(**waiting)
 
 
 @dataclass(frozen=True, slots=True)

@@ -14,10 +14,12 @@ from typing import Any
 
 import numpy as np
 
-from interwind.cli.columns import columns_of, real_columns, values_of
+from interwind.cli.columns import MATRICES, columns_of, real_columns, values_of
 from interwind.errors import InvalidRequest
 
 ENDINGS = (".npz", ".csv", ".json")
+# Fields that the columns of an answer show already.
+BEHIND_COLUMNS = ("samples", "observables", *MATRICES, "points", "table")
 
 
 def write(answer: Any, output: str | None, *, as_json: bool) -> None:
@@ -49,8 +51,7 @@ def csv_text(answer: Any, *, separator: str = ",") -> str:
     else:
         rows = csv.writer(lines, lineterminator="\n", delimiter=separator)
         for name, value in values_of(answer):
-            many = isinstance(value, np.ndarray | tuple | list)
-            rows.writerow([name, *(np.asarray(value).tolist() if many else [value])])
+            rows.writerow([name, *np.atleast_1d(value).tolist()])
     return lines.getvalue()
 
 
@@ -61,7 +62,7 @@ def json_text(answer: Any) -> str:
     columns = columns_of(answer)
     content: dict[str, Any] = {heading: column for heading, column in columns.items()}
     for field in dataclasses.fields(answer):
-        if field.name not in (*columns, "samples", "observables", "impedance_ohm", "admittance_s", "scattering"):
+        if field.name not in (*columns, *BEHIND_COLUMNS):
             content[field.name] = getattr(answer, field.name)
     return json.dumps(_plain(content), indent=2, allow_nan=False) + "\n"
 
