@@ -48,7 +48,7 @@ def characterize(
     _require_possible(windings)
     findings: list[Finding] = []
     coils, sharing = windings, ()
-    frequency = frozen_vector(frequency_hz, "frequency_hz")
+    frequency = frozen_vector(() if frequency_hz is None else frequency_hz, "frequency_hz")
     if len(frequency) and not any(isinstance(c, InParallel) for c in connections):
         raise InvalidRequest.at(
             "frequency_hz", "given, but no windings are connected in parallel: name them, or leave it out"
