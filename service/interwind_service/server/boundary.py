@@ -80,7 +80,9 @@ class Boundary:
 
             async def one(request: bytes, context: Any) -> bytes:
                 answers: list[bytes] = []
-                await self._run(rpc, request, context, lambda call: _collect(rpc.handler(request, call), answers))
+                await self._run(
+                    rpc, request, context, lambda call: _collect(rpc.handler(request, call), context, answers)
+                )
                 return answers[0]
 
             return grpc.unary_unary_rpc_method_handler(one)
@@ -99,7 +101,6 @@ class Boundary:
         self._metrics.begun(rpc)
         code = "CANCELLED"  # what it is when nothing below gets to say otherwise
         try:
-            await context.send_initial_metadata((VERSION_HEADER,))
             async with asyncio.timeout(timeout_s):
                 await work(call)
             code = "OK"
@@ -150,19 +151,22 @@ def _retry_info(value: bytes) -> float:
     return float(delay.seconds) + delay.nanos / 1e9
 
 
-async def _collect(answer: Any, answers: list[bytes]) -> None:
+async def _collect(answer: Any, context: Any, answers: list[bytes]) -> None:
     if isinstance(answer, AsyncIterator):
         async with contextlib.aclosing(answer) as parts:  # type: ignore[type-var]
             async for part in parts:
                 answers.append(part)
     else:
         answers.append(await answer)
+    await context.send_initial_metadata((VERSION_HEADER,))
 
 
 async def _write(parts: Any, context: Any, call: Call) -> None:
     sent = 0
     async with contextlib.aclosing(parts):
         async for part in parts:
+            if not sent:  # not before there is an answer: a client may retry by itself until it has heard something
+                await context.send_initial_metadata((VERSION_HEADER,))
             sent += len(part)
             call.log["bytes_out"] = sent
             await context.write(part)
