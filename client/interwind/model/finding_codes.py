@@ -137,6 +137,91 @@ _WINDINGS = {
     ),
 }
 
+_REPAIR = {
+    "NOTHING_TO_REPAIR": FindingCode(
+        "The set can exist as it stands, so nothing was changed.",
+        "Nothing; if a value still looks wrong, check says what these data cannot show.",
+    ),
+    "PAIR_DISTRUSTED": FindingCode(
+        "One pair contradicts the others; it was set to the value of largest determinant and the rest left alone.",
+        "Measure that pair again by a short-circuit test, and put the reading in its place.",
+    ),
+    "PAIR_COMPLETED": FindingCode(
+        "A pair was not known and took the value of largest determinant that the known pairs speak for.",
+        "Measure the pair when a leakage depends on it; its feasible interval tells how much is left open.",
+    ),
+    "COMPLETED_WITHOUT_EVIDENCE": FindingCode(
+        "No chain of known pairs links the two windings; zero is the completion, but nothing speaks for it.",
+        "Measure the pair.",
+    ),
+    "CHANGE_BEYOND_UNCERTAINTY": FindingCode(
+        "The repair moved a coupling by more than two of its stated deviations.",
+        "Measure that pair again; the stated uncertainty or the value is wrong.",
+    ),
+    "LEAKAGE_MOVED": FindingCode(
+        "The repair changed a leakage by more than a tenth.",
+        "Compare the leakage with a short-circuit test before using the repaired set.",
+    ),
+    "FLOOR_DECIDES_LEAKAGE": FindingCode(
+        "The nearest set lies on the edge of what is possible: an all-shorted leakage follows from the floor alone.",
+        "Prefer COMPLETION, raise the floor to what physics assures, or measure the leakage.",
+    ),
+}
+
+_READINGS = {
+    "READING_CORRECTED": FindingCode(
+        "A reading was cleaned of capacitance, parallel form or the resistance of the short before it was used.",
+        "Read again inside the usable window named, when the correction matters.",
+    ),
+    "POLARITY_NOT_READ": FindingCode(
+        "No reading links the polarity of some windings; their starts are taken for the dotted ends.",
+        "Take one series reading, aiding against opposing, or one voltage ratio with its sign.",
+    ),
+    "OUTLIER": FindingCode(
+        "One reading contradicts the others by more than chance explains.",
+        "Take the reading again; the message names the slip that would explain it, when there is one.",
+    ),
+    "READINGS_CONTRADICT": FindingCode(
+        "The readings contradict each other and nothing tells which of them is wrong.",
+        "Take one of the readings named again, or one more of the same windings; or state larger uncertainties.",
+    ),
+    "READINGS_IMPOSSIBLE": FindingCode(
+        "No windings that can exist show these readings within their uncertainties.",
+        "Take the reading named again.",
+    ),
+    "NEXT_READING": FindingCode(
+        "The reading to take next, with the value to expect.",
+        "Take it and identify again with all readings.",
+    ),
+}
+
+_CHARACTER = {
+    "CONNECTIONS_WITHOUT_LOSS": FindingCode(
+        "Connections use the high-frequency inductance and the direct-current resistance of what they join.",
+        "Ask for the sharing over frequency, or put the windings into a network, where the loss matters.",
+    ),
+    "UNCERTAINTY_NOT_CARRIED": FindingCode(
+        "The stated uncertainty is not carried through connections.",
+        "Characterize the windings as they are for error bars.",
+    ),
+    "EQUIVALENTS_LEFT_OUT": FindingCode(
+        "There are too many windings for equivalent circuits that anybody reads.",
+        "Join or leave out windings, or use the matrix.",
+    ),
+    "EQUIVALENT_NOT_THERE": FindingCode(
+        "A star or cantilever circuit would divide by a mutual inductance of zero, or needs signs that agree.",
+        "Use another circuit or the matrix.",
+    ),
+    "NEGATIVE_LEG": FindingCode(
+        "A branch of an equivalent circuit is negative; the terminals still behave as they should.",
+        "Nothing, but hang no other element on the inner end of that branch.",
+    ),
+    "STAR_IS_A_FIT": FindingCode(
+        "More than three windings have more pairs than a star has legs; the star only fits their leakages.",
+        "Use the cantilever circuit or the matrix.",
+    ),
+}
+
 _NETWORK = {
     "ISOLATED_PART": FindingCode(
         "A part of the network has no conducting path to the reference; its voltages count from a node of its own.",
@@ -156,4 +241,4 @@ _NETWORK = {
     ),
 }
 
-FINDING_CODES = MappingProxyType({**_WINDINGS, **_NETWORK})
+FINDING_CODES = MappingProxyType({**_WINDINGS, **_REPAIR, **_READINGS, **_CHARACTER, **_NETWORK})
