@@ -32,23 +32,21 @@ class BestCompletion:
 def best_completion(matrix: FloatArray, pairs: Pairs) -> BestCompletion:
     """Maximise t over x with K(x) − t I semidefinite; ``matrix`` (n, n) starts at the unknown ``pairs`` (m, 2)."""
     n, m = len(matrix), len(pairs)
-    K = matrix.copy()
+    identity, K = np.eye(n), matrix.copy()
     t = float(np.linalg.eigvalsh(K)[0]) - 1.0
-    mu, inverse = 1.0, np.eye(n)
+    mu, inverse = 1.0, identity
     while True:
         for _ in range(BARRIER_STEPS):
-            inverse = _inverse(K - t * np.eye(n))
+            inverse = _inverse(K - t * identity)
             square = inverse @ inverse
-            gradient = np.empty(m + 1)
-            gradient[:m] = 2.0 * inverse[pairs[:, 0], pairs[:, 1]]
-            gradient[m] = 1.0 / mu - np.trace(inverse)
-            hessian = np.empty((m + 1, m + 1))
-            hessian[:m, :m] = _curvature(inverse, pairs)
+            gradient, hessian = np.empty(m + 1), np.empty((m + 1, m + 1))
+            gradient[:m], hessian[:m, :m] = 2.0 * inverse[pairs[:, 0], pairs[:, 1]], _curvature(inverse, pairs)
+            gradient[m], hessian[m, m] = 1.0 / mu - np.trace(inverse), np.trace(square)
             hessian[:m, m] = hessian[m, :m] = -2.0 * square[pairs[:, 0], pairs[:, 1]]
-            hessian[m, m] = np.trace(square)
             step, decrement = _newton(hessian, gradient)
-            scale = _damping(decrement)
-            K, t = _moved(K, pairs, scale * step[:m]), t + scale * step[m]
+            move = _spread(step[:m], pairs, n)
+            length = _line_search(K - t * identity, move - step[m] * identity, step[m] / mu)
+            K, t = K + length * move, t + length * step[m]
             if decrement < BARRIER_DECREMENT:
                 break
         if n * mu < COMPLETION_GAP:
@@ -69,7 +67,8 @@ def extreme_value(matrix: FloatArray, pairs: Pairs, target: int, direction: floa
             gradient = 2.0 * inverse[pairs[:, 0], pairs[:, 1]]
             gradient[target] += direction / mu
             step, decrement = _newton(_curvature(inverse, pairs), gradient)
-            K = _moved(K, pairs, _damping(decrement) * step)
+            move = _spread(step, pairs, n)
+            K = K + _line_search(K, move, direction * step[target] / mu) * move
             if decrement < BARRIER_DECREMENT:
                 break
         if n * mu < COMPLETION_GAP:
@@ -79,10 +78,11 @@ def extreme_value(matrix: FloatArray, pairs: Pairs, target: int, direction: floa
 
 def _curvature(inverse: FloatArray, pairs: Pairs) -> FloatArray:
     """−∂² log det / ∂x_ij ∂x_kl = 2 (W_ik W_jl + W_il W_jk) with W the inverse."""
-    i, j = pairs[:, 0], pairs[:, 1]
-    straight = inverse[np.ix_(i, i)] * inverse[np.ix_(j, j)]
-    crossed = inverse[np.ix_(i, j)] * inverse[np.ix_(j, i)]
-    return 2.0 * (straight + crossed)
+    first, second = inverse[pairs[:, 0]], inverse[pairs[:, 1]]
+    straight = first[:, pairs[:, 0]] * second[:, pairs[:, 1]]
+    straight += first[:, pairs[:, 1]] * second[:, pairs[:, 0]]
+    straight *= 2.0
+    return straight
 
 
 def _newton(hessian: FloatArray, gradient: FloatArray) -> tuple[FloatArray, float]:
@@ -95,9 +95,23 @@ def _newton(hessian: FloatArray, gradient: FloatArray) -> tuple[FloatArray, floa
     return step, float(np.sqrt(max(step @ gradient, 0.0)))
 
 
-def _damping(decrement: float) -> float:
-    """Step that stays inside the cone, the barrier being self-concordant (Nesterov & Nemirovskii 1994)."""
-    return 1.0 / (1.0 + decrement) if decrement > 0.25 else 1.0
+def _line_search(matrix: FloatArray, move: FloatArray, slope: float) -> float:
+    """Maximise slope·α + log det(S + α Δ) = slope·α + Σ log(1 + α λ_i), λ the eigenvalues of S⁻¹ Δ, by Newton steps.
+
+    The function is concave and falls to −∞ at the edge of the cone; a step that would pass the edge is cut short of it.
+    """
+    root = np.linalg.cholesky(matrix)
+    half = np.linalg.solve(root, move)
+    values = np.linalg.eigvalsh(np.linalg.solve(root, half.T))
+    edge = -1.0 / values[0] if values[0] < 0 else np.inf
+    alpha = 0.0
+    for _ in range(BARRIER_STEPS):
+        terms = values / (1.0 + alpha * values)
+        by = (slope + terms.sum()) / (terms @ terms)
+        alpha, before = min(alpha + by, 0.5 * (alpha + edge)), alpha
+        if abs(alpha - before) <= BARRIER_DECREMENT * abs(alpha):
+            break
+    return float(alpha)
 
 
 def _inverse(matrix: FloatArray) -> FloatArray:
@@ -105,8 +119,7 @@ def _inverse(matrix: FloatArray) -> FloatArray:
     return 0.5 * (inverse + inverse.T)
 
 
-def _moved(matrix: FloatArray, pairs: Pairs, by: FloatArray) -> FloatArray:
-    moved = matrix.copy()
-    np.add.at(moved, (pairs[:, 0], pairs[:, 1]), by)
-    np.add.at(moved, (pairs[:, 1], pairs[:, 0]), by)
-    return moved
+def _spread(values: FloatArray, pairs: Pairs, size: int) -> FloatArray:
+    spread = np.zeros((size, size))
+    spread[pairs[:, 0], pairs[:, 1]] = spread[pairs[:, 1], pairs[:, 0]] = values
+    return spread

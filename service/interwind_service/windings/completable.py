@@ -13,6 +13,7 @@ from numpy.typing import NDArray
 
 from interwind.model.frozen import FloatArray
 from interwind_service.tolerances import (
+    COMPLETION_CULPRIT_WORK,
     COMPLETION_GAP,
     COMPLETION_INTERVAL_WINDINGS,
     COMPLETION_UNKNOWNS,
@@ -100,15 +101,24 @@ def completion_intervals(coupling: FloatArray, best: Completion) -> tuple[FloatA
     else:
         low, high = np.eye(n), np.eye(n)
         loose = [(int(i), int(j)) for i, j in np.argwhere(np.triu(np.ones((n, n), dtype=bool), 1))]
-    if loose and n > COMPLETION_INTERVAL_WINDINGS:
+    free = not loose or n <= COMPLETION_INTERVAL_WINDINGS
+    if not free:
         held = feasible_intervals(spectrum(best.completed))
         for i, j in loose:
             low[i, j] = low[j, i] = held[0][i, j]
             high[i, j] = high[j, i] = held[1][i, j]
-        return low, high, False
+        loose = [] if best.valid else _weighed_most(best.certificate, known)
     for i, j in loose:
-        low[i, j], high[i, j] = low[j, i], high[j, i] = _extremes(coupling, i, j)
-    return low, high, True
+        low[i, j], high[i, j] = low[j, i], high[j, i] = _extremes(coupling, best, i, j)
+    return low, high, free
+
+
+def _weighed_most(certificate: FloatArray, known: NDArray[np.bool_]) -> list[tuple[int, int]]:
+    """Known pairs that the proof of impossibility rests on most; a pair of no weight cannot be the cure."""
+    i, j = np.nonzero(np.triu(known, 1))
+    unknown = max(1, len(known) * (len(known) - 1) // 2 - len(i))
+    order = np.argsort(-np.abs(certificate[i, j]), kind="stable")[: int(COMPLETION_CULPRIT_WORK / unknown**3)]
+    return [(int(i[p]), int(j[p])) for p in order]
 
 
 def _clique_intervals(coupling: FloatArray, pattern: Pattern) -> tuple[FloatArray, FloatArray]:
@@ -159,11 +169,11 @@ def _unknown_intervals(
     return left
 
 
-def _extremes(coupling: FloatArray, i: int, j: int) -> tuple[float, float]:
-    """Extreme values of pair (i, j) over all completions of the other known pairs."""
+def _extremes(coupling: FloatArray, start: Completion, i: int, j: int) -> tuple[float, float]:
+    """Extreme values of pair (i, j) over all completions of the other known pairs, from ``start`` if that is one."""
     freed = coupling.copy()
     freed[i, j] = freed[j, i] = np.nan
-    best = complete(freed)
+    best = start if start.smallest > start.tolerance else complete(freed)
     if best is None or not best.valid:
         return np.nan, np.nan
     if best.smallest <= best.tolerance:

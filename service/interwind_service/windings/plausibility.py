@@ -35,38 +35,37 @@ def slips_of_pairs(coils: WindingSet, K: FloatArray, low: FloatArray, high: Floa
         *(("UNIT_SLIP", factor, f"the value times {factor:g}") for factor in UNIT_SLIPS),
     ]
     with np.errstate(invalid="ignore"):
-        outside = np.triu((K < low) | (K > high), 1)
+        i, j = np.nonzero(np.triu((K < low) | (K > high), 1))
+    found, least, most = K[i, j], low[i, j], high[i, j]
     findings = []
     for code, factor, words in slips:
-        fits = outside & _explains(code, factor, K, low, high)
-        for i, j in np.argwhere(fits)[:PAIRS_NAMED]:
-            value = float(factor * K[i, j])
+        for p in np.flatnonzero(_explains(code, factor, found, least, most))[:PAIRS_NAMED]:
+            value = float(factor * found[p])
             text = (
-                f"The coupling of {coils.labels[i]}-{coils.labels[j]} is given as {K[i, j]:.6g} and cannot be; "
-                f"{words}, {value:.6g}{_mutual(coils, i, j, value)}, would fit."
+                f"The coupling of {coils.labels[i[p]]}-{coils.labels[j[p]]} is given as {found[p]:.6g} and cannot be; "
+                f"{words}, {value:.6g}{_mutual(coils, i[p], j[p], value)}, would fit."
             )
-            findings.append(_pair(coils, code, i, j, text, float(K[i, j]), value))
+            findings.append(_pair(coils, code, int(i[p]), int(j[p]), text, float(found[p]), value))
     return findings
 
 
-def _explains(code: str, factor: float, K: FloatArray, low: FloatArray, high: FloatArray) -> NDArray[np.bool_]:
+def _explains(code: str, factor: float, found: FloatArray, low: FloatArray, high: FloatArray) -> NDArray[np.bool_]:
     """Where the slip brings a coupling into its interval, and the interval is narrow enough for that to mean something.
 
     A coupling beyond 1 and a flipped sign speak for themselves.
     """
-    value = factor * K
-    with np.errstate(invalid="ignore"):
-        fits = (value >= low) & (value <= high)
-        telling = np.abs(value) > SIGN_MATTERS_ABOVE
-        if code != "SIGN_FLIPPED":
-            telling &= (high - low <= SLIP_INTERVAL_SHARE * np.abs(value)) | (np.abs(K) > 1.0)
-        if code == "UNIT_SLIP" and factor < 1.0:
-            telling = np.abs(K) > 1.0
+    value, beyond_one = factor * found, np.abs(found) > 1.0
+    fits = (value >= low) & (value <= high)
+    if code == "UNIT_SLIP" and factor < 1.0:
+        return np.asarray(fits & beyond_one)
+    telling = np.abs(value) > SIGN_MATTERS_ABOVE
+    if code != "SIGN_FLIPPED":
+        telling &= (high - low <= SLIP_INTERVAL_SHARE * np.abs(value)) | beyond_one
     return np.asarray(fits & telling)
 
 
 def sides_of_leakages(coils: WindingSet, K: FloatArray, low: FloatArray, high: FloatArray) -> list[Finding]:
-    """Pairs whose leakage is off from that of all others by the ratio of the self-inductances, that is by n²."""
+    """Pairs whose leakage is off from that of all others, tight ones, by the ratio of the self-inductances."""
     if not 3 <= coils.size <= PLAUSIBILITY_WINDINGS:
         return []
     own = coils.self_inductance_h
@@ -81,12 +80,14 @@ def sides_of_leakages(coils: WindingSet, K: FloatArray, low: FloatArray, high: F
     doubted = (size >= np.maximum(np.log(SIDE_FACTOR_LEAST), 2.0 * scatter)) & (
         np.abs(size - ratio) <= np.log(SIDE_FACTOR_MATCH)
     )
+    loose = np.abs(K[i, j]) < TIGHT_COUPLING
+    doubted &= np.count_nonzero(loose) == loose
     findings = []
     for p in np.flatnonzero(doubted):
         a, b = int(i[p]), int(j[p])
         fitting = 1.0 - float(leakage[p] * np.exp(-np.sign(off[p]) * ratio[p]))
         value = float(np.sign(K[a, b]) * np.sqrt(max(fitting, 0.0)))
-        if not low[a, b] <= value <= high[a, b]:
+        if abs(value) < TIGHT_COUPLING or not low[a, b] <= value <= high[a, b]:
             continue
         text = (
             f"The leakage of {coils.labels[a]}-{coils.labels[b]} is {np.exp(off[p]):.3g} times that of the other "

@@ -93,7 +93,7 @@ def _judge(coils: WindingSet, K: FloatArray, band: Band) -> _Judged:
     """Eigenvalues, margin, witness, intervals and culprits of a symmetric K, NaN where a pair is unknown."""
     findings: list[Finding] = []
     unknown = bool(np.any(np.isnan(K)))
-    tolerance = 0.0
+    tolerance, free = 0.0, True
     if unknown:
         best = complete(K)
         if best is None:
@@ -114,9 +114,10 @@ def _judge(coils: WindingSet, K: FloatArray, band: Band) -> _Judged:
         found = impossible_subsets(K, s)
         subsets = tuple(tuple(coils.labels[w] for w in subset) for subset in found.subsets)
         culprits, count = rank_culprits(coils.labels, s, low, high)
-        findings += _blame(coils, K, culprits, count)
+        if free or culprits:
+            findings += _blame(coils, K, culprits, count)
         findings += name_subsets(coils, K, band, found)
-        findings += blamed_windings(coils, s) if not culprits else []
+        findings += blamed_windings(coils, s) if free and not culprits else []
     findings += audit(coils, K, s, low, high, band)
     current, energy = witness(s, coils.self_inductance_h)
     root = np.sqrt(coils.self_inductance_h)
