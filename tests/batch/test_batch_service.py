@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import signal
 from collections.abc import Iterator
 
 import link
@@ -185,33 +184,6 @@ def test_cancel_frees_the_workers(solver, server):
     result = batch.result()
     assert (result.status == iw.VariantStatus.CANCELLED).sum() == progress.cancelled_count > 0
     assert wait_until(lambda: solver.server_info().busy_worker_count == 0, 5.0) < 5.0
-
-
-def test_killed_server_goes_on_where_it_stopped(tmp_path):
-    """Kill -9 in the middle, twice: the result is byte-identical to one that was left in peace."""
-    vary = columns(4000)
-    analysis = iw.FrequencyAnalysis(link.FREQUENCY_HZ, link.OBSERVE)
-    results = []
-    for deaths in (0, 2):
-        folder = tmp_path / str(deaths)
-        batch_id = ""
-        for life in range(deaths + 1):
-            with (
-                RunningService("--workers", "2", "--state-dir", str(folder)) as running,
-                iw.connect(running.address) as c,
-            ):
-                batch = c.batch(batch_id) if batch_id else c.submit_batch(link.network(), analysis, vary)
-                batch_id = batch.id
-                if life < deaths:
-                    wait_until(lambda batch=batch, life=life: batch.progress().done_count > 0 or life, 20.0)
-                    running.stop(signal.SIGKILL)
-                else:
-                    results.append(batch.result(timeout_s=60.0))
-    first, second = results
-    assert np.array_equal(first.status, second.status)
-    assert np.array_equal(first.reason, second.reason)
-    for key in link.OBSERVE:
-        assert first.table[key].tobytes() == second.table[key].tobytes()
 
 
 def test_second_server_is_kept_out(tmp_path):
