@@ -21,6 +21,7 @@ from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import FrequencyResponse, MnaSystem, PortResponse, TimeResponse
 from interwind.model.vary import SampleWindings
 from interwind.model.windings import WindingSet
+from interwind_service.tolerances import DEFAULT_TOLERANCE
 from interwind_service.version import SERVICE_VERSION
 
 if TYPE_CHECKING:
@@ -114,7 +115,12 @@ def port_response(network: Network, frequency_hz: Any) -> PortResponse:
 
 @_with_provenance
 def time_response(
-    network: Network, stop_s: float, step_s: float, observe: Any = None, initial: Any = None, tolerance: float = 1e-6
+    network: Network,
+    stop_s: float,
+    step_s: float,
+    observe: Any = None,
+    initial: Any = None,
+    tolerance: float = DEFAULT_TOLERANCE,
 ) -> TimeResponse:
     """Solve the network over time."""
     from interwind_service.response import time
@@ -124,7 +130,7 @@ def time_response(
 
 @_with_provenance
 def periodic_response(
-    network: Network, period_s: float, step_s: float, observe: Any = None, tolerance: float = 1e-6
+    network: Network, period_s: float, step_s: float, observe: Any = None, tolerance: float = DEFAULT_TOLERANCE
 ) -> PeriodicResponse:
     """Find one period of the steady state, directly."""
     from interwind_service.response import periodic

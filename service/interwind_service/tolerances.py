@@ -241,8 +241,6 @@ WALKED_BLOCK_BITS = 5
 SPARSE_EVENTS = 256
 # Samples computed at once, 4 MB: what one chunk holds is bounded, whatever the length of the run.
 CHUNK_ENTRIES = 2**19
-# Default for the energy error and the residual of a time response (contract of the call).
-TIME_TOLERANCE = 1e-6
 # Stop over step may miss a whole number by this much: the rounding of decimal times, never a misread grid.
 GRID_MISFIT = 1e-6
 # Steps of one run: at 30 ns a step and 8 bytes a value a minute and the largest file a caller would read.

@@ -7,6 +7,7 @@ import ast
 # Below this a literal is a tolerance, not a coefficient; above its inverse it is a stand-in for infinity.
 SMALL = 1e-3
 NUMBER_FILES = {"interwind_service.tolerances", "interwind_service.response.tableau"}
+UNIT_PREFIXES = {"UNIT_FACTORS", "_MICRO"}
 NUMERIC_ROOMS = ("windings", "network", "response", "engine", "tolerances")
 # The outermost edges: one for calls, one for the worker process that serves them.
 EDGES = {"interwind_service.server.boundary", "interwind_service.workers.process"}
@@ -21,14 +22,19 @@ def service(modules):
 
 
 def test_thresholds_stand_in_one_file(modules):
-    """A number such as a tolerance has a name and a reason, and both stand in tolerances.py."""
-    offenders = [
-        f"{name}:{node.lineno}: {node.value!r}"
-        for name, tree in service(modules).items()
-        if name not in NUMBER_FILES
-        for node in ast.walk(tree)
-        if isinstance(node, ast.Constant) and isinstance(node.value, float) and 0 < node.value < SMALL
-    ]
+    """A number such as a tolerance has a name and a reason, and both stand in tolerances.py; unit prefixes are none."""
+    offenders = []
+    for name, tree in service(modules).items():
+        prefixes = {
+            constant
+            for node in tree.body
+            if isinstance(node, ast.Assign) and UNIT_PREFIXES & {ast.unparse(target) for target in node.targets}
+            for constant in ast.walk(node)
+        }
+        for node in ast.walk(tree):
+            small = isinstance(node, ast.Constant) and isinstance(node.value, float) and 0 < node.value < SMALL
+            if small and node not in prefixes and name not in NUMBER_FILES:
+                offenders.append(f"{name}:{node.lineno}: {node.value!r}")
     assert [] == offenders
 
 

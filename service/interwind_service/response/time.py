@@ -41,7 +41,7 @@ def time_response(
     step_s: float,
     observe: Sequence[Observable] | None = None,
     initial: Initial = None,
-    tolerance: float = tol.TIME_TOLERANCE,
+    tolerance: float = tol.DEFAULT_TOLERANCE,
     *,
     sink: RowSink | None = None,
 ) -> TimeResponse:
