@@ -8,6 +8,10 @@ SYMMETRY_ROUNDING = 1e-12
 STATED_DEVIATIONS = 2.0
 # Two entries of one pair further apart than five standard deviations of their difference: by chance one in two million.
 ASYMMETRY_ERROR_DEVIATIONS = 5.0
+# Beyond these no arithmetic in double precision is left to judge by; they are slips, and refused by name.
+COMPUTABLE_H = (1e-100, 1e100)
+COMPUTABLE_COUPLING = 1e20
+COMPUTABLE_WIDTH = 1e20
 # |k| = 1 formed as M / sqrt(L_i L_j) carries three roundings on each side of 1.
 COUPLING_ROUNDING = 1e-15
 # Null directions of two windings count as parallel when the squared sine is below this: K is within 1e-12 of singular.
@@ -69,6 +73,8 @@ BARRIER_STEPS = 40
 COMPLETION_UNKNOWNS = 1000
 # Intervals over every completion of a loose pattern take two barrier solutions a pair: below a second up to here.
 COMPLETION_INTERVAL_WINDINGS = 10
+# Unknown pairs of a chordal pattern take a search of the pattern each: some milliseconds.
+COMPLETION_INTERVAL_PAIRS = 200
 # Beyond that, only pairs the certificate weighs most are tried as culprits: cubes of unknown pairs worked through.
 COMPLETION_CULPRIT_WORK = 1e6
 

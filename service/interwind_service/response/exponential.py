@@ -12,11 +12,15 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind_service.tolerances import EXPONENTIAL_BASE_NORM, EXPONENTIAL_TAYLOR_DEGREE
+from interwind_service.tolerances import (
+    EXPONENTIAL_BASE_NORM,
+    EXPONENTIAL_GAUSS_POINTS,
+    EXPONENTIAL_TAYLOR_DEGREE,
+)
 
 FloatArray = NDArray[np.float64]
 
-_GAUSS_POINT, _GAUSS_WEIGHT = np.polynomial.legendre.leggauss(6)
+_GAUSS_POINT, _GAUSS_WEIGHT = np.polynomial.legendre.leggauss(EXPONENTIAL_GAUSS_POINTS)
 _UNIT_POINT, _UNIT_WEIGHT = 0.5 * (_GAUSS_POINT + 1.0), 0.5 * _GAUSS_WEIGHT
 
 

@@ -93,7 +93,8 @@ def _join(sources: Sequence[Sequence[Channel]], stop_s: float) -> Generator:
     U = np.zeros((len(sources), size))
     for source, where, output in reads:
         U[source, where] += output
-    times = np.unique(np.concatenate(events))
+    times = np.sort(np.concatenate(events))
+    times = times[np.diff(times, prepend=-np.inf) > 0.0]
     S = sl.block_diag(*matrices) if matrices else np.zeros((0, 0))
     rates = [np.full(len(matrix), np.abs(np.linalg.eigvals(matrix)).max()) for matrix in matrices]
     rate = np.concatenate(rates) if rates else np.zeros(0)

@@ -45,7 +45,9 @@ class EventSteps:
         below = np.where(below * step_s > events, below - 1.0, below)
         below = np.where((below + 1.0) * step_s <= events, below + 1.0, below)
         step = np.where(on_grid, nearest - 1.0, below).astype(np.int64)
-        return cls(np.unique(step), step[~on_grid], events[~on_grid])
+        first = np.ones(len(step), dtype=bool)
+        first[1:] = step[1:] != step[:-1]
+        return cls(step[first], step[~on_grid], events[~on_grid])
 
 
 class Propagation:
@@ -72,8 +74,11 @@ class Propagation:
         self.generator, self.readout, self.step_s, self.steps = generator, readout, step_s, steps
         self.n, self.size, self.jump = len(start), len(flow.M), flow.jump.T
         self._x = start.astype(np.float64)
+        self.events = EventSteps.of(generator.events, step_s)
         width = max(1, len(readout)) * self.size
         block_bits = int(np.clip(np.log2(tol.BLOCK_ENTRIES / width), tol.LEAST_BLOCK_BITS, tol.MOST_BLOCK_BITS))
+        if len(self.events.steps) * tol.SPARSE_EVENTS > steps:
+            block_bits = min(block_bits, tol.WALKED_BLOCK_BITS)
         self._block_bits = min(block_bits, max(0, int(np.ceil(np.log2(max(steps, 1))))))
         block = 1 << self._block_bits
         self.block = block
@@ -84,10 +89,9 @@ class Propagation:
         self.ladder = Ladder.of(flow.M, step_s * block * self.chunk, least_depth=step_level)
         self.gram = Gramian(self.ladder)
         self.step_level = step_level
-        self._step = self.ladder.transition(step_level)
+        self.move = self.ladder.transition(step_level).T
         self._block = self.ladder.transition(self._chunk_bits)
         self._observe = _observability(readout, self.ladder, step_level, self._block_bits)
-        self.events = EventSteps.of(generator.events, step_s)
         self.end = np.concatenate((self._x, generator.state(np.zeros(1))[0]))
         self._seen: list[FloatArray] = [self.end[None]]
 
@@ -130,7 +134,7 @@ class Propagation:
         ends[1:] = xi @ self._block[:n, n:].T
         if walk is not None:
             at_rest = np.hstack((np.zeros((len(walk.blocks), n)), xi[walk.blocks]))
-            ends[walk.blocks + 1] = walk.go(at_rest)[:, :n]
+            ends[walk.blocks + 1] = walk.go(at_rest)[-1, :, :n]
         for bit in range(self._chunk_bits + 1):
             shift = 1 << bit
             if shift > blocks:
@@ -147,9 +151,11 @@ class Propagation:
             samples[smooth] = (own @ self._observe).reshape(len(smooth), self.block, -1)
         end_state = np.concatenate((ends[-1], np.zeros(self.size - n)))
         if walk is not None:
-            last = walk.go(y[walk.blocks], samples)
+            states = walk.go(y[walk.blocks])
+            walk.gather(states)
+            samples[walk.blocks] = (states[:-1] @ self.readout.T).transpose(1, 0, 2)
             if walk.blocks[-1] == blocks - 1:
-                end_state = last[-1].copy()
+                end_state = states[walk.last_steps, -1].copy()
         self._x = end_state[:n]
         end_state[n:] = self.generator.state(np.array([stop * self.step_s]))[0]
         self.end = end_state
@@ -157,55 +163,58 @@ class Propagation:
 
 
 class _Walk:
-    """Blocks that are stepped through, all together: those with events and a last one that is not full."""
+    """Blocks that are stepped through, all together: those with events and a last one that is not full.
+
+    An event step adds a kick known beforehand: y_{k+1} = e^(M h) y_k + kick_k.
+    """
 
     def __init__(self, run: Propagation, first: int, stop: int, blocks: IntArray, eventful: IntArray) -> None:
-        self.run, self.first, self.stop, self.blocks = run, first, stop, blocks
+        self.run, self.blocks = run, blocks
+        self.last_steps = min(run.block, stop - (first + int(blocks[-1]) * run.block))
         place = np.full(int(blocks[-1]) + 1, -1, dtype=np.int64)
         place[blocks] = np.arange(len(blocks))
-        self.row = place[(eventful - first) // run.block]
-        self.local = (eventful - first) % run.block
-        self.after = run.generator.state((eventful + 1) * run.step_s)
+        row, local = place[(eventful - first) // run.block], (eventful - first) % run.block
         low, high = np.searchsorted(run.events.inside_step, (first, stop))
-        step, time_s = run.events.inside_step[low:high], run.events.inside_time[low:high]
-        self.pieces = _Pieces(run, step, time_s)
-        self.kinked = np.searchsorted(eventful, self.pieces.steps)
-        self.forced = np.zeros((len(eventful), run.n))
-        self.forced[self.kinked] = self.pieces.forced()
-        self.is_kinked = np.zeros(len(eventful), dtype=bool)
-        self.is_kinked[self.kinked] = True
-        self.by_local = np.argsort(self.local, kind="stable")
-        self.bounds = np.searchsorted(self.local[self.by_local], np.arange(run.block + 1))
+        self.pieces = _Pieces(run, run.events.inside_step[low:high], run.events.inside_time[low:high])
+        kinked = np.searchsorted(eventful, self.pieces.steps)
+        self.kinked = local[kinked], row[kinked]
+        order = np.argsort(local, kind="stable")
+        self.row, self.kick = row[order], self._kicks(eventful, kinked)[order]
+        self.bounds = np.searchsorted(local[order], np.arange(run.block + 1))
 
-    def go(self, y: FloatArray, samples: FloatArray | None = None) -> FloatArray:
-        """Step from the starts of the blocks to their ends; with ``samples``, fill in theirs and gather the Gramian."""
+    def _kicks(self, eventful: IntArray, kinked: IntArray) -> FloatArray:
         run, n = self.run, self.run.n
-        steps = np.minimum(run.block, self.stop - (self.first + self.blocks * run.block))
-        move = run._step.T
-        at_kinks = np.zeros((len(self.local), n))
-        for local in range(int(steps.max())):
-            owned = self.by_local[self.bounds[local] : self.bounds[local + 1]]
-            kinked = owned[self.is_kinked[owned]]
-            if samples is not None:
-                samples[self.blocks, local] = y @ run.readout.T
-                whole = steps > local
-                whole[self.row[kinked]] = False
-                run.gram.add(run.step_level, y if whole.all() else y[whole])
-                at_kinks[kinked] = y[self.row[kinked], :n]
-            moved = y @ move
-            if owned.size:
-                row = self.row[owned]
-                moved[row, :n] += (self.after[owned] - moved[row, n:]) @ run.jump
-                if kinked.size:
-                    row = self.row[kinked]
-                    moved[row, :n] = y[row, :n] @ move[:n, :n] + self.forced[kinked]
-                moved[self.row[owned], n:] = self.after[owned]
-            if steps[-1] <= local:
-                moved[-1] = y[-1]
-            y = moved
-        if samples is not None and len(self.kinked):
-            self.pieces.gather(at_kinks[self.kinked])
-        return y
+        before = run.generator.state(eventful * run.step_s)
+        kick = np.empty((len(eventful), run.size))
+        kick[:, n:] = run.generator.state((eventful + 1) * run.step_s) - before @ run.move[n:, n:]
+        kick[:, :n] = kick[:, n:] @ run.jump
+        kick[kinked, :n] = self.pieces.forced() - before[kinked] @ run.move[n:, :n]
+        return kick
+
+    def go(self, y: FloatArray) -> FloatArray:
+        """Step from the starts of the blocks, (blocks, n + g), to their ends; return (steps + 1, blocks, n + g)."""
+        run = self.run
+        states = np.empty((run.block + 1, *y.shape))
+        states[0] = y
+        for local in range(run.block):
+            np.matmul(states[local], run.move, out=states[local + 1])
+            own = slice(self.bounds[local], self.bounds[local + 1])
+            if own.stop - own.start == len(self.blocks):
+                states[local + 1] += self.kick[own]
+            elif own.stop > own.start:
+                states[local + 1][self.row[own]] += self.kick[own]
+        return states
+
+    def gather(self, states: FloatArray) -> None:
+        """Add the Gramian of the steps walked."""
+        run = self.run
+        whole = np.ones(states.shape[:2], dtype=bool)
+        whole[self.kinked] = False
+        whole[self.last_steps :, -1] = False
+        walked = states[:-1]
+        run.gram.add(run.step_level, walked[whole[:-1]])
+        if len(self.pieces.steps):
+            self.pieces.gather(states[self.kinked][:, : run.n])
 
 
 class _Pieces:
@@ -213,7 +222,8 @@ class _Pieces:
 
     def __init__(self, run: Propagation, step: IntArray, time_s: FloatArray) -> None:
         self.run = run
-        self.steps, first, self.count = np.unique(step, return_index=True, return_counts=True)
+        first = np.flatnonzero(np.diff(step, prepend=-1))
+        self.steps, self.count = step[first], np.diff(first, append=len(step))
         order = np.arange(len(step)) + np.searchsorted(self.steps, step) + 1
         begin = np.empty(len(step) + len(self.steps))
         begin[order] = time_s
