@@ -15,6 +15,10 @@ def main() -> int:
         settings, options = read_settings(sys.argv[1:], os.environ)
         if options.print_config:
             print(settings.to_json())
+        if options.check_config:
+            from interwind_service.server.doors import check_files
+
+            check_files(settings)
         if options.print_config or options.check_config:
             return 0
         from interwind_service.workers.forking import start_forkserver

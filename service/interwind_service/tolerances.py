@@ -10,7 +10,7 @@ STATED_DEVIATIONS = 2.0
 ASYMMETRY_ERROR_DEVIATIONS = 5.0
 # Beyond these no arithmetic in double precision is left to judge by; they are slips, and refused by name.
 COMPUTABLE_H = (1e-100, 1e100)
-COMPUTABLE_COUPLING = 1e20
+COMPUTABLE_COUPLING = 1e12
 COMPUTABLE_WIDTH = 1e20
 # |k| = 1 formed as M / sqrt(L_i L_j) carries three roundings on each side of 1.
 COUPLING_ROUNDING = 1e-15
@@ -183,6 +183,11 @@ NOISE_SHARE = 1e-6
 RECIPROCITY_LIMIT = 1e-9
 PASSIVITY_LIMIT = -1e-9
 
+# A swept band and the frequency tree agree to this, voltages and currents each over their largest.
+SWEEP_AGREEMENT = 1e-10
+# Points of a swept band at which the energy of its windings is looked at for cautions.
+LOUDEST_POINTS = 6
+
 # Rows of a Schur form substituted together: 16 to 64 cost the same within a third, 32 least.
 SCHUR_BLOCK = 32
 
@@ -259,6 +264,8 @@ INCONSISTENT_START = 1e-12
 REST_RESIDUAL = 1e-13
 # States kept during a run to test the equations at.
 TESTED_STATES = 64
+# A resolvent at s0 moves undamped slow modes by eps s0: over a run of this many 1/s0 their phase is off by 2e-10.
+SLOW_PHASE = 1e6
 # A block of modes is counted from its rest value beside a drive this many times slower: its Sylvester equation is then
 # as well conditioned as the block itself.
 REST_SEPARATION = 10.0
@@ -338,6 +345,20 @@ REAL_MULTIPLIER = 1e-9  # relative imaginary part of a real multiplier
 OTHER_START = 1.5  # times the state found: the second start
 OTHER_START_PERIODS = 10  # periods spent on it
 SAME_SOLUTION = 1e-6  # relative distance of two answers that are one
+EXPONENT_CLIP = 60.0  # exponents beyond this are continued by the tangent: e^60 of any saturation current is no current
+STIFF_VOLTAGE = 1e-9  # volts per volt of its wave below which a branch voltage is fixed by states and sources
+WAVE_STEPS = 400  # Newton steps for consistent waves; an exponential takes one for each thermal voltage
+WAVE_RESIDUAL = 1e-13  # relative residual of consistent waves
+WAVE_HALVINGS = 30  # of one Newton step
+STEP_SHARE = 0.1  # share of the tolerance that a step may miss by
+FIRST_STEP = 1e-7  # share of an interval tried first
+SMALLEST_STEP = 1e-15  # share of the time below which a step does not move it
+STEP_GROWTH = 1.0 / 6.0  # smallest factor by which a step is divided (Hairer & Wanner 1996)
+STEP_SHRINK = 5.0  # largest one
+STEP_SAFETY = 0.9  # of the step that the error allows
+FIRST_ERROR = 0.01  # floor of the previous error in predictive control
+OVERFLOWN_ERROR = 1e10  # stands for an error that is no number
+STEPS_TOGETHER = 512  # steps sampled and booked at once
 PIECES_KEPT = 512  # combinations of device states kept
 PIVOTS = 200  # pivots of the complementarity problem; three is the most seen
 PIVOT_PATIENCE = 5  # block pivots without progress before the least-index rule takes over
@@ -402,6 +423,7 @@ ESTIMATE_COPIES = 4  # copies of a request in flight: received, piped, parsed, d
 LOG_QUEUE_LINES = 10_000  # lines that may wait for a slow reader of stderr; later ones are counted and dropped
 TOKEN_RELOAD_INTERVAL_S = 1.0  # how often the token file is looked at, at most
 PROGRESS_INTERVAL_S = 0.1  # progress is for eyes; more often it only costs
+HEALTH_INTERVAL_S = 0.5  # how soon health tells that no worker can be had
 PARENT_POLL_S = 0.2  # how often an embedded server looks whether its parent lives
 
 # --- batches --------------------------------------------------------------------------------------------------------

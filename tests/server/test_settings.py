@@ -133,3 +133,16 @@ def test_drain_finishes_what_runs_and_takes_nothing_new(lone_service, order):
             client.check(order("fine"))
         assert running.result(5).labels == ("sleep",)
         assert lone_service.stop() == 0
+
+
+def test_check_config_reads_the_files_it_names(tmp_path):
+    """A token file others may read, and a certificate that is not there, are found before anything is served."""
+    tokens = tmp_path / "tokens"
+    tokens.write_text("secret\n")
+    tokens.chmod(0o644)
+    for arguments, named in (
+        (["--token-file", str(tokens)], "0600"),
+        (["--tls-cert", str(tmp_path / "none.pem"), "--tls-key", str(tmp_path / "none.key")], "No such file"),
+    ):
+        answer = command("--check-config", *arguments)
+        assert (answer.returncode, named in answer.stderr, "secret" in answer.stderr) == (2, True, False)

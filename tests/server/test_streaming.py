@@ -10,6 +10,7 @@ import grpc
 import numpy as np
 import pytest
 
+import interwind as iw
 from interwind.codec.calls import BY_ENGINE
 from interwind.model.elements import Resistor, VoltageSource
 from interwind.model.network import Network
@@ -103,3 +104,18 @@ def test_large_matrices_travel_by_parts_and_only_once(service, client):
     assert first.labels == windings.labels
     assert len(puts) == 4  # the question, 1 MiB, the other 952 576 bytes, and the question again
     assert sum(puts) == pytest.approx(500 * 500 * 8, rel=1e-3)
+
+
+def test_large_answers_of_unary_calls_come_by_parts(client):
+    """Matrices too large for one message are fetched under their hash, and are those of the network."""
+    count = 300
+    chain = [iw.Resistor(f"r{k}", f"n{k}", f"n{k + 1}", resistance_ohm=float(k + 1)) for k in range(count)]
+    system = client.stamp(iw.Network("n0", chain))
+    expected = np.zeros((count, count))  # conductances 1/1, 1/2, ... along a chain, its first node the reference
+    for k in range(count):
+        expected[k, k] += 1 / (k + 1)
+        if k + 1 < count:
+            expected[k, k] += 1 / (k + 2)
+            expected[k, k + 1] = expected[k + 1, k] = -1 / (k + 2)
+
+    assert np.allclose(system.G, expected, rtol=1e-15, atol=0)

@@ -4,12 +4,16 @@ from __future__ import annotations
 
 import os
 import signal
+import subprocess
+import tempfile
 import time
 from concurrent.futures import ThreadPoolExecutor
 from pathlib import Path
 
+import numpy as np
 import pytest
 
+import interwind as iw
 from interwind.channel import Target
 from interwind.client import Client
 from interwind.errors import (
@@ -21,7 +25,9 @@ from interwind.errors import (
     Unavailable,
     WorkerLost,
 )
-from interwind_service.testing import alive, wait_until
+from interwind_service.testing import RunningService, alive, wait_until
+
+DOUBLES = Path(__file__).parent / "service_with_doubles.py"
 
 
 def busy(client) -> int:
@@ -162,3 +168,39 @@ def test_ten_thousand_violations_fit_the_trailer(client, order):
     assert type(caught.value).__name__ == "InvalidWindings"
     assert 0 < len(caught.value.violations) <= 32
     assert int(caught.value.metadata["violations_left_out"]) + len(caught.value.violations) == 10_000
+
+
+def test_stopped_worker_costs_its_call_its_deadline_and_no_more(client, service, order):
+    """SIGSTOP: the worker neither answers nor dies; the deadline replaces it."""
+    with ThreadPoolExecutor(1) as threads:
+        call = threads.submit(client.check, order("spin", 1.0), timeout_s=1.5)
+        wait_until(lambda: busy(client) == 1, 5)
+        stopped = service.workers()
+        for pid in stopped:
+            os.kill(pid, signal.SIGSTOP)
+        assert type(call.exception(5)) is DeadlineExceeded
+        for pid in stopped:
+            os.kill(pid, signal.SIGCONT) if alive(pid) else None
+    assert client.check(order("fine")).labels == ("fine",)
+    assert busy(client) == 0
+
+
+def test_full_spool_is_told_and_passes(order):
+    """A result larger than the spool: Overloaded, never a broken answer; what fits is still answered."""
+    network = iw.Network("0", [iw.VoltageSource("v", "a", "0"), iw.Resistor("r", "a", "0", resistance_ohm=1.0)])
+    with tempfile.TemporaryDirectory() as folder:
+        try:
+            subprocess.run(["mount", "-t", "tmpfs", "-o", "size=8m", "tmpfs", folder], check=True, capture_output=True)
+        except (OSError, subprocess.CalledProcessError):
+            pytest.skip("only a machine that lets us mount a small file system can show a full one")
+        try:
+            with RunningService("--workers", "1", "--spool-dir", folder, script=DOUBLES) as running:
+                with iw.connect(running.address, retries=0) as client:
+                    with pytest.raises(Overloaded) as caught:
+                        client.time_response(network, 2e6, 1.0, timeout_s=60)
+                    assert caught.value.reason == "SPOOL_FULL"
+                    assert len(client.time_response(network, 100_000.0, 1.0).time_s) == 100_001
+                    with pytest.raises(Overloaded):
+                        client.check(iw.WindingSet([f"w{k}" for k in range(1200)], np.eye(1200)))
+        finally:
+            subprocess.run(["umount", folder], check=True)

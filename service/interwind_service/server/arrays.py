@@ -19,6 +19,7 @@ from interwind.v1 import array_service_pb2 as messages
 from interwind_service.server.boundary import Call, Rpc
 from interwind_service.tolerances import ARRAY_UPLOAD_IDLE_S, MAX_ARRAY_PART_BYTES, MAX_OPEN_UPLOADS
 from interwind_service.workers.arrays import ArrayFolder
+from interwind_service.workers.spool import room_in_spool
 
 HASH_CHARACTERS = set("0123456789abcdef")
 
@@ -60,7 +61,8 @@ class ArrayDoor:
                 "data", f"{len(request)} bytes found, at most {MAX_ARRAY_PART_BYTES} are taken; send smaller parts"
             )
         async with self._one_at_a_time:
-            return await asyncio.to_thread(self._put_now, request, call.client)
+            with room_in_spool():
+                return await asyncio.to_thread(self._put_now, request, call.client)
 
     def _put_now(self, request: bytes, client: str) -> bytes:
         part = _parse(messages.PutArrayRequest, request)
@@ -79,9 +81,11 @@ class ArrayDoor:
             raise InvalidRequest.at(
                 "data", f"{upload.received_bytes + len(data)} bytes found, shape and dtype say {upload.size_bytes}"
             )
-        upload.file.write(data)
-        upload.hash.update(data)
-        upload.received_bytes += len(data)
+        while data:  # an unbuffered file may take less than all
+            taken = upload.file.write(data)
+            upload.hash.update(data[:taken])
+            upload.received_bytes += taken
+            data = data[taken:]
         upload.touched_s = time.monotonic()
         if upload.received_bytes < upload.size_bytes:
             return _answer(upload.received_bytes, complete=False)

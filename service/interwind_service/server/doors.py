@@ -7,6 +7,7 @@ from typing import Any
 
 import grpc
 
+from interwind_service.server.auth import Tokens
 from interwind_service.server.settings import Settings, SettingsError
 from interwind_service.tolerances import (
     HANDSHAKE_TIMEOUT_MS,
@@ -47,12 +48,20 @@ def open_door(server: grpc.aio.Server, settings: Settings) -> str:
     return f"{settings.listen.rpartition(':')[0]}:{port}"
 
 
+def check_files(settings: Settings) -> None:
+    """Raise `SettingsError` when a certificate, a key or the tokens cannot be used."""
+    if settings.tls_cert:
+        _Certificates(settings).read()
+    if settings.token_file:
+        Tokens(settings.token_file)
+
+
 class _Certificates:
     """Reads the certificate files again, at the next handshake, once they have changed."""
 
     def __init__(self, settings: Settings) -> None:
         self._paths = [Path(path) for path in (settings.tls_key, settings.tls_cert, settings.tls_client_ca) if path]
-        self._seen = self._stamp()
+        self._seen: tuple[int, ...] = ()
 
     def _stamp(self) -> tuple[int, ...]:
         return tuple(path.stat().st_mtime_ns for path in self._paths)
@@ -60,6 +69,7 @@ class _Certificates:
     def read(self) -> grpc.ServerCertificateConfiguration:
         """Return what the files hold."""
         try:
+            self._seen = self._stamp()
             key, chain, *client_ca = (path.read_bytes() for path in self._paths)
         except OSError as error:
             raise SettingsError(f"--tls-cert, --tls-key, --tls-client-ca: {error}") from error
@@ -68,11 +78,6 @@ class _Certificates:
     def fetch(self) -> grpc.ServerCertificateConfiguration | None:
         """Return the new certificates, None while the old ones stand or the new ones cannot be read yet."""
         try:
-            stamp = self._stamp()
-            if stamp == self._seen:
-                return None
-            configuration = self.read()
+            return None if self._stamp() == self._seen else self.read()
         except (OSError, SettingsError):
             return None
-        self._seen = stamp
-        return configuration

@@ -15,7 +15,6 @@ from pathlib import Path
 os.environ.setdefault("GRPC_VERBOSITY", "NONE")  # the C core writes plain text on stderr, which is for JSON lines
 
 import grpc
-from grpc_health.v1 import health, health_pb2, health_pb2_grpc
 from grpc_reflection.v1alpha import reflection
 
 from interwind_service.server.admission import Admission
@@ -26,6 +25,7 @@ from interwind_service.server.batches import BatchDoor
 from interwind_service.server.boundary import Boundary
 from interwind_service.server.compute import Compute, remove_spools_of_the_dead
 from interwind_service.server.doors import channel_options, open_door
+from interwind_service.server.health import SERVICE_NAME, Health
 from interwind_service.server.info import Info
 from interwind_service.server.logs import configure, emit
 from interwind_service.server.metrics import Metrics
@@ -84,37 +84,41 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
         BatchDoor(room=batches, pool=pool, admission=admission, arrays=arrays),
         Info(settings=settings, pool=pool, admission=admission),
     )
-    gates = [TokenGate(Tokens(settings.token_file))] if settings.token_file else []
+    gates = []
+    if settings.token_file:
+        tokens = Tokens(settings.token_file)
+        gates.append(TokenGate(tokens))
+        asyncio.get_running_loop().add_signal_handler(signal.SIGHUP, tokens.look_again)
     server = grpc.aio.server(options=channel_options(settings), interceptors=gates)
     metrics = Metrics(pool=pool, admission=admission)
     boundary = Boundary(max_timeout_s=settings.max_timeout_s, client_of=client_of, metrics=metrics)
     server.add_generic_rpc_handlers(generic_handlers(table, boundary))
     names = service_names(table)
-    health_servicer = health.aio.HealthServicer()
-    health_pb2_grpc.add_HealthServicer_to_server(health_servicer, server)
+    health = Health(server, names)
     if settings.reflection:
-        reflection.enable_server_reflection([*names, health.SERVICE_NAME, reflection.SERVICE_NAME], server)
+        reflection.enable_server_reflection([*names, SERVICE_NAME, reflection.SERVICE_NAME], server)
     try:
         address = open_door(server, settings)
     except RuntimeError as error:
-        raise SettingsError(f"--listen: {settings.listen} cannot be bound; is another server there?") from error
+        raise SettingsError(
+            f"--listen: {settings.listen} cannot be bound; is another server there, are the certificates whole?"
+        ) from error
     if settings.metrics_listen:
         emit("metrics", metrics=metrics.serve(settings.metrics_listen))
     pool.start()
     await server.start()
-    for name in ("", *names):
-        await health_servicer.set(name, health_pb2.HealthCheckResponse.SERVING)
-    alive = asyncio.create_task(say_alive())
+    beside = [asyncio.create_task(health.follow(pool)), asyncio.create_task(say_alive())]
     tell("READY=1")
     try:
         yield address
     finally:
         tell("STOPPING=1")
-        alive.cancel()
+        for task in beside:
+            task.cancel()
         emit("draining", grace_s=settings.grace_s)
         admission.draining = True
         await asyncio.to_thread(batches.runner.stop)
-        await health_servicer.enter_graceful_shutdown()
+        await health.drain()
         await server.stop(settings.grace_s)
 
 

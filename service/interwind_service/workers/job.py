@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import errno
 import time
 import traceback
 from collections.abc import Callable
@@ -18,10 +17,9 @@ from interwind.errors import InterwindError, InvalidRequest, Overloaded
 from interwind.v1 import response_pb2
 from interwind_service import engine
 from interwind_service.progress import listening
-from interwind_service.tolerances import SPOOL_FULL_RETRY_S
 from interwind_service.workers.arrays import ArrayFolder
 from interwind_service.workers.estimate import check_size
-from interwind_service.workers.spool import SpoolWriter
+from interwind_service.workers.spool import SpoolWriter, room_in_spool
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,7 +62,7 @@ def run_call(work: CallWork, *, notify: Callable[[Any], None]) -> CallAnswer:
         sized = "size" in message.DESCRIPTOR.fields_by_name
         if sized and type(message.size).FromString(work.size_header) != message.size:
             raise InvalidRequest.at("size", "it is not the first field, or stands twice; send one size, first")
-        with stored_arrays(work.arrays), listening(_teller(call, notify)):
+        with room_in_spool(), stored_arrays(work.arrays), listening(_teller(call, notify)):
             arguments = call.decode(message)
             if sized:
                 check_size(message.size, arguments)
@@ -79,11 +77,6 @@ def run_call(work: CallWork, *, notify: Callable[[Any], None]) -> CallAnswer:
             reason="WORKER_OUT_OF_MEMORY",
         )
         return CallAnswer(status=to_status(error), reason=error.reason, trace=traceback.format_exc())
-    except OSError as problem:
-        if problem.errno not in (errno.ENOSPC, errno.EDQUOT):
-            raise
-        error = Overloaded("the spool is full; try again", reason="SPOOL_FULL", retry_after_s=SPOOL_FULL_RETRY_S)
-        return CallAnswer(status=to_status(error), reason=error.reason)
     finally:
         spool.close()
     solve_s = time.monotonic() - started_s

@@ -98,6 +98,7 @@ class WorkerPool(Executor):
         self.count = count
         self.restarts: Counter[str] = Counter()
         self._current: dict[int, Job] = {}
+        self._unable: set[int] = set()
         self._keepers = [
             threading.Thread(target=self._keep, args=(slot,), name=f"keeper-{slot}", daemon=True)
             for slot in range(count)
@@ -112,6 +113,11 @@ class WorkerPool(Executor):
     def busy(self) -> int:
         """Workers computing now."""
         return len(self._current)
+
+    @property
+    def able(self) -> bool:
+        """Whether a worker can be had; at the start the pool is trusted to get some."""
+        return len(self._unable) < self.count
 
     @property
     def waiting(self) -> int:
@@ -161,10 +167,10 @@ class WorkerPool(Executor):
             return heapq.heappop(self._queue)[2]
 
     def _keep(self, slot: int) -> None:
-        process, pipe = self._spawn()
+        process, pipe = self._spawn(slot)
         while (job := self._take()) is not None:
             if not process.is_alive():  # it died while idle: nobody's call is lost
-                process, pipe = self._replace(process, pipe, "died idle")
+                process, pipe = self._replace(slot, process, pipe, "died idle")
             if not job.begin(process):
                 continue
             self._current[slot] = job
@@ -177,7 +183,7 @@ class WorkerPool(Executor):
                 process.join()
                 lost = WorkerLost("the worker that computed this call died; send the call again", retry_after_s=0.0)
                 exit_code = process.exitcode
-                process, pipe = self._replace(process, pipe, reason.reason.lower() if reason else "lost")
+                process, pipe = self._replace(slot, process, pipe, reason.reason.lower() if reason else "lost")
                 lost.metadata["exit_code"] = str(exit_code)
                 job.set_exception(reason or lost)
             elif isinstance(reply, Raised):
@@ -188,14 +194,16 @@ class WorkerPool(Executor):
         pipe.close()  # the worker sees the end of the pipe and leaves
         process.join()
 
-    def _replace(self, process: BaseProcess, pipe: Connection, reason: str) -> tuple[BaseProcess, Connection]:
+    def _replace(
+        self, slot: int, process: BaseProcess, pipe: Connection, reason: str
+    ) -> tuple[BaseProcess, Connection]:
         pipe.close()
         process.join()
         process.close()
         self.restarts[reason] += 1
-        return self._spawn()
+        return self._spawn(slot)
 
-    def _spawn(self) -> tuple[BaseProcess, Connection]:
+    def _spawn(self, slot: int) -> tuple[BaseProcess, Connection]:
         while True:
             ours, theirs = self._context.Pipe()
             process = self._context.Process(target=serve, args=(theirs, self._guards), name="worker", daemon=True)
@@ -204,11 +212,13 @@ class WorkerPool(Executor):
                     process.start()
             except (OSError, EOFError) as error:  # no process to be had right now; the queue holds until there is
                 logger.warning("no worker can be started", extra={"fields": {"error": str(error)}})
+                self._unable.add(slot)
                 ours.close()
                 time.sleep(WORKER_RESPAWN_PAUSE_S)
                 continue
             finally:
                 theirs.close()
+            self._unable.discard(slot)
             return process, ours
 
 

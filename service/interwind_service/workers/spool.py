@@ -6,12 +6,15 @@ the worker still writes it, whole frames only; the file has a name for a few mil
 
 from __future__ import annotations
 
+import errno
 import os
 import struct
 from collections.abc import Callable, Iterator
+from contextlib import contextmanager
 from dataclasses import dataclass
 
-from interwind_service.tolerances import INLINE_ANSWER_BYTES
+from interwind.errors import Overloaded
+from interwind_service.tolerances import INLINE_ANSWER_BYTES, SPOOL_FULL_RETRY_S
 
 LENGTH = struct.Struct(">I")
 
@@ -21,6 +24,21 @@ class Spooled:
     """So many bytes of whole frames stand in the file."""
 
     size_bytes: int
+
+
+@contextmanager
+def room_in_spool() -> Iterator[None]:
+    """Turn a full disk, met inside, into `Overloaded`: room comes back as answers are read."""
+    try:
+        yield
+    except OSError as error:
+        if error.errno not in (errno.ENOSPC, errno.EDQUOT, errno.EFBIG):
+            raise
+        raise Overloaded(
+            "the server has no room for arrays and results right now; try again",
+            reason="SPOOL_FULL",
+            retry_after_s=SPOOL_FULL_RETRY_S,
+        ) from error
 
 
 class SpoolWriter:
