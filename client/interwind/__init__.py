@@ -103,7 +103,15 @@ from interwind.model.response import (
     TimeResponse,
 )
 from interwind.model.server_info import ServerInfo
-from interwind.model.vary import SampleParameter, SampleWindings, Vary, VaryCoupling, VaryInductance, VaryMatrix
+from interwind.model.vary import (
+    SampleParameter,
+    SampleWindings,
+    Vary,
+    VaryCoupling,
+    VaryInductance,
+    VaryMatrix,
+    VaryReadings,
+)
 from interwind.model.waveform import (
     Constant,
     DampedSine,
@@ -233,6 +241,7 @@ __all__ = [
     "VaryCoupling",
     "VaryInductance",
     "VaryMatrix",
+    "VaryReadings",
     "Verdict",
     "VoltageByCurrent",
     "VoltageByVoltage",

@@ -76,3 +76,22 @@ def test_a_coupling_stated_as_coupling_stays_one():
     coils = overrides.variant(numbers[0]).element("T1").windings
     assert coils.stated_as_coupling
     assert 0.7 == coils.coupling[0, 1]
+
+
+def test_readings_make_the_set_that_fits_them():
+    """Open, shorted and series readings of two windings, exact, give back the inductances they were read on."""
+    rng = np.random.default_rng(7)
+    L = np.array([[2e-3, 0.6e-3], [0.6e-3, 1e-3]]) * rng.uniform(0.9, 1.1, (3, 1, 1))
+    readings = (
+        iw.OpenInductance("tx", 1.0, 1e-9),
+        iw.OpenInductance("rx", 1.0, 1e-9),
+        iw.SeriesInductance(("tx", "rx"), True, 1.0, 1e-9),
+        iw.ShortedInductance("tx", ("rx",), 1.0, 1e-9),
+    )
+    series = L[:, 0, 0] + L[:, 1, 1] + 2 * L[:, 0, 1]
+    values = np.stack([L[:, 0, 0], L[:, 1, 1], series, L[:, 0, 0] - L[:, 0, 1] ** 2 / L[:, 1, 1]], axis=1)
+    overrides, numbers = lay_out(link.network(), [iw.VaryReadings("T1", readings, values)])
+    for k in range(3):
+        coils = overrides.variant(numbers[k]).element("T1").windings
+        assert np.allclose(L[k], coils.inductance_h, rtol=1e-6)
+        assert np.array_equal([0.12, 0.09], coils.resistance_ohm)

@@ -18,6 +18,7 @@ from interwind.codec.observable import (
     observables_from_messages,
     observables_to_messages,
 )
+from interwind.codec.reading import reading_from_message, reading_to_message
 from interwind.codec.stream import NamedArray, decode_stream, encode_stream
 from interwind.errors import InvalidRequest, field_path
 from interwind.model import batch as model
@@ -145,6 +146,10 @@ def _column_to_message(column: vary.Column) -> Any:
     elif isinstance(column, vary.VaryMatrix):
         message.matrix.windings_name = column.windings_name
         message.matrix.inductance_h.CopyFrom(array_to_message(column.inductance_h))
+    elif isinstance(column, vary.VaryReadings):
+        message.readings.windings_name = column.windings_name
+        message.readings.readings.extend(reading_to_message(reading) for reading in column.readings)
+        message.readings.values.CopyFrom(array_to_message(column.values))
     else:
         message.sample.CopyFrom(
             batch_pb2.SampleWindings(
@@ -169,6 +174,12 @@ def _column_from_message(message: Any) -> vary.Column:
             return vary.Vary(body.element, body.field, array_from_message(body.values, "values"))
         if kind == "matrix":
             return vary.VaryMatrix(body.windings_name, array_from_message(body.inductance_h, "inductance_h"))
+        if kind == "readings":
+            readings = []
+            for position, reading in enumerate(body.readings):
+                with field_path(f"readings[{position}]"):
+                    readings.append(reading_from_message(reading))
+            return vary.VaryReadings(body.windings_name, tuple(readings), array_from_message(body.values, "values"))
         if kind == "sample":
             name = batch_pb2.SampleParameter.Name(body.parameter).removeprefix("SAMPLE_PARAMETER_")
             parameter = vary.SampleParameter("LEAKAGE" if name == "UNSPECIFIED" else name)

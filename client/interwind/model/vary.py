@@ -9,6 +9,7 @@ from typing import Any
 
 from interwind.errors import InvalidRequest
 from interwind.model.frozen import FloatArray, frozen_floats, frozen_vector, plain_float
+from interwind.model.readings import READINGS, Reading
 
 
 class SampleParameter(Enum):
@@ -90,6 +91,35 @@ class VaryMatrix(_Column):
         object.__setattr__(self, "inductance_h", stack)
 
 
+@dataclass(frozen=True, slots=True, eq=False)
+class VaryReadings(_Column):
+    """Readings of the windings: each variant is the set that fits its row of ``values`` (V, readings) best.
+
+    ``readings`` say what was read and how well it is known; their own values are replaced by those of the variant.
+    """
+
+    windings_name: str
+    readings: tuple[Reading, ...]
+    values: FloatArray
+
+    def __post_init__(self) -> None:
+        _Column.__post_init__(self)
+        object.__setattr__(self, "readings", tuple(self.readings))
+        for position, reading in enumerate(self.readings):
+            if not isinstance(reading, READINGS):
+                raise InvalidRequest.at(
+                    f"readings[{position}]",
+                    f"{type(reading).__name__} found; a reading is expected",
+                )
+        values = frozen_floats(self.values, "values")
+        if values.ndim != 2 or values.shape[1] != len(self.readings):
+            raise InvalidRequest.at(
+                "values",
+                f"shape {values.shape} found; (variants, {len(self.readings)}) is expected",
+            )
+        object.__setattr__(self, "values", values)
+
+
 @dataclass(frozen=True, slots=True)
 class SampleWindings(_Column):
     """``count`` random sets around the nominal one, drawn by the service so that every one of them can exist.
@@ -123,8 +153,15 @@ class SampleWindings(_Column):
                 )
 
 
-Column = Vary | VaryCoupling | VaryInductance | VaryMatrix | SampleWindings
-COLUMNS: tuple[type[Any], ...] = (Vary, VaryCoupling, VaryInductance, VaryMatrix, SampleWindings)
+Column = Vary | VaryCoupling | VaryInductance | VaryMatrix | VaryReadings | SampleWindings
+COLUMNS: tuple[type[Any], ...] = (
+    Vary,
+    VaryCoupling,
+    VaryInductance,
+    VaryMatrix,
+    VaryReadings,
+    SampleWindings,
+)
 
 
 def column_length(column: Column) -> int:
@@ -133,7 +170,7 @@ def column_length(column: Column) -> int:
         return column.count
     if isinstance(column, VaryMatrix):
         return int(column.inductance_h.shape[0])
-    return int((column.values_h if isinstance(column, VaryInductance) else column.values).size)
+    return len(column.values_h if isinstance(column, VaryInductance) else column.values)
 
 
 def variant_count(columns: Sequence[Column]) -> int:

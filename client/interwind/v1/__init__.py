@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "3e3835b9ba2f7ce9a7cc55edbaa5725268099f600123b94c870be4e40c3ef747"
+SOURCE_SHA256 = "37ae013ae2fc19ab530ea894e01c6e8a55b7888114348408e1144663a66d1b35"

@@ -25,44 +25,47 @@ _sym_db = _symbol_database.Default()
 from google.protobuf import timestamp_pb2 as google_dot_protobuf_dot_timestamp__pb2
 from interwind.v1 import array_pb2 as interwind_dot_v1_dot_array__pb2
 from interwind.v1 import observable_pb2 as interwind_dot_v1_dot_observable__pb2
+from interwind.v1 import reading_pb2 as interwind_dot_v1_dot_reading__pb2
 from interwind.v1 import response_pb2 as interwind_dot_v1_dot_response__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x18interwind/v1/batch.proto\x12\x0cinterwind.v1\x1a\x1fgoogle/protobuf/timestamp.proto\x1a\x18interwind/v1/array.proto\x1a\x1dinterwind/v1/observable.proto\x1a\x1binterwind/v1/response.proto\"\xfc\x01\n\x0eOverrideColumn\x12\"\n\x04vary\x18\x01 \x01(\x0b\x32\x12.interwind.v1.VaryH\x00\x12.\n\x08\x63oupling\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.VaryCouplingH\x00\x12\x32\n\ninductance\x18\x03 \x01(\x0b\x32\x1c.interwind.v1.VaryInductanceH\x00\x12*\n\x06matrix\x18\x04 \x01(\x0b\x32\x18.interwind.v1.VaryMatrixH\x00\x12.\n\x06sample\x18\x05 \x01(\x0b\x32\x1c.interwind.v1.SampleWindingsH\x00\x42\x06\n\x04kind\"K\n\x04Vary\x12\x0f\n\x07\x65lement\x18\x01 \x01(\t\x12\r\n\x05\x66ield\x18\x02 \x01(\t\x12#\n\x06values\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\"l\n\x0cVaryCoupling\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12\x0f\n\x07label_a\x18\x02 \x01(\t\x12\x0f\n\x07label_b\x18\x03 \x01(\t\x12#\n\x06values\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\"p\n\x0eVaryInductance\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12\x0f\n\x07label_a\x18\x02 \x01(\t\x12\x0f\n\x07label_b\x18\x03 \x01(\t\x12%\n\x08values_h\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\"N\n\nVaryMatrix\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12)\n\x0cinductance_h\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\"\xa3\x01\n\x0eSampleWindings\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12\x15\n\rvariant_count\x18\x02 \x01(\x03\x12\x0e\n\x06spread\x18\x03 \x01(\x01\x12\x13\n\x0bself_spread\x18\x04 \x01(\x01\x12\x30\n\tparameter\x18\x05 \x01(\x0e\x32\x1d.interwind.v1.SampleParameter\x12\x0c\n\x04seed\x18\x06 \x01(\x03\"i\n\x11\x46requencyAnalysis\x12)\n\x0c\x66requency_hz\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12)\n\x07observe\x18\x02 \x03(\x0b\x32\x18.interwind.v1.Observable\"\xaf\x01\n\x0cTimeAnalysis\x12\x0e\n\x06stop_s\x18\x01 \x01(\x01\x12\x0e\n\x06step_s\x18\x02 \x01(\x01\x12)\n\x07observe\x18\x03 \x03(\x0b\x32\x18.interwind.v1.Observable\x12+\n\x07initial\x18\x04 \x03(\x0b\x32\x1a.interwind.v1.InitialValue\x12\x14\n\x0csteady_start\x18\x05 \x01(\x08\x12\x11\n\ttolerance\x18\x06 \x01(\x01\"r\n\x10PeriodicAnalysis\x12\x10\n\x08period_s\x18\x01 \x01(\x01\x12\x0e\n\x06step_s\x18\x02 \x01(\x01\x12)\n\x07observe\x18\x03 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x11\n\ttolerance\x18\x04 \x01(\x01\"&\n\rCheckAnalysis\x12\x15\n\rwindings_name\x18\x01 \x01(\t\"c\n\x0c\x43ostForecast\x12\x12\n\nduration_s\x18\x01 \x01(\x01\x12\x14\n\x0cresult_bytes\x18\x02 \x01(\x03\x12\x14\n\x0cmemory_bytes\x18\x03 \x01(\x03\x12\x13\n\x0b\x63hunk_count\x18\x04 \x01(\x03\"\xa4\x03\n\x05\x42\x61tch\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\x12\'\n\x05state\x18\x02 \x01(\x0e\x32\x18.interwind.v1.BatchState\x12\x0c\n\x04\x64one\x18\x03 \x01(\x08\x12\x15\n\rvariant_count\x18\x04 \x01(\x03\x12\x10\n\x08ok_count\x18\x05 \x01(\x03\x12\x15\n\rinvalid_count\x18\x06 \x01(\x03\x12\x14\n\x0c\x66\x61iled_count\x18\x07 \x01(\x03\x12\x17\n\x0f\x63\x61ncelled_count\x18\x08 \x01(\x03\x12\x10\n\x08sequence\x18\t \x01(\x03\x12\x12\n\nrequest_id\x18\n \x01(\t\x12/\n\x0b\x63reate_time\x18\x0b \x01(\x0b\x32\x1a.google.protobuf.Timestamp\x12-\n\tdone_time\x18\x0c \x01(\x0b\x32\x1a.google.protobuf.Timestamp\x12/\n\x0b\x65xpire_time\x18\r \x01(\x0b\x32\x1a.google.protobuf.Timestamp\x12,\n\x08\x66orecast\x18\x0e \x01(\x0b\x32\x1a.interwind.v1.CostForecast*\x8c\x01\n\nBatchState\x12\x1b\n\x17\x42\x41TCH_STATE_UNSPECIFIED\x10\x00\x12\x17\n\x13\x42\x41TCH_STATE_WAITING\x10\x01\x12\x17\n\x13\x42\x41TCH_STATE_RUNNING\x10\x02\x12\x14\n\x10\x42\x41TCH_STATE_DONE\x10\x03\x12\x19\n\x15\x42\x41TCH_STATE_CANCELLED\x10\x04*\x9b\x01\n\rVariantStatus\x12\x1e\n\x1aVARIANT_STATUS_UNSPECIFIED\x10\x00\x12\x15\n\x11VARIANT_STATUS_OK\x10\x01\x12\x1a\n\x16VARIANT_STATUS_INVALID\x10\x02\x12\x19\n\x15VARIANT_STATUS_FAILED\x10\x03\x12\x1c\n\x18VARIANT_STATUS_CANCELLED\x10\x04*n\n\x0fSampleParameter\x12 \n\x1cSAMPLE_PARAMETER_UNSPECIFIED\x10\x00\x12\x1c\n\x18SAMPLE_PARAMETER_LEAKAGE\x10\x01\x12\x1b\n\x17SAMPLE_PARAMETER_FACTOR\x10\x02\x62\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x18interwind/v1/batch.proto\x12\x0cinterwind.v1\x1a\x1fgoogle/protobuf/timestamp.proto\x1a\x18interwind/v1/array.proto\x1a\x1dinterwind/v1/observable.proto\x1a\x1ainterwind/v1/reading.proto\x1a\x1binterwind/v1/response.proto\"\xac\x02\n\x0eOverrideColumn\x12\"\n\x04vary\x18\x01 \x01(\x0b\x32\x12.interwind.v1.VaryH\x00\x12.\n\x08\x63oupling\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.VaryCouplingH\x00\x12\x32\n\ninductance\x18\x03 \x01(\x0b\x32\x1c.interwind.v1.VaryInductanceH\x00\x12*\n\x06matrix\x18\x04 \x01(\x0b\x32\x18.interwind.v1.VaryMatrixH\x00\x12.\n\x06sample\x18\x05 \x01(\x0b\x32\x1c.interwind.v1.SampleWindingsH\x00\x12.\n\x08readings\x18\x06 \x01(\x0b\x32\x1a.interwind.v1.VaryReadingsH\x00\x42\x06\n\x04kind\"K\n\x04Vary\x12\x0f\n\x07\x65lement\x18\x01 \x01(\t\x12\r\n\x05\x66ield\x18\x02 \x01(\t\x12#\n\x06values\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\"l\n\x0cVaryCoupling\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12\x0f\n\x07label_a\x18\x02 \x01(\t\x12\x0f\n\x07label_b\x18\x03 \x01(\t\x12#\n\x06values\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\"p\n\x0eVaryInductance\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12\x0f\n\x07label_a\x18\x02 \x01(\t\x12\x0f\n\x07label_b\x18\x03 \x01(\t\x12%\n\x08values_h\x18\x04 \x01(\x0b\x32\x13.interwind.v1.Array\"N\n\nVaryMatrix\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12)\n\x0cinductance_h\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\"s\n\x0cVaryReadings\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12\'\n\x08readings\x18\x02 \x03(\x0b\x32\x15.interwind.v1.Reading\x12#\n\x06values\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\"\xa3\x01\n\x0eSampleWindings\x12\x15\n\rwindings_name\x18\x01 \x01(\t\x12\x15\n\rvariant_count\x18\x02 \x01(\x03\x12\x0e\n\x06spread\x18\x03 \x01(\x01\x12\x13\n\x0bself_spread\x18\x04 \x01(\x01\x12\x30\n\tparameter\x18\x05 \x01(\x0e\x32\x1d.interwind.v1.SampleParameter\x12\x0c\n\x04seed\x18\x06 \x01(\x03\"i\n\x11\x46requencyAnalysis\x12)\n\x0c\x66requency_hz\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12)\n\x07observe\x18\x02 \x03(\x0b\x32\x18.interwind.v1.Observable\"\xaf\x01\n\x0cTimeAnalysis\x12\x0e\n\x06stop_s\x18\x01 \x01(\x01\x12\x0e\n\x06step_s\x18\x02 \x01(\x01\x12)\n\x07observe\x18\x03 \x03(\x0b\x32\x18.interwind.v1.Observable\x12+\n\x07initial\x18\x04 \x03(\x0b\x32\x1a.interwind.v1.InitialValue\x12\x14\n\x0csteady_start\x18\x05 \x01(\x08\x12\x11\n\ttolerance\x18\x06 \x01(\x01\"r\n\x10PeriodicAnalysis\x12\x10\n\x08period_s\x18\x01 \x01(\x01\x12\x0e\n\x06step_s\x18\x02 \x01(\x01\x12)\n\x07observe\x18\x03 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x11\n\ttolerance\x18\x04 \x01(\x01\"&\n\rCheckAnalysis\x12\x15\n\rwindings_name\x18\x01 \x01(\t\"c\n\x0c\x43ostForecast\x12\x12\n\nduration_s\x18\x01 \x01(\x01\x12\x14\n\x0cresult_bytes\x18\x02 \x01(\x03\x12\x14\n\x0cmemory_bytes\x18\x03 \x01(\x03\x12\x13\n\x0b\x63hunk_count\x18\x04 \x01(\x03\"\xa4\x03\n\x05\x42\x61tch\x12\x10\n\x08\x62\x61tch_id\x18\x01 \x01(\t\x12\'\n\x05state\x18\x02 \x01(\x0e\x32\x18.interwind.v1.BatchState\x12\x0c\n\x04\x64one\x18\x03 \x01(\x08\x12\x15\n\rvariant_count\x18\x04 \x01(\x03\x12\x10\n\x08ok_count\x18\x05 \x01(\x03\x12\x15\n\rinvalid_count\x18\x06 \x01(\x03\x12\x14\n\x0c\x66\x61iled_count\x18\x07 \x01(\x03\x12\x17\n\x0f\x63\x61ncelled_count\x18\x08 \x01(\x03\x12\x10\n\x08sequence\x18\t \x01(\x03\x12\x12\n\nrequest_id\x18\n \x01(\t\x12/\n\x0b\x63reate_time\x18\x0b \x01(\x0b\x32\x1a.google.protobuf.Timestamp\x12-\n\tdone_time\x18\x0c \x01(\x0b\x32\x1a.google.protobuf.Timestamp\x12/\n\x0b\x65xpire_time\x18\r \x01(\x0b\x32\x1a.google.protobuf.Timestamp\x12,\n\x08\x66orecast\x18\x0e \x01(\x0b\x32\x1a.interwind.v1.CostForecast*\x8c\x01\n\nBatchState\x12\x1b\n\x17\x42\x41TCH_STATE_UNSPECIFIED\x10\x00\x12\x17\n\x13\x42\x41TCH_STATE_WAITING\x10\x01\x12\x17\n\x13\x42\x41TCH_STATE_RUNNING\x10\x02\x12\x14\n\x10\x42\x41TCH_STATE_DONE\x10\x03\x12\x19\n\x15\x42\x41TCH_STATE_CANCELLED\x10\x04*\x9b\x01\n\rVariantStatus\x12\x1e\n\x1aVARIANT_STATUS_UNSPECIFIED\x10\x00\x12\x15\n\x11VARIANT_STATUS_OK\x10\x01\x12\x1a\n\x16VARIANT_STATUS_INVALID\x10\x02\x12\x19\n\x15VARIANT_STATUS_FAILED\x10\x03\x12\x1c\n\x18VARIANT_STATUS_CANCELLED\x10\x04*n\n\x0fSampleParameter\x12 \n\x1cSAMPLE_PARAMETER_UNSPECIFIED\x10\x00\x12\x1c\n\x18SAMPLE_PARAMETER_LEAKAGE\x10\x01\x12\x1b\n\x17SAMPLE_PARAMETER_FACTOR\x10\x02\x62\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
 _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'interwind.v1.batch_pb2', _globals)
 if not _descriptor._USE_C_DESCRIPTORS:
   DESCRIPTOR._loaded_options = None
-  _globals['_BATCHSTATE']._serialized_start=1929
-  _globals['_BATCHSTATE']._serialized_end=2069
-  _globals['_VARIANTSTATUS']._serialized_start=2072
-  _globals['_VARIANTSTATUS']._serialized_end=2227
-  _globals['_SAMPLEPARAMETER']._serialized_start=2229
-  _globals['_SAMPLEPARAMETER']._serialized_end=2339
-  _globals['_OVERRIDECOLUMN']._serialized_start=162
-  _globals['_OVERRIDECOLUMN']._serialized_end=414
-  _globals['_VARY']._serialized_start=416
-  _globals['_VARY']._serialized_end=491
-  _globals['_VARYCOUPLING']._serialized_start=493
-  _globals['_VARYCOUPLING']._serialized_end=601
-  _globals['_VARYINDUCTANCE']._serialized_start=603
-  _globals['_VARYINDUCTANCE']._serialized_end=715
-  _globals['_VARYMATRIX']._serialized_start=717
-  _globals['_VARYMATRIX']._serialized_end=795
-  _globals['_SAMPLEWINDINGS']._serialized_start=798
-  _globals['_SAMPLEWINDINGS']._serialized_end=961
-  _globals['_FREQUENCYANALYSIS']._serialized_start=963
-  _globals['_FREQUENCYANALYSIS']._serialized_end=1068
-  _globals['_TIMEANALYSIS']._serialized_start=1071
-  _globals['_TIMEANALYSIS']._serialized_end=1246
-  _globals['_PERIODICANALYSIS']._serialized_start=1248
-  _globals['_PERIODICANALYSIS']._serialized_end=1362
-  _globals['_CHECKANALYSIS']._serialized_start=1364
-  _globals['_CHECKANALYSIS']._serialized_end=1402
-  _globals['_COSTFORECAST']._serialized_start=1404
-  _globals['_COSTFORECAST']._serialized_end=1503
-  _globals['_BATCH']._serialized_start=1506
-  _globals['_BATCH']._serialized_end=1926
+  _globals['_BATCHSTATE']._serialized_start=2122
+  _globals['_BATCHSTATE']._serialized_end=2262
+  _globals['_VARIANTSTATUS']._serialized_start=2265
+  _globals['_VARIANTSTATUS']._serialized_end=2420
+  _globals['_SAMPLEPARAMETER']._serialized_start=2422
+  _globals['_SAMPLEPARAMETER']._serialized_end=2532
+  _globals['_OVERRIDECOLUMN']._serialized_start=190
+  _globals['_OVERRIDECOLUMN']._serialized_end=490
+  _globals['_VARY']._serialized_start=492
+  _globals['_VARY']._serialized_end=567
+  _globals['_VARYCOUPLING']._serialized_start=569
+  _globals['_VARYCOUPLING']._serialized_end=677
+  _globals['_VARYINDUCTANCE']._serialized_start=679
+  _globals['_VARYINDUCTANCE']._serialized_end=791
+  _globals['_VARYMATRIX']._serialized_start=793
+  _globals['_VARYMATRIX']._serialized_end=871
+  _globals['_VARYREADINGS']._serialized_start=873
+  _globals['_VARYREADINGS']._serialized_end=988
+  _globals['_SAMPLEWINDINGS']._serialized_start=991
+  _globals['_SAMPLEWINDINGS']._serialized_end=1154
+  _globals['_FREQUENCYANALYSIS']._serialized_start=1156
+  _globals['_FREQUENCYANALYSIS']._serialized_end=1261
+  _globals['_TIMEANALYSIS']._serialized_start=1264
+  _globals['_TIMEANALYSIS']._serialized_end=1439
+  _globals['_PERIODICANALYSIS']._serialized_start=1441
+  _globals['_PERIODICANALYSIS']._serialized_end=1555
+  _globals['_CHECKANALYSIS']._serialized_start=1557
+  _globals['_CHECKANALYSIS']._serialized_end=1595
+  _globals['_COSTFORECAST']._serialized_start=1597
+  _globals['_COSTFORECAST']._serialized_end=1696
+  _globals['_BATCH']._serialized_start=1699
+  _globals['_BATCH']._serialized_end=2119
 # @@protoc_insertion_point(module_scope)

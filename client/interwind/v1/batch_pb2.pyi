@@ -1,6 +1,7 @@
 from google.protobuf import timestamp_pb2 as _timestamp_pb2
 from interwind.v1 import array_pb2 as _array_pb2
 from interwind.v1 import observable_pb2 as _observable_pb2
+from interwind.v1 import reading_pb2 as _reading_pb2
 from interwind.v1 import response_pb2 as _response_pb2
 from google.protobuf.internal import containers as _containers
 from google.protobuf.internal import enum_type_wrapper as _enum_type_wrapper
@@ -46,18 +47,20 @@ SAMPLE_PARAMETER_LEAKAGE: SampleParameter
 SAMPLE_PARAMETER_FACTOR: SampleParameter
 
 class OverrideColumn(_message.Message):
-    __slots__ = ("vary", "coupling", "inductance", "matrix", "sample")
+    __slots__ = ("vary", "coupling", "inductance", "matrix", "sample", "readings")
     VARY_FIELD_NUMBER: _ClassVar[int]
     COUPLING_FIELD_NUMBER: _ClassVar[int]
     INDUCTANCE_FIELD_NUMBER: _ClassVar[int]
     MATRIX_FIELD_NUMBER: _ClassVar[int]
     SAMPLE_FIELD_NUMBER: _ClassVar[int]
+    READINGS_FIELD_NUMBER: _ClassVar[int]
     vary: Vary
     coupling: VaryCoupling
     inductance: VaryInductance
     matrix: VaryMatrix
     sample: SampleWindings
-    def __init__(self, vary: _Optional[_Union[Vary, _Mapping]] = ..., coupling: _Optional[_Union[VaryCoupling, _Mapping]] = ..., inductance: _Optional[_Union[VaryInductance, _Mapping]] = ..., matrix: _Optional[_Union[VaryMatrix, _Mapping]] = ..., sample: _Optional[_Union[SampleWindings, _Mapping]] = ...) -> None: ...
+    readings: VaryReadings
+    def __init__(self, vary: _Optional[_Union[Vary, _Mapping]] = ..., coupling: _Optional[_Union[VaryCoupling, _Mapping]] = ..., inductance: _Optional[_Union[VaryInductance, _Mapping]] = ..., matrix: _Optional[_Union[VaryMatrix, _Mapping]] = ..., sample: _Optional[_Union[SampleWindings, _Mapping]] = ..., readings: _Optional[_Union[VaryReadings, _Mapping]] = ...) -> None: ...
 
 class Vary(_message.Message):
     __slots__ = ("element", "field", "values")
@@ -100,6 +103,16 @@ class VaryMatrix(_message.Message):
     windings_name: str
     inductance_h: _array_pb2.Array
     def __init__(self, windings_name: _Optional[str] = ..., inductance_h: _Optional[_Union[_array_pb2.Array, _Mapping]] = ...) -> None: ...
+
+class VaryReadings(_message.Message):
+    __slots__ = ("windings_name", "readings", "values")
+    WINDINGS_NAME_FIELD_NUMBER: _ClassVar[int]
+    READINGS_FIELD_NUMBER: _ClassVar[int]
+    VALUES_FIELD_NUMBER: _ClassVar[int]
+    windings_name: str
+    readings: _containers.RepeatedCompositeFieldContainer[_reading_pb2.Reading]
+    values: _array_pb2.Array
+    def __init__(self, windings_name: _Optional[str] = ..., readings: _Optional[_Iterable[_Union[_reading_pb2.Reading, _Mapping]]] = ..., values: _Optional[_Union[_array_pb2.Array, _Mapping]] = ...) -> None: ...
 
 class SampleWindings(_message.Message):
     __slots__ = ("windings_name", "variant_count", "spread", "self_spread", "parameter", "seed")

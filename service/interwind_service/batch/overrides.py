@@ -19,11 +19,23 @@ from numpy.typing import NDArray
 from interwind.errors import InvalidRequest, field_path
 from interwind.model.elements import Element, Windings
 from interwind.model.network import Network
-from interwind.model.vary import Column, SampleWindings, Vary, VaryCoupling, VaryInductance, VaryMatrix, variant_count
+from interwind.model.readings import InverseInductance, VoltageRatio
+from interwind.model.vary import (
+    Column,
+    SampleWindings,
+    Vary,
+    VaryCoupling,
+    VaryInductance,
+    VaryMatrix,
+    VaryReadings,
+    variant_count,
+)
 from interwind.model.windings import WindingSet
 from interwind_service import engine
 
 FloatArray = NDArray[np.float64]
+
+_READ: dict[type, str] = {VoltageRatio: "ratio", InverseInductance: "inverse_inductance_per_h"}  # what was read
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -52,6 +64,8 @@ class Overrides:
             if isinstance(head, VaryMatrix):
                 size = head.inductance_h.shape[1]
                 filled.append(VaryMatrix(head.windings_name, own.reshape(-1, size, size)))
+            elif isinstance(head, VaryReadings):
+                filled.append(dataclasses.replace(head, values=own))
             elif isinstance(head, VaryInductance):
                 filled.append(VaryInductance(head.windings_name, head.pair, own[:, 0]))
             else:
@@ -107,10 +121,12 @@ def _head(column: Column) -> Column:
         return VaryMatrix(column.windings_name, column.inductance_h[:0])
     if isinstance(column, VaryInductance):
         return VaryInductance(column.windings_name, column.pair, np.empty(0))
-    return dataclasses.replace(column, values=np.empty(0))
+    return dataclasses.replace(column, values=column.values[:0])
 
 
 def _width(network: Network, head: Column) -> int:
+    if isinstance(head, VaryReadings):
+        return len(head.readings)
     return int(np.prod(head.inductance_h.shape[1:])) if isinstance(head, VaryMatrix) else 1
 
 
@@ -123,7 +139,7 @@ def _check(network: Network, column: Column, earlier: Sequence[Column]) -> None:
             raise InvalidRequest.at("field", f"{column.element}.{column.field} varies in an earlier column already")
         return
     windings = _windings(network, column.windings_name)
-    whole = VaryMatrix | SampleWindings
+    whole = VaryMatrix | VaryReadings | SampleWindings
     for other in earlier:
         if not isinstance(other, Vary) and other.windings_name == column.windings_name:
             if isinstance(column, whole) or isinstance(other, whole):
@@ -191,6 +207,8 @@ def _with(element: Any, head: Column, numbers: FloatArray) -> Any:
     coils: WindingSet = element.windings
     if isinstance(head, VaryMatrix):
         coils = _stated(coils, inductance_h=numbers.reshape(coils.size, coils.size))
+    elif isinstance(head, VaryReadings):
+        coils = _stated(coils, inductance_h=_identified(coils, head, numbers))
     else:
         i, j = (coils.index(label) for label in head.pair)
         coils = (
@@ -199,6 +217,15 @@ def _with(element: Any, head: Column, numbers: FloatArray) -> Any:
             else _entry(coils, i, j, numbers[0])
         )
     return dataclasses.replace(element, windings=coils)
+
+
+def _identified(coils: WindingSet, head: VaryReadings, numbers: FloatArray) -> FloatArray:
+    """Return the inductance matrix that fits the readings of one variant best."""
+    readings = [
+        dataclasses.replace(reading, **{_READ.get(type(reading), "inductance_h"): float(number)})
+        for reading, number in zip(head.readings, numbers, strict=True)
+    ]
+    return engine.identify(coils.labels, readings).windings.inductance_h
 
 
 def _replace(value: Any, field: str, number: float) -> Any:

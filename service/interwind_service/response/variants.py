@@ -13,7 +13,16 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind.model import elements as el
-from interwind.model.vary import Column, SampleWindings, Vary, VaryCoupling, VaryInductance, VaryMatrix, variant_count
+from interwind.model.vary import (
+    Column,
+    SampleWindings,
+    Vary,
+    VaryCoupling,
+    VaryInductance,
+    VaryMatrix,
+    VaryReadings,
+    variant_count,
+)
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import WindingCoordinates
@@ -79,8 +88,8 @@ def variants_of(
                     values[branch] = 1.0 / number if inverted else number
             else:
                 return None
-        elif isinstance(column, SampleWindings):
-            return None  # drawn before
+        elif isinstance(column, SampleWindings | VaryReadings):
+            return None  # matrices are made of them one by one, before
         else:
             group = next(k for k, g in enumerate(topology.groups) if g.name == column.windings_name)
             base = topology.groups[group].inductance_h
