@@ -122,7 +122,7 @@ FIT_DAMPING_LEAST = 1e-15
 FIT_DAMPING_LARGEST = 1e12
 # The steps have settled when chi-square falls by less than this part of itself; steps allowed (10 to 30 are usual).
 FIT_GAIN = 1e-8
-FIT_STEPS = 500
+FIT_STEPS = 200
 # Readings scaled to norm 1 that determine a direction only below this say nothing about it beyond rounding.
 UNDETERMINED_SINGULAR_VALUE = 1e-9
 # A residual that keeps less than this part of its variance belongs to a reading that alone decides its own value.
@@ -131,8 +131,10 @@ FREE_READING = 1e-9
 OUTLIER_PROBABILITY = 0.01
 # Chi-square beyond its one-in-a-thousand point: the uncertainties do not hold.
 CONTRADICTION_PROBABILITY = 1e-3
-# Standardised residuals within this part of each other belong to one and the same contradiction.
-SAME_RESIDUAL = 1e-6
+# Of two readings left out in turn the one is better only when chi-square falls further by this (one in twenty, one
+# degree of freedom), or by this part of what it frees where that is less.
+RIVAL_CHI_SQUARE = 3.84
+SAME_CHI_SQUARE = 0.1
 # A free step gaining more than this part of chi-square: the fit is held by the edge of the cone. Also the way back in.
 EDGE_GAIN = 1e-6
 # Readings left out in turn where some contradict: a fit each, some ten milliseconds.

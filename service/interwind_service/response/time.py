@@ -17,7 +17,7 @@ from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
 from interwind_service.response.flow import Flow, flow_of
-from interwind_service.response.generator import generator_of
+from interwind_service.response.generator import Generator, generator_of
 from interwind_service.response.initial import start_of
 from interwind_service.response.ledger import ledger_of
 from interwind_service.response.observe import resolve
@@ -83,7 +83,7 @@ def time_response(
     if topology.of_kind(*_SWITCHED).size:
         return time_response_switching(network, stop_s, step_s, asked, initial, tolerance, sink=sink)
     generator = generator_of(topology, stop_s, step_s)
-    space = model_of(topology, 1.0 / np.sqrt(step_s * stop_s))
+    space = model_of(topology, _centre(generator, stop_s, step_s))
     start = start_of(space, initial, generator.U @ generator.state(np.zeros(1))[0])
     readout = readout_of(topology, asked)
     flow = flow_of(space, generator)
@@ -103,6 +103,12 @@ def time_response(
         findings=(*topology.findings, *start.findings),
         evidence=evidence,
     )
+
+
+def _centre(generator: Generator, stop_s: float, step_s: float) -> float:
+    """Choose s0, 1/s: between the step and the run, or at the fastest drive while slow modes still keep their phase."""
+    fastest = float(generator.rate.max(initial=0.0))
+    return max(1.0 / float(np.sqrt(step_s * stop_s)), min(fastest, tol.SLOW_PHASE / stop_s))
 
 
 def _collect(run: Propagation, readout: Readout, columns: int, sink: RowSink | None) -> FloatArray:
