@@ -107,6 +107,8 @@ def array_from_message(message: array_pb2.Array, field: str, *, real: bool = Tru
                 raise InvalidRequest.at(f"{field}.values", f"{numbers.size} numbers found; complex ones come in pairs")
             array = numbers.view("<c16")
         else:
+            if dtype.kind == "i" and not (np.abs(numbers) < 2.0 ** (8 * dtype.itemsize - 1)).all():
+                raise InvalidRequest.at(f"{field}.values", f"a number found that no {8 * dtype.itemsize}-bit integer holds")
             array = numbers.astype(dtype)
         if not shape:
             shape = () if array.size == 1 else (array.size,)
