@@ -227,6 +227,6 @@ def test_chopped_impulse_falls_to_nothing(chop_s):
         samples.append(time_response(net, 10e-6, 0.05e-6, [ob.NodeVoltage("a")]).samples[:, 0])
     t = 0.05e-6 * np.arange(201)
     before, after = t < chop_s - 1e-12, t > chop_s + 0.2e-6 - 1e-12
-    assert np.array_equal(samples[0][before], samples[1][before])
+    assert np.abs(samples[0][before] - samples[1][before]).max() < 1e-11
     assert np.abs(samples[0][after]).max() < 1e-10
     assert samples[1].max() == pytest.approx(100.0, rel=1e-3)
