@@ -134,7 +134,8 @@ def test_one_misread_coupling_of_four():
     """Four windings, k24 = 0.973 for 0.993: completion stays near the truth, the nearest set loses the leakage.
 
     Leakages 1-2, 1-3, 1-4, the ratio of the leakages 2-4 (372 to 113 nH), and winding 1 with all others shorted
-    (derived by a second method). The first self-inductance comes back from those leakages, hence one unit of the last digit.
+    (derived by a second method). The first self-inductance comes back from those leakages, hence one unit of the last
+    digit.
     """
     K = symmetric([0.996, 0.993, 0.990, 0.996, 0.973, 0.996])
     own = 490e-6 / 65 * np.array([64.0, 1.0, 1.0, 1.0])

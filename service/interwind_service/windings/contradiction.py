@@ -11,10 +11,10 @@ from interwind.model.finding import Finding, Severity
 from interwind.model.frozen import FloatArray
 from interwind.model.identification import Outlier
 from interwind.model.windings import WindingSet
-from interwind_service.tolerances import EDGE_GAIN, READINGS_LEFT_OUT
+from interwind_service.tolerances import EDGE_GAIN, LEFT_OUT_STEPS, READINGS_LEFT_OUT
 from interwind_service.windings.fit import Fit, fit
 from interwind_service.windings.intake import Taken
-from interwind_service.windings.outliers import agrees, indistinct, inside, set_aside, standardised
+from interwind_service.windings.outliers import agrees, inside, set_aside, standardised
 from interwind_service.windings.readings import predicted, windings_of
 from interwind_service.windings.slips import slip_of
 from interwind_service.windings.verdict import check
@@ -31,6 +31,12 @@ class Contradiction:
     findings: tuple[Finding, ...]
     without_h: FloatArray
 
+    @property
+    def pair(self) -> tuple[str, str] | None:
+        """The first two windings, and no more, that the contradiction points at."""
+        named = (finding.windings for finding in self.findings if len(finding.windings) == 2)
+        return next(((names[0], names[1]) for names in named), None)
+
 
 def contradiction_of(used: Sequence[Taken], labels: Sequence[str], fitted: Fit) -> Contradiction:
     """Judge the residuals of a fit.
@@ -45,14 +51,12 @@ def contradiction_of(used: Sequence[Taken], labels: Sequence[str], fitted: Fit) 
         return Contradiction(w, (), (), fitted.inductance_h)
     if freedom == 0:
         return _left_out_in_turn(used, labels, fitted, w)
-    same = () if _on_edge(fitted) else indistinct(w)
-    if same:
-        return Contradiction(w, (), (_undecidable(used, same, w[same[0]]),), fitted.inductance_h)
-    aside, rest = set_aside(used, labels, fitted)
-    if not aside:
+    found = set_aside(used, labels, fitted)
+    rest = found.rest
+    if not found.aside and not found.undecided:
         return _left_out_in_turn(used, labels, fitted, w) if _on_edge(fitted) else _unexplained(fitted, w, freedom)
     outliers, findings = [], []
-    for position, residual in aside:
+    for position, residual in found.aside:
         one, names = used[position], windings_of(used[position].reading)
         would_fit, _ = predicted(one.reading, rest.inductance_h, labels)
         outliers.append(Outlier(position, names, residual))
@@ -63,6 +67,8 @@ def contradiction_of(used: Sequence[Taken], labels: Sequence[str], fitted: Fit) 
         findings.append(
             Finding("OUTLIER", Severity.WARNING, names, f"readings[{position}]", text, one.value, would_fit)
         )
+    if found.undecided:
+        findings.append(_undecided(used, found.undecided, rest.chi_square))
     return Contradiction(w, tuple(outliers), tuple(findings), rest.inductance_h)
 
 
@@ -81,7 +87,7 @@ def _left_out_in_turn(used: Sequence[Taken], labels: Sequence[str], fitted: Fit,
         finding = Finding("READINGS_IMPOSSIBLE", Severity.ERROR, (), "readings", text, fitted.chi_square)
         return Contradiction(w, (), (finding,), fitted.inductance_h)
     start = inside(fitted.inductance_h)
-    refits = [fit([one for k, one in enumerate(used) if k != p], labels, start) for p in suspects]
+    refits = [fit([r for k, r in enumerate(used) if k != p], labels, start, steps=LEFT_OUT_STEPS) for p in suspects]
     best = int(np.argmin([refit.chi_square for refit in refits]))
     position, least = suspects[best], refits[best].chi_square
     names = windings_of(used[position].reading)
@@ -108,14 +114,14 @@ def _of_culprit(used: Sequence[Taken], labels: Sequence[str], fitted: Fit) -> tu
     return tuple(k for k, one in enumerate(used) if set(windings_of(one.reading)) == set(culprits[0].pair))
 
 
-def _undecidable(used: Sequence[Taken], positions: tuple[int, ...], w: float) -> Finding:
+def _undecided(used: Sequence[Taken], positions: tuple[int, ...], chi_square: float) -> Finding:
     names = tuple(dict.fromkeys(label for k in positions for label in windings_of(used[k].reading)))
     numbers = ", ".join(str(k + 1) for k in positions)
     text = (
-        f"Readings {numbers} contradict each other by {abs(w):.3g} deviations, and nothing here tells which of them is "
+        f"Readings {numbers} contradict each other (chi-square {chi_square:.3g}), and nothing here tells which is "
         "wrong. Take one of them again, or one more of the same windings."
     )
-    return Finding("READINGS_CONTRADICT", Severity.WARNING, names, f"readings[{positions[0]}]", text, abs(float(w)))
+    return Finding("READINGS_CONTRADICT", Severity.WARNING, names, f"readings[{positions[0]}]", text, chi_square)
 
 
 def _unexplained(fitted: Fit, w: FloatArray, freedom: int) -> Contradiction:

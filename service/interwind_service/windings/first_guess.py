@@ -155,7 +155,7 @@ def _definite(K: FloatArray) -> FloatArray:
         completed = np.where(unknown, FIRST_COUPLING, K)
     completed = np.where(unknown & (completed == 0.0), FIRST_COUPLING, completed)
     least = float(np.linalg.eigvalsh(completed)[0])
-    drawn = max(0.0, (FIRST_MARGIN - least) / (1.0 - least))
+    drawn = (FIRST_MARGIN - least) / (1.0 - least) if least < FIRST_MARGIN else 0.0
     return (1.0 - drawn) * completed + drawn * np.eye(len(K))
 
 

@@ -112,7 +112,7 @@ def _following(
     aim: tuple[str, str] | None,
 ) -> tuple[Reading | None, list[Finding]]:
     """A contradiction is settled first, by a short-circuit test of the pair it points at; else the design decides."""
-    suspect = next((outlier.windings for outlier in found.outliers if len(outlier.windings) == 2), None)
+    suspect = found.pair
     if aim is None and suspect is not None:
         i, j = (coils.index(label) for label in suspect)
         value = _expected(found.without_h, i, j)

@@ -10,6 +10,7 @@ again, and the one that frees most chi-square set aside; then the next, until wh
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 
 import numpy as np
 from scipy.stats import chi2, norm
@@ -22,11 +23,14 @@ from interwind_service.tolerances import (
     LEFT_OUT_STEPS,
     OUTLIER_PROBABILITY,
     READINGS_LEFT_OUT,
-    SAME_RESIDUAL,
+    RIVAL_CHI_SQUARE,
+    SAME_CHI_SQUARE,
+    UNDETERMINED_SINGULAR_VALUE,
 )
 from interwind_service.windings.first_guess import first_guess
 from interwind_service.windings.fit import Fit, fit
 from interwind_service.windings.intake import Taken
+from interwind_service.windings.readings import predicted
 
 
 def standardised(fitted: Fit) -> FloatArray:
@@ -46,33 +50,58 @@ def agrees(fitted: Fit) -> bool:
     )
 
 
-def indistinct(w: FloatArray) -> tuple[int, ...]:
-    """Return the positions that share the largest |w|: their readings cannot tell which of them is wrong."""
-    size = np.nan_to_num(np.abs(w))
-    same = np.flatnonzero(size >= (1.0 - SAME_RESIDUAL) * size.max())
-    return tuple(int(k) for k in same) if len(same) > 1 and size.max() > 0 else ()
+@dataclass(frozen=True, slots=True, eq=False)
+class SetAside:
+    """``aside``: (position, w) of each reading set aside, in that order; ``rest``: the fit of the others;
+    ``undecided``: positions of which any one, left out next, would do as well.
+    """
+
+    aside: tuple[tuple[int, float], ...]
+    rest: Fit
+    undecided: tuple[int, ...]
 
 
-def set_aside(used: Sequence[Taken], labels: Sequence[str], fitted: Fit) -> tuple[list[tuple[int, float]], Fit]:
-    """Return (position, w) of the readings set aside, in that order, and the fit of the others.
+def set_aside(used: Sequence[Taken], labels: Sequence[str], fitted: Fit) -> SetAside:
+    """Set readings aside until the rest agrees.
 
-    A reading that alone decides its own value is never set aside, nor one that frees less than chance may.
+    A reading without which the rest leaves an entry open is never set aside, nor one that frees less than chance may.
+    Where leaving out one of several frees the same but for what chance may, nothing tells which of them is wrong.
     """
     kept = list(range(len(used)))
     current = fitted
     aside: list[tuple[int, float]] = []
-    while not agrees(current) and len(kept) > current.jacobian.shape[1]:
-        w = standardised(current)
-        order = [k for k in np.argsort(-np.nan_to_num(np.abs(w))) if np.isfinite(w[k])][:READINGS_LEFT_OUT]
+    while not agrees(current):
+        order = _spared(current)
+        if not order:
+            break
         refits = [_without(used, labels, kept, k) for k in order]
-        best = int(np.argmin([refit.chi_square for refit in refits]))
-        drop = current.chi_square - refits[best].chi_square
+        left = np.array([refit.chi_square for refit in refits])
+        best = int(np.argmin(left))
+        drop = current.chi_square - left[best]
         if drop <= _limit(len(used)) ** 2:
             break
+        rivals = np.flatnonzero(left <= left[best] + min(RIVAL_CHI_SQUARE, SAME_CHI_SQUARE * drop))
+        if len(rivals) > 1:
+            return SetAside(tuple(aside), current, tuple(sorted(kept[order[k]] for k in rivals)))
         position = kept.pop(order[best])
-        aside.append((position, float(np.copysign(np.sqrt(drop), w[order[best]]))))
+        value, _ = predicted(used[position].reading, refits[best].inductance_h, labels)
+        aside.append((position, float(np.copysign(np.sqrt(drop), used[position].value - value))))
         current = refits[best]
-    return aside, current
+    return SetAside(tuple(aside), current, ())
+
+
+def _spared(fitted: Fit) -> list[int]:
+    """Rows that can be left out without leaving an entry open, those with the largest |w| first."""
+    rows = fitted.jacobian / np.linalg.norm(fitted.jacobian, axis=1, keepdims=True)
+    count, unknowns = rows.shape
+    order = np.argsort(-np.nan_to_num(np.abs(standardised(fitted)), nan=np.inf))
+    spared = [
+        int(k)
+        for k in order
+        if count > unknowns
+        and np.linalg.svd(np.delete(rows, k, axis=0), compute_uv=False)[-1] > UNDETERMINED_SINGULAR_VALUE
+    ]
+    return spared[:READINGS_LEFT_OUT]
 
 
 def _without(used: Sequence[Taken], labels: Sequence[str], kept: Sequence[int], left_out: int) -> Fit:
