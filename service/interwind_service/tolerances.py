@@ -268,6 +268,15 @@ REST_RESIDUAL = 1e-13
 TESTED_STATES = 64
 # A resolvent at s0 moves undamped slow modes by eps s0: over a run of this many 1/s0 their phase is off by 2e-10.
 SLOW_PHASE = 1e6
+# Controlled sources: decades above s0 tried for the separation of finite modes from constraints.
+DESCRIPTOR_DECADES = (3.0, 5.0, 7.0, 9.0, 11.0)
+# There s times an eigenvalue of the resolvent is 1 for slow modes, 0.03 for one 30 times faster than s, 0 for a constraint.
+FINITE_MODE = 0.03
+# Least ratio between the two kinds; below it no count is certain.
+DESCRIPTOR_GAP = 1e2
+# The constant left by the constraints is compared at s0 and so many times s0, and agrees to the rounding of a bad tree.
+DESCRIPTOR_CHECK = 30.0
+DESCRIPTOR_ROUNDING = 1e-6
 # A block of modes is counted from its rest value beside a drive this many times slower: its Sylvester equation is then
 # as well conditioned as the block itself.
 REST_SEPARATION = 10.0

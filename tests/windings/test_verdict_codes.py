@@ -1,4 +1,4 @@
-"""Every finding code that a verdict can utter is in the catalogue, with its meaning and its cure."""
+"""Every finding code that the room of windings can utter is in the catalogue, with its meaning and its cure."""
 
 from __future__ import annotations
 
@@ -9,13 +9,12 @@ import interwind_service.windings
 from interwind.model.finding_codes import FINDING_CODES
 
 ROOM = Path(interwind_service.windings.__file__).parent
-VERDICT = ("verdict", "entries", "resistance", "audit", "digits", "plausibility")
 
 
 def uttered() -> set[str]:
     """Text constants in the shape of a code, wherever a finding is made from them."""
     codes = set()
-    for path in (ROOM / f"{name}.py" for name in VERDICT):
+    for path in ROOM.glob("*.py"):
         for node in ast.walk(ast.parse(path.read_text(encoding="utf-8"))):
             if isinstance(node, ast.Call) and getattr(node.func, "id", "") == "Finding" and node.args:
                 first = node.args[0]

@@ -108,7 +108,8 @@ class WindingSet(JsonForm):
         k = k.copy()
         np.fill_diagonal(k, 1.0)
         root = np.sqrt(np.where(self_h > 0, self_h, np.nan))
-        inductance = k * np.outer(root, root)
+        with np.errstate(over="ignore", invalid="ignore"):
+            inductance = k * np.outer(root, root)
         np.fill_diagonal(inductance, self_h)
         return cls(
             names,
@@ -162,7 +163,7 @@ def _per_entry(value: Any, name: str, size: int) -> FloatArray:
 
 
 def _coupling_of(inductance_h: FloatArray) -> FloatArray:
-    with np.errstate(invalid="ignore", divide="ignore"):
+    with np.errstate(invalid="ignore", divide="ignore", over="ignore", under="ignore"):
         root = np.sqrt(inductance_h.diagonal())
         coupling: FloatArray = inductance_h / np.outer(root, root)
     np.fill_diagonal(coupling, 1.0)

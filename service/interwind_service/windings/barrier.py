@@ -5,6 +5,8 @@ The greatest smallest eigenvalue over all completions, and the extreme values of
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+from contextlib import suppress
 from dataclasses import dataclass
 
 import numpy as np
@@ -30,29 +32,31 @@ class BestCompletion:
 
 
 def best_completion(matrix: FloatArray, pairs: Pairs) -> BestCompletion:
-    """Maximise t over x with K(x) − t I semidefinite; ``matrix`` (n, n) starts at the unknown ``pairs`` (m, 2)."""
+    """Maximise t over x with K(x) − t I semidefinite; ``matrix`` (n, n) starts at the unknown ``pairs`` (m, 2).
+
+    The value found is within ``COMPLETION_GAP`` of the greatest, in units of the largest entry.
+    """
     n, m = len(matrix), len(pairs)
     identity, K = np.eye(n), matrix.copy()
-    t = float(np.linalg.eigvalsh(K)[0]) - 1.0
-    mu, inverse = 1.0, identity
-    while True:
-        for _ in range(BARRIER_STEPS):
-            inverse = _inverse(K - t * identity)
-            square = inverse @ inverse
-            gradient, hessian = np.empty(m + 1), np.empty((m + 1, m + 1))
-            gradient[:m], hessian[:m, :m] = 2.0 * inverse[pairs[:, 0], pairs[:, 1]], _curvature(inverse, pairs)
-            gradient[m], hessian[m, m] = 1.0 / mu - np.trace(inverse), np.trace(square)
-            hessian[:m, m] = hessian[m, :m] = -2.0 * square[pairs[:, 0], pairs[:, 1]]
-            step, decrement = _newton(hessian, gradient)
-            move = _spread(step[:m], pairs, n)
-            length = _line_search(K - t * identity, move - step[m] * identity, step[m] / mu)
-            K, t = K + length * move, t + length * step[m]
-            if decrement < BARRIER_DECREMENT:
-                break
-        if n * mu < COMPLETION_GAP:
-            Y = inverse / np.trace(inverse)
-            return BestCompletion(K, float(np.linalg.eigvalsh(K)[0]), Y)
-        mu *= BARRIER_SHRINK
+    scale = float(np.abs(matrix).max())
+    t = float(np.linalg.eigvalsh(K)[0]) - scale
+    inverse = identity
+    with suppress(np.linalg.LinAlgError):  # closer to the edge than rounding allows: as far as it goes
+        for mu in _parameters(scale, n):
+            for _ in range(BARRIER_STEPS):
+                inverse = _inverse(K - t * identity)
+                square = inverse @ inverse
+                gradient, hessian = np.empty(m + 1), np.empty((m + 1, m + 1))
+                gradient[:m], hessian[:m, :m] = 2.0 * inverse[pairs[:, 0], pairs[:, 1]], _curvature(inverse, pairs)
+                gradient[m], hessian[m, m] = 1.0 / mu - np.trace(inverse), np.trace(square)
+                hessian[:m, m] = hessian[m, :m] = -2.0 * square[pairs[:, 0], pairs[:, 1]]
+                step, decrement = _newton(hessian, gradient)
+                move = _spread(step[:m], pairs, n)
+                length = _line_search(K - t * identity, move - step[m] * identity, step[m] / mu)
+                K, t = K + length * move, t + length * step[m]
+                if decrement < BARRIER_DECREMENT:
+                    break
+    return BestCompletion(K, float(np.linalg.eigvalsh(K)[0]), inverse / np.trace(inverse))
 
 
 def extreme_value(matrix: FloatArray, pairs: Pairs, target: int, direction: float) -> float:
@@ -60,20 +64,28 @@ def extreme_value(matrix: FloatArray, pairs: Pairs, target: int, direction: floa
 
     ``matrix`` is a positive definite completion to start from.
     """
-    n, K, mu = len(matrix), matrix.copy(), 1.0
-    while True:
-        for _ in range(BARRIER_STEPS):
-            inverse = _inverse(K)
-            gradient = 2.0 * inverse[pairs[:, 0], pairs[:, 1]]
-            gradient[target] += direction / mu
-            step, decrement = _newton(_curvature(inverse, pairs), gradient)
-            move = _spread(step, pairs, n)
-            K = K + _line_search(K, move, direction * step[target] / mu) * move
-            if decrement < BARRIER_DECREMENT:
-                break
-        if n * mu < COMPLETION_GAP:
-            return float(K[tuple(pairs[target])])
+    n, K = len(matrix), matrix.copy()
+    with suppress(np.linalg.LinAlgError):  # as above
+        for mu in _parameters(1.0, n):
+            for _ in range(BARRIER_STEPS):
+                inverse = _inverse(K)
+                gradient = 2.0 * inverse[pairs[:, 0], pairs[:, 1]]
+                gradient[target] += direction / mu
+                step, decrement = _newton(_curvature(inverse, pairs), gradient)
+                move = _spread(step, pairs, n)
+                K = K + _line_search(K, move, direction * step[target] / mu) * move
+                if decrement < BARRIER_DECREMENT:
+                    break
+    return float(K[tuple(pairs[target])])
+
+
+def _parameters(scale: float, n: int) -> Iterator[float]:
+    """The barrier parameter μ from ``scale`` down to where the duality gap n μ is small enough."""
+    mu = scale
+    yield mu
+    while n * mu >= scale * COMPLETION_GAP:
         mu *= BARRIER_SHRINK
+        yield mu
 
 
 def _curvature(inverse: FloatArray, pairs: Pairs) -> FloatArray:

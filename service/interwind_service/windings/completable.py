@@ -15,6 +15,7 @@ from interwind.model.frozen import FloatArray
 from interwind_service.tolerances import (
     COMPLETION_CULPRIT_WORK,
     COMPLETION_GAP,
+    COMPLETION_INTERVAL_PAIRS,
     COMPLETION_INTERVAL_WINDINGS,
     COMPLETION_UNKNOWNS,
     INTERVAL_ROUNDING,
@@ -67,8 +68,9 @@ def complete(coupling: FloatArray) -> Completion | None:
     pairs = np.argwhere(np.triu(~known, 1))
     if len(pairs) > COMPLETION_UNKNOWNS:
         return None
-    best = best_completion(np.where(known, coupling, 0.0), pairs)
-    return Completion(best.completed, best.smallest, best.certificate, pattern, COMPLETION_GAP)
+    start = np.where(known, coupling, 0.0)
+    best, tolerance = best_completion(start, pairs), COMPLETION_GAP * float(np.abs(start).max())
+    return Completion(best.completed, best.smallest, best.certificate, pattern, tolerance)
 
 
 def _chordal(coupling: FloatArray, pattern: Pattern) -> Completion:
@@ -146,14 +148,13 @@ def _clique_intervals(coupling: FloatArray, pattern: Pattern) -> tuple[FloatArra
 def _unknown_intervals(
     coupling: FloatArray, known: NDArray[np.bool_], low: FloatArray, high: FloatArray
 ) -> list[tuple[int, int]]:
-    """Set, in place, the unknown pairs that cliques decide; return the others."""
-    left = []
-    for i, j in np.argwhere(np.triu(~known, 1)):
-        if np.isnan(low[i, j]):
-            continue  # a clique without this pair is impossible
-        cliques = pair_cliques(known, int(i), int(j))
+    """Set, in place, the unknown pairs that cliques decide, if all others are possible; return the rest of them."""
+    places = [(int(i), int(j)) for i, j in np.argwhere(np.triu(~known & ~np.isnan(low), 1))]
+    left = places[COMPLETION_INTERVAL_PAIRS:]
+    for i, j in places[:COMPLETION_INTERVAL_PAIRS]:
+        cliques = pair_cliques(known, i, j)
         if not cliques:
-            left.append((int(i), int(j)))
+            left.append((i, j))
             continue
         ends = []
         for clique in cliques:

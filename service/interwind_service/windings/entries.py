@@ -10,6 +10,8 @@ from interwind.model.frozen import FloatArray
 from interwind.model.windings import WindingSet
 from interwind_service.tolerances import (
     ASYMMETRY_ERROR_DEVIATIONS,
+    COMPUTABLE_COUPLING,
+    COMPUTABLE_H,
     COUPLING_ROUNDING,
     PAIRS_NAMED,
     STATED_DEVIATIONS,
@@ -20,7 +22,7 @@ from interwind_service.windings.margin import Band
 
 
 def require_finite(coils: WindingSet) -> None:
-    """Refuse infinities anywhere, and NaN where it does not mean an unknown pair.
+    """Refuse infinities anywhere, NaN where it does not mean an unknown pair, and values that no number can be made of.
 
     Raises
     ------
@@ -34,11 +36,25 @@ def require_finite(coils: WindingSet) -> None:
             f"{float(own[i])!r} found for winding {coils.labels[i]!r}; a self-inductance in H is needed: "
             "measure the winding with all others open",
         )
+    least, most = COMPUTABLE_H
+    for i in np.flatnonzero((np.abs(own) > most) | ((own > 0) & (own < least))):
+        field = f"self_inductance_h[{i}]" if coils.stated_as_coupling else f"inductance_h[{i}][{i}]"
+        raise InvalidRequest.at(
+            field, f"{float(own[i])!r} H found; between {least:g} and {most:g} H can be computed: check the unit"
+        )
     name = "coupling" if coils.stated_as_coupling else "inductance_h"
     for i, j in np.argwhere(np.isinf(getattr(coils, name))):
         raise InvalidRequest.at(
             f"{name}[{i}][{j}]",
             f"{float(getattr(coils, name)[i, j])!r} found; a finite number is needed, or NaN for a pair not known",
+        )
+    with np.errstate(invalid="ignore"):
+        beyond = np.argwhere(np.abs(coils.coupling) > COMPUTABLE_COUPLING)
+    for i, j in beyond:
+        raise InvalidRequest.at(
+            f"{name}[{i}][{j}]",
+            f"the coupling of {coils.labels[i]!r} and {coils.labels[j]!r} comes to {float(coils.coupling[i, j]):.3g}; "
+            "it cannot exceed 1: check the units",
         )
     for place in np.argwhere(~np.isfinite(coils.resistance_ohm)):
         raise InvalidRequest.at(

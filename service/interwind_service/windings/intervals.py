@@ -87,7 +87,7 @@ def _ends(spectrum: Spectrum, P: FloatArray, determinant: FloatArray) -> tuple[F
     sign = np.where(P >= 0, 1.0, -1.0)
     far = np.abs(P)
     far += np.outer(root, root)
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         near = far / np.abs(determinant)
         far = np.divide(sign, far, out=far)
     near *= -sign if spectrum.negative else sign

@@ -9,7 +9,7 @@ import numpy as np
 from interwind.errors import InvalidRequest
 from interwind.model.frozen import FloatArray
 from interwind.model.windings import WindingSet
-from interwind_service.tolerances import STATED_DEVIATIONS
+from interwind_service.tolerances import COMPUTABLE_WIDTH, STATED_DEVIATIONS
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -47,7 +47,7 @@ def stated_band(coils: WindingSet) -> Band:
     deviation = np.full((n, n), np.nan)
     stated = False
     if coils.coupling_uncertainty is not None:
-        u = _spread(coils.coupling_uncertainty, "coupling_uncertainty", n) * off
+        u = np.minimum(_spread(coils.coupling_uncertainty, "coupling_uncertainty", n), COMPUTABLE_WIDTH) * off
         width, deviation, stated = np.maximum(width, STATED_DEVIATIONS * u), np.where(off, u, np.nan), True
     if coils.coupling_decimals is not None:
         width, stated = np.maximum(width, 0.5 * 10.0**-coils.coupling_decimals * off), True
@@ -55,7 +55,8 @@ def stated_band(coils: WindingSet) -> Band:
         u = _spread(coils.inductance_uncertainty_h, "inductance_uncertainty_h", n)
         if not stated:
             root = np.sqrt(coils.self_inductance_h)
-            deviation = u / np.outer(root, root)
+            scale = np.outer(root, root)
+            deviation = np.minimum(u, COMPUTABLE_WIDTH * scale) / scale
             width, stated = STATED_DEVIATIONS * deviation, True
     return Band(np.where(np.isnan(coils.coupling), 0.0, width), deviation, stated and bool(np.any(width > 0)))
 

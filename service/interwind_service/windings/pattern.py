@@ -37,14 +37,20 @@ class Pattern:
 
 
 def pattern_of(known: NDArray[np.bool_]) -> Pattern:
-    """Search the graph of known pairs, shape (n, n), symmetric."""
+    """Search the graph of known pairs, shape (n, n), symmetric.
+
+    It is chordal when the earlier neighbours of each winding, but for the latest of them, are neighbours of that one.
+    """
     n = len(known)
-    weight, searched = np.zeros(n), np.zeros(n, dtype=bool)
+    weight, searched, place = np.zeros(n), np.zeros(n, dtype=bool), np.zeros(n, dtype=int)
     order, earlier, chordal = [], [], True
     for _ in range(n):
         w = int(np.argmax(np.where(searched, -1.0, weight)))
         before = np.flatnonzero(known[w] & searched)
-        chordal = chordal and bool(np.all(known[np.ix_(before, before)] | np.eye(len(before), dtype=bool)))
+        if chordal and len(before):
+            latest = before[np.argmax(place[before])]
+            chordal = bool(np.all(known[latest, before] | (before == latest)))
+        place[w] = len(order)
         order.append(w)
         earlier.append(tuple(int(k) for k in before))
         searched[w] = True

@@ -6,7 +6,7 @@ import numpy as np
 
 from interwind.model.finding import Finding, Severity
 from interwind.model.windings import WindingSet
-from interwind_service.tolerances import SYMMETRY_ROUNDING, WITNESS_SHARE
+from interwind_service.tolerances import COMPUTABLE_WIDTH, SYMMETRY_ROUNDING, WITNESS_SHARE
 from interwind_service.windings.spectrum import rounding_bound
 from interwind_service.windings.wording import spelled
 
@@ -36,7 +36,8 @@ def _matrix(coils: WindingSet) -> list[Finding]:
     R = coils.resistance_ohm
     own = R.diagonal()
     scale = np.sqrt(np.where(own > 0, own, own.max() if own.max() > 0 else 1.0))
-    scaled = R / np.outer(scale, scale)
+    with np.errstate(over="ignore"):
+        scaled = np.clip(R / scale / scale[:, None], -COMPUTABLE_WIDTH, COMPUTABLE_WIDTH)
     difference = np.triu(np.abs(scaled - scaled.T))
     i, j = (int(k) for k in np.unravel_index(np.argmax(difference), difference.shape))
     if difference[i, j] > SYMMETRY_ROUNDING:

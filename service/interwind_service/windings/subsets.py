@@ -35,8 +35,9 @@ def impossible_subsets(coupling: FloatArray, judged: Spectrum) -> ImpossibleSubs
     """Search all pairs, triples and larger subsets in turn as far as a bounded amount of work allows.
 
     Beyond it, the subset that carries the witness is thinned out until no winding can be left off any more: it is then
-    minimal, unless it is too large to thin out one by one, though a smaller one may exist elsewhere. ``coupling`` (n, n) may hold NaN; subsets with an unknown pair
-    are passed over. ``judged`` is the decomposition of ``coupling``, completed where pairs are unknown.
+    minimal, unless it is too large to thin out one by one, though a smaller one may exist elsewhere. ``coupling``
+    (n, n) may hold NaN; subsets with an unknown pair are passed over. ``judged`` is the decomposition of ``coupling``,
+    completed where pairs are unknown.
     """
     n = len(coupling)
     searched, left = 1, SUBSETS_EXAMINED
