@@ -146,3 +146,19 @@ def test_check_config_reads_the_files_it_names(tmp_path):
     ):
         answer = command("--check-config", *arguments)
         assert (answer.returncode, named in answer.stderr, "secret" in answer.stderr) == (2, True, False)
+
+
+def test_spool_of_a_dead_server_is_cleared_away_and_that_of_a_living_one_kept(tmp_path):
+    """Whoever starts next removes what a killed server could not, and touches nobody else's."""
+    options = ("--workers", "1", "--spool-dir", str(tmp_path))
+    with RunningService(*options) as living:
+        (kept,) = tmp_path.iterdir()
+        abandoned = tmp_path / "interwind-spool-1-abandoned"
+        abandoned.mkdir()
+        (abandoned / "lock").touch()
+        with RunningService(*options):
+            assert not abandoned.exists()
+            assert kept.exists()
+            assert len(list(tmp_path.iterdir())) == 2
+        assert living.process.poll() is None
+    assert list(tmp_path.iterdir()) == []

@@ -101,6 +101,7 @@ def test_nothing_grows_and_nothing_is_left(calls, cancels, kills):
         numbers, resident = np.array(soak.samples).T
         slope_bytes = np.polyfit(numbers, resident, 1)[0] * 10_000
 
+    print(f"{dict(soak.ways)}, memory rises by {slope_bytes / 1e6:.2f} MB in 10 000 calls")
     assert set(soak.ways) <= {
         "OK",
         "WorkerLost",

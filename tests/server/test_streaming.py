@@ -94,6 +94,20 @@ def test_stalled_reader_costs_the_server_no_memory(service, client):
     assert files == []  # the file has no name by then, so nobody can leave it behind
 
 
+def test_slow_readers_hold_no_place_in_the_queue(service, client):
+    """Six callers who stopped reading hold neither of the two workers, nor one of the eight waiting places."""
+    call = BY_ENGINE["time_response"]
+    with grpc.insecure_channel(service.address) as channel:
+        method = channel.unary_stream(call.path)
+        streams = [method(request(1_000_000), timeout=60) for _ in range(6)]
+        for stream in streams:
+            next(stream)
+        wait_until(lambda: client.server_info().busy_worker_count == 0, 20)
+        assert client.server_info().queued_count == 0
+        for stream in streams:
+            stream.cancel()
+
+
 def test_large_matrices_travel_by_parts_and_only_once(service, client):
     """A matrix above 256 KiB goes up through PutArray under its hash; sent again, it is known already."""
     windings = WindingSet([f"w{k}" for k in range(500)], np.eye(500) + 0.25)

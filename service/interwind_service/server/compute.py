@@ -3,13 +3,12 @@
 from __future__ import annotations
 
 import asyncio
-import os
 from collections.abc import AsyncIterator
 from pathlib import Path
 from typing import Any
 
 from interwind.errors import Cancelled
-from interwind_service.server.admission import Admission
+from interwind_service.server.admission import Admission, Ticket
 from interwind_service.server.boundary import Call, PackedError
 from interwind_service.server.limits import read_size, size_header
 from interwind_service.workers.arrays import ArrayFolder
@@ -36,7 +35,7 @@ class Compute:
         path = self._spool / call.id
         try:
             work = CallWork(call.method, request, header, str(path), self._arrays)
-            job, notes = self._start(work)
+            job, notes = self._start(work, ticket)
             reader: SpoolReader | None = None
             try:
                 while isinstance(note := await notes.get(), Spooled | Early):
@@ -47,7 +46,6 @@ class Compute:
                     for frame in reader.frames(note.size_bytes):
                         yield frame
                 answer = _answer(job, call)
-                self._admission.computed(ticket, 0)
                 for frame in answer.frames:
                     yield frame
             finally:
@@ -58,15 +56,21 @@ class Compute:
         finally:
             self._admission.leave(ticket)
 
-    def _start(self, work: CallWork) -> tuple[Job, asyncio.Queue[Any]]:
+    def _start(self, work: CallWork, ticket: Ticket) -> tuple[Job, asyncio.Queue[Any]]:
         loop = asyncio.get_running_loop()
         notes: asyncio.Queue[Any] = asyncio.Queue()
 
         def tell(note: Any) -> None:
             loop.call_soon_threadsafe(notes.put_nowait, note)
 
+        def over(job: Job) -> None:
+            """The worker is free, whether or not the caller has read its answer."""
+            spooled = 0 if job.cancelled() or job.exception() else job.result().spooled_bytes
+            loop.call_soon_threadsafe(self._admission.computed, ticket, spooled)
+            tell(job)
+
         job = self._pool.call(run_call, work, on_note=tell)
-        job.add_done_callback(tell)
+        job.add_done_callback(over)
         return job, notes
 
 
@@ -88,13 +92,3 @@ def _answer(job: Job, call: Call) -> CallAnswer:
             call.log["trace"] = answer.trace
         raise PackedError(answer.status, answer.reason)
     return answer
-
-
-def remove_spools_of_the_dead(parent: Path) -> None:
-    """Remove the spool folders under ``parent`` whose server no longer lives."""
-    import shutil
-
-    for folder in parent.glob("interwind-spool-*"):
-        pid = folder.name.split("-")[2]
-        if folder.stat().st_uid == os.getuid() and pid.isdigit() and not Path(f"/proc/{pid}").exists():
-            shutil.rmtree(folder, ignore_errors=True)

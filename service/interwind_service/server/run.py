@@ -6,10 +6,8 @@ import asyncio
 import contextlib
 import json
 import os
-import shutil
 import signal
-import tempfile
-from collections.abc import AsyncIterator, Iterator
+from collections.abc import AsyncIterator
 from pathlib import Path
 
 os.environ.setdefault("GRPC_VERBOSITY", "NONE")  # the C core writes plain text on stderr, which is for JSON lines
@@ -23,7 +21,7 @@ from interwind_service.server.auth import TokenGate, Tokens, client_of
 from interwind_service.server.batch_room import BatchRoom, batch_room
 from interwind_service.server.batches import BatchDoor
 from interwind_service.server.boundary import Boundary
-from interwind_service.server.compute import Compute, remove_spools_of_the_dead
+from interwind_service.server.compute import Compute
 from interwind_service.server.doors import channel_options, open_door
 from interwind_service.server.health import SERVICE_NAME, Health
 from interwind_service.server.info import Info
@@ -31,6 +29,7 @@ from interwind_service.server.logs import configure, emit
 from interwind_service.server.metrics import Metrics
 from interwind_service.server.servicers import generic_handlers, rpcs, service_names
 from interwind_service.server.settings import Settings, SettingsError
+from interwind_service.server.spool_folder import spool_folder
 from interwind_service.server.supervisor import say_alive, tell
 from interwind_service.tolerances import PARENT_POLL_S, WORKER_BASE_ADDRESS_BYTES
 from interwind_service.version import SERVICE_VERSION
@@ -53,7 +52,7 @@ async def _serve(settings: Settings) -> int:
     loop = asyncio.get_running_loop()
     for number in (signal.SIGTERM, signal.SIGINT):
         loop.add_signal_handler(number, stop.set)
-    with _spool(settings) as spool:
+    with spool_folder(settings.spool_dir) as spool:
         guards = Guards(WORKER_BASE_ADDRESS_BYTES + settings.memory_bytes, str(spool))
         pool = WorkerPool(settings.worker_count, guards=guards)
         try:
@@ -127,22 +126,3 @@ async def _until(stop: asyncio.Event, parent_pid: int) -> None:
     while not stop.is_set() and (not parent_pid or os.getppid() == parent_pid):
         with contextlib.suppress(TimeoutError):
             await asyncio.wait_for(stop.wait(), PARENT_POLL_S if parent_pid else None)
-
-
-@contextlib.contextmanager
-def _spool(settings: Settings) -> Iterator[Path]:
-    """Make the folder for results on their way out, and clear away those of servers that died."""
-    shared_memory = Path("/dev/shm")
-    usable = shared_memory.is_dir() and os.access(shared_memory, os.W_OK)
-    parent = Path(settings.spool_dir or (shared_memory if usable else tempfile.gettempdir()))
-    remove_spools_of_the_dead(parent)
-    try:
-        folder = Path(tempfile.mkdtemp(prefix=f"interwind-spool-{os.getpid()}-", dir=parent))
-    except OSError as error:
-        raise SettingsError(f"--spool-dir: {error}") from error
-    for room in ("arrays", "calls"):
-        (folder / room).mkdir()
-    try:
-        yield folder
-    finally:
-        shutil.rmtree(folder, ignore_errors=True)
