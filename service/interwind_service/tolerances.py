@@ -55,6 +55,8 @@ SIDE_FACTOR_LEAST = 4.0
 DUPLICATE_AGREEMENT = 1e-9
 # Two ends of a feasible interval closer than this are one value, reached by different roundings.
 INTERVAL_ROUNDING = 1e-12
+# Eigenvalues below this part of the largest hang on the tenth digit of the data, which hardly any data have.
+NEARLY_SINGULAR = 1e-10
 # A text lists this many labels and counts the rest; the finding itself holds all of them.
 LABELS_SPELLED_OUT = 12
 # A winding is named in a verdict when it carries at least this share of the squared witness vector.
@@ -200,6 +202,8 @@ SWEEP_BAND = 1e5
 SWEEP_BAND_ROUNDING = 1e-3
 # Halvings of a band that the frequency tree contradicts, before its frequencies are solved one by one.
 SWEEP_HALVINGS = 3
+# Frequencies this near a pole, relative to it, are solved one by one: nearer, the Schur form loses more than six digits.
+SWEEP_POLE_DISTANCE = 1e-6
 # Fewer frequencies than this are solved one by one sooner than by one reduction.
 SWEEP_POINTS = 40
 
@@ -268,8 +272,10 @@ REST_RESIDUAL = 1e-13
 TESTED_STATES = 64
 # A resolvent at s0 moves undamped slow modes by eps s0: over a run of this many 1/s0 their phase is off by 2e-10.
 SLOW_PHASE = 1e6
-# Controlled sources: decades above s0 tried for the separation of finite modes from constraints.
-DESCRIPTOR_DECADES = (3.0, 5.0, 7.0, 9.0, 11.0)
+# Growth exponent of an unstable mode over a run: e^300 squared is still a number, for the energy's sake.
+LARGEST_GROWTH = 300.0
+# Controlled sources: values of s, 1/s, tried for the separation of finite modes from constraints, the largest first.
+DESCRIPTOR_SHIFTS = (1e16, 1e14, 1e12, 1e10, 1e8, 1e6)
 # There s times an eigenvalue of the resolvent is 1 for slow modes, 0.03 for one 30 times faster than s, 0 for a constraint.
 FINITE_MODE = 0.03
 # Least ratio between the two kinds; below it no count is certain.

@@ -185,8 +185,8 @@ def test_a28_hilbert_inductances_are_never_called_invalid(solver, size):
     assert report.verdict is Verdict.VALID
     if size <= 6:
         np.testing.assert_allclose(report.eigenvalues_h[0], 1e-3 * HILBERT[size], rtol=1e-6)
-    if size >= 12:
-        assert "PERFECT_COUPLING" in codes(report)
+    said = {"PERFECT_COUPLING", "NEARLY_PERFECT_COUPLING"} & codes(report)
+    assert len(said) == (size >= 10)
 
 
 def test_a29_rosser_eigenvalues():

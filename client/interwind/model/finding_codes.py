@@ -43,6 +43,10 @@ _WINDINGS = {
         "The coupling matrix is singular within rounding: some combination of the windings has no leakage at all.",
         "Nothing, when perfect coupling is meant as an idealisation; otherwise state couplings with more digits.",
     ),
+    "NEARLY_PERFECT_COUPLING": FindingCode(
+        "The smallest eigenvalue is positive, but so small that the set is semidefinite within tolerance.",
+        "Nothing, when the data are exact; otherwise measure leakage inductances instead of couplings.",
+    ),
     "UNKNOWN_PAIR": FindingCode(
         "A coupling is not known; it is not taken as zero, and a solve needs it filled.",
         "Measure the pair, or fill it with repair: the interval it must lie in is in the report.",

@@ -47,7 +47,8 @@ def _finding(labels: tuple[str, ...], i: int, j: int, k: float, error: float, mo
     else:
         text = (
             f"As stated, the coupling {k:.6g} of {pair} gives its leakage to ±{100 * error:.3g} % only; "
-            f"±{100 * LEAKAGE_ACCURACY:.0f} % needs at least {decimals_needed(k, LEAKAGE_ACCURACY)} decimals."
+            f"±{100 * LEAKAGE_ACCURACY:.0f} % needs ±{LEAKAGE_ACCURACY * (1 - k * k) / (2 * abs(k)):.2g}, that is at least "
+            f"{decimals_needed(k, LEAKAGE_ACCURACY)} decimals."
         )
     text += " Measure the leakage inductance itself instead." + more
     return Finding(

@@ -10,7 +10,7 @@ from interwind.model.finding import Evidence, Finding, Severity, Verdict
 from interwind.model.frozen import FloatArray
 from interwind.model.report import Culprit, ValidityReport
 from interwind.model.windings import WindingSet
-from interwind_service.tolerances import WITNESS_SHARE
+from interwind_service.tolerances import NEARLY_SINGULAR, WITNESS_SHARE
 from interwind_service.windings.audit import audit, blamed_windings, blind_spots, name_subsets
 from interwind_service.windings.completable import complete, completion_intervals
 from interwind_service.windings.culprit import blame, rank_culprits
@@ -154,7 +154,7 @@ def _verdict(
         code = "NO_VALID_COMPLETION" if unknown else "INDEFINITE"
         return Verdict.INVALID, [Finding(code, Severity.ERROR, names, "coupling", text, least, -bound)]
     if least > bound:
-        return Verdict.VALID, []
+        return Verdict.VALID, _nearly_singular(least, float(s.values[-1]), names)
     if band.stated:
         text = (
             f"The smallest eigenvalue of {which} is {least:.6g}, and {stated}: these data cannot tell whether the set "
@@ -168,6 +168,17 @@ def _verdict(
         "are perfectly coupled, which is accepted as an idealisation; their leakage is zero."
     )
     return Verdict.VALID, [Finding("PERFECT_COUPLING", Severity.INFO, names, "coupling", text, least, bound)]
+
+
+def _nearly_singular(least: float, greatest: float, names: tuple[str, ...]) -> list[Finding]:
+    limit = NEARLY_SINGULAR * greatest
+    if least > limit:
+        return []
+    text = (
+        f"The smallest eigenvalue of the coupling matrix is {least:.3g}: the set is semidefinite within tolerance. The "
+        f"leakage that {spelled(names)} have together is lost in the digits of the data unless they were given in full."
+    )
+    return [Finding("NEARLY_PERFECT_COUPLING", Severity.INFO, names, "coupling", text, least, limit)]
 
 
 def _blame(coils: WindingSet, K: FloatArray, culprits: tuple[Culprit, ...], count: int) -> list[Finding]:
