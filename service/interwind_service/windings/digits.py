@@ -45,9 +45,10 @@ def _finding(labels: tuple[str, ...], i: int, j: int, k: float, error: float, mo
     if abs(k) >= 1.0:
         text = f"The coupling of {pair} reads {k:.6g}: its digits leave nothing of the leakage."
     else:
+        needed = LEAKAGE_ACCURACY * (1.0 - k * k) / (2.0 * abs(k))
         text = (
             f"As stated, the coupling {k:.6g} of {pair} gives its leakage to ±{100 * error:.3g} % only; "
-            f"±{100 * LEAKAGE_ACCURACY:.0f} % needs ±{LEAKAGE_ACCURACY * (1 - k * k) / (2 * abs(k)):.2g}, that is at least "
+            f"±{100 * LEAKAGE_ACCURACY:.0f} % needs k to ±{needed:.2g}, that is at least "
             f"{decimals_needed(k, LEAKAGE_ACCURACY)} decimals."
         )
     text += " Measure the leakage inductance itself instead." + more

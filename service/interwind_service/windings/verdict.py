@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import replace
 
 import numpy as np
 
@@ -52,44 +52,12 @@ def check(windings: WindingSet) -> ValidityReport:
     K, noticed = symmetric_coupling(windings, band)
     findings += noticed + beyond_one(windings, K, band) + unknown_pairs(windings, K)
     judged = _judge(windings, K, band)
-    findings += judged.findings + blind_spots(windings, band)
+    findings = [*findings, *judged.findings, *blind_spots(windings, band)]
     verdict = Verdict.INVALID if any(f.severity is Severity.ERROR for f in findings) else judged.verdict
-    return ValidityReport(
-        verdict=verdict,
-        labels=windings.labels,
-        eigenvalues=judged.eigenvalues,
-        eigenvalues_h=judged.eigenvalues_h,
-        witness_current_a=judged.witness_current_a,
-        witness_energy_j=judged.witness_energy_j,
-        culprits=judged.culprits,
-        feasible_low=judged.low,
-        feasible_high=judged.high,
-        findings=tuple(findings),
-        evidence=judged.evidence,
-        margin=judged.margin,
-        impossible_subsets=judged.subsets,
-        blame=judged.blame,
-    )
+    return replace(judged, verdict=verdict, findings=tuple(findings))
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class _Judged:
-    verdict: Verdict
-    eigenvalues: FloatArray
-    eigenvalues_h: FloatArray
-    witness_current_a: FloatArray
-    witness_energy_j: float
-    culprits: tuple[Culprit, ...]
-    low: FloatArray
-    high: FloatArray
-    findings: list[Finding]
-    evidence: Evidence
-    margin: float
-    subsets: tuple[tuple[str, ...], ...]
-    blame: FloatArray
-
-
-def _judge(coils: WindingSet, K: FloatArray, band: Band) -> _Judged:
+def _judge(coils: WindingSet, K: FloatArray, band: Band) -> ValidityReport:
     """Eigenvalues, margin, witness, intervals and culprits of a symmetric K, NaN where a pair is unknown."""
     findings: list[Finding] = []
     unknown = bool(np.any(np.isnan(K)))
@@ -97,7 +65,7 @@ def _judge(coils: WindingSet, K: FloatArray, band: Band) -> _Judged:
     if unknown:
         best = complete(K)
         if best is None:
-            return _undecided(coils, findings)
+            return _not_searched(coils)
         s, tolerance = spectrum(best.completed), best.tolerance
         low, high, free = completion_intervals(K, best)
         if not free:
@@ -121,19 +89,20 @@ def _judge(coils: WindingSet, K: FloatArray, band: Band) -> _Judged:
     findings += audit(coils, K, s, low, high, band)
     current, energy = witness(s, coils.self_inductance_h)
     root = np.sqrt(coils.self_inductance_h)
-    return _Judged(
+    return ValidityReport(
         verdict=verdict,
+        labels=coils.labels,
         eigenvalues=s.values,
         eigenvalues_h=np.linalg.eigvalsh(s.matrix * np.outer(root, root)),
         witness_current_a=current,
         witness_energy_j=energy,
         culprits=culprits,
-        low=low,
-        high=high,
-        findings=findings,
+        feasible_low=low,
+        feasible_high=high,
+        findings=tuple(findings),
         evidence=Evidence(method=METHOD, residual=s.residual, condition=s.condition),
         margin=bound,
-        subsets=subsets,
+        impossible_subsets=subsets,
         blame=blame(s),
     )
 
@@ -163,6 +132,8 @@ def _verdict(
         return Verdict.UNDECIDED, [
             Finding("WITHIN_UNCERTAINTY", Severity.WARNING, names, "coupling", text, least, bound)
         ]
+    null = np.abs(s.values) <= bound
+    names = tuple(coils.labels[k] for k in np.flatnonzero((s.vectors[:, null] ** 2).sum(axis=1) >= WITNESS_SHARE))
     text = (
         f"The smallest eigenvalue of {which} is {least:.3g}, zero within rounding ({bound:.2g}): {spelled(names)} "
         "are perfectly coupled, which is accepted as an idealisation; their leakage is zero."
@@ -217,50 +188,41 @@ def _held_at_completion(coils: WindingSet) -> Finding:
     return Finding("INTERVALS_HELD_AT_COMPLETION", Severity.INFO, (), "feasible_low", text, float(coils.size))
 
 
-def _undecided(coils: WindingSet, findings: list[Finding]) -> _Judged:
+def _not_searched(coils: WindingSet) -> ValidityReport:
     text = (
         "There are too many unknown pairs in too loose a pattern to search for a valid completion. State more pairs, "
         "or judge a smaller part of the set."
     )
     finding = Finding("COMPLETION_NOT_SEARCHED", Severity.WARNING, (), "coupling", text)
-    nan, square = np.full(coils.size, np.nan), np.full((coils.size, coils.size), np.nan)
-    return _Judged(
-        verdict=Verdict.UNDECIDED,
-        eigenvalues=nan,
-        eigenvalues_h=nan,
-        witness_current_a=nan,
-        witness_energy_j=np.nan,
-        culprits=(),
-        low=square,
-        high=square,
-        findings=[*findings, finding],
-        evidence=Evidence(method=METHOD),
-        margin=np.nan,
-        subsets=(),
-        blame=np.zeros(coils.size),
-    )
+    return _without_numbers(coils, Verdict.UNDECIDED, (finding,), METHOD)
 
 
 def _without_scale(coils: WindingSet, findings: list[Finding]) -> ValidityReport:
     """The report of a set with a non-positive self-inductance: no couplings, and that winding alone is the witness."""
-    n = coils.size
     worst = int(np.argmin(coils.self_inductance_h))
-    current = np.zeros(n)
-    current[worst] = 1.0
-    known = bool(np.all(np.isfinite(coils.inductance_h)))
-    L = 0.5 * (coils.inductance_h + coils.inductance_h.T)
-    square = np.full((n, n), np.nan)
+    alone = np.zeros(coils.size)
+    alone[worst] = 1.0
+    report = _without_numbers(coils, Verdict.INVALID, tuple(findings), "self-inductances")
+    if np.all(np.isfinite(coils.inductance_h)):
+        symmetric = 0.5 * (coils.inductance_h + coils.inductance_h.T)
+        report = replace(report, eigenvalues_h=np.linalg.eigvalsh(symmetric))
+    energy = 0.5 * float(coils.self_inductance_h[worst])
+    return replace(report, witness_current_a=alone, witness_energy_j=energy, blame=alone)
+
+
+def _without_numbers(coils: WindingSet, verdict: Verdict, findings: tuple[Finding, ...], method: str) -> ValidityReport:
+    vector, square = np.full(coils.size, np.nan), np.full((coils.size, coils.size), np.nan)
     return ValidityReport(
-        verdict=Verdict.INVALID,
+        verdict=verdict,
         labels=coils.labels,
-        eigenvalues=np.full(n, np.nan),
-        eigenvalues_h=np.linalg.eigvalsh(L) if known else np.full(n, np.nan),
-        witness_current_a=current,
-        witness_energy_j=0.5 * float(coils.self_inductance_h[worst]),
+        eigenvalues=vector,
+        eigenvalues_h=vector,
+        witness_current_a=vector,
+        witness_energy_j=np.nan,
         culprits=(),
         feasible_low=square,
         feasible_high=square,
-        findings=tuple(findings),
-        evidence=Evidence(method="self-inductances"),
-        blame=current,
+        findings=findings,
+        evidence=Evidence(method=method),
+        blame=np.zeros(coils.size),
     )
