@@ -122,8 +122,9 @@ FIRST_MARGIN = 1e-6
 FIT_DAMPING_START = 1e-3
 FIT_DAMPING_LEAST = 1e-15
 FIT_DAMPING_LARGEST = 1e12
-# The steps have settled when chi-square falls by less than this part of itself; steps allowed (10 to 30 are usual).
-FIT_GAIN = 1e-8
+# The steps have settled when chi-square falls by less than this part of itself: then no entry moves by a hundredth of its
+# deviation any more, and exact readings, whose chi-square goes to 0, are followed down to rounding. 5 to 20 are usual.
+FIT_GAIN = 1e-6
 FIT_STEPS = 200
 # Readings scaled to norm 1 that determine a direction only below this say nothing about it beyond rounding.
 UNDETERMINED_SINGULAR_VALUE = 1e-9
@@ -272,6 +273,8 @@ REST_RESIDUAL = 1e-13
 TESTED_STATES = 64
 # A resolvent at s0 moves undamped slow modes by eps s0: over a run of this many 1/s0 their phase is off by 2e-10.
 SLOW_PHASE = 1e6
+# Multiples of s0 at which reduced equations with controlled sources are held against direct solves.
+DESCRIPTOR_PROOFS = (1e-2, 1e1, 1e3, 1e5)
 # Growth exponent of an unstable mode over a run: e^300 squared is still a number, for the energy's sake.
 LARGEST_GROWTH = 300.0
 # Controlled sources: values of s, 1/s, tried for the separation of finite modes from constraints, the largest first.
@@ -362,12 +365,13 @@ REAL_MULTIPLIER = 1e-9  # relative imaginary part of a real multiplier
 OTHER_START = 1.5  # times the state found: the second start
 OTHER_START_PERIODS = 10  # periods spent on it
 SAME_SOLUTION = 1e-6  # relative distance of two answers that are one
+FINER_RUNS = 2  # runs with finer steps when the ledger of the first misses the tolerance
 EXPONENT_CLIP = 60.0  # exponents beyond this are continued by the tangent: e^60 of any saturation current is no current
 STIFF_VOLTAGE = 1e-9  # volts per volt of its wave below which a branch voltage is fixed by states and sources
 WAVE_STEPS = 400  # Newton steps for consistent waves; an exponential takes one for each thermal voltage
 WAVE_RESIDUAL = 1e-13  # relative residual of consistent waves
 WAVE_HALVINGS = 30  # of one Newton step
-STEP_SHARE = 0.1  # share of the tolerance that a step may miss by
+STEP_SHARE = 0.2  # share of the tolerance that the local error of a step may take
 FIRST_STEP = 1e-7  # share of an interval tried first
 SMALLEST_STEP = 1e-15  # share of the time below which a step does not move it
 STEP_GROWTH = 1.0 / 6.0  # smallest factor by which a step is divided (Hairer & Wanner 1996)
@@ -450,6 +454,8 @@ BATCH_SPLIT = 8  # parts a poisoned chunk falls into: four splits single out one
 BATCH_STORE_RETRY_S = 2.0  # before the state folder is tried again once it could not be written to
 BATCH_EXPIRE_EVERY_S = 60.0  # between two looks for batches whose time has come; retention is told in days
 BATCH_OPEN_COUNT = 8  # batches whose submitted numbers stay open: more run in turns rarely
+BATCH_SILENCE_S = 30.0  # a cluster that has said nothing of a chunk for so long is asked anew
+BATCH_SILENCE_FACTOR = 20.0  # but never before so many times what the chunk was forecast to take
 BATCH_PROVE_COUNT = 64  # newest result files read whole after a restart: what a disk may hold back unwritten
 BATCH_VARIANT_LIMIT = 1_000_000  # variants in one batch: its columns then stay within some tens of megabytes
 BATCH_POINT_LIMIT = 200_000  # points of a row: the grid still fits one message

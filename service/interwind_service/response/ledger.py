@@ -55,10 +55,10 @@ def ledger_of(
 
 
 def stored(space: StateSpace, q: FloatArray, u: FloatArray) -> float:
-    """Return the stored energy ½ |q|² + ½ uᵀ (PᵀEP) u, J."""
+    """Return the stored energy ½ eᵀ E e of the storage values e = X q + P u, J."""
     basis = space.basis
-    rest = basis.P @ u
-    return 0.5 * float(q @ q) + 0.5 * float(rest @ basis.storage.weigh(rest[:, None])[:, 0])
+    values = basis.X @ q + basis.P @ u
+    return 0.5 * float(values @ basis.storage.weigh(values[:, None])[:, 0])
 
 
 def _dissipated(topology: Topology, voltage: FloatArray, current: FloatArray, gramian: FloatArray) -> dict[str, float]:

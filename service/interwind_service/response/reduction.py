@@ -36,7 +36,8 @@ class StateBasis:
 
     ``X`` (storage, n), XᵀEX = I, so that q is in √J and stored energy is ½ |q|² + ½ uᵀ (PᵀEP) u; ``P`` (storage,
     inputs), XᵀEP = 0. ``voltage_impulse``, ``current_impulse`` (branches, inputs): what a unit step of an input passes
-    through a branch in no time, Vs and As; between steps these times du/dt are part of its voltage and current.
+    through a branch in no time, Vs and As; between steps these times du/dt are part of its voltage and current. ``dual``
+    (storage, n) replaces X where q is read, in networks with controlled sources.
     """
 
     storage: Storage
@@ -44,10 +45,11 @@ class StateBasis:
     P: FloatArray
     voltage_impulse: FloatArray
     current_impulse: FloatArray
+    dual: FloatArray | None = None
 
     def coordinates(self, values: FloatArray) -> FloatArray:
         """Return q of storage values (storage, k), consistent or not: charge and flux are kept, XᵀE e."""
-        return self.X.T @ self.storage.weigh(values)
+        return (self.X if self.dual is None else self.dual).T @ self.storage.weigh(values)
 
 
 def reduce(storage: Storage, roles: Roles) -> StateBasis:

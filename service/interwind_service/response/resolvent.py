@@ -92,7 +92,7 @@ def resolvent(basis: StateBasis, roles: Roles, s0: float) -> Resolvent:
 
 
 def _initial(tree: FrequencyTree, basis: StateBasis, s0: float) -> FloatArray:
-    """Right sides of unit states: charges enter the current law, fluxes the equations of the windings."""
+    """Right sides of unit states: charges enter the current law, fluxes the windings, both what senses their current."""
     storage = basis.storage
     value = storage.topology.value
     right = np.zeros((len(tree.M[0]), basis.X.shape[1]))
@@ -102,6 +102,14 @@ def _initial(tree: FrequencyTree, basis: StateBasis, s0: float) -> FloatArray:
     right[:cuts] -= tree.Q[:, storage.inductors] @ basis.X[storage.inductor_rows] / s0
     for columns, rows, own in zip(tree.groups, storage.groups, storage.coordinates, strict=True):
         right[columns.start : columns.start + own.rank] = own.S[: own.rank, : own.rank] @ basis.X[rows]
+    charges = dict(zip(storage.capacitors.tolist(), charge, strict=True))
+    currents = dict(zip(storage.inductors.tolist(), basis.X[storage.inductor_rows] / s0, strict=True))
+    first = len(right) - len(storage.topology.controls)
+    for row, control in enumerate(storage.topology.controls, first):
+        if control.sensed in charges:
+            right[row] -= control.gain * charges[control.sensed]
+        elif control.sensed in currents:
+            right[row] += control.gain * currents[control.sensed]
     return right
 
 

@@ -84,6 +84,8 @@ def time_response(
         return time_response_switching(network, stop_s, step_s, asked, initial, tolerance, sink=sink)
     generator = generator_of(topology, stop_s, step_s)
     space = model_of(topology, _centre(generator, stop_s, step_s))
+    if topology.controls:
+        _refuse_growth(space, stop_s)
     start = start_of(space, initial, generator.U @ generator.state(np.zeros(1))[0])
     readout = readout_of(topology, asked)
     flow = flow_of(space, generator)
@@ -103,6 +105,18 @@ def time_response(
         findings=(*topology.findings, *start.findings),
         evidence=evidence,
     )
+
+
+def _refuse_growth(space: StateSpace, stop_s: float) -> None:
+    """Refuse a run in which an unstable mode, which controlled sources can make, would leave the range of numbers."""
+    rate = float(np.linalg.eigvals(space.A).real.max(initial=0.0))
+    if rate * stop_s > tol.LARGEST_GROWTH:
+        raise InvalidRequest.at(
+            "stop_s",
+            f"{stop_s!r} s found, but the network is unstable: a mode grows by e in {1.0 / rate:.3g} s and leaves the "
+            f"range of numbers; stop before {tol.LARGEST_GROWTH / rate:.3g} s or mend the feedback",
+            reason="UNSTABLE_NETWORK",
+        )
 
 
 def _centre(generator: Generator, stop_s: float, step_s: float) -> float:
