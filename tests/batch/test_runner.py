@@ -222,6 +222,20 @@ def test_lost_input_fails_the_rows_and_says_so(tmp_path):
     store.close()
 
 
+def test_a_silent_cluster_is_asked_anew(store, run, monkeypatch):
+    """An executor that forgets what it was given, as a cluster may that loses workers, is given it again."""
+    monkeypatch.setattr("interwind_service.batch.runner.BATCH_SILENCE_S", 0.1)
+    monkeypatch.setattr("interwind_service.batch.runner.BATCH_SILENCE_FACTOR", 0.0)
+    forgotten = iter(range(3))
+
+    class Forgetful(ThreadPoolExecutor):
+        def submit(self, function, task):
+            return Future() if next(forgotten, None) is not None else super().submit(function, task)
+
+    run(Forgetful(1), by_value=True)
+    assert 40 == wait_done(store, store.create(plan(store.folder, 40, 10)).batch_id).ok_count
+
+
 POINTS = ["renamed", "before commit", "committed"]
 
 
@@ -230,10 +244,10 @@ def test_death_at_any_point_loses_and_doubles_nothing(tmp_path, point):
     """Killed between file and row, before and after the commit, again and again: each row is there once, whole."""
     program = [sys.executable, plain_batch.__file__, str(tmp_path), point]
     deaths = 0
-    for count in [1, 2, 3, 5, 8, 13]:
+    for count in [1, 1, 2, 2, 3]:
         deaths += subprocess.run([*program, str(count)], check=False).returncode == -9
     assert 0 == subprocess.run([*program, "0"], check=False).returncode
-    assert deaths >= 5
+    assert deaths >= 4
     store = Store(StateFolder(tmp_path), retain_s=3600.0)
     (progress,), _ = store.page(None, 10, "")
     assert (400, 400) == (progress.ok_count, progress.variant_count)

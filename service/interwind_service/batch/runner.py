@@ -14,15 +14,23 @@ from collections import OrderedDict
 from collections.abc import Callable
 from concurrent.futures import CancelledError, Executor, Future
 from dataclasses import dataclass
+from math import inf
 from typing import Any
 
 from interwind.errors import Cancelled, DataLoss, Overloaded, Unavailable, WorkerLost
-from interwind.model.batch import BatchProgress
+from interwind.model.batch import BatchProgress, CostForecast
 from interwind_service.batch import folder as files
 from interwind_service.batch.rows import Chunk
 from interwind_service.batch.store import Store
 from interwind_service.batch.work import ChunkAnswer, ChunkTask, Solve
-from interwind_service.tolerances import BATCH_EXPIRE_EVERY_S, BATCH_OPEN_COUNT, BATCH_PROVE_COUNT, BATCH_STORE_RETRY_S
+from interwind_service.tolerances import (
+    BATCH_EXPIRE_EVERY_S,
+    BATCH_OPEN_COUNT,
+    BATCH_PROVE_COUNT,
+    BATCH_SILENCE_FACTOR,
+    BATCH_SILENCE_S,
+    BATCH_STORE_RETRY_S,
+)
 
 LOST = "a worker died twice at this variant; look at its size, and at the server's log for the signal"
 DEFECT = "computing this variant broke the solver; report it with the batch and the row"
@@ -36,6 +44,7 @@ class _Running:
 
     chunk: Chunk
     path: str
+    silent_at_s: float = inf
     future: Future[ChunkAnswer] | None = None
 
 
@@ -120,6 +129,7 @@ class Runner:
                 self._expire_at_s = now_s + BATCH_EXPIRE_EVERY_S
                 self._store.expire()
             until_s = self._expire_at_s if self._pause_until_s <= now_s else self._pause_until_s
+            until_s = min([until_s, *(running.silent_at_s for running in self._running.values())])
             try:
                 event: Callable[[], None] | None = self._events.get(timeout=max(until_s - now_s, 0.0))
             except queue.Empty:
@@ -130,12 +140,22 @@ class Runner:
             self._fill()
 
     def _fill(self) -> None:
+        self._give_up_the_silent()
         room = self._depth - sum(running.future is not None for running in self._running.values())
         if room <= 0 or self._stopping or time.monotonic() < self._pause_until_s:
             return
         for chunk in self._store.chunks.pending(room + len(self._running)):
             if room and chunk.key not in self._running:
                 room -= self._hand_out(chunk)
+
+    def _give_up_the_silent(self) -> None:
+        """Take back chunks of which a cluster has said nothing for too long; a late answer is not needed any more."""
+        now_s = time.monotonic()
+        for key, running in list(self._running.items()):
+            if running.future is not None and running.silent_at_s < now_s:
+                self._tell("batch_chunk_silent", batch_id=running.chunk.batch_id, first_row=running.chunk.first_row)
+                del self._running[key]
+                running.future.cancel()
 
     def _hand_out(self, chunk: Chunk) -> int:
         try:
@@ -150,6 +170,10 @@ class Runner:
         part = self._store.folder.batch(chunk.batch_id) / f"{uuid.uuid4().hex}.part"
         task = ChunkTask(recipe, numbers, chunk.first_row, chunk.row_count, "" if self._by_value else str(part))
         running = _Running(chunk, str(part))
+        if self._by_value:
+            forecast = self._store.progress(chunk.batch_id).forecast or CostForecast(chunk_count=1)
+            patience_s = max(BATCH_SILENCE_S, BATCH_SILENCE_FACTOR * forecast.duration_s / forecast.chunk_count)
+            running.silent_at_s = time.monotonic() + patience_s
         self._running[chunk.key] = running
         try:
             running.future = self._executor.submit(self._solve, task)
@@ -177,6 +201,8 @@ class Runner:
             self._open.pop(batch_id)[1].close()
 
     def _settle(self, running: _Running, future: Future[ChunkAnswer]) -> None:
+        if self._running.get(running.chunk.key) is not running:
+            return  # given up before
         chunk, running.future = running.chunk, None
         error: BaseException | None = CancelledError() if future.cancelled() else future.exception()
         stored: Future[Any]
