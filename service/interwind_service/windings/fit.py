@@ -3,7 +3,9 @@
     minimise Σ ((reading_r − y_r(L)) / σ_r)²   with   L = D F Fᵀ D,   F lower triangular
 
 so that every L met on the way is positive semidefinite by construction; D scales the windings to unit self-inductance.
-Gauss-Newton steps are damped after Levenberg (1944) and Marquardt (1963).
+With y(L) taken as linear the second derivative is Jᵀ J plus what F Fᵀ bends, −2 Σ r S for each column of F; that part
+vanishes at a fit inside the cone and is what holds one at its edge. Steps are damped after Levenberg (1944) and
+Marquardt (1963).
 """
 
 from __future__ import annotations
@@ -12,6 +14,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
+from scipy.linalg import cho_factor, cho_solve
 
 from interwind.model.frozen import FloatArray
 from interwind_service.tolerances import (
@@ -57,9 +60,12 @@ def fit(used: Sequence[Taken], labels: Sequence[str], start_h: FloatArray, *, st
     settled = False
     for _ in range(steps):
         jacobian = np.array([2.0 * (S @ F)[lower] for S in gradients])
-        weight = np.linalg.norm(jacobian, axis=0)
-        weight = np.where(weight > 0, weight, 1.0)
-        step = _step(jacobian / weight, residuals, damping) / weight
+        bend = sum(r * S for r, S in zip(residuals, gradients, strict=True))
+        hessian = jacobian.T @ jacobian - 2.0 * bend[lower[0]][:, lower[0]] * (lower[1][:, None] == lower[1][None, :])
+        step = _step(hessian, jacobian.T @ residuals, damping)
+        if step is None:
+            damping *= 4.0
+            continue
         trial = F.copy()
         trial[lower] += step
         new_residuals, new_gradients = _residuals(used, labels, d, trial)
@@ -79,11 +85,15 @@ def fit(used: Sequence[Taken], labels: Sequence[str], start_h: FloatArray, *, st
     return Fit(0.5 * (L + L.T), residuals, rows, scale[np.triu_indices(len(d))], settled)
 
 
-def _step(jacobian: FloatArray, residuals: FloatArray, damping: float) -> FloatArray:
-    """Least-squares solution of [J; sqrt(μ) I] s = [r; 0]."""
-    count = jacobian.shape[1]
-    damped = np.vstack([jacobian, np.sqrt(damping) * np.eye(count)])
-    return np.linalg.lstsq(damped, np.append(residuals, np.zeros(count)), rcond=None)[0]
+def _step(hessian: FloatArray, slope: FloatArray, damping: float) -> FloatArray | None:
+    """Solve (H + μ diag|H|) s = slope; None where that matrix is not positive definite."""
+    weight = np.sqrt(np.abs(hessian.diagonal()))
+    weight = np.where(weight > 0, weight, 1.0)
+    damped = hessian / np.outer(weight, weight) + damping * np.eye(len(weight))
+    try:
+        return cho_solve(cho_factor(damped), slope / weight) / weight
+    except np.linalg.LinAlgError:
+        return None
 
 
 def upper_row(S: FloatArray) -> FloatArray:
