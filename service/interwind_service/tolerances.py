@@ -226,6 +226,28 @@ SPARSE_COUPLING = 20
 # A residual above this is more than the rounding of one sparse solve, and worth a refinement.
 SPARSE_REFINED_RESIDUAL = 1e-15
 
+# Poles. A dense eigenproblem of this many states takes some ten seconds.
+MODAL_STATES = 1500
+# Where the state equations are centred, 1/s, before the modes are known; they are centred again on what is found.
+MODAL_FIRST_SHIFT = 1e6
+# A generalized eigenvalue this far above the largest entry of A is a zero at infinity, moved by rounding.
+INFINITE_ZERO = 1e-10
+# Adaptive sweep: even points a decade, and points on the flanks of a mode in half bandwidths from its centre.
+ADAPTIVE_POINTS_A_DECADE = 15
+ADAPTIVE_FLANKS = (-4.0, -2.0, -1.0, -0.5, 0.0, 0.5, 1.0, 2.0, 4.0)
+# The grid that finds what is missed has this many points between two chosen ones.
+ADAPTIVE_CHECK = 8
+# Each zoom narrows a peak's bracket to a quarter: twelve leave 1e-8 of the first one.
+ADAPTIVE_ZOOMS = 12
+# Rounds of adding missed peaks; two are enough but where many modes overlap.
+ADAPTIVE_ROUNDS = 4
+# Two frequencies closer than this are one: a tenth of the part in a million that a peak is told to.
+ADAPTIVE_SAME = 1e-7
+# Peaks 60 dB below the largest of an observable are listed only when the points miss them.
+ADAPTIVE_PROMINENT = 1e-3
+# Tolerances below this are lost in the rounding of the peak itself.
+ADAPTIVE_LEAST_DB = 1e-6
+
 # --- response: time -------------------------------------------------------------------------------------------------
 
 # Below this 1-norm the Taylor series of e^X needs no halving. Rungs are cheaper than terms where many states advance.
@@ -454,8 +476,9 @@ BATCH_SPLIT = 8  # parts a poisoned chunk falls into: four splits single out one
 BATCH_STORE_RETRY_S = 2.0  # before the state folder is tried again once it could not be written to
 BATCH_EXPIRE_EVERY_S = 60.0  # between two looks for batches whose time has come; retention is told in days
 BATCH_OPEN_COUNT = 8  # batches whose submitted numbers stay open: more run in turns rarely
-BATCH_SILENCE_S = 30.0  # a cluster that has said nothing of a chunk for so long is asked anew
-BATCH_SILENCE_FACTOR = 20.0  # but never before so many times what the chunk was forecast to take
+BATCH_PATIENCE_S = 60.0  # a chunk is never thought stuck before: a loaded machine may be ten times slower
+BATCH_PATIENCE_FACTOR = 50.0  # nor before so many times what it was forecast to take
+BATCH_LOOK_EVERY_S = 5.0  # between two looks for stuck chunks
 BATCH_PROVE_COUNT = 64  # newest result files read whole after a restart: what a disk may hold back unwritten
 BATCH_VARIANT_LIMIT = 1_000_000  # variants in one batch: its columns then stay within some tens of megabytes
 BATCH_POINT_LIMIT = 200_000  # points of a row: the grid still fits one message

@@ -36,9 +36,8 @@ def components(nodes: int, start: IntArray, finish: IntArray) -> IntArray:
     union = _Union(nodes)
     for a, b in zip(start.tolist(), finish.tolist(), strict=True):
         union.join(a, b)
-    roots = [union.find(k) for k in range(nodes)]
     number: dict[int, int] = {}
-    return np.array([number.setdefault(root, len(number)) for root in roots], dtype=np.int64)
+    return np.array([number.setdefault(union.find(k), len(number)) for k in range(nodes)], dtype=np.int64)
 
 
 def spanning_forest(nodes: int, start: IntArray, finish: IntArray, order: Iterable[int]) -> IntArray:
@@ -74,3 +73,41 @@ def path_matrix(nodes: int, start: IntArray, finish: IntArray, tree: IntArray) -
                     P[other, column] = sign
                     stack.append(other)
     return P
+
+
+class Rooted:
+    """A forest with a parent for each node, so that the branches between two nodes are found by climbing."""
+
+    def __init__(self, nodes: int, start: IntArray, finish: IntArray, tree: IntArray) -> None:
+        neighbours: list[list[tuple[int, int]]] = [[] for _ in range(nodes)]
+        for k in tree.tolist():
+            a, b = int(start[k]), int(finish[k])
+            neighbours[a].append((b, k))
+            neighbours[b].append((a, k))
+        self._start = start
+        self._parent, self._branch, self._depth = [-1] * nodes, [-1] * nodes, [-1] * nodes
+        for root in range(nodes):
+            if self._depth[root] >= 0:
+                continue
+            self._depth[root] = 0
+            stack = [root]
+            while stack:
+                node = stack.pop()
+                for other, k in neighbours[node]:
+                    if self._depth[other] < 0:
+                        self._parent[other], self._branch[other] = node, k
+                        self._depth[other] = self._depth[node] + 1
+                        stack.append(other)
+
+    def between(self, one: int, other: int) -> list[tuple[int, int]]:
+        """Return (branch, sign) so that v(one) − v(other) is the signed sum of the branch voltages."""
+        found = []
+        while one != other:
+            up, sign = (one, 1) if self._depth[one] >= self._depth[other] else (other, -1)
+            k = self._branch[up]
+            found.append((k, sign if self._start[k] == up else -sign))
+            if up == one:
+                one = self._parent[one]
+            else:
+                other = self._parent[other]
+        return found

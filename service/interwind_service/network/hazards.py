@@ -76,9 +76,11 @@ def _impulses(topology: Topology) -> list[Caution]:
 
 
 def _open_current_transformers(topology: Topology) -> list[Caution]:
-    cautions = []
-    low = _low_impedance(topology)
+    cautions: list[Caution] = []
     forced = {int(k) for b in topology.of_kind(Kind.CURRENT_SOURCE) for k in (topology.start[b], topology.finish[b])}
+    if not forced:
+        return cautions
+    low = _low_impedance(topology)
     for group in topology.groups:
         for i, branch in enumerate(group.branches.tolist()):
             others = np.ones(len(low), dtype=bool)

@@ -109,7 +109,9 @@ class Topology:
 
     def of_kind(self, *kinds: Kind) -> IntArray:
         """Return the branches of these kinds, in order."""
-        return np.flatnonzero(np.isin(self.kind, [int(kind) for kind in kinds]))
+        wanted = np.zeros(len(Kind), dtype=bool)
+        wanted[list(kinds)] = True
+        return np.flatnonzero(wanted[self.kind])
 
     def branches_of(self, name: str) -> IntArray:
         """Return the branches of an element, in order."""
@@ -117,9 +119,9 @@ class Topology:
 
     def winding(self, name: str, label: str) -> int:
         """Return the branch of one winding, -1 when there is none of that name and label."""
-        for k, (other, own) in enumerate(zip(self.names, self.labels, strict=True)):
-            if other == name and own == label and self.kind[k] == Kind.WINDING:
-                return k
+        for group in self.groups:
+            if group.name == name and label in group.labels:
+                return int(group.branches[group.labels.index(label)])
         return -1
 
     def node(self, name: str) -> int:

@@ -12,36 +12,26 @@ from numpy.typing import NDArray
 from interwind.errors import AccuracyNotReached
 from interwind.model.finding import Evidence
 from interwind_service import tolerances as tol
-from interwind_service.response.spectrum import Band
+from interwind_service.response.solutions import Solution
 
 ComplexArray = NDArray[np.complex128]
 FloatArray = NDArray[np.float64]
 
 
-def terminal_matrix(band: Band) -> tuple[ComplexArray, NDArray[np.bool_]]:
-    """Return the hybrid matrix H (f, d, d) of the drives, and which of them (d,) impose a voltage.
+def weigh(H: ComplexArray, voltage: NDArray[np.bool_], noise: FloatArray) -> ComplexArray:
+    """Divide the rows and columns of voltage and of current drives by the root of the largest entry of their kind.
 
-    H holds the current into the network per volt and the port voltage per ampere: over voltage drives alone the
-    admittance matrix, over current drives alone the impedance matrix. The rows and columns of each kind are divided by
-    the root of its largest entry, or of what stands well above rounding noise where no entry does.
+    H (f, d, d) is the hybrid matrix of the drives: current into the network per volt, port voltage per ampere. Where no
+    entry stands above ``noise`` (f or 1, d), noise takes its place. Over drives of one kind this is H over its largest
+    entry, the admittance or the impedance matrix.
     """
-    tree = band.tree
-    rows = np.zeros((len(tree.drives), band.Z.shape[1]))
-    voltage = np.array([drive.out_of < 0 for drive in tree.drives])
-    for k, drive in enumerate(tree.drives):
-        if voltage[k]:
-            rows[k, tree.current[drive.branch]] = -1.0
-        else:
-            rows[k, : len(tree.tree)] = tree.paths[drive.into] - tree.paths[drive.out_of]
-    H = rows @ band.Z
     scale = np.ones(H.shape[:2])
-    noise = tol.NOISE_SHARE * (band.scale @ np.abs(rows).T) * band.largest
     for kind in (voltage, ~voltage):
         if kind.any():
             size = np.abs(H[:, kind][:, :, kind]).max(axis=(1, 2))
             size = np.maximum(size, noise[:, kind].max(axis=1))
             scale[:, kind] = np.sqrt(np.divide(1.0, size, out=np.ones_like(size), where=size > 0.0))[:, None]
-    return H * scale[:, :, None] * scale[:, None, :], voltage
+    return H * scale[:, :, None] * scale[:, None, :]
 
 
 def asymmetry(H: ComplexArray, voltage: NDArray[np.bool_]) -> FloatArray:
@@ -59,35 +49,35 @@ def passivity(H: ComplexArray) -> FloatArray:
 
 @dataclass(frozen=True, slots=True)
 class Judgement:
-    """The worst figures of one band; NaN where a figure does not apply."""
+    """The worst figures of one band; NaN where a figure does not apply. ``asymmetries`` (f,), NaN where singular."""
 
     residual: float
     condition: float
-    asymmetry: float
+    asymmetries: FloatArray
     passivity: float
 
 
-def judge(band: Band, *, drives_alone: bool) -> Judgement:
-    """Judge a solved band; ``drives_alone`` = each drive was solved for by itself, so that a terminal matrix exists."""
-    solved = np.isfinite(band.condition)
-    residual = float(band.residual[solved].max(initial=0.0))
-    condition = float(band.condition[solved].max(initial=1.0))
-    if not (drives_alone and solved.any() and band.tree.drives) or band.tree.topology.controls:
-        return Judgement(residual, condition, math.nan, math.nan)
-    H, voltage = terminal_matrix(band)
-    H = H[solved]
-    return Judgement(residual, condition, float(asymmetry(H, voltage).max()), float(passivity(H).min()))
+def judge(solution: Solution, *, drives_alone: bool) -> Judgement:
+    """Judge a solution; ``drives_alone`` = each drive was solved for by itself, so that a terminal matrix exists."""
+    solved = ~solution.singular
+    asymmetries = np.full(len(solved), math.nan)
+    if not (drives_alone and solved.any() and solution.drives) or solution.state.topology.controls:
+        return Judgement(solution.residual, solution.condition, asymmetries, math.nan)
+    voltage = np.array([drive.out_of < 0 for drive in solution.drives])
+    H = weigh(solution.terminal(), voltage, solution.noise)[solved]
+    asymmetries[solved] = asymmetry(H, voltage)
+    return Judgement(solution.residual, solution.condition, asymmetries, float(passivity(H).min()))
 
 
 def gather(method: str, judged: Sequence[Judgement]) -> Evidence:
     """Gather the judgements of all bands."""
-    gaps = [x.asymmetry for x in judged if not math.isnan(x.asymmetry)]
+    gaps = np.concatenate([x.asymmetries[~np.isnan(x.asymmetries)] for x in judged])
     margins = [x.passivity for x in judged if not math.isnan(x.passivity)]
     return Evidence(
         method=method,
         residual=max(x.residual for x in judged),
         condition=max(x.condition for x in judged),
-        reciprocity_error=max(gaps, default=math.nan),
+        reciprocity_error=float(gaps.max()) if gaps.size else math.nan,
         passivity_margin=min(margins, default=math.nan),
     )
 

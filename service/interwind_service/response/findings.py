@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from interwind.model.finding import Finding, Severity
-from interwind_service.response.frequency_tree import FrequencyTree
-from interwind_service.response.undetermined import Undetermined, node_list, suspects
+from interwind_service.network.topology import Topology
+from interwind_service.response.undetermined import Undetermined, node_list
 
 
-def open_end_findings(tree: FrequencyTree, found: Undetermined) -> list[Finding]:
+def open_end_findings(topology: Topology, found: Undetermined) -> list[Finding]:
     """Say which node voltages and which currents nothing determines."""
     findings = []
     if found.nodes.size:
@@ -16,7 +16,8 @@ def open_end_findings(tree: FrequencyTree, found: Undetermined) -> list[Finding]
                 "UNDEFINED_POTENTIAL",
                 Severity.WARNING,
                 field="elements",
-                message=f"nodes {node_list(tree, found.nodes)} are cut off by open switches; their voltages are NaN",
+                message=f"nodes {node_list(topology, found.nodes)} are cut off by open switches; their voltages are "
+                "NaN",
             )
         )
     if found.currents.size:
@@ -25,23 +26,23 @@ def open_end_findings(tree: FrequencyTree, found: Undetermined) -> list[Finding]
                 "UNDETERMINED_CURRENT",
                 Severity.WARNING,
                 field="elements",
-                message=f"the current shared by {_names(tree, found)} is undetermined, for they close a loop without "
-                "resistance; their currents are NaN; give one of them the resistance it has",
+                message=f"the current shared by {_names(topology, found)} is undetermined, for they close a loop "
+                "without resistance; their currents are NaN; give one of them the resistance it has",
             )
         )
     return findings
 
 
-def singular_finding(tree: FrequencyTree, frequency_hz: float, s: complex, found: Undetermined) -> Finding:
-    """Name the frequency, and the nodes and elements at fault."""
+def singular_finding(topology: Topology, frequency_hz: float, found: Undetermined, suspected: str) -> Finding:
+    """Name the frequency, and the nodes and elements at fault; ``suspected`` are those of the null vector."""
     if found.nothing:
-        what = f"{suspects(tree, s)} carry a resonance without loss or a current that nothing determines"
+        what = f"{suspected} carry a resonance without loss or a current that nothing determines"
     elif found.contradiction:
         what = found.contradiction
     elif found.nodes.size:
-        what = f"nodes {node_list(tree, found.nodes)} hang on capacitors or open switches alone"
+        what = f"nodes {node_list(topology, found.nodes)} hang on capacitors or open switches alone"
     else:
-        what = f"{_names(tree, found)} close a loop without resistance"
+        what = f"{_names(topology, found)} close a loop without resistance"
     return Finding(
         "SINGULAR_AT_FREQUENCY",
         Severity.WARNING,
@@ -51,5 +52,5 @@ def singular_finding(tree: FrequencyTree, frequency_hz: float, s: complex, found
     )
 
 
-def _names(tree: FrequencyTree, found: Undetermined) -> str:
-    return ", ".join(repr(name) for name in dict.fromkeys(tree.topology.names[k] for k in found.currents))
+def _names(topology: Topology, found: Undetermined) -> str:
+    return ", ".join(repr(name) for name in dict.fromkeys(topology.names[k] for k in found.currents))

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 from collections.abc import Sequence
 
 import numpy as np
@@ -13,16 +14,20 @@ from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.response import FrequencyResponse
 from interwind_service.network.kind import Kind
-from interwind_service.network.topology import Topology
+from interwind_service.network.topology import Topology, number
 from interwind_service.response.admit import admit
 from interwind_service.response.cautions import cautions_of
 from interwind_service.response.evidence import gather, judge, require
 from interwind_service.response.findings import open_end_findings, singular_finding
 from interwind_service.response.frequency_tree import Drive
 from interwind_service.response.observe import evaluate, resolve
-from interwind_service.response.phasors import Phasors, StressGauge
-from interwind_service.response.spectrum import checked_frequencies, spectrum
-from interwind_service.response.undetermined import refuse, undetermined
+from interwind_service.response.phasors import Phasors
+from interwind_service.response.roles import roles_of
+from interwind_service.response.solutions import solutions
+from interwind_service.response.spectrum import checked_frequencies
+from interwind_service.response.stress import StressGauge
+from interwind_service.response.swept_state import Recorder
+from interwind_service.response.undetermined import left_open, refuse
 
 ComplexArray = NDArray[np.complex128]
 
@@ -56,36 +61,38 @@ def frequency_response(
         Residual, reciprocity or passivity beyond its limit.
     """
     f = checked_frequencies(frequency_hz)
-    topology = admit(network)
+    topology = _with_port_drives(admit(network))
     asked = resolve(topology, observe)
     drives, u = drives_of(topology)
     samples = np.full((len(f), len(asked)), np.nan, dtype=np.complex128)
-    findings, judged, gauge = list(topology.findings), [], StressGauge(topology)
-    for band in spectrum(topology, f, drives):
-        open_ends = undetermined(band.tree, u)
-        singular = ~np.isfinite(band.condition)
-        if band.s[0] != 0.0:
-            refuse(open_ends)
-            findings += [x for x in open_end_findings(band.tree, open_ends) if x not in findings]
-        elif not open_ends.nothing:
-            singular[:] = True
+    findings, judged, methods, gauge = list(topology.findings), [], {}, StressGauge(topology)
+    moving = left_open(topology, roles_of(topology, at_zero=False), drives, u)
+    standing = left_open(topology, roles_of(topology, at_zero=True), drives, u) if not f.all() else moving
+    if f.any():
+        refuse(moving)
+        findings += open_end_findings(topology, moving)
+    for found in solutions(topology, f, drives, u, sweepable=moving.nothing, rows=_rows(topology, asked)):
+        open_ends = moving if found.omega[0] else standing
+        singular = found.singular if found.omega[0] or standing.nothing else np.ones_like(found.singular)
         findings += [
-            singular_finding(band.tree, float(f[k]), complex(s), open_ends)
-            for k, s in zip(band.index[singular], band.s[singular], strict=True)
+            singular_finding(topology, float(f[found.index[k]]), open_ends, found.suspects(int(k)))
+            for k in np.flatnonzero(singular)
         ]
-        phasors = Phasors(band, u, open_ends)
+        phasors = Phasors(found.state, open_ends)
         for column, item in enumerate(asked):
-            samples[band.index, column] = evaluate(phasors, item)
-        samples[band.index[singular]] = np.nan
+            samples[found.index, column] = evaluate(phasors, item)
+        samples[found.index[singular]] = np.nan
         if not singular.any():
-            gauge.take(phasors)
-        judged.append(judge(band, drives_alone=open_ends.nothing))
-    found = [x for x in findings if x.code == "SINGULAR_AT_FREQUENCY"]
-    if len(found) == len(f):
+            gauge.take_voltages(phasors)
+            gauge.take_fields(Phasors(found.loudest, open_ends))
+        judged.append(judge(found, drives_alone=open_ends.nothing))
+        methods[found.method] = None
+    singular_rows = [x for x in findings if x.code == "SINGULAR_AT_FREQUENCY"]
+    if len(singular_rows) == len(f):
         raise InvalidNetwork.at(
-            "elements", f"no solution at any frequency asked for; {found[0].message}", reason="SINGULAR"
+            "elements", f"no solution at any frequency asked for; {singular_rows[0].message}", reason="SINGULAR"
         )
-    evidence = gather("frequency tree, LU, one refinement", judged)
+    evidence = gather("; ".join(methods), judged)
     require(evidence)
     return FrequencyResponse(
         asked,
@@ -95,6 +102,35 @@ def frequency_response(
         cautions=cautions_of(topology, gauge.stress()),
         evidence=evidence,
     )
+
+
+def _rows(topology: Topology, asked: tuple[Observable, ...]) -> tuple[int, ...]:
+    """The signals that the observables need."""
+    recorder = Recorder(topology)
+    for item in asked:
+        evaluate(recorder, item)
+    return tuple(recorder.rows)
+
+
+def _with_port_drives(topology: Topology) -> Topology:
+    """Give each port within one part a current source of 0 A, so that the evidence covers ports as well as sources."""
+    network = topology.network
+    added = []
+    for position, port in enumerate(network.ports):
+        a, b = port_nodes(topology, position)
+        if topology.parts.of_node[a] == topology.parts.of_node[b] and a != b:
+            added.append(CurrentSource(unused_name(network, f"port {port.name}"), port.b, port.a))
+    if not added:
+        return topology
+    driven = number(dataclasses.replace(network, elements=(*network.elements, *added), ports=()))
+    return dataclasses.replace(driven, findings=topology.findings)
+
+
+def unused_name(network: Network, name: str) -> str:
+    """Return a name that no element has, made from ``name``."""
+    while any(element.name == name for element in network.elements):
+        name += " "
+    return name
 
 
 def drives_of(topology: Topology) -> tuple[tuple[Drive, ...], ComplexArray]:

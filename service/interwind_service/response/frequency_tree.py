@@ -22,7 +22,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
-from interwind_service.network.forest import components, path_matrix, spanning_forest
+from interwind_service.network.forest import path_matrix, spanning_forest
 from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import WindingCoordinates
 from interwind_service.response.roles import Role, Roles
@@ -47,10 +47,11 @@ class FrequencyTree:
 
     Attributes
     ----------
-    tree : (T,) branches of the tree. ``Q`` (T, branches). ``paths`` (nodes, T): node voltages = paths @ v_T.
-    component : (nodes,) what hangs together at this frequency; each has the first of its nodes as zero.
+    tree : (T,) branches of the tree. ``Q`` (T, branches). ``paths`` (nodes, T): node voltages = paths @ v_T, the
+        first node of each tree being zero.
     M : three matrices (n, columns); ``J`` (n, drives).
-    known : columns of imposed tree voltages; ``imposed`` (known, drives): their values per unit of each drive.
+    unknown, known : columns sought, columns of imposed tree voltages; ``imposed`` (known, drives): their values per
+        unit of each drive.
     columns : the branch of each column; the first T are voltages, the others currents.
     groups : columns of each winding group. ``current`` (branches,): the column of a current, −1 without one.
     loops : branches of imposed voltage that close a loop of such branches.
@@ -63,20 +64,15 @@ class FrequencyTree:
     tree: IntArray
     Q: FloatArray
     paths: FloatArray
-    component: IntArray
     M: tuple[FloatArray, FloatArray, FloatArray]
     J: FloatArray
+    unknown: IntArray
     known: IntArray
     imposed: FloatArray
     columns: IntArray
     groups: tuple[slice, ...]
     current: IntArray
     loops: IntArray
-
-    @property
-    def unknown(self) -> IntArray:
-        """The columns sought."""
-        return np.setdiff1d(np.arange(len(self.columns)), self.known)
 
     def matrix(self, s: ComplexArray) -> ComplexArray:
         """Return M(s), shape (f, n, columns)."""
@@ -86,6 +82,12 @@ class FrequencyTree:
         if np.any(M2):
             stack += M2[None] * (1.0 / s)[:, None, None]
         return stack
+
+    def drops(self) -> list[tuple[int, float]]:
+        """Return the columns that are drops of resistances written apart, and those resistances, ohm."""
+        apart = _apart(self.topology, self.coordinates)
+        first = len(self.columns) - len(apart)
+        return [(first + k, float(self.topology.groups[g].resistance_ohm[w, w])) for k, (g, w) in enumerate(apart)]
 
     def voltage(self, branch: int, z: ComplexArray) -> ComplexArray:
         """Return the voltage of a branch, z (f, columns) being solutions."""
@@ -122,8 +124,6 @@ def frequency_tree(
     """Choose the tree at ``omega``, rad/s, and write the equations."""
     size, nodes, role = len(topology.kind), len(topology.nodes), roles.role
     tree = spanning_forest(nodes, topology.start, topology.finish, _order(topology, roles, omega))
-    conducting = np.flatnonzero((role != Role.CURRENT) & (role != Role.OPEN))
-    component = components(nodes, topology.start[conducting], topology.finish[conducting])
     paths = path_matrix(nodes, topology.start, topology.finish, tree)
     Q = (paths[topology.start] - paths[topology.finish]).T
 
@@ -132,20 +132,21 @@ def frequency_tree(
     for group in topology.groups:
         groups.append(slice(len(columns), len(columns) + group.size))
         columns += group.branches.tolist()
-    imposing = [k for k in tree.tolist() if role[k] == Role.VOLTAGE]
+    known = np.flatnonzero(role[tree] == Role.VOLTAGE)
+    imposing = tree[known].tolist()
     current = np.full(size, -1, dtype=np.int64)
     for branch in [*imposing, *(t.first for t in topology.transformers), *(c.branch for c in topology.controls)]:
         current[branch] = len(columns)
         columns.append(int(branch))
     apart = _apart(topology, coordinates)
     columns += [int(topology.groups[g].branches[w]) for g, w in apart]
-    known = np.array([k for k, branch in enumerate(tree.tolist()) if role[branch] == Role.VOLTAGE], dtype=np.int64)
     imposed = np.array([[float(d.branch == branch) for d in drives] for branch in imposing])
     imposed = imposed.reshape(len(imposing), len(drives))
     equations = _Equations(topology, coordinates, roles, drives, Q, paths, groups, current, apart, len(columns))
     M, J = equations.write(imposing)
     return FrequencyTree(
-        topology, coordinates, roles, drives, tree, Q, paths, component, M, J, known, imposed,
+        topology, coordinates, roles, drives, tree, Q, paths, M, J,
+        np.delete(np.arange(len(columns)), known), known, imposed,
         np.array(columns, dtype=np.int64), tuple(groups), current,
         np.setdiff1d(np.flatnonzero(role == Role.VOLTAGE), tree),
     )  # fmt: skip

@@ -12,7 +12,7 @@ from interwind.model import observables as ob
 from interwind.model.elements import Windings
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
-from interwind_service.response.phasors import Phasors
+from interwind_service.response.phasors import Readable
 
 ComplexArray = NDArray[np.complex128]
 
@@ -67,7 +67,7 @@ def _check(topology: Topology, item: ob.Observable) -> None:
             )
 
 
-def evaluate(phasors: Phasors, item: ob.Observable) -> ComplexArray:
+def evaluate(phasors: Readable, item: ob.Observable) -> ComplexArray:
     """Return one observable over frequency, shape (f,), complex peak; power ½ V conj(I), energy the mean.
 
     A winding group absorbs ½ iᴴ (R + jωL) i with its full resistance matrix, so that no small loss is left over from
@@ -105,7 +105,7 @@ def _group(topology: Topology, name: str) -> int:
     return next(k for k, group in enumerate(topology.groups) if group.name == name)
 
 
-def _power(phasors: Phasors, branch: int) -> ComplexArray:
+def _power(phasors: Readable, branch: int) -> ComplexArray:
     topology, kind = phasors.topology, phasors.topology.kind[branch]
     value = topology.value[branch]
     if kind == Kind.WINDING:
@@ -123,7 +123,7 @@ def _power(phasors: Phasors, branch: int) -> ComplexArray:
     return 0.5 * phasors.voltage(branch) * np.conj(phasors.current(branch))
 
 
-def _energy(phasors: Phasors, branch: int) -> ComplexArray:
+def _energy(phasors: Readable, branch: int) -> ComplexArray:
     topology, kind = phasors.topology, phasors.topology.kind[branch]
     value = topology.value[branch]
     if kind == Kind.WINDING:

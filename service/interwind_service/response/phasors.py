@@ -1,14 +1,13 @@
-"""Voltages and currents of the branches in the sinusoidal state, and what they put under stress."""
+"""Voltages and currents of the branches in the sinusoidal state, however they were solved for."""
 
 from __future__ import annotations
+
+from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
-from interwind_service.response.cautions import Stress
-from interwind_service.response.frequency_tree import FrequencyTree
 from interwind_service.response.spectrum import Band
 from interwind_service.response.undetermined import Undetermined
 
@@ -16,25 +15,47 @@ ComplexArray = NDArray[np.complex128]
 FloatArray = NDArray[np.float64]
 
 
-class Phasors:
-    """The sinusoidal state of one band as functions of branch and node numbers, each (f,); ``omega`` (f,), rad/s.
+class Readable(Protocol):
+    """The sinusoidal state at some frequencies, whatever the method that found it; each array has shape (f, ...)."""
 
-    Where nothing determines a voltage or a current it is NaN.
-    """
-
-    def __init__(self, band: Band, u: ComplexArray, open_ends: Undetermined) -> None:
-        self.tree: FrequencyTree = band.tree
-        self.topology: Topology = band.tree.topology
-        self.omega: FloatArray = band.s.imag
-        self._s, self._u, self._z = band.s, u, band.Z @ u
-        self._floating = set(open_ends.nodes.tolist())
-        self._open = set(open_ends.currents.tolist())
+    topology: Topology
+    omega: FloatArray
 
     def between(self, one: int, other: int) -> ComplexArray:
         """Return the voltage of node ``one`` against node ``other``."""
-        tree = self.tree
-        if tree.component[one] != tree.component[other] or (one == other and one in self._floating):
-            return np.full(len(self.omega), np.nan, dtype=np.complex128)
+
+    def voltage(self, branch: int) -> ComplexArray:
+        """Return the voltage of a branch from its start to its finish."""
+
+    def current(self, branch: int) -> ComplexArray:
+        """Return the current of a branch from its start to its finish."""
+
+    def field(self, group: int) -> FloatArray:
+        """Return iᴴ L i of a winding group."""
+
+    def flux_linkages(self, group: int) -> ComplexArray:
+        """Return L i of a winding group, shape (f, n)."""
+
+
+class State(Readable, Protocol):
+    """A state that knows every node voltage."""
+
+    def node_voltages(self) -> ComplexArray:
+        """Return every node voltage against its zero, shape (f, nodes)."""
+
+
+class TreeState:
+    """A state solved in the voltages of a frequency tree."""
+
+    def __init__(self, band: Band, u: ComplexArray) -> None:
+        self._tree = band.tree
+        self.topology: Topology = band.tree.topology
+        self.omega: FloatArray = band.s.imag
+        self._s, self._u, self._z = band.s, u, band.Z @ u
+
+    def between(self, one: int, other: int) -> ComplexArray:
+        """Return the voltage of node ``one`` against node ``other``, along the tree."""
+        tree = self._tree
         return self._z[:, : len(tree.tree)] @ (tree.paths[one] - tree.paths[other])
 
     def voltage(self, branch: int) -> ComplexArray:
@@ -43,59 +64,64 @@ class Phasors:
 
     def current(self, branch: int) -> ComplexArray:
         """Return the current of a branch from its start to its finish."""
-        if branch in self._open:
-            return np.full(len(self.omega), np.nan, dtype=np.complex128)
-        return self.tree.branch_current(branch, self._z, self._s, self._u)
+        return self._tree.branch_current(branch, self._z, self._s, self._u)
 
     def field(self, group: int) -> FloatArray:
         """Return iᴴ L i of a winding group, in the coordinates that keep its leakage."""
-        y = self._z[:, self.tree.groups[group]]
-        return np.einsum("fi,fi->f", y.conj(), y @ self.tree.coordinates[group].S).real
+        y = self._z[:, self._tree.groups[group]]
+        return np.einsum("fi,fi->f", y.conj(), y @ self._tree.coordinates[group].S).real
 
     def flux_linkages(self, group: int) -> ComplexArray:
         """Return L i of a winding group, shape (f, n): the solution of Nᵀ λ = S y."""
-        own = self.tree.coordinates[group]
-        return np.linalg.solve(own.N.T, own.S @ self._z[:, self.tree.groups[group]].T).T
+        own = self._tree.coordinates[group]
+        return np.linalg.solve(own.N.T, own.S @ self._z[:, self._tree.groups[group]].T).T
 
-    def node_peaks(self) -> FloatArray:
-        """Return the largest magnitude of each node voltage against its zero, shape (nodes,); NaN without a zero."""
-        paths = self.tree.paths - self.tree.paths[self.topology.parts.reference[self.topology.parts.of_node]]
-        peaks = np.abs(self._z[:, : len(self.tree.tree)] @ paths.T).max(axis=0)
-        peaks[list(self._floating)] = np.nan
-        return peaks
+    def node_voltages(self) -> ComplexArray:
+        """Return every node voltage against its zero, shape (f, nodes)."""
+        zero = self.topology.parts.reference[self.topology.parts.of_node]
+        paths = self._tree.paths - self._tree.paths[zero]
+        return self._z[:, : len(self._tree.tree)] @ paths.T
 
 
-class StressGauge:
-    """Collects the largest stress over the bands of a response."""
+class Phasors:
+    """A state with NaN where nothing determines a voltage or a current."""
 
-    def __init__(self, topology: Topology) -> None:
-        self._topology = topology
-        self._nodes = np.zeros(len(topology.nodes))
-        self._capacitors = {int(k): 0.0 for k in topology.of_kind(Kind.CAPACITOR)}
-        self._coils: dict[str, float] = {}
-        self._direct = True
+    def __init__(self, state: State, left_open: Undetermined) -> None:
+        self._state = state
+        self.topology, self.omega = state.topology, state.omega
+        self._floating = left_open.nodes
+        self._open = set(left_open.currents.tolist())
+        self._component = left_open.component
 
-    def take(self, phasors: Phasors) -> None:
-        """Take one band into account."""
-        self._direct &= not phasors.omega.any()
-        self._nodes = np.fmax(self._nodes, phasors.node_peaks())
-        for k, peak in self._capacitors.items():
-            self._capacitors[k] = float(np.fmax(peak, np.abs(phasors.voltage(k)).max()))
-        for k in self._topology.of_kind(Kind.INDUCTOR).tolist():
-            energy = 0.5 * self._topology.value[k] * np.abs(phasors.current(k)) ** 2
-            self._keep(self._topology.names[k], energy)
-        for k, group in enumerate(self._topology.groups):
-            self._keep(group.name, 0.5 * phasors.field(k))
+    def between(self, one: int, other: int) -> ComplexArray:
+        """Return the voltage of node ``one`` against node ``other``."""
+        if self._component[one] != self._component[other] or (one == other and one in self._floating):
+            return np.full(len(self.omega), np.nan, dtype=np.complex128)
+        return self._state.between(one, other)
 
-    def stress(self) -> Stress:
-        """Return the largest magnitudes found."""
-        names = self._topology.names
-        return Stress(
-            node_voltage_v=dict(zip(self._topology.nodes, self._nodes.tolist(), strict=True)),
-            capacitor_voltage_v={names[k]: peak for k, peak in self._capacitors.items()},
-            magnetic_energy_j=self._coils,
-            direct=self._direct,
-        )
+    def voltage(self, branch: int) -> ComplexArray:
+        """Return the voltage of a branch from its start to its finish."""
+        one, other = int(self.topology.start[branch]), int(self.topology.finish[branch])
+        if self._component[one] != self._component[other]:
+            return np.full(len(self.omega), np.nan, dtype=np.complex128)
+        return self._state.voltage(branch)
 
-    def _keep(self, name: str, energy: FloatArray) -> None:
-        self._coils[name] = float(np.fmax(self._coils.get(name, 0.0), np.fmax.reduce(energy, initial=0.0)))
+    def current(self, branch: int) -> ComplexArray:
+        """Return the current of a branch from its start to its finish."""
+        if branch in self._open:
+            return np.full(len(self.omega), np.nan, dtype=np.complex128)
+        return self._state.current(branch)
+
+    def field(self, group: int) -> FloatArray:
+        """Return iᴴ L i of a winding group."""
+        return self._state.field(group)
+
+    def flux_linkages(self, group: int) -> ComplexArray:
+        """Return L i of a winding group, shape (f, n)."""
+        return self._state.flux_linkages(group)
+
+    def node_voltages(self) -> ComplexArray:
+        """Return every node voltage against its zero, shape (f, nodes); NaN without one."""
+        volts = self._state.node_voltages()
+        volts[:, self._floating] = np.nan
+        return volts

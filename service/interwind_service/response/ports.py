@@ -3,24 +3,28 @@
 from __future__ import annotations
 
 import dataclasses
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
 from interwind.errors import InvalidNetwork
 from interwind.model import elements as el
-from interwind.model.network import Network
+from interwind.model.finding import Finding
+from interwind.model.network import Network, Port
 from interwind.model.response import PortResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.hazards import hazards
-from interwind_service.network.topology import Topology
+from interwind_service.network.topology import Topology, number
 from interwind_service.response.admit import admit
-from interwind_service.response.evidence import asymmetry, gather, judge, require, terminal_matrix
+from interwind_service.response.evidence import Judgement, gather, judge, require
 from interwind_service.response.findings import singular_finding
-from interwind_service.response.frequency import port_nodes
+from interwind_service.response.frequency import drives_of, port_nodes, unused_name
 from interwind_service.response.frequency_tree import Drive
-from interwind_service.response.spectrum import Band, checked_frequencies, spectrum
-from interwind_service.response.undetermined import undetermined
+from interwind_service.response.roles import Roles, roles_of
+from interwind_service.response.solutions import solutions
+from interwind_service.response.spectrum import checked_frequencies
+from interwind_service.response.undetermined import left_open
 
 ComplexArray = NDArray[np.complex128]
 FloatArray = NDArray[np.float64]
@@ -59,99 +63,101 @@ def port_response(network: Network, frequency_hz: object) -> PortResponse:
     if not network.ports:
         raise InvalidNetwork.at("ports", "none found; a port response needs at least one")
     f = checked_frequencies(frequency_hz)
-    plain = admit(network)
-    nodes = [port_nodes(plain, position) for position in range(len(network.ports))]
-    reference = np.array([port.reference_ohm for port in network.ports])
-    terminated = admit(
-        _with_ports(
-            network,
-            [
-                el.Resistor(name, p.a, p.b, p.reference_ohm)
-                for name, p in zip(_names(network), network.ports, strict=True)
-            ],
-        )
-    )
-    imposed = admit(
-        _with_ports(
-            network, [el.VoltageSource(name, p.a, p.b) for name, p in zip(_names(network), network.ports, strict=True)]
-        )
-    )
-    into = tuple(Drive(-1, out_of=b, into=a) for a, b in nodes)
-    Z, _ = _impedance(plain, f, into)
-    loaded, bands = _impedance(terminated, f, into)
-    Y = _admittance(imposed, f, len(nodes))
-    root = 1.0 / np.sqrt(reference)
-    S = 2.0 * root[:, None] * loaded * root - np.eye(len(root))
-    findings = list(plain.findings)
-    for band in bands:
-        for k in np.flatnonzero(np.isnan(S[band.index]).any(axis=(1, 2))):
-            place = int(band.index[k])
-            found = undetermined(band.tree, np.zeros(len(nodes), dtype=np.complex128))
-            findings.append(singular_finding(band.tree, float(f[place]), complex(band.s[k]), found))
+    topology = admit(network)
+    for position in range(len(network.ports)):
+        port_nodes(topology, position)
+    silent = _silenced(network)
+    driven = [el.CurrentSource(name, p.b, p.a) for name, p in _named(network, "current")]
+    burdens = [el.Resistor(name, p.a, p.b, p.reference_ohm) for name, p in _named(network, "burden")]
+    imposed = [el.VoltageSource(name, p.a, p.b) for name, p in _named(network, "voltage")]
+    Z = _matrix(silent, driven, f)
+    Y = _matrix(silent, imposed, f)
+    loaded = _matrix(silent, [*burdens, *driven], f)
+    root = 1.0 / np.sqrt([port.reference_ohm for port in network.ports])
+    S = 2.0 * root[:, None] * loaded.values * root - np.eye(len(root))
     if np.isnan(S).any(axis=(1, 2)).all():
-        raise InvalidNetwork.at(
-            "elements", f"no solution at any frequency asked for; {findings[-1].message}", reason="SINGULAR"
-        )
-    evidence = gather("frequency tree, LU, one refinement", [judge(band, drives_alone=True) for band in bands])
+        raise InvalidNetwork.at("elements", f"no solution at any frequency asked for; {loaded.why}", reason="SINGULAR")
+    evidence = gather("; ".join(loaded.methods), loaded.judged)
     require(evidence)
     return PortResponse(
-        tuple(port.name for port in network.ports), f, Z, Y, S, tuple(findings), hazards(plain), evidence
+        tuple(port.name for port in network.ports),
+        f,
+        Z.values,
+        Y.values,
+        S,
+        (*topology.findings, *loaded.findings),
+        hazards(topology),
+        evidence,
     )
 
 
-def _names(network: Network) -> list[str]:
-    """Names for elements across the ports that no element of the network has."""
-    taken = {element.name for element in network.elements}
-    names = []
-    for port in network.ports:
-        name = f"port {port.name}"
-        while name in taken:
-            name += " "
-        taken.add(name)
-        names.append(name)
-    return names
+def _named(network: Network, kind: str) -> list[tuple[str, Port]]:
+    """Name an element across each port as no element of the network is named."""
+    return [(unused_name(network, f"{kind} of port {port.name}"), port) for port in network.ports]
 
 
-def _with_ports(network: Network, added: list[el.Element]) -> Network:
-    return dataclasses.replace(network, elements=(*network.elements, *added))
+def _silenced(network: Network) -> Network:
+    """Set every source to zero: a voltage source conducts ideally, a current source is an open branch."""
+    elements: list[el.Element] = []
+    for element in network.elements:
+        if isinstance(element, el.VoltageSource):
+            elements.append(el.Resistor(element.name, element.a, element.b, 0.0))
+        elif isinstance(element, el.CurrentSource):
+            elements.append(el.Capacitor(element.name, element.a, element.b, 0.0))
+        else:
+            elements.append(element)
+    return dataclasses.replace(network, elements=tuple(elements), ports=())
 
 
-def _impedance(topology: Topology, f: FloatArray, into: tuple[Drive, ...]) -> tuple[ComplexArray, list[Band]]:
-    """Drive each port by a unit current; NaN where there is no solution."""
-    matrix = np.full((len(f), len(into), len(into)), np.nan, dtype=np.complex128)
-    bands = []
-    for band in spectrum(topology, f, into):
-        bands.append(band)
-        if not _possible(band):
+@dataclass(frozen=True, slots=True, eq=False)
+class _Driven:
+    """``values`` (F, P, P), NaN where there is no solution, and what vouches for them."""
+
+    values: ComplexArray
+    judged: list[Judgement]
+    methods: tuple[str, ...]
+    findings: list[Finding]
+    why: str
+
+
+def _matrix(silent: Network, added: list[el.Element], f: FloatArray) -> _Driven:
+    """Drive each port alone by the sources among ``added``: voltages per ampere, or currents per volt."""
+    topology = number(dataclasses.replace(silent, elements=(*silent.elements, *added)))
+    drives, u = drives_of(topology)
+    values = np.full((len(f), len(drives), len(drives)), np.nan, dtype=np.complex128)
+    judged: list[Judgement] = []
+    methods: dict[str, None] = {}
+    findings: list[Finding] = []
+    why = ""
+    for at_zero in (False, True):
+        part = np.flatnonzero((f == 0.0) == at_zero)
+        roles = roles_of(topology, at_zero=at_zero)
+        open_ends = left_open(topology, roles, drives, u)
+        why = _contradiction(topology, roles, drives) or why
+        if not part.size or _contradiction(topology, roles, drives):
             continue
-        tree = band.tree
-        rows = np.array([tree.paths[drive.into] - tree.paths[drive.out_of] for drive in into])
-        sound = _sound(band)
-        matrix[band.index[sound]] = rows @ band.Z[sound][:, : len(tree.tree)]
-    return matrix, bands
+        try:
+            for found in solutions(topology, f[part], drives, u, sweepable=open_ends.nothing):
+                judgement = judge(found, drives_alone=True)
+                sound = ~found.singular
+                if not topology.controls:
+                    sound &= judgement.asymmetries <= tol.RECIPROCITY_LIMIT
+                values[part[found.index[sound]]] = found.terminal()[sound]
+                judged.append(judgement)
+                methods[found.method] = None
+                findings += [
+                    singular_finding(topology, float(f[part[found.index[k]]]), open_ends, found.suspects(int(k)))
+                    for k in np.flatnonzero(found.singular)
+                ]
+        except InvalidNetwork as refused:
+            why = refused.message
+    return _Driven(values, judged, tuple(methods), findings, findings[0].message if findings else why)
 
 
-def _admittance(topology: Topology, f: FloatArray, count: int) -> ComplexArray:
-    """Impose a unit voltage on each port; NaN where there is no solution."""
-    branches = range(len(topology.kind) - count, len(topology.kind))
-    drives = tuple(Drive(branch) for branch in branches)
-    matrix = np.full((len(f), count, count), np.nan, dtype=np.complex128)
-    for band in spectrum(topology, f, drives):
-        if _possible(band):
-            matrix[band.index[_sound(band)]] = -band.Z[_sound(band)][:, band.tree.current[list(branches)]]
-    return matrix
-
-
-def _possible(band: Band) -> bool:
-    """Whether each drive can be met by itself: none closes a loop of imposed voltages or lacks a return."""
-    units = np.eye(len(band.tree.drives), dtype=np.complex128)
-    return not any(undetermined(band.tree, unit).contradiction for unit in units)
-
-
-def _sound(band: Band) -> NDArray[np.bool_]:
-    """Where the solution exists and, for a reciprocal network, shows it."""
-    sound = np.isfinite(band.condition)
-    if not band.tree.topology.controls:
-        with np.errstate(invalid="ignore"):
-            sound &= asymmetry(*terminal_matrix(band)) <= tol.RECIPROCITY_LIMIT
-    return sound
+def _contradiction(topology: Topology, roles: Roles, drives: tuple[Drive, ...]) -> str:
+    """Say why some drive cannot be met by itself, "" when each can: a loop of voltages, or a current without return."""
+    for unit in np.eye(len(drives), dtype=np.complex128):
+        found = left_open(topology, roles, drives, unit)
+        if found.contradiction:
+            return found.contradiction
+    return ""

@@ -38,6 +38,7 @@ _BY_KIND = {
     Kind.CONTROLLED_VOLTAGE: Role.CONTROLLED_VOLTAGE,
     Kind.CONTROLLED_CURRENT: Role.CONTROLLED_CURRENT,
 }
+_ROLES = np.array([_BY_KIND.get(kind, Role.ADMITTANCE) for kind in Kind], dtype=np.int64)
 _REFUSED = {Kind.DIODE: "a diode", Kind.ARRESTER: "an arrester", Kind.SATURABLE: "a saturable inductor"}
 
 
@@ -65,30 +66,26 @@ def roles_of(topology: Topology, *, at_zero: bool) -> Roles:
     ------
     InvalidNetwork : a diode, an arrester or a saturable inductor.
     """
-    size = len(topology.kind)
-    role = np.full(size, Role.ADMITTANCE, dtype=np.int64)
-    g, c, w = np.zeros(size), np.zeros(size), np.zeros(size)
-    for k, number in enumerate(topology.kind.tolist()):
-        kind, value = Kind(number), float(topology.value[k])
-        if kind in _REFUSED:
-            raise InvalidNetwork.at(
-                f"elements[{topology.element[k]}]",
-                f"{topology.names[k]!r} is {_REFUSED[kind]}, which has no frequency response; replace it by the "
-                "resistance or inductance of its working point, or ask for a time response",
-            )
-        if kind in _BY_KIND:
-            role[k] = _BY_KIND[kind]
-        elif kind in (Kind.RESISTOR, Kind.SWITCH):
-            ohm = value if kind == Kind.RESISTOR else _switch_resistance(topology, k)
-            role[k] = Role.VOLTAGE if ohm == 0.0 else Role.OPEN if np.isinf(ohm) else Role.ADMITTANCE
-            g[k] = 1.0 / ohm if role[k] == Role.ADMITTANCE else 0.0
-        elif kind == Kind.CAPACITOR:
-            role[k] = Role.OPEN if at_zero or value == 0.0 else Role.ADMITTANCE
-            c[k] = value if role[k] == Role.ADMITTANCE else 0.0
-        else:
-            role[k] = Role.VOLTAGE if at_zero or value == 0.0 else Role.ADMITTANCE
-            w[k] = 1.0 / value if role[k] == Role.ADMITTANCE else 0.0
-    return Roles(role, g, c, w)
+    kind, value = topology.kind, topology.value
+    for k in topology.of_kind(*_REFUSED).tolist():
+        raise InvalidNetwork.at(
+            f"elements[{topology.element[k]}]",
+            f"{topology.names[k]!r} is {_REFUSED[Kind(kind[k])]}, which has no frequency response; replace it by the "
+            "resistance or inductance of its working point, or ask for a time response",
+        )
+    role = _ROLES[kind]
+    ohm = value.copy()
+    for k in topology.of_kind(Kind.SWITCH).tolist():
+        ohm[k] = _switch_resistance(topology, k)
+    resistive = (kind == Kind.RESISTOR) | (kind == Kind.SWITCH)
+    capacitive, inductive = kind == Kind.CAPACITOR, kind == Kind.INDUCTOR
+    role[(resistive & (ohm == 0.0)) | (inductive & (at_zero | (value == 0.0)))] = Role.VOLTAGE
+    role[(resistive & np.isinf(ohm)) | (capacitive & (at_zero | (value == 0.0)))] = Role.OPEN
+    admitting = role == Role.ADMITTANCE
+    with np.errstate(divide="ignore", invalid="ignore"):
+        conductance = np.where(resistive & admitting, 1.0 / ohm, 0.0)
+        reciprocal_inductance = np.where(inductive & admitting, 1.0 / value, 0.0)
+    return Roles(role, conductance, np.where(capacitive & admitting, value, 0.0), reciprocal_inductance)
 
 
 def _switch_resistance(topology: Topology, branch: int) -> float:

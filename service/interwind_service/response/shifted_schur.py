@@ -44,6 +44,11 @@ class ShiftedSchur:
                 t[row] = (right[row] - sigma * known) / (1.0 + sigma * self.T[row, row])
         return t.reshape(n, f, m)
 
+    def distance(self, shift: ComplexArray) -> FloatArray:
+        """Return the least |1 + σ μ| / (1 + |σ μ|) over the eigenvalues μ of K, (f,): 0 where I + σ K is singular."""
+        product = shift[:, None] * self.T.diagonal()
+        return (np.abs(1.0 + product) / (1.0 + np.abs(product))).min(axis=1, initial=1.0)
+
 
 def shifted_schur(K: FloatArray) -> ShiftedSchur:
     """Return the complex Schur form of a real matrix, by way of the real one, which costs a third."""

@@ -13,7 +13,7 @@ References: Laub 1981 (one reduction, many frequencies).
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -23,7 +23,7 @@ from interwind_service.network.topology import Topology
 from interwind_service.response.reduction import StateBasis, reduce
 from interwind_service.response.resolvent import Resolvent, resolvent
 from interwind_service.response.roles import roles_of
-from interwind_service.response.shifted_schur import shifted_schur
+from interwind_service.response.shifted_schur import ShiftedSchur, shifted_schur
 from interwind_service.response.spectrum import all_coordinates
 from interwind_service.response.storage import storage_of
 
@@ -40,7 +40,7 @@ class SweptBand:
     per unit of each drive.
     """
 
-    topology: Topology
+    basis: StateBasis
     index: IntArray
     s: ComplexArray
     own: Resolvent
@@ -48,11 +48,21 @@ class SweptBand:
     U: ComplexArray
     t: ComplexArray
 
+    @property
+    def topology(self) -> Topology:
+        """The network."""
+        return self.basis.storage.topology
+
+    def at(self, places: IntArray) -> SweptBand:
+        """Return the band at some of its frequencies only."""
+        return replace(self, index=self.index[places], s=self.s[places], t=self.t[:, places])
+
     def signals(self, rows: IntArray) -> ComplexArray:
         """Return signals (f, rows, drives) per unit of each drive; rows as in `Resolvent`."""
         f, m = len(self.s), self.t.shape[2]
-        H = self.own.H[rows] @ self.U
-        moved = (H @ self.t.reshape(len(self.t), -1)).reshape(len(rows), f, m).transpose(1, 0, 2)
+        H, t = self.own.H[rows], self.t.reshape(len(self.t), -1)
+        moved = H @ (self.U @ t) if f * m < len(rows) else (H @ self.U) @ t
+        moved = moved.reshape(len(rows), f, m).transpose(1, 0, 2)
         shift = (self.s - self.own.s0)[:, None, None]
         return self.own.y[rows][None] + shift * (self.impulse[rows][None] - moved)
 
@@ -63,7 +73,7 @@ def sweep(
     """Yield bands for rising ``omega`` (f,), rad/s; ``order`` (f,) are their positions in the list asked for.
 
     A band that ``agrees`` refuses is halved; after `SWEEP_HALVINGS` of them its positions are yielded instead, to be
-    solved one by one.
+    solved one by one, and so are those next to a pole.
 
     Raises
     ------
@@ -75,7 +85,15 @@ def sweep(
     while waiting:
         part, halvings = waiting.pop(0)
         s0 = float(np.sqrt(omega[part[0]] * omega[part[-1]]))
-        band = _solve(basis, resolvent(basis, roles, s0), order[part], 1j * omega[part])
+        own = resolvent(basis, roles, s0)
+        schur = shifted_schur(own.K)
+        near = schur.distance(1j * omega[part] - s0) < tol.SWEEP_POLE_DISTANCE
+        if near.any():
+            yield order[part[near]]
+            part = part[~near]
+            if not part.size:
+                continue
+        band = _solve(basis, own, schur, order[part], 1j * omega[part])
         if agrees(band):
             yield band
         elif halvings == tol.SWEEP_HALVINGS or len(part) < 2 * tol.SWEEP_POINTS:
@@ -98,10 +116,8 @@ def _bands(omega: FloatArray) -> list[IntArray]:
     return [part for part in np.split(np.arange(len(omega)), np.searchsorted(omega, edges)) if len(part)]
 
 
-def _solve(basis: StateBasis, own: Resolvent, index: IntArray, s: ComplexArray) -> SweptBand:
-    topology = basis.storage.topology
+def _solve(basis: StateBasis, own: Resolvent, schur: ShiftedSchur, index: IntArray, s: ComplexArray) -> SweptBand:
     node_impulse = own.tree.paths @ basis.voltage_impulse[own.tree.tree]
     impulse = np.vstack((basis.voltage_impulse, basis.current_impulse, node_impulse))
-    schur = shifted_schur(own.K)
     t = schur.solve(own.r.astype(np.complex128), s - own.s0)
-    return SweptBand(topology, index, s, own, impulse, schur.U, t)
+    return SweptBand(basis, index, s, own, impulse, schur.U, t)

@@ -9,8 +9,11 @@ from numpy.typing import NDArray
 
 from interwind.errors import InvalidNetwork
 from interwind_service import tolerances as tol
+from interwind_service.network.forest import Rooted, components, spanning_forest
+from interwind_service.network.topology import Topology
 from interwind_service.response.factor import equilibrate
-from interwind_service.response.frequency_tree import FrequencyTree
+from interwind_service.response.frequency_tree import Drive, FrequencyTree
+from interwind_service.response.roles import Role, Roles
 
 ComplexArray = NDArray[np.complex128]
 IntArray = NDArray[np.int64]
@@ -20,11 +23,12 @@ IntArray = NDArray[np.int64]
 class Undetermined:
     """``currents``: branches whose current a loop of imposed voltages leaves open. ``nodes``: without a path to a zero.
 
-    ``contradiction``: why the drives cannot be met, "" when they can.
+    ``component`` (nodes,): what hangs together. ``contradiction``: why the drives cannot be met, "" when they can.
     """
 
     currents: IntArray
     nodes: IntArray
+    component: IntArray
     contradiction: str
 
     @property
@@ -34,39 +38,54 @@ class Undetermined:
 
 
 def undetermined(tree: FrequencyTree, u: ComplexArray) -> Undetermined:
+    """Look at the graph behind a tree, the drives being ``u`` (drives,)."""
+    return left_open(tree.topology, tree.roles, tree.drives, u)
+
+
+def left_open(topology: Topology, roles: Roles, drives: tuple[Drive, ...], u: ComplexArray) -> Undetermined:
     """Look for loops of imposed voltages and for parts without a zero, the drives being ``u`` (drives,)."""
-    topology = tree.topology
+    role, start, finish = roles.role, topology.start, topology.finish
+    voltages = np.flatnonzero(role == Role.VOLTAGE)
+    kept = spanning_forest(len(topology.nodes), start, finish, voltages.tolist())
+    chords = np.setdiff1d(voltages, kept)
+    volt = {drive.branch: value for drive, value in zip(drives, u, strict=True) if drive.out_of < 0}
+    scale = np.abs(u).max(initial=0.0)
+    forest = Rooted(len(topology.nodes), start, finish, kept) if chords.size else None
     currents: set[int] = set()
     contradictions = []
-    imposed = np.zeros(len(tree.tree), dtype=np.complex128)
-    imposed[tree.known] = tree.imposed @ u
-    scale = np.abs(u).max(initial=0.0)
-    for chord in tree.loops.tolist():
-        members = [chord, *tree.tree[np.flatnonzero(tree.Q[:, chord])].tolist()]
-        currents.update(members)
-        own = sum((u[k] for k, drive in enumerate(tree.drives) if drive.branch == chord and drive.out_of < 0), 0j)
-        gap = abs(own - tree.Q[:, chord] @ imposed)
+    for chord in chords.tolist():
+        loop = forest.between(int(start[chord]), int(finish[chord])) if forest else []
+        currents.update([chord, *(k for k, _ in loop)])
+        gap = abs(volt.get(chord, 0j) - sum((sign * volt.get(k, 0j) for k, sign in loop), 0j))
         if gap > tol.CONTRADICTION * scale:
             contradictions.append(
-                f"the loop of ideal voltages {_elements(tree, members)} adds up to {gap:.6g} V instead of 0; "
-                "put the resistance that is there in series, or make the voltages agree"
+                f"the loop of ideal voltages {_elements(topology, [chord, *(k for k, _ in loop)])} adds up to "
+                f"{gap:.6g} V instead of 0; put the resistance that is there in series, or make the voltages agree"
             )
-    zero = tree.component[topology.parts.reference]
-    floating = np.flatnonzero(~np.isin(tree.component, zero))
-    for part in np.unique(tree.component):
-        nodes = np.flatnonzero(tree.component == part)
-        net, total, names = 0j, 0.0, []
-        for value, drive in zip(u, tree.drives, strict=True):
-            if drive.out_of >= 0 and (tree.component[drive.out_of] == part) != (tree.component[drive.into] == part):
-                net += value if tree.component[drive.into] == part else -value
-                total += abs(value)
-                names.append(topology.names[drive.branch] if drive.branch >= 0 else "a port")
-        if abs(net) > tol.CONTRADICTION * total:
-            contradictions.append(
-                f"{', '.join(names)} force {abs(net):.6g} A into nodes {node_list(tree, nodes)}, from which no current "
-                "returns; give it a path"
-            )
-    return Undetermined(np.array(sorted(currents), dtype=np.int64), floating, "; ".join(contradictions))
+    conducting = np.flatnonzero((role != Role.CURRENT) & (role != Role.OPEN))
+    component = components(len(topology.nodes), start[conducting], finish[conducting])
+    floating = np.flatnonzero(~np.isin(component, component[topology.parts.reference]))
+    contradictions += _without_return(topology, component, drives, u)
+    return Undetermined(np.array(sorted(currents), dtype=np.int64), floating, component, "; ".join(contradictions))
+
+
+def _without_return(topology: Topology, component: IntArray, drives: tuple[Drive, ...], u: ComplexArray) -> list[str]:
+    """Say where currents enter a part that they cannot leave."""
+    net = np.zeros(int(component.max()) + 1, dtype=np.complex128)
+    total = np.zeros(len(net))
+    names: dict[int, list[str]] = {}
+    for value, drive in zip(u, drives, strict=True):
+        if drive.out_of < 0 or component[drive.out_of] == component[drive.into]:
+            continue
+        for part, sign in ((int(component[drive.into]), 1), (int(component[drive.out_of]), -1)):
+            net[part] += sign * value
+            total[part] += abs(value)
+            names.setdefault(part, []).append(topology.names[drive.branch] if drive.branch >= 0 else "a port")
+    return [
+        f"{', '.join(names[part])} force {abs(net[part]):.6g} A into nodes "
+        f"{node_list(topology, np.flatnonzero(component == part))}, from which no current returns; give it a path"
+        for part in np.flatnonzero(np.abs(net) > tol.CONTRADICTION * total).tolist()
+    ]
 
 
 def refuse(found: Undetermined) -> None:
@@ -75,14 +94,14 @@ def refuse(found: Undetermined) -> None:
         raise InvalidNetwork.at("elements", found.contradiction, reason="CONTRADICTORY_SOURCES")
 
 
-def node_list(tree: FrequencyTree, nodes: IntArray) -> str:
+def node_list(topology: Topology, nodes: IntArray) -> str:
     """Name nodes for a message."""
-    names = [repr(tree.topology.nodes[k]) for k in nodes]
+    names = [repr(topology.nodes[k]) for k in nodes]
     return ", ".join(names[:8]) + (" ..." if len(names) > 8 else "")
 
 
-def _elements(tree: FrequencyTree, branches: list[int]) -> str:
-    return ", ".join(repr(name) for name in dict.fromkeys(tree.topology.names[k] for k in branches))
+def _elements(topology: Topology, branches: list[int]) -> str:
+    return ", ".join(repr(name) for name in dict.fromkeys(topology.names[k] for k in branches))
 
 
 def suspects(tree: FrequencyTree, s: complex) -> str:
@@ -98,7 +117,7 @@ def suspects(tree: FrequencyTree, s: complex) -> str:
     voltage[unknown[unknown < T]] = (null * columns[0])[unknown < T]
     e = np.abs(tree.paths @ voltage)
     nodes = np.flatnonzero(e > tol.NULL_VECTOR_SHARE * e.max()) if e.max(initial=0.0) > 0.0 else np.zeros(0, np.int64)
-    parts = [f"elements {_elements(tree, branches)}"]
+    parts = [f"elements {_elements(tree.topology, branches)}"]
     if nodes.size:
-        parts.insert(0, f"nodes {node_list(tree, nodes)}")
+        parts.insert(0, f"nodes {node_list(tree.topology, nodes)}")
     return " and ".join(parts)

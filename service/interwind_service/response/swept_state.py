@@ -1,0 +1,206 @@
+"""The sinusoidal state that a swept band gives, and the proof that it is the state of the network.
+
+A band is held against the frequency tree at its ends and where it is loudest: the voltages and currents of both must
+agree, and the swept ones must satisfy the tree's equations.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind_service import tolerances as tol
+from interwind_service.network.topology import Topology
+from interwind_service.network.winding_coordinates import WindingCoordinates
+from interwind_service.response.factor import equilibrate
+from interwind_service.response.frequency_tree import Drive, FrequencyTree
+from interwind_service.response.spectrum import Band, bands, solve_band
+from interwind_service.response.sweep import SweptBand, check_points
+
+FloatArray = NDArray[np.float64]
+IntArray = NDArray[np.int64]
+ComplexArray = NDArray[np.complex128]
+
+
+class Recorder:
+    """A state that answers with zeros and remembers which signals it was asked for, as rows of a `SweptBand`."""
+
+    def __init__(self, topology: Topology) -> None:
+        self.topology, self.omega = topology, np.ones(1)
+        self.rows: dict[int, None] = {}
+
+    def _ask(self, rows: Iterable[int]) -> ComplexArray:
+        self.rows.update(dict.fromkeys(rows))
+        return np.zeros(1, dtype=np.complex128)
+
+    def between(self, one: int, other: int) -> ComplexArray:
+        """Note two nodes."""
+        base = 2 * len(self.topology.kind)
+        return self._ask((base + one, base + other))
+
+    def voltage(self, branch: int) -> ComplexArray:
+        """Note the voltage of a branch."""
+        return self._ask((branch,))
+
+    def current(self, branch: int) -> ComplexArray:
+        """Note the current of a branch."""
+        return self._ask((len(self.topology.kind) + branch,))
+
+    def field(self, group: int) -> FloatArray:
+        """Note nothing: the states are always there."""
+        return np.zeros(1)
+
+    def flux_linkages(self, group: int) -> ComplexArray:
+        """Note nothing: the states are always there."""
+        return np.zeros((1, self.topology.groups[group].size), dtype=np.complex128)
+
+
+class SweptState:
+    """A state from one resolvent; ``rows`` are fetched together, by one matrix product."""
+
+    def __init__(
+        self, band: SweptBand, u: ComplexArray, coordinates: tuple[WindingCoordinates, ...], rows: Iterable[int] = ()
+    ) -> None:
+        self.topology: Topology = band.topology
+        self.omega: FloatArray = band.s.imag
+        self._band, self._u, self._coordinates = band, u, coordinates
+        self._t = band.t @ u
+        self._base = len(self.topology.kind)
+        self._places: dict[int, int] = {}
+        self._signals = np.zeros((0, len(self.omega)), dtype=np.complex128)
+        self._fetch(list(rows))
+
+    def _fetch(self, rows: list[int]) -> ComplexArray:
+        missing = [row for row in rows if row not in self._places]
+        if missing:
+            own, shift = self._band.own, self._band.s - self._band.own.s0
+            moved = (own.H[missing] @ self._band.U) @ self._t
+            values = (self._band.impulse[missing] @ self._u)[:, None] - moved
+            values *= shift
+            values += (own.y[missing] @ self._u)[:, None]
+            self._places.update(zip(missing, range(len(self._signals), len(self._signals) + len(missing)), strict=True))
+            self._signals = np.concatenate((self._signals, values)) if len(self._signals) else values
+        return self._signals[[self._places[row] for row in rows]]
+
+    def _one(self, row: int) -> ComplexArray:
+        place = self._places.get(row)
+        return self._fetch([row])[0] if place is None else self._signals[place]
+
+    def between(self, one: int, other: int) -> ComplexArray:
+        """Return the voltage of node ``one`` against node ``other``."""
+        return self._one(2 * self._base + one) - self._one(2 * self._base + other)
+
+    def voltage(self, branch: int) -> ComplexArray:
+        """Return the voltage of a branch from its start to its finish."""
+        return self._one(branch)
+
+    def current(self, branch: int) -> ComplexArray:
+        """Return the current of a branch from its start to its finish."""
+        return self._one(self._base + branch)
+
+    def field(self, group: int) -> FloatArray:
+        """Return iᴴ L i of a winding group."""
+        S, y = self._stored(group)
+        return np.einsum("nf,nf->f", y.conj(), S @ y).real
+
+    def flux_linkages(self, group: int) -> ComplexArray:
+        """Return L i of a winding group, shape (f, n)."""
+        S, y = self._stored(group)
+        N = self._coordinates[group].N
+        return np.linalg.solve(N.T, np.vstack((S @ y, np.zeros((len(N) - len(y), y.shape[1]))))).T
+
+    def _stored(self, group: int) -> tuple[FloatArray, ComplexArray]:
+        """The coordinates y of a group that store energy, shape (rank, f), and their inductances."""
+        basis, own = self._band.basis, self._coordinates[group]
+        rows = basis.storage.groups[group]
+        y = (basis.X[rows] @ self._band.U) @ self._t + (basis.P[rows] @ self._u)[:, None]
+        return own.S[: own.rank, : own.rank], y
+
+    def node_voltages(self) -> ComplexArray:
+        """Return every node voltage against its zero, shape (f, nodes)."""
+        volts = self._fetch([2 * self._base + k for k in range(len(self.topology.nodes))])
+        return (volts - volts[self.topology.parts.reference[self.topology.parts.of_node]]).T
+
+    def loudest(self) -> SweptState:
+        """Return the state at the few frequencies where most energy is stored: the greatest |q|, and both ends."""
+        size = np.linalg.norm(self._t, axis=0)
+        some = np.union1d(np.argsort(size)[-tol.LOUDEST_POINTS :], [0, len(size) - 1])
+        return SweptState(self._band.at(some), self._u, self._coordinates)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Comparison:
+    """``band`` is the tree's own answer at a point; ``gap`` the largest difference, ``residual`` of the swept one."""
+
+    band: Band
+    gap: float
+    residual: float
+
+
+def compare(
+    swept: SweptBand, coordinates: tuple[WindingCoordinates, ...], frequency_hz: FloatArray, drives: tuple[Drive, ...]
+) -> list[Comparison]:
+    """Hold a band against the frequency tree at its ends and where it is loudest."""
+    points = check_points(swept, np.linalg.norm(swept.t, axis=(0, 2)))
+    found = []
+    for point in points.tolist():
+        part = swept.index[[point]]
+        tree, _ = next(iter(bands(swept.topology, coordinates, frequency_hz[part], drives)))
+        band = solve_band(tree, part, swept.s[[point]])
+        Z = _columns(swept.at(np.array([point])), tree)
+        found.append(Comparison(band, _gap(band, Z), _residual(band, Z)))
+    return found
+
+
+def _columns(swept: SweptBand, tree: FrequencyTree) -> ComplexArray:
+    """The swept signals as the columns of the tree's equations, shape (1, columns, drives).
+
+    Coordinates that store energy are states themselves; those without leakage follow from the winding currents.
+    """
+    base = len(tree.topology.kind)
+    T = len(tree.tree)
+    rows = np.concatenate((tree.tree, base + tree.columns[T:]))
+    Z = swept.signals(rows)
+    basis = swept.basis
+    for where, own, rows in zip(tree.groups, tree.coordinates, basis.storage.groups, strict=True):
+        Z[:, where] = np.linalg.solve(own.N, Z[:, where])
+        Z[0, where.start : where.start + own.rank] = basis.X[rows] @ (swept.U @ swept.t[:, 0]) + basis.P[rows]
+    for column, ohm in tree.drops():
+        Z[:, column] *= ohm
+    return Z
+
+
+def _gap(band: Band, Z: ComplexArray) -> float:
+    """Largest difference of voltages over the largest voltage, of currents and of fluxes likewise, drive by drive."""
+    tree, worst = band.tree, 0.0
+    T = len(tree.tree)
+    noise = tol.NOISE_SHARE * band.scale
+    blocks = [(Z[:, :T], band.Z[:, :T], noise[:, :T].max(initial=0.0))]
+    for where, own in zip(tree.groups, tree.coordinates, strict=True):
+        floor = (noise[:, where] @ np.abs(own.N).T).max(initial=0.0)
+        blocks.append((own.N @ Z[:, where], own.N @ band.Z[:, where], floor))
+        floor = (noise[:, where] @ np.abs(own.S)).max(initial=0.0)
+        blocks.append((own.S @ Z[:, where], own.S @ band.Z[:, where], floor))
+    rest = np.flatnonzero(tree.current >= 0)
+    if rest.size:
+        places = tree.current[rest]
+        blocks.append((Z[:, places], band.Z[:, places], noise[:, places].max(initial=0.0)))
+    for mine, theirs, floor in blocks:
+        size = np.maximum(np.abs(theirs).max(axis=1), floor * band.largest)
+        gap = np.abs(mine - theirs).max(axis=1)
+        worst = max(worst, float(np.divide(gap, size, out=gap, where=size > 0.0).max(initial=0.0)))
+    return worst
+
+
+def _residual(band: Band, Z: ComplexArray) -> float:
+    """|b − A x|∞ / (|A|∞ |x|∞ + |b|∞) of the swept solution in the tree's equations, scaled as they are solved."""
+    tree = band.tree
+    M = tree.matrix(band.s)
+    A, rows, columns = equilibrate(np.ascontiguousarray(M[:, :, tree.unknown]))
+    b = -(M[:, :, tree.known] @ tree.imposed + tree.J) * rows[:, :, None]
+    x = Z[:, tree.unknown] / columns[:, :, None]
+    size = np.abs(A).sum(axis=2).max() * np.abs(x).max(initial=0.0) + np.abs(b).max(initial=0.0)
+    return float(np.abs(b - A @ x).max(initial=0.0) / size) if size > 0.0 else 0.0
