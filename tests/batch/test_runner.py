@@ -222,10 +222,37 @@ def test_lost_input_fails_the_rows_and_says_so(tmp_path):
     store.close()
 
 
+def impatient(monkeypatch):
+    monkeypatch.setattr("interwind_service.batch.runner.BATCH_PATIENCE_S", 0.2)
+    monkeypatch.setattr("interwind_service.batch.runner.BATCH_PATIENCE_FACTOR", 0.0)
+    monkeypatch.setattr("interwind_service.batch.runner.BATCH_LOOK_EVERY_S", 0.05)
+
+
+def test_a_variant_that_never_ends_fails_alone(store, run, monkeypatch):
+    """A chunk far beyond its forecast is ended, tried again, split; the one row that hangs fails as TOO_LONG."""
+    impatient(monkeypatch)
+
+    class Endable(Future):
+        def end(self, reason):
+            if not self.done():
+                self.set_exception(reason)
+
+    class Stuck(Executor):
+        def submit(self, function, task):
+            future = Endable()
+            if not task.first_row <= 5 < task.first_row + task.row_count:
+                future.set_result(function(task))
+            return future
+
+    run(Stuck())
+    progress = wait_done(store, store.create(plan(store.folder, 16, 8)).batch_id)
+    assert (15, 1) == (progress.ok_count, progress.failed_count)
+    assert "TOO_LONG" == store.chunk_at(progress.batch_id, 5).reasons[0].code
+
+
 def test_a_silent_cluster_is_asked_anew(store, run, monkeypatch):
     """An executor that forgets what it was given, as a cluster may that loses workers, is given it again."""
-    monkeypatch.setattr("interwind_service.batch.runner.BATCH_SILENCE_S", 0.1)
-    monkeypatch.setattr("interwind_service.batch.runner.BATCH_SILENCE_FACTOR", 0.0)
+    impatient(monkeypatch)
     forgotten = iter(range(3))
 
     class Forgetful(ThreadPoolExecutor):

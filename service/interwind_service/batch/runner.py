@@ -7,35 +7,41 @@ yields depends on the chunk alone, so neither the order nor the number of worker
 from __future__ import annotations
 
 import queue
+import sqlite3
 import threading
 import time
 import uuid
 from collections import OrderedDict
 from collections.abc import Callable
 from concurrent.futures import CancelledError, Executor, Future
+from contextlib import suppress
 from dataclasses import dataclass
-from math import inf
 from typing import Any
 
-from interwind.errors import Cancelled, DataLoss, Overloaded, Unavailable, WorkerLost
+from interwind.errors import (
+    Cancelled,
+    DataLoss,
+    DeadlineExceeded,
+    InterwindError,
+    NotFound,
+    Overloaded,
+    Unavailable,
+)
 from interwind.model.batch import BatchProgress, CostForecast
 from interwind_service.batch import folder as files
+from interwind_service.batch.outcome import INPUT_GONE, draining, end, verdict
 from interwind_service.batch.rows import Chunk
 from interwind_service.batch.store import Store
 from interwind_service.batch.work import ChunkAnswer, ChunkTask, Solve
 from interwind_service.tolerances import (
     BATCH_EXPIRE_EVERY_S,
+    BATCH_LOOK_EVERY_S,
     BATCH_OPEN_COUNT,
+    BATCH_PATIENCE_FACTOR,
+    BATCH_PATIENCE_S,
     BATCH_PROVE_COUNT,
-    BATCH_SILENCE_FACTOR,
-    BATCH_SILENCE_S,
     BATCH_STORE_RETRY_S,
 )
-
-LOST = "a worker died twice at this variant; look at its size, and at the server's log for the signal"
-DEFECT = "computing this variant broke the solver; report it with the batch and the row"
-OUT_OF_MEMORY = "this variant needs more memory than one worker may use; ask for fewer points or observables"
-INPUT_GONE = "the submitted numbers of this batch fail their checksum; delete it and submit it again"
 
 
 @dataclass(slots=True)
@@ -44,7 +50,8 @@ class _Running:
 
     chunk: Chunk
     path: str
-    silent_at_s: float = inf
+    patience_s: float
+    begun_s: float
     future: Future[ChunkAnswer] | None = None
 
 
@@ -105,7 +112,7 @@ class Runner:
         self.wake()
         self._thread.join()
         for running in list(self._running.values()):
-            _end(running.future, Unavailable("the server is stopping", reason="DRAINING"))
+            end(running.future, Unavailable("the server is stopping", reason="DRAINING"))
         for batch_id in list(self._open):
             self._forget(batch_id)
 
@@ -117,45 +124,67 @@ class Runner:
     def _withdraw(self, batch_id: str) -> None:
         for running in list(self._running.values()):
             if running.chunk.batch_id == batch_id:
-                _end(running.future, Cancelled("the batch was cancelled"))
+                end(running.future, Cancelled("the batch was cancelled"))
         self._events.put(lambda: self._forget(batch_id))
 
     def _run(self) -> None:
-        self._fill()
-        self._prove_newest()
+        proven = False
         while not self._stopping:
-            now_s = time.monotonic()
-            if now_s >= self._expire_at_s:
-                self._expire_at_s = now_s + BATCH_EXPIRE_EVERY_S
-                self._store.expire()
-            until_s = self._expire_at_s if self._pause_until_s <= now_s else self._pause_until_s
-            until_s = min([until_s, *(running.silent_at_s for running in self._running.values())])
             try:
-                event: Callable[[], None] | None = self._events.get(timeout=max(until_s - now_s, 0.0))
-            except queue.Empty:
-                event = None
-            while event is not None:
-                event()
-                event = None if self._events.empty() else self._events.get()
-            self._fill()
+                self._fill()
+                if not proven:
+                    proven = True
+                    self._prove_newest()
+                self._expire()
+                self._wait()
+            except (InterwindError, OSError, sqlite3.Error) as error:  # the disk, mostly; what is pending stays so
+                self._tell("batch_runner_held_up", error=repr(error))
+                time.sleep(BATCH_STORE_RETRY_S)
+
+    def _expire(self) -> None:
+        now_s = time.monotonic()
+        if now_s >= self._expire_at_s:
+            self._expire_at_s = now_s + BATCH_EXPIRE_EVERY_S
+            self._store.expire()
+
+    def _wait(self) -> None:
+        """Wait for something to happen, and deal with all that has."""
+        now_s = time.monotonic()
+        until_s = self._expire_at_s if self._pause_until_s <= now_s else self._pause_until_s
+        if self._running:
+            until_s = min(until_s, now_s + BATCH_LOOK_EVERY_S)
+        try:
+            event = self._events.get(timeout=max(until_s - now_s, 0.0))
+        except queue.Empty:
+            return
+        event()
+        while not self._events.empty():
+            self._events.get()()
 
     def _fill(self) -> None:
-        self._give_up_the_silent()
+        self._give_up_the_overdue()
         room = self._depth - sum(running.future is not None for running in self._running.values())
         if room <= 0 or self._stopping or time.monotonic() < self._pause_until_s:
             return
         for chunk in self._store.chunks.pending(room + len(self._running)):
             if room and chunk.key not in self._running:
-                room -= self._hand_out(chunk)
+                with suppress(NotFound, FileNotFoundError):  # the batch was deleted this very moment
+                    room -= self._hand_out(chunk)
 
-    def _give_up_the_silent(self) -> None:
-        """Take back chunks of which a cluster has said nothing for too long; a late answer is not needed any more."""
+    def _give_up_the_overdue(self) -> None:
+        """End chunks that take far longer than forecast; of a cluster, which cannot end them, ask anew."""
         now_s = time.monotonic()
         for key, running in list(self._running.items()):
-            if running.future is not None and running.silent_at_s < now_s:
-                self._tell("batch_chunk_silent", batch_id=running.chunk.batch_id, first_row=running.chunk.first_row)
+            future = running.future
+            began_s = getattr(future, "started_s", running.begun_s)  # None: it still waits for a worker
+            if future is None or began_s is None or now_s - began_s < running.patience_s:
+                continue
+            self._tell("batch_chunk_overdue", batch_id=running.chunk.batch_id, first_row=running.chunk.first_row)
+            if self._by_value:
                 del self._running[key]
-                running.future.cancel()
+                future.cancel()  # a late answer is not needed any more
+            else:
+                end(future, DeadlineExceeded("the chunk took far longer than it was forecast to"))
 
     def _hand_out(self, chunk: Chunk) -> int:
         try:
@@ -165,15 +194,11 @@ class Runner:
         except DataLoss:
             self._store.chunks.fail(chunk, "INPUT_DAMAGED", INPUT_GONE).result()
             return 0
-        except FileNotFoundError:  # the batch was deleted this very moment
-            return 0
         part = self._store.folder.batch(chunk.batch_id) / f"{uuid.uuid4().hex}.part"
         task = ChunkTask(recipe, numbers, chunk.first_row, chunk.row_count, "" if self._by_value else str(part))
-        running = _Running(chunk, str(part))
-        if self._by_value:
-            forecast = self._store.progress(chunk.batch_id).forecast or CostForecast(chunk_count=1)
-            patience_s = max(BATCH_SILENCE_S, BATCH_SILENCE_FACTOR * forecast.duration_s / forecast.chunk_count)
-            running.silent_at_s = time.monotonic() + patience_s
+        forecast = self._store.progress(chunk.batch_id).forecast or CostForecast(chunk_count=1)
+        patience_s = max(BATCH_PATIENCE_S, BATCH_PATIENCE_FACTOR * forecast.duration_s / forecast.chunk_count)
+        running = _Running(chunk, str(part), patience_s, time.monotonic())
         self._running[chunk.key] = running
         try:
             running.future = self._executor.submit(self._solve, task)
@@ -193,7 +218,7 @@ class Runner:
             self._open[batch_id] = (recipe.read_bytes(), columns.open("rb"), known.width)
             while len(self._open) > BATCH_OPEN_COUNT:
                 self._forget(next(iter(self._open)))
-        self._open.move_to_end(batch_id)
+        self._open.move_toend(batch_id)
         return self._open[batch_id]
 
     def _forget(self, batch_id: str) -> None:
@@ -216,11 +241,11 @@ class Runner:
                     self._leave(chunk)
                     return
             stored = self._store.chunks.finish(chunk, answer, part)
-        elif isinstance(error, Cancelled | CancelledError | OSError | Overloaded) or _draining(error):
+        elif isinstance(error, Cancelled | CancelledError | OSError | Overloaded) or draining(error):
             self._leave(chunk, pause=not isinstance(error, Cancelled | CancelledError))
             return
         else:
-            code, message = _verdict(error)
+            code, message = verdict(error)
             self._tell("batch_chunk_lost", batch_id=chunk.batch_id, first_row=chunk.first_row, error=repr(error))
             stored = self._store.chunks.lost(chunk, code, message)
         stored.add_done_callback(
@@ -254,25 +279,3 @@ class Runner:
                     files.prove(path, chunk.size_bytes, chunk.sha256)
                 except DataLoss:
                     self.damaged(chunk)
-
-
-def _end(future: Future[ChunkAnswer] | None, reason: Cancelled | Unavailable) -> None:
-    """Free the worker at once where the executor can; elsewhere take the chunk from the queue."""
-    if future is not None:
-        end = getattr(future, "end", None)
-        if end is not None:
-            end(reason)
-        else:
-            future.cancel()
-
-
-def _draining(error: BaseException) -> bool:
-    return isinstance(error, Unavailable) and not isinstance(error, WorkerLost)
-
-
-def _verdict(error: BaseException) -> tuple[str, str]:
-    if isinstance(error, MemoryError):
-        return "OUT_OF_MEMORY", OUT_OF_MEMORY
-    if isinstance(error, WorkerLost) or type(error).__name__ == "KilledWorker":
-        return "WORKER_LOST", LOST
-    return "INTERNAL", DEFECT

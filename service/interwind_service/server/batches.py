@@ -186,6 +186,8 @@ class BatchDoor:
                 return await asyncio.wrap_future(job)
             finally:
                 job.end(Cancelled("the caller left"))
+                if job.trace and (error := job.exception()) is not None:
+                    error.add_note(job.trace)  # for the log alone
         finally:
             self._admission.leave(ticket)
 
