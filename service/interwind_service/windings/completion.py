@@ -34,9 +34,9 @@ def largest_determinant(coupling: FloatArray) -> FloatArray | None:
     InvalidRequest : more pairs are unknown, in a pattern that is not chordal, than one Newton step can hold.
     """
     known = ~np.isnan(coupling)
-    pattern = pattern_of(known)
-    start = fill_chordal(coupling, pattern)
-    if pattern.chordal:
+    pattern = None if np.all(known) else pattern_of(known)
+    start = coupling if pattern is None else fill_chordal(coupling, pattern)
+    if pattern is None or pattern.chordal:
         values = np.linalg.eigvalsh(start)
         return start if values[0] >= -rounding_bound(values) else None
     pairs = np.argwhere(np.triu(~known, 1))

@@ -64,14 +64,16 @@ def fill_chordal(matrix: FloatArray, pattern: Pattern) -> FloatArray:
     K_rw = K_rB K_BB⁺ K_Bw for each winding w in the order of the search, B its earlier neighbours, r the earlier rest.
     """
     X = np.where(np.isnan(matrix), 0.0, matrix)
-    done: list[int] = []
+    done = np.zeros(len(X), dtype=bool)
     for w, before in zip(pattern.order, pattern.earlier, strict=True):
-        rest = [r for r in done if r not in set(before)]
-        if before and rest:
-            B = list(before)
+        B = list(before)
+        done[B] = False
+        rest = np.flatnonzero(done)
+        done[B] = True
+        if len(B) and len(rest):
             gain = solve_semidefinite(X[np.ix_(B, B)], X[B, w])
             X[rest, w] = X[w, rest] = X[np.ix_(rest, B)] @ gain
-        done.append(w)
+        done[w] = True
     return X
 
 
