@@ -218,7 +218,7 @@ class Runner:
             self._open[batch_id] = (recipe.read_bytes(), columns.open("rb"), known.width)
             while len(self._open) > BATCH_OPEN_COUNT:
                 self._forget(next(iter(self._open)))
-        self._open.move_toend(batch_id)
+        self._open.move_to_end(batch_id)
         return self._open[batch_id]
 
     def _forget(self, batch_id: str) -> None:
