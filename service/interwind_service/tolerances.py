@@ -225,6 +225,8 @@ SPARSE_UNKNOWNS = 3000
 SPARSE_COUPLING = 20
 # A residual above this is more than the rounding of one sparse solve, and worth a refinement.
 SPARSE_REFINED_RESIDUAL = 1e-15
+# So far beside a singular frequency the solution is looked at for its culprits, relative to the frequency.
+ASIDE = 1e-7
 
 # Poles. A dense eigenproblem of this many states takes some ten seconds.
 MODAL_STATES = 1500
@@ -432,6 +434,7 @@ CURRENT_TRANSFORMER_BURDEN_OHM = 10e3
 # --- service: workers and front -------------------------------------------------------------------------------------
 WORKER_OOM_SCORE_ADJUST = 700  # the kernel, short of memory, takes a worker and not the server
 WORKER_RESPAWN_PAUSE_S = 0.2  # between tries to start a process when the system has none to give
+IDLE_LOOK_S = 0.5  # how soon a worker that died without work is replaced
 WORKER_LEAVE_S = 0.3  # a stopping server waits so long for its workers; they see its end by themselves
 INLINE_ANSWER_BYTES = 64 * 1024  # below this a file costs more than the pipe (measured: 0.4 ms against 0.3 ms)
 MAX_REQUEST_BYTES = 4 * 2**20  # what every gRPC library sends and takes unasked; larger arrays go through PutArray

@@ -20,7 +20,7 @@ from multiprocessing.process import BaseProcess
 from typing import Any
 
 from interwind.errors import InterwindError, Unavailable, WorkerLost
-from interwind_service.tolerances import WORKER_LEAVE_S, WORKER_RESPAWN_PAUSE_S
+from interwind_service.tolerances import IDLE_LOOK_S, WORKER_LEAVE_S, WORKER_RESPAWN_PAUSE_S
 from interwind_service.workers.forking import start_forkserver
 from interwind_service.workers.process import Done, Guards, Note, Raised, serve
 
@@ -159,19 +159,18 @@ class WorkerPool(Executor):
                 keeper.join(max(0.0, end_s - time.monotonic()))
 
     def _take(self) -> Job | None:
+        """Return the next job; None after a while without one, so that the keeper can look after its worker."""
         with self._ready:
-            while not self._queue:
-                if self._closing:
-                    return None
-                self._ready.wait()
-            return heapq.heappop(self._queue)[2]
+            if not self._queue and not self._closing:
+                self._ready.wait(IDLE_LOOK_S)
+            return heapq.heappop(self._queue)[2] if self._queue else None
 
     def _keep(self, slot: int) -> None:
         process, pipe = self._spawn(slot)
-        while (job := self._take()) is not None:
+        while (job := self._take()) is not None or not self._closing:
             if not process.is_alive():  # it died while idle: nobody's call is lost
                 process, pipe = self._replace(slot, process, pipe, "died idle")
-            if not job.begin(process):
+            if job is None or not job.begin(process):
                 continue
             self._current[slot] = job
             reply = _converse(job, pipe)

@@ -12,6 +12,7 @@ import sys
 import threading
 import traceback
 from collections.abc import Callable
+from contextlib import suppress
 from dataclasses import dataclass
 from multiprocessing import parent_process
 from multiprocessing.connection import Connection
@@ -89,7 +90,7 @@ def put_on_guards(guards: Guards) -> None:
     if sys.platform == "linux":
         # A worker deep inside LAPACK may hold the interpreter lock for long; then the kernel ends it.
         ctypes.CDLL(None).prctl(PR_SET_PDEATHSIG, signal.SIGKILL)
-        with open("/proc/self/oom_score_adj", "w") as file:
+        with suppress(OSError), open("/proc/self/oom_score_adj", "w") as file:  # a sandbox may forbid it
             file.write(str(WORKER_OOM_SCORE_ADJUST))
     if guards.memory_limit_bytes:
         _, hard = resource.getrlimit(resource.RLIMIT_AS)
