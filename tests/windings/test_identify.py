@@ -254,6 +254,25 @@ def test_cantilever_there_and_back():
     np.testing.assert_allclose(circuit.turns_ratio, L[0] / L[0, 0], rtol=1e-9)
 
 
+def test_inverse_matrix_with_infinite_magnetising():
+    """Rows that sum to zero have no L: refused; with one diagonal entry left out and its winding read open, solved."""
+    gamma = 1e6 * np.array([[3.0, -1.0, -2.0], [-1.0, 1.5, -0.5], [-2.0, -0.5, 2.5]])
+    labels = LABELS[:3]
+    readings = [
+        InverseInductance((labels[i], labels[j]), gamma[i, j], 1e-3 * abs(gamma[i, j]))
+        for i in range(3)
+        for j in range(i, 3)
+    ]
+    with pytest.raises(InvalidRequest, match="read that winding open instead") as caught:
+        identify(labels, readings)
+    assert caught.value.reason == "SINGULAR_INVERSE"
+
+    found = identify(labels, [OpenInductance("a", 1e-3, 1e-6), *readings[1:]])
+    L = found.windings.inductance_h
+    np.testing.assert_allclose(np.linalg.inv(L)[1:, 1:], gamma[1:, 1:], rtol=1e-6)
+    np.testing.assert_allclose(L, 1e-3, rtol=2e-3)
+
+
 BAD = [
     ([], "readings", "none found"),
     (["L"], "readings[0]", "a reading is expected"),

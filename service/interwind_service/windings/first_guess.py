@@ -12,6 +12,7 @@ from collections.abc import Sequence
 
 import numpy as np
 
+from interwind.errors import InvalidRequest
 from interwind.model.frozen import FloatArray
 from interwind.model.readings import (
     EffectiveLeakage,
@@ -26,6 +27,7 @@ from interwind.model.readings import (
 from interwind_service.tolerances import FIRST_COUPLING, FIRST_COUPLING_LARGEST, FIRST_MARGIN
 from interwind_service.windings.completion import largest_determinant
 from interwind_service.windings.intake import Taken
+from interwind_service.windings.pattern import solve_semidefinite
 from interwind_service.windings.readings import windings_of
 
 
@@ -160,14 +162,37 @@ def _definite(K: FloatArray) -> FloatArray:
 
 
 def _from_inverse(used: Sequence[Taken], labels: Sequence[str]) -> FloatArray | None:
-    """L = Γ⁻¹ where every entry of Γ was read and they make a definite matrix."""
+    """L = Γ⁻¹ where every entry of Γ was read, or all but one on the diagonal, whose winding was read open.
+
+    L_rr = 1 / (Γ_rr − Γ_rs Γ_ss⁻¹ Γ_sr) gives the missing entry Γ_rr.
+
+    Raises
+    ------
+    InvalidRequest : Γ was read throughout and is singular or indefinite.
+    """
     n = len(labels)
-    gamma = np.full((n, n), np.nan)
+    gamma, own = np.full((n, n), np.nan), np.full(n, np.nan)
     for one in used:
         if isinstance(one.reading, InverseInductance):
             i, j = (labels.index(label) for label in one.reading.windings)
             gamma[i, j] = gamma[j, i] = one.value
-    return _inverted(gamma)
+        elif isinstance(one.reading, OpenInductance):
+            own[labels.index(one.reading.winding)] = one.value
+    missing = np.flatnonzero(np.isnan(gamma.diagonal()))
+    if len(missing) == 1 and np.isfinite(own[missing[0]]):
+        r = int(missing[0])
+        s = np.arange(n) != r
+        if not np.any(np.isnan(gamma[s])):
+            gamma[r, r] = 1.0 / own[r] + gamma[r, s] @ solve_semidefinite(gamma[np.ix_(s, s)], gamma[s, r])
+    L = _inverted(gamma)
+    if L is None and not np.any(np.isnan(gamma)):
+        raise InvalidRequest.at(
+            "readings",
+            "the inverse inductance matrix that was read is singular or indefinite, as it is where the magnetising "
+            "inductance is taken for infinite: leave out one diagonal entry and read that winding open instead",
+            reason="SINGULAR_INVERSE",
+        )
+    return L
 
 
 def _from_effective(used: Sequence[Taken], labels: Sequence[str]) -> FloatArray | None:
