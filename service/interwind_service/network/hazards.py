@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import numpy as np
+from numpy.typing import NDArray
 
 from interwind.model import elements as el
 from interwind.model.finding import Caution
@@ -82,34 +83,37 @@ def _open_current_transformers(topology: Topology) -> list[Caution]:
         return cautions
     low = _low_impedance(topology)
     for group in topology.groups:
-        for i, branch in enumerate(group.branches.tolist()):
-            others = np.ones(len(low), dtype=bool)
-            others[branch] = False
-            keep = low & others
-            ends = components(len(topology.nodes), topology.start[keep], topology.finish[keep])
-            if ends[topology.start[branch]] == ends[topology.finish[branch]]:
-                continue  # a burden closes it
-            for j, primary in enumerate(group.branches.tolist()):
-                ratio = group.root[i] / group.root[j]
-                driven = {int(topology.start[primary]), int(topology.finish[primary])} & forced
-                tight = abs(group.coupling[i, j]) >= tol.CURRENT_TRANSFORMER_COUPLING
-                if i != j and driven and tight and ratio >= tol.CURRENT_TRANSFORMER_RATIO:
-                    cautions.append(
-                        Caution(
-                            "OPEN_CURRENT_TRANSFORMER_SECONDARY",
-                            f"Winding {group.labels[i]} of {group.name} stands open, or can be opened, while the "
-                            f"current of {group.labels[j]} is forced. Never open the secondary of an energised "
-                            "current transformer: it answers with lethal voltage and may explode. Short it first "
-                            "(IEC 61869-1).",
-                            measured=float(ratio),
-                            threshold=tol.CURRENT_TRANSFORMER_RATIO,
-                        )
-                    )
-                    break
+        members = group.branches
+        driven = np.array([{int(a), int(b)} & forced != set() for a, b in zip(
+            topology.start[members].tolist(), topology.finish[members].tolist(), strict=True)])  # fmt: skip
+        ratio = np.outer(group.root, 1.0 / group.root)
+        stepped = driven & (ratio >= tol.CURRENT_TRANSFORMER_RATIO)
+        stepped &= np.abs(group.coupling) >= tol.CURRENT_TRANSFORMER_COUPLING
+        for i in np.flatnonzero(stepped.any(axis=1)).tolist():
+            if _closed(topology, low, int(members[i])):
+                continue
+            j = int(np.flatnonzero(stepped[i])[0])
+            cautions.append(
+                Caution(
+                    "OPEN_CURRENT_TRANSFORMER_SECONDARY",
+                    f"Winding {group.labels[i]} of {group.name} stands open, or can be opened, while the current of "
+                    f"{group.labels[j]} is forced. Never open the secondary of an energised current transformer: it "
+                    "answers with lethal voltage and may explode. Short it first (IEC 61869-1).",
+                    measured=float(ratio[i, j]),
+                    threshold=tol.CURRENT_TRANSFORMER_RATIO,
+                )
+            )
     return cautions
 
 
-def _low_impedance(topology: Topology) -> np.ndarray:
+def _closed(topology: Topology, low: NDArray[np.bool_], branch: int) -> bool:
+    """Whether a burden closes a winding."""
+    keep = low & (np.arange(len(low)) != branch)
+    ends = components(len(topology.nodes), topology.start[keep], topology.finish[keep])
+    return bool(ends[topology.start[branch]] == ends[topology.finish[branch]])
+
+
+def _low_impedance(topology: Topology) -> NDArray[np.bool_]:
     """Branches that close a secondary: all but capacitors, current sources, switches and large resistors."""
     open_kinds = (Kind.CAPACITOR, Kind.CURRENT_SOURCE, Kind.SWITCH, Kind.CONTROLLED_CURRENT, Kind.DIODE, Kind.ARRESTER)
     low = ~np.isin(topology.kind, [int(kind) for kind in open_kinds])

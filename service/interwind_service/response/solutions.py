@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
+from functools import partial
 
 import numpy as np
 from numpy.typing import NDArray
@@ -17,6 +18,13 @@ from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import WindingCoordinates
 from interwind_service.response.frequency_tree import Drive
 from interwind_service.response.phasors import State, TreeState
+from interwind_service.response.sparse_nodal import (
+    NodalPhasors,
+    is_sparse,
+    nodal_spectrum,
+    nodal_suspects,
+    nodal_terminal,
+)
 from interwind_service.response.spectrum import Band, all_coordinates, bands, solve_band
 from interwind_service.response.sweep import SweptBand, sweep
 from interwind_service.response.swept_state import Comparison, SweptState, compare
@@ -70,6 +78,9 @@ def solutions(
 
     ``sweepable``: nothing is left open that a reduction would refuse.
     """
+    if is_sparse(topology):
+        yield from _sparse(topology, frequency_hz, drives, u)
+        return
     coordinates = all_coordinates(topology)
     moving = np.flatnonzero(frequency_hz > 0.0)
     alone = np.flatnonzero(frequency_hz == 0.0)
@@ -130,6 +141,29 @@ def _in_tree(band: Band, u: ComplexArray) -> Solution:
         suspects=lambda k: suspects(band.tree, complex(band.s[k])),
         method=ONE_BY_ONE,
     )
+
+
+def _sparse(
+    topology: Topology, frequency_hz: FloatArray, drives: tuple[Drive, ...], u: ComplexArray
+) -> Iterator[Solution]:
+    sources = {drive.branch: value for drive, value in zip(drives, u.tolist(), strict=True)}
+    for band in nodal_spectrum(topology, frequency_hz, drives):
+        state = NodalPhasors(band, u, sources)
+        singular = ~np.isfinite(band.condition)
+        yield Solution(
+            index=band.index,
+            omega=band.s.imag,
+            singular=singular,
+            state=state,
+            loudest=state,
+            drives=drives,
+            terminal=partial(nodal_terminal, band, drives),
+            noise=np.zeros((1, len(drives))),
+            residual=float(band.residual[~singular].max(initial=0.0)),
+            condition=float("nan"),
+            suspects=partial(nodal_suspects, band, drives),
+            method="sparse LU of the nodal equations, one ordering",
+        )
 
 
 def _terminal_rows(band: Band) -> FloatArray:

@@ -195,12 +195,36 @@ class NodalPhasors:
         """Return L i of a winding group, shape (f, n)."""
         return self._currents(group) @ self.topology.groups[group].inductance_h
 
-    def node_peaks(self) -> FloatArray:
-        """Return the largest magnitude of each node voltage, shape (nodes,)."""
-        peaks = np.zeros(len(self.topology.nodes))
+    def node_voltages(self) -> ComplexArray:
+        """Return every node voltage against its zero, shape (f, nodes)."""
         rows = self._plan.rows[:-1]
-        peaks[rows >= 0] = np.abs(self._x[:, rows[rows >= 0]]).max(axis=0)
-        return peaks
+        volts = np.zeros((len(self._x), len(rows)), dtype=np.complex128)
+        volts[:, rows >= 0] = self._x[:, rows[rows >= 0]]
+        return volts
 
     def _currents(self, group: int) -> ComplexArray:
         return np.stack([self.current(int(k)) for k in self.topology.groups[group].branches], axis=1)
+
+
+def nodal_terminal(band: NodalBand, drives: tuple[Drive, ...]) -> ComplexArray:
+    """Return the hybrid matrix (f, d, d) of the drives: current into the network per volt, voltage per ampere."""
+    H = np.zeros((len(band.s), len(drives), len(drives)), dtype=np.complex128)
+    for k, drive in enumerate(drives):
+        if drive.out_of < 0:
+            H[:, k] = -band.x[:, band.plan.currents[drive.branch]]
+            continue
+        for node, sign in ((drive.into, 1.0), (drive.out_of, -1.0)):
+            if band.plan.rows[node] >= 0:
+                H[:, k] += sign * band.x[:, band.plan.rows[node]]
+    return H
+
+
+def nodal_suspects(band: NodalBand, drives: tuple[Drive, ...], place: int) -> str:
+    """Name what is largest next to a singular point: there the solution is the null vector."""
+    aside = np.array([band.s[place].imag / (2.0 * np.pi) * (1.0 + tol.ASIDE)])
+    x = next(iter(nodal_spectrum(band.topology, aside, drives))).x[0]
+    size = np.abs(np.nan_to_num(x)).max(axis=1, initial=0.0)
+    if not size.any():
+        return "some of its elements"
+    large = np.flatnonzero(size > tol.NULL_VECTOR_SHARE * size.max())
+    return ", ".join(str(band.plan.unknowns[k]) for k in large[:8])
