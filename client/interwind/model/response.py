@@ -9,6 +9,7 @@ from interwind.errors import InvalidRequest
 from interwind.model.finding import NO_EVIDENCE, Caution, Evidence, Finding
 from interwind.model.frozen import ComplexArray, FloatArray
 from interwind.model.observables import ElementCurrent, ElementVoltage, Observable, WindingCurrent
+from interwind.model.recording import RecordFigures
 
 
 @dataclass(frozen=True, slots=True)
@@ -117,8 +118,14 @@ class EnergyLedger:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class TimeResponse(_Columns):
-    """Samples (T, observables) at ``time_s`` (T,), s, limits from the right; ``events``; the energy ``ledger``."""
+    """Samples (T, observables) at ``time_s`` (T,), s, limits from the right; ``events``; the energy ``ledger``.
+
+    With a `Recording`: its ``figures``, and with an envelope ``lowest`` and ``highest`` (T, observables), else None.
+    """
 
     time_s: FloatArray = field(kw_only=True)
     events: tuple[Event, ...] = field(default=(), kw_only=True)
     ledger: EnergyLedger | None = field(default=None, kw_only=True)
+    figures: RecordFigures | None = field(default=None, kw_only=True)
+    lowest: FloatArray | None = field(default=None, kw_only=True)
+    highest: FloatArray | None = field(default=None, kw_only=True)

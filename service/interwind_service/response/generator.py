@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from interwind.errors import InvalidNetwork, field_path
 from interwind.model.elements import CurrentSource, VoltageSource
-from interwind.model.waveform import Waveform
+from interwind.model.waveform import Constant, Waveform
 from interwind_service.network.topology import Topology
 from interwind_service.response.waveform import Channel, channels_of
 from interwind_service.tolerances import FORCED_CURRENT_ROUNDING
@@ -22,7 +22,7 @@ FloatArray = NDArray[np.float64]
 @dataclass(frozen=True, slots=True, eq=False)
 class Generator:
     """``S`` (g, g), 1/s; ``U`` (inputs, g); ``rate`` (g,) = largest |eigenvalue| of its channel, 1/s; ``events`` (E,)
-    rising, distinct, s.
+    rising, distinct, s; ``unit`` : the state that is 1 at all times, −1 without one.
     """
 
     S: FloatArray
@@ -30,6 +30,7 @@ class Generator:
     rate: FloatArray
     events: FloatArray
     states: tuple[Callable[[FloatArray], FloatArray], ...]
+    unit: int = -1
 
     def state(self, time_s: FloatArray) -> FloatArray:
         """Return ξ at times (T,), shape (T, g), limits from the right."""
@@ -42,8 +43,8 @@ class Generator:
         return self.state(np.nextafter(events, -np.inf))
 
 
-def generator_of(topology: Topology, stop_s: float, step_s: float) -> Generator:
-    """Join the waveforms of all independent sources; equal generators are shared.
+def generator_of(topology: Topology, stop_s: float, step_s: float, *, unit: bool = False) -> Generator:
+    """Join the waveforms of all independent sources; equal generators are shared. ``unit`` adds the constant 1.
 
     Raises
     ------
@@ -57,7 +58,7 @@ def generator_of(topology: Topology, stop_s: float, step_s: float) -> Generator:
         waveform: Waveform | None = element.waveform if isinstance(element, VoltageSource | CurrentSource) else None
         with field_path(f"elements[{position}].waveform"):
             sources.append([] if waveform is None else channels_of(waveform, stop_s, step_s))
-    generator = _join(sources, stop_s)
+    generator = _join(sources, channels_of(Constant(1.0), stop_s, step_s) if unit else [], stop_s)
     forced = topology.parts.forced @ generator.U
     if forced.size and np.abs(forced).max() > FORCED_CURRENT_ROUNDING * np.abs(generator.U).max(initial=0.0):
         part = int(np.argmax(np.abs(forced).max(axis=1)))
@@ -71,14 +72,15 @@ def generator_of(topology: Topology, stop_s: float, step_s: float) -> Generator:
     return generator
 
 
-def _join(sources: Sequence[Sequence[Channel]], stop_s: float) -> Generator:
+def _join(sources: Sequence[Sequence[Channel]], further: Sequence[Channel], stop_s: float) -> Generator:
+    """Join the channels of the sources and further ones that no source reads."""
     matrices: list[FloatArray] = []
     states: list[Callable[[FloatArray], FloatArray]] = []
     events: list[FloatArray] = [np.zeros(0)]
     place: dict[object, slice] = {}
     reads: list[tuple[int, slice, FloatArray]] = []
     size = 0
-    for source, channels in enumerate(sources):
+    for source, channels in enumerate([*sources, further]):
         for channel in channels:
             where = place.get(channel.key) if channel.key is not None else None
             if where is None:
@@ -90,7 +92,7 @@ def _join(sources: Sequence[Sequence[Channel]], stop_s: float) -> Generator:
                 if channel.key is not None:
                     place[channel.key] = where
             reads.append((source, where, channel.output))
-    U = np.zeros((len(sources), size))
+    U = np.zeros((len(sources) + 1, size))
     for source, where, output in reads:
         U[source, where] += output
     times = np.sort(np.concatenate(events))
@@ -98,4 +100,5 @@ def _join(sources: Sequence[Sequence[Channel]], stop_s: float) -> Generator:
     S = sl.block_diag(*matrices) if matrices else np.zeros((0, 0))
     rates = [np.full(len(matrix), np.abs(np.linalg.eigvals(matrix)).max()) for matrix in matrices]
     rate = np.concatenate(rates) if rates else np.zeros(0)
-    return Generator(S, U, rate, times[(times > 0.0) & (times <= stop_s)], tuple(states))
+    unit = place["constant"].start if "constant" in place else -1
+    return Generator(S, U[:-1], rate, times[(times > 0.0) & (times <= stop_s)], tuple(states), unit)

@@ -51,13 +51,13 @@ class EventSteps:
 
 
 class Propagation:
-    """One run of ``steps`` grid steps of ``step_s`` from x = ``start``; iterate `rows` once, then read the totals.
+    """One run of ``steps`` grid steps of ``step_s``, from step ``first`` on; iterate `rows` once, then read the totals.
 
     Parameters
     ----------
     flow : y' = M y and the jumps at events; the last g states are those of ``generator``.
     generator : ξ at every instant, and the events.
-    start : the states at 0+, shape (n,).
+    start : the states at step ``first``, from the right, shape (n,).
     readout : rows of the samples, shape (p, n + g).
     """
 
@@ -70,8 +70,10 @@ class Propagation:
         *,
         step_s: float,
         steps: int,
+        first: int = 0,
     ) -> None:
         self.generator, self.readout, self.step_s, self.steps = generator, readout, step_s, steps
+        self.first, self.last = first, first + steps
         self.n, self.size, self.jump = len(start), len(flow.M), flow.jump.T
         self._x = start.astype(np.float64)
         self.events = EventSteps.of(generator.events, step_s)
@@ -92,12 +94,12 @@ class Propagation:
         self.move = self.ladder.transition(step_level).T
         self._block = self.ladder.transition(self._chunk_bits)
         self._observe = _observability(readout, self.ladder, step_level, self._block_bits)
-        self.end = np.concatenate((self._x, generator.state(np.zeros(1))[0]))
+        self.end = np.concatenate((self._x, generator.state(np.array([first * step_s]))[0]))
         self._seen: list[FloatArray] = [self.end[None]]
 
     def rows(self) -> Iterator[FloatArray]:
-        """Yield the samples 0 .. steps in order, in pieces of shape (any, p)."""
-        for first in range(0, self.steps, self.block * self.chunk):
+        """Yield the samples of steps ``first`` .. ``first + steps`` in order, in pieces of shape (any, p)."""
+        for first in range(self.first, self.last, self.block * self.chunk):
             yield self._advance_chunk(first)
         yield (self.readout @ self.end)[None]
 
@@ -110,17 +112,11 @@ class Propagation:
         seen = np.vstack((*self._seen, self.end[None]))
         return seen[:: max(1, len(seen) // tol.TESTED_STATES)]
 
-    def peak_energy(self, energy: FloatArray, gramian: FloatArray) -> float:
-        """Return the largest ½ |energy y|², ``energy`` (n, n + g), among those samples, or its mean over the run."""
-        seen = float(np.square(self.some_states() @ energy.T).sum(axis=1).max())
-        mean = float(np.einsum("ka,ab,kb->", energy, gramian, energy)) / (self.steps * self.step_s)
-        return 0.5 * max(seen, mean)
-
     def _advance_chunk(self, first: int) -> FloatArray:
-        blocks = min(self.chunk, -(-(self.steps - first) // self.block))
+        blocks = min(self.chunk, -(-(self.last - first) // self.block))
         starts = first + self.block * np.arange(blocks)
         xi = self.generator.state(starts * self.step_s)
-        stop = min(self.steps, first + blocks * self.block)
+        stop = min(self.last, first + blocks * self.block)
         low, high = np.searchsorted(self.events.steps, (first, stop))
         eventful = self.events.steps[low:high]
         stepped = np.zeros(blocks, dtype=bool)
@@ -148,7 +144,7 @@ class Propagation:
         if smooth.size:
             own = y if smooth.size == blocks else y[smooth]
             self.gram.add(self._chunk_bits, own)
-            samples[smooth] = (own @ self._observe).reshape(len(smooth), self.block, -1)
+            samples[smooth] = (own @ self._observe).reshape(len(smooth), self.block, len(self.readout))
         end_state = np.concatenate((ends[-1], np.zeros(self.size - n)))
         if walk is not None:
             states = walk.go(y[walk.blocks])
@@ -159,7 +155,7 @@ class Propagation:
         self._x = end_state[:n]
         end_state[n:] = self.generator.state(np.array([stop * self.step_s]))[0]
         self.end = end_state
-        return samples.reshape(blocks * self.block, -1)[: stop - first]
+        return samples.reshape(blocks * self.block, len(self.readout))[: stop - first]
 
 
 class _Walk:

@@ -11,6 +11,7 @@ from interwind.errors import AccuracyNotReached, InvalidRequest
 from interwind.model.finding import Evidence
 from interwind.model.network import Network
 from interwind.model.observables import Observable
+from interwind.model.recording import Recording
 from interwind.model.response import EnergyLedger, Initial, TimeResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
@@ -20,10 +21,11 @@ from interwind_service.response.flow import Flow, flow_of
 from interwind_service.response.generator import Generator, generator_of
 from interwind_service.response.initial import start_of
 from interwind_service.response.ledger import ledger_of
+from interwind_service.response.linear_run import LinearRun, run_linear
 from interwind_service.response.observe import resolve
 from interwind_service.response.output_grid import steps_of
-from interwind_service.response.propagation import Propagation
 from interwind_service.response.readout import Readout, readout_of
+from interwind_service.response.recording import Recorder, window_of
 from interwind_service.response.residual import equation_residual
 from interwind_service.response.state_space import StateSpace
 from interwind_service.response.switching import time_response_switching
@@ -44,6 +46,7 @@ def time_response(
     tolerance: float = tol.DEFAULT_TOLERANCE,
     *,
     sink: RowSink | None = None,
+    recording: Recording | None = None,
 ) -> TimeResponse:
     """Compute the response from 0 to ``stop_s``, sampled every ``step_s``.
 
@@ -56,7 +59,8 @@ def time_response(
     observe : observables; None = all node voltages and winding currents.
     initial : stated values, the rest 0; or `SteadyStart`. None = all 0.
     tolerance : largest energy error and residual at which the response is returned.
-    sink : takes (index of the first sample, samples (any, observables)) as they are made; the response then holds none.
+    sink : takes (step of the first sample, samples (any, observables)) as they are made; the response then holds none.
+    recording : the window, decimation and envelope of what is kept, and that figures are wanted.
 
     Returns
     -------
@@ -74,15 +78,20 @@ def time_response(
         raise InvalidRequest.at("tolerance", f"{tolerance!r} found; a finite number above 0 is expected")
     topology = admit(network)
     asked = resolve(topology, observe)
-    if sink is None and (steps + 1) * len(asked) > tol.MAX_RESPONSE_VALUES:
+    window = window_of(recording or Recording(), step_s, steps)
+    if sink is None and window.kept * len(asked) > tol.MAX_RESPONSE_VALUES:
         raise InvalidRequest.at(
             "observe",
-            f"{steps + 1} samples of {len(asked)} observables found; at most {tol.MAX_RESPONSE_VALUES} values are "
-            "held; observe less or choose a larger step_s",
+            f"{window.kept} samples of {len(asked)} observables found; at most {tol.MAX_RESPONSE_VALUES} values are "
+            "held; observe less, choose a larger step_s, or record a window or every so many samples",
         )
     if topology.of_kind(*_SWITCHED).size:
+        if recording is not None:
+            raise InvalidRequest.at(
+                "recording", "found with switches or nonlinear elements; it is offered for linear runs"
+            )
         return time_response_switching(network, stop_s, step_s, asked, initial, tolerance, sink=sink)
-    generator = generator_of(topology, stop_s, step_s)
+    generator = generator_of(topology, stop_s, step_s, unit=recording is not None)
     space = model_of(topology, _centre(generator, stop_s, step_s))
     if topology.controls:
         _refuse_growth(space, stop_s)
@@ -90,21 +99,48 @@ def time_response(
     readout = readout_of(topology, asked)
     flow = flow_of(space, generator)
     begin = flow.start(start.x, generator.state(np.zeros(1))[0])
-    run = Propagation(flow, generator, begin, readout.rows @ flow.signals, step_s=step_s, steps=steps)
-    samples = _collect(run, readout, len(asked), sink)
-    gramian = run.gramian()
-    ledger = ledger_of(space, flow, generator, start, gramian, run.end)
-    peak = max(start.stored_before_j, start.stored_after_j, run.peak_energy(flow.energy, gramian))
+    recorder = Recorder(window, len(asked), envelope=recording is not None and recording.envelope, keep=sink is None)
+
+    def take(first: int, piece: FloatArray) -> None:
+        rows = readout.finish(piece)
+        recorder.take(first, rows)
+        if sink is not None:
+            sink(first, rows)
+
+    own_rows = readout.rows @ flow.signals
+    run = run_linear(flow, generator, begin, own_rows, take, step_s=step_s, steps=steps, window=window)
+    ledger = ledger_of(space, flow, generator, start, run.gramian, run.end)
+    peak = max(start.stored_before_j, start.stored_after_j, run.peak_energy(flow.energy, steps * step_s))
     evidence = _evidence(topology, space, flow, run, ledger, peak)
     _require(evidence, tolerance)
+    figures = None
+    if recording is not None:
+        exact = window_moments(own_rows, readout, run.window_gramian, generator, step_s * (window.last - window.first))
+        figures = recorder.figures(step_s, *exact)
     return TimeResponse(
         asked,
-        samples,
-        time_s=step_s * np.arange(len(samples)),
+        recorder.samples,
+        time_s=step_s * (window.first + window.every * np.arange(len(recorder.samples))),
         ledger=ledger,
+        figures=figures,
+        lowest=recorder.lowest,
+        highest=recorder.highest,
         findings=(*topology.findings, *start.findings),
         evidence=evidence,
     )
+
+
+def window_moments(
+    rows: FloatArray, readout: Readout, gramian: FloatArray, generator: Generator, span_s: float
+) -> tuple[FloatArray, FloatArray]:
+    """Return the exact mean and mean square of each observable over a window, NaN for products of two signals."""
+    mean, square = np.full(len(readout.linear), np.nan), np.full(len(readout.linear), np.nan)
+    unit = len(gramian) - len(generator.S) + generator.unit
+    for column, row in enumerate(readout.linear):
+        if row >= 0:
+            mean[column] = rows[row] @ gramian[:, unit] / span_s
+            square[column] = rows[row] @ gramian @ rows[row] / span_s
+    return mean, square
 
 
 def _refuse_growth(space: StateSpace, stop_s: float) -> None:
@@ -125,31 +161,18 @@ def _centre(generator: Generator, stop_s: float, step_s: float) -> float:
     return max(1.0 / float(np.sqrt(step_s * stop_s)), min(fastest, tol.SLOW_PHASE / stop_s))
 
 
-def _collect(run: Propagation, readout: Readout, columns: int, sink: RowSink | None) -> FloatArray:
-    samples = np.empty((0 if sink else run.steps + 1, columns))
-    done = 0
-    for piece in run.rows():
-        rows = readout.finish(piece)
-        if sink is not None:
-            sink(done, rows)
-        else:
-            samples[done : done + len(rows)] = rows
-        done += len(rows)
-    return samples
-
-
 def _evidence(
     topology: Topology,
     space: StateSpace,
     flow: Flow,
-    run: Propagation,
+    run: LinearRun,
     ledger: EnergyLedger,
     peak_j: float,
 ) -> Evidence:
     size = max(abs(ledger.supplied_j), peak_j)
     return Evidence(
         method="structural reduction, resolvent blocks, exact propagation",
-        residual=max(space.residual, equation_residual(topology, flow.signals, flow.M, run.some_states(), space.shift)),
+        residual=max(space.residual, equation_residual(topology, flow.signals, flow.M, run.states, space.shift)),
         condition=space.condition,
         energy_error=abs(ledger.numerical_j) / size if size > 0.0 else 0.0,
     )
