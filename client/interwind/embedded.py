@@ -48,7 +48,7 @@ class EmbeddedServer:
                 start_new_session=True,  # an interrupt at the terminal is for the client; it cancels its calls
             )
         self.pid = process.pid
-        self.stop = weakref.finalize(self, _stop, process, folder)
+        self.stop = weakref.finalize(self, _stop, process, folder, os.getpid())
         line = _first_line(cast(IO[bytes], process.stdout))
         if not line.startswith(b"{"):
             log_text = (folder / "log").read_text(errors="replace").strip()
@@ -76,7 +76,9 @@ def _last_line(text: str) -> str:
     return text.splitlines()[-1] if text else "it said nothing"
 
 
-def _stop(process: subprocess.Popen[bytes], folder: Path) -> None:
+def _stop(process: subprocess.Popen[bytes], folder: Path, owner_pid: int) -> None:
+    if os.getpid() != owner_pid:  # a forked copy of the client goes; the server is not its own
+        return
     process.terminate()
     try:
         process.wait(STOP_LIMIT_S)

@@ -98,3 +98,18 @@ def test_settings_meant_for_another_server_stay_out(no_address, monkeypatch):
     monkeypatch.setenv("INTERWIND_WORKERS", "1")
     with iw.connect() as solver:
         assert solver.server_info().worker_count == 1
+
+
+def test_forked_copy_of_the_client_leaves_the_service_alone(no_address):
+    """A child of the user's process may end; the service is its parent's."""
+    script = (
+        "import os, sys, interwind as iw\n"
+        "solver = iw.connect()\n"
+        "if os.fork() == 0:\n"
+        "    sys.exit(0)\n"
+        "os.wait()\n"
+        "print(solver.server_info().api_version)\n"
+    )
+    answer = subprocess.run([sys.executable, "-c", script], capture_output=True, text=True, timeout=60)
+
+    assert answer.stdout.strip() == "v1"

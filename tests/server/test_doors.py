@@ -220,5 +220,6 @@ def test_metrics_carry_the_common_names():
         "interwind_workers_busy",
         "interwind_memory_reserved_bytes 0.0",
         "interwind_solve_seconds_sum",
+        'interwind_batch_items{state="pending"} 0.0',
     ):
         assert name in text

@@ -149,6 +149,14 @@ class Store:
         self._journal.write(job).result()
         shutil.rmtree(self.folder.batch(batch_id), ignore_errors=True)
 
+    def item_counts(self) -> dict[str, int]:
+        """Return the rows of all batches held, by state."""
+        states = ("ok", "invalid", "failed", "cancelled")
+        sums = ", ".join(f"total({state}_count)" for state in states)
+        (row,) = self._journal.read(f"SELECT {sums}, total(variant_count) FROM batch")
+        counts = {state: int(count) for state, count in zip(states, row, strict=False)}
+        return counts | {"pending": int(row[-1]) - sum(counts.values())}
+
     def expire(self) -> None:
         """Delete the batches whose time has come."""
         for row in self._journal.read("SELECT batch_id FROM batch WHERE expire_time_s < ?", self.now_s()):

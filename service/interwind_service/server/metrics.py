@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator, Mapping
 from typing import Any, cast
 
 from prometheus_client import CollectorRegistry, Counter, Histogram, start_http_server
@@ -19,7 +19,7 @@ LABELS = ("grpc_type", "grpc_service", "grpc_method")
 class Metrics:
     """Counts calls as they begin and end; reads the rest from the pool and the admission when asked."""
 
-    def __init__(self, *, pool: WorkerPool, admission: Admission) -> None:
+    def __init__(self, *, pool: WorkerPool, admission: Admission, batch_items: Callable[[], Mapping[str, int]]) -> None:
         self.registry = CollectorRegistry()
         self._started = Counter("grpc_server_started", "Calls begun.", LABELS, registry=self.registry)
         self._handled = Counter(
@@ -31,7 +31,7 @@ class Metrics:
         self._solve = Histogram(
             "interwind_solve_seconds", "Seconds a worker computed.", ("kind",), registry=self.registry
         )
-        self.registry.register(_State(pool, admission))  # type: ignore[arg-type]
+        self.registry.register(_State(pool, admission, batch_items))  # type: ignore[arg-type]
 
     def begun(self, rpc: Rpc) -> None:
         """Count a call that arrived."""
@@ -56,9 +56,10 @@ class Metrics:
 
 
 class _State:
-    """What the pool and the admission say at the moment of the scrape."""
+    """What the pool, the admission and the batches say at the moment of the scrape."""
 
-    def __init__(self, pool: WorkerPool, admission: Admission) -> None:
+    def __init__(self, pool: WorkerPool, admission: Admission, batch_items: Callable[[], Mapping[str, int]]) -> None:
+        self._batch_items = batch_items
         self._pool = pool
         self._admission = admission
 
@@ -77,6 +78,10 @@ class _State:
         for reason, count in sorted(admission.refused.items()):
             refused.add_metric([reason], count)
         yield refused
+        items = GaugeMetricFamily("interwind_batch_items", "Rows of the batches held, by state.", labels=["state"])
+        for state, count in self._batch_items().items():
+            items.add_metric([state], count)
+        yield items
 
 
 def _labels(rpc: Rpc) -> tuple[str, str, str]:

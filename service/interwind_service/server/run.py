@@ -89,7 +89,7 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
         gates.append(TokenGate(tokens))
         asyncio.get_running_loop().add_signal_handler(signal.SIGHUP, tokens.look_again)
     server = grpc.aio.server(options=channel_options(settings), interceptors=gates)
-    metrics = Metrics(pool=pool, admission=admission)
+    metrics = Metrics(pool=pool, admission=admission, batch_items=batches.store.item_counts)
     boundary = Boundary(max_timeout_s=settings.max_timeout_s, client_of=client_of, metrics=metrics)
     server.add_generic_rpc_handlers(generic_handlers(table, boundary))
     names = service_names(table)
