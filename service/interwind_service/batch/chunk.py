@@ -5,6 +5,7 @@ What a row holds depends on its variant alone, never on its neighbours, its plac
 
 from __future__ import annotations
 
+import dataclasses
 from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
@@ -80,6 +81,18 @@ def layout_of(network: Network, analysis: Analysis) -> Layout:
             reason="TOO_MANY_POINTS", limit=BATCH_POINT_LIMIT,
         )  # fmt: skip
     return Layout(observables, points, name, dtype)
+
+
+def shortened(analysis: Analysis, points: int) -> tuple[Analysis, float]:
+    """Return the analysis over about so many of its points, and how many times more the whole has."""
+    if isinstance(analysis, FrequencyAnalysis) and analysis.frequency_hz.size > points:
+        every = -(-analysis.frequency_hz.size // points)
+        few = analysis.frequency_hz[::every]
+        return FrequencyAnalysis(few, analysis.observe), analysis.frequency_hz.size / few.size
+    if isinstance(analysis, TimeAnalysis) and analysis.stop_s > points * analysis.step_s:
+        stop_s = points * analysis.step_s
+        return dataclasses.replace(analysis, stop_s=stop_s), analysis.stop_s / stop_s
+    return analysis, 1.0
 
 
 def checked_windings(network: Network, analysis: CheckAnalysis) -> Windings:
