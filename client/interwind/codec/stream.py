@@ -65,7 +65,9 @@ class ChunkWriter:
         for start in range(0, len(view), CHUNK_BYTES):
             piece = bytes(view[start : start + CHUNK_BYTES])
             self._hash.update(piece)
-            yield self._part(chunk=response_pb2.ResultChunk(offset_bytes=self._offset, data=piece))
+            part = self._part()
+            part.chunk.offset_bytes, part.chunk.data = self._offset, piece  # in place: a constructor would copy twice
+            yield part
             self._offset += len(piece)
 
     def trailer(self, value: Any) -> Any:
