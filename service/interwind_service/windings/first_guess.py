@@ -179,7 +179,7 @@ def _from_inverse(used: Sequence[Taken], labels: Sequence[str]) -> FloatArray | 
         elif isinstance(one.reading, OpenInductance):
             own[labels.index(one.reading.winding)] = one.value
     missing = np.flatnonzero(np.isnan(gamma.diagonal()))
-    if len(missing) == 1 and np.isfinite(own[missing[0]]):
+    if n > 1 and len(missing) == 1 and np.isfinite(own[missing[0]]):
         r = int(missing[0])
         s = np.arange(n) != r
         if not np.any(np.isnan(gamma[s])):
