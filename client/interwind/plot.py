@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import textwrap
+from collections.abc import Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -11,6 +12,7 @@ from numpy.typing import NDArray
 
 from interwind.codec.observable import observable_heading
 from interwind.errors import InvalidRequest
+from interwind.model.observables import Observable
 from interwind.model.report import ValidityReport
 from interwind.model.response import FrequencyResponse, PortResponse
 
@@ -21,13 +23,15 @@ if TYPE_CHECKING:
 LEGEND_LIMIT = 12  # more lines than this are told apart by nobody
 
 
-def save(answer: Any, path: str | Path) -> None:
+def save(answer: Any, path: str | Path, *, observe: Sequence[Observable] | None = None) -> None:
     """Draw an answer into an image file, its kind by the ending."""
-    figure(answer).savefig(path, dpi=150)
+    figure(answer, observe=observe).savefig(path, dpi=150)
 
 
-def figure(answer: Any) -> Figure:
+def figure(answer: Any, *, observe: Sequence[Observable] | None = None) -> Figure:
     """Return the figure of a response over frequency or time, of a port response, or of a verdict.
+
+    ``observe``: which observables of a response to draw; None = all of them.
 
     Raises
     ------
@@ -38,10 +42,10 @@ def figure(answer: Any) -> Figure:
         _draw_intervals(answer, drawn.axes[0])
     elif isinstance(answer, FrequencyResponse | PortResponse):
         drawn = blank(answer, "over frequency", rows=2)
-        _draw_frequency(answer, *drawn.axes)
+        _draw_frequency(answer, observe, *drawn.axes)
     elif hasattr(answer, "time_s"):
         drawn = blank(answer, "over time", rows=1)
-        _draw_time(answer, drawn.axes[0])
+        _draw_time(answer, observe, drawn.axes[0])
     else:
         raise InvalidRequest.at("plot", f"{type(answer).__name__} found; a response or a verdict can be drawn")
     return drawn
@@ -87,13 +91,15 @@ def _draw_intervals(report: ValidityReport, axes: Axes) -> None:
     axes.set_xlabel(f"verdict {report.verdict.name}, smallest eigenvalue {report.eigenvalues[0]:.5g}")
 
 
-def _draw_frequency(answer: FrequencyResponse | PortResponse, magnitude: Axes, phase: Axes) -> None:
+def _draw_frequency(
+    answer: FrequencyResponse | PortResponse, observe: Sequence[Observable] | None, magnitude: Axes, phase: Axes
+) -> None:
     curves: dict[str, NDArray[Any]]
     if isinstance(answer, PortResponse):
         pairs = [(i, j) for i in range(len(answer.ports)) for j in range(len(answer.ports))]
         curves = {f"S {answer.ports[i]} {answer.ports[j]}": answer.scattering[:, i, j] for i, j in pairs}
     else:
-        curves = {observable_heading(observable): answer[observable] for observable in answer}
+        curves = {observable_heading(observable): answer[observable] for observable in observe or answer}
     for name, curve in curves.items():
         magnitude.loglog(answer.frequency_hz, np.abs(curve), label=name, linewidth=0.9)
         phase.semilogx(answer.frequency_hz, np.degrees(np.angle(curve)), linewidth=0.9)
@@ -104,12 +110,13 @@ def _draw_frequency(answer: FrequencyResponse | PortResponse, magnitude: Axes, p
     _legend(magnitude, len(curves))
 
 
-def _draw_time(answer: Any, axes: Axes) -> None:
-    for observable in answer:
+def _draw_time(answer: Any, observe: Sequence[Observable] | None, axes: Axes) -> None:
+    shown = list(observe or answer)
+    for observable in shown:
         axes.plot(answer.time_s, answer[observable], label=observable_heading(observable), linewidth=0.9)
     axes.set_xlabel("time, s")
     axes.set_ylabel("V, A, Wb, W or J by the name")
-    _legend(axes, len(answer))
+    _legend(axes, len(shown))
 
 
 def _legend(axes: Axes, count: int) -> None:

@@ -11,6 +11,7 @@ import time
 from pathlib import Path
 
 import cell_lift
+import cell_lift_supply
 import disc_winding
 from figures import Figures
 
@@ -27,6 +28,7 @@ def main() -> int:
         info = solver.server_info()
         print(f"service {info.service_version}, contract {info.api_version}, {info.worker_count} workers")
         cell_lift.show(solver, figures, output)
+        cell_lift_supply.show(solver, figures, output)
         disc_winding.show(solver, figures, output)
     print(f"\npictures in {output.name}/: {', '.join(sorted(path.name for path in output.glob('*.png')))}")
     print(f"{figures.count} figures in {time.perf_counter() - began:.1f} s")

@@ -77,13 +77,8 @@ def show_modes(solver: iw.Client, net: iw.Network, figures: Figures, output: Pat
     for number, golden in enumerate(DATA["golden"]["mode_khz"]):
         pole_per_s = fit_pole(sweep.frequency_hz[peaks[number]] + around_hz, grids[number])
         figures.compare(f"disc_winding_mode_{number + 1}_khz", pole_per_s.imag / (2e3 * np.pi), golden)
-    shown = iw.FrequencyResponse(
-        tuple(INNER[node - 1] for node in (6, 15, 30, 45)),
-        sweep.samples[:, [5, 14, 29, 44]],
-        frequency_hz=sweep.frequency_hz,
-        cautions=sweep.cautions,
-    )
-    plot.save(shown, output / "disc_winding_frequency.png")
+    shown = [INNER[int(node) - 1] for node in DATA["golden"]["nodes"]]
+    plot.save(sweep, output / "disc_winding_frequency.png", observe=shown)
     return sweep
 
 
