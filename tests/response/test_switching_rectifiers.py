@@ -58,7 +58,7 @@ def test_half_wave_on_resistance_and_inductance(load_deg):
 
 
 def test_half_wave_on_a_counter_voltage():
-    """120 V, 2 ohm, 20 mH, 100 V: conducts from arcsin(E/Vm) until its current is zero (closed form, root found here)."""
+    """120 V, 2 ohm, 20 mH, 100 V: conducts from arcsin(E/Vm) until its current is zero (closed form)."""
     omega, R, L, E, peak = 377.0, 2.0, 20e-3, 100.0, 120.0 * np.sqrt(2)
     theta, Z, alpha = np.arctan2(omega * L, R), np.hypot(omega * L, R), np.arcsin(E / peak)
     start = -peak / Z * np.sin(alpha - theta) + E / R

@@ -163,6 +163,12 @@ class SaturableBranch(Device):
         return below + self.current_a[piece] * beyond + 0.5 * slope * beyond**2
 
 
+def is_smooth(topology: Topology, branch: int) -> bool:
+    """Whether a branch follows a smooth law that no straight pieces make: an exponential diode or an arrester."""
+    element = topology.network.elements[topology.element[branch]]
+    return isinstance(element, el.Arrester) or (isinstance(element, el.Diode) and element.exponential)
+
+
 def device_of(topology: Topology, branch: int, state: int, limit: IdealLimit) -> Device:
     """Return the device of a switch, diode or saturable branch."""
     element = topology.network.elements[topology.element[branch]]

@@ -32,7 +32,7 @@ class Drives:
     """``exponent`` (k,) s, 1/s; ``link`` (k,) the next channel of the chain, -1 for none; ``U`` (inputs, k).
 
     ``turn`` (k, g) makes w of the states ξ of the generator; channel 0 stands beside them. ``steady`` : w stands still
-    between breakpoints.
+    between breakpoints; ``linked`` : some chain is longer than one channel.
     """
 
     generator: Generator
@@ -41,6 +41,7 @@ class Drives:
     U: ComplexArray
     turn: ComplexArray
     steady: bool
+    linked: bool
 
     @property
     def W(self) -> ComplexArray:
@@ -57,17 +58,21 @@ class Drives:
         return w
 
     def moved(self, w: ComplexArray, by_s: float) -> ComplexArray:
-        """Return e^{W by} w."""
-        if self.steady:
-            return w
-        growth = np.exp(self.exponent * by_s)
-        moved = growth * w
-        term, source, order = 1.0, self.link.copy(), 1
+        """Return e^{W by} w, shape (k,)."""
+        return w if self.steady else self.moved_to(w, np.array([by_s]))[0]
+
+    def moved_to(self, w: ComplexArray, by_s: FloatArray) -> ComplexArray:
+        """Return e^{W by} w for several times (T,), shape (T, k); ``w`` (k,) or one for each time, (T, k)."""
+        growth = np.exp(self.exponent * by_s[:, None])
+        moved: ComplexArray = growth * w
+        if not self.linked:
+            return moved
+        source, order, term = self.link, 1, np.ones(len(by_s))
         while np.any(source >= 0):
             term = term * by_s / order
             reached = np.flatnonzero(source >= 0)
-            moved[reached] += growth[reached] * term * w[source[reached]]
-            source[reached] = self.link[source[reached]]
+            moved[:, reached] += growth[:, reached] * term[:, None] * w[..., source[reached]]
+            source = np.where(source >= 0, self.link[source], -1)
             order += 1
         return moved
 
@@ -93,6 +98,7 @@ def drives_of(topology: Topology, stop_s: float, step_s: float) -> Drives:
         np.hstack(reads),
         np.vstack(turns),
         steady,
+        max(link) >= 0,
     )
 
 

@@ -67,8 +67,8 @@ def power_terms(tableau: Tableau, mode: tuple[int, ...]) -> PowerTerms:
             terms.append((voltage(branch), 0.0, i, account, element))
         elif kind == Kind.INDUCTOR and topology.value[branch] == 0.0:
             terms.append((voltage(branch), 0.0, i, JUMP, element))
-        elif kind in (Kind.SWITCH, Kind.DIODE):
-            if ideal[branch]:
+        elif kind in (Kind.SWITCH, Kind.DIODE, Kind.ARRESTER):
+            if ideal.get(branch, False):
                 terms.append((voltage(branch), -offset[branch], i, JUMP, element))
                 terms.append((np.zeros(width), offset[branch], i, DISSIPATED, element))
             else:

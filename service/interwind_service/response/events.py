@@ -29,27 +29,30 @@ class Change:
     then: int
 
 
-def first_event(driven: Driven, kappa: ComplexArray, span_s: float, fresh: int) -> tuple[float, Change | None]:
+def first_event(
+    driven: Driven, kappa: ComplexArray, span_s: float, fresh: int, slack: float = 1.0
+) -> tuple[float, Change | None]:
     """Return how far the piece may run, and the change that ends it, if one does.
 
     ``fresh`` is the device that has just changed, -1 for none: by rounding it may stand on the wrong side for a while,
-    so its guards count only from the first instant at which they hold.
+    so its guards count only from the first instant at which they hold. ``slack`` times the rounding of its terms is how
+    far a guard may fail: more than 1 only to leave an instant at which several devices tie.
     """
     piece = driven.piece
     end = min(span_s, float(piece.look[-1]))
     if len(piece.rows.device) == 0:
         return end, None
-    sums = _Sums(driven, kappa)
+    sums = _Sums(driven, kappa, slack)
     guards = len(sums.floor)
     held = None
     if fresh >= 0:
         held = piece.rows.device != fresh
         held = held | (sums.at_start[:guards] > 0.0)
     stop = int(np.searchsorted(piece.look, end, side="left"))
-    low, width = sums.first_look(), tol.SCAN_BLOCK
+    low, width = min(sums.first_look(), stop), tol.SCAN_BLOCK
     before, t_before = sums.at_start, 0.0
     while True:
-        high = max(low, min(low + width, stop))
+        high = min(low + width, stop)
         count = high - low
         last = high == stop
         seen = np.empty((count + 1 + last, 2 * guards))
@@ -81,13 +84,13 @@ def first_event(driven: Driven, kappa: ComplexArray, span_s: float, fresh: int) 
 class _Sums:
     """All guards of a segment as modal sums, with their slopes and the rounding they carry."""
 
-    def __init__(self, driven: Driven, kappa: ComplexArray) -> None:
+    def __init__(self, driven: Driven, kappa: ComplexArray, slack: float) -> None:
         piece = driven.piece
         free = piece.guard * kappa
         self.driven = driven
         self.size = np.abs(free)
         self.scale = self.size.sum(axis=1) + driven.guard_scale
-        self.floor = -tol.GUARD_ROUNDING * self.scale
+        self.floor = -tol.GUARD_ROUNDING * slack * self.scale
         guards, h = free.shape
         b = driven.guard.shape[1]
         self.value = np.empty((2 * guards, h + b), dtype=complex)
@@ -106,7 +109,7 @@ class _Sums:
     def first_look(self) -> int:
         """Return the first grid point that matters: modes without weight in any guard need not be resolved."""
         piece = self.driven.piece
-        weighty = (self.size > -self.floor[:, None]).any(axis=0)
+        weighty = (self.size > tol.GUARD_ROUNDING * self.scale[:, None]).any(axis=0)
         fastest = np.max(piece.speed[weighty], initial=piece.drive_speed)
         if fastest == 0.0:
             return len(piece.look) - 1

@@ -26,11 +26,14 @@ FloatArray = NDArray[np.float64]
 
 @dataclass(frozen=True, slots=True, eq=False)
 class IdealLimit:
-    """``short_ohm``, ``open_ohm`` of ideal elements; ``series_ohm`` (branches,) in loops; ``leaks`` (node, S)."""
+    """``short_ohm``, ``open_ohm`` of ideal elements; ``series_ohm`` (branches,) in loops;
+    ``middle_ohm`` the geometric mean of all impedances; ``leaks`` (node, S).
+    """
 
     short_ohm: float
     open_ohm: float
     series_ohm: FloatArray
+    middle_ohm: float
     leaks: tuple[tuple[int, float], ...]
 
     def winding_resistance(self, group: WindingGroup) -> FloatArray:
@@ -82,7 +85,9 @@ def ideal_limit_of(topology: Topology, time_scale_s: float, epsilon: float = tol
     low = float(np.exp(max(logs.min(), middle - reach)))
     high = float(np.exp(min(logs.max(), middle + reach)))
     short, leak = epsilon * low, epsilon / high
-    return IdealLimit(short, high / epsilon, _loop_resistance(topology, short), _cutset_leaks(topology, leak))
+    return IdealLimit(
+        short, high / epsilon, _loop_resistance(topology, short), float(np.exp(middle)), _cutset_leaks(topology, leak)
+    )
 
 
 def _loop_resistance(topology: Topology, short_ohm: float) -> FloatArray:
@@ -132,7 +137,15 @@ def _cutset_leaks(topology: Topology, leak_s: float) -> tuple[tuple[int, float],
     free = np.setdiff1d(np.arange(len(topology.nodes)), topology.parts.reference)
     carrying = np.isin(
         topology.kind,
-        [Kind.RESISTOR, Kind.CAPACITOR, Kind.VOLTAGE_SOURCE, Kind.SWITCH, Kind.DIODE, Kind.CONTROLLED_VOLTAGE],
+        [
+            Kind.RESISTOR,
+            Kind.CAPACITOR,
+            Kind.VOLTAGE_SOURCE,
+            Kind.SWITCH,
+            Kind.DIODE,
+            Kind.ARRESTER,
+            Kind.CONTROLLED_VOLTAGE,
+        ],
     )
     carrying &= ~((topology.kind == Kind.CAPACITOR) & (topology.value == 0.0))
     carrying |= (topology.kind == Kind.INDUCTOR) & (topology.value == 0.0)

@@ -107,7 +107,7 @@ def instant_of(tableau: Tableau, mode: Mode) -> Instant:
     """Solve the tableau for unit states and drives, or name what makes it singular."""
     M, N, F = tableau.with_modes(mode)
     factor = Equilibrated(M)
-    _refuse_singular(factor, tableau)
+    refuse_singular(factor, tableau)
     return Instant(factor.solve(N), factor.solve(F))
 
 
@@ -122,7 +122,7 @@ def modes_of(tableau: Tableau, mode: Mode, instant: Instant, rate_per_s: float, 
     A = P @ instant.SX
     lift = N @ P
     companion = Equilibrated(M - lift / rate_per_s)
-    _refuse_singular(companion, tableau)
+    refuse_singular(companion, tableau)
     SR, S0 = companion.solve(N) / rate_per_s, companion.solve(F)
     X = (P @ SR + np.eye(states)) / rate_per_s
     xs = P @ S0 / rate_per_s
@@ -222,7 +222,8 @@ def _forced(
     return exponent, np.array([q for _, q in where], dtype=np.int64), found
 
 
-def _refuse_singular(factor: Equilibrated, tableau: Tableau) -> None:
+def refuse_singular(factor: Equilibrated, tableau: Tableau) -> None:
+    """Raise InvalidNetwork naming what is undetermined when the equations have no unique solution."""
     if factor.rcond > tol.SINGULAR_TABLEAU:
         return
     names: list[str] = []

@@ -77,7 +77,7 @@ def periodic_response(
         )
     )
     evidence = evidence_of(prepared, energy, record, method, cycle.periods)
-    require_accuracy(evidence, energy, tolerance)
+    require_accuracy(evidence, energy.ledger, tolerance)
     readings = {piece.number: readings_of(prepared.tableau, piece.mode, observables) for piece in record.distinct()}
     figures = figures_of(record, readings, period_s, tol.HARMONICS, tol.SETTLE_SHARE * step_s)
     names = [element.name for element in network.elements]

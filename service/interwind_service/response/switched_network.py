@@ -89,13 +89,13 @@ class SwitchedNetwork:
         if record is not None:
             pairs = enumerate(zip(passage.mode, mode, strict=True))
             record.changes += [(start, device, new) for device, (old, new) in pairs if old != new]
-        now, fresh, events = start, -1, 0
+        now, fresh, events, ties, slack = start, -1, 0, 0, 1.0
         steady, kept = self.tableau.drives.steady, w.tobytes()
         while now < stop:
             bound = self.pieces.driven(mode, w, kept) if steady else self.pieces.piece(mode).driven(w)
             piece, modes = bound.piece, bound.piece.modes
             kappa = modes.left @ (x - bound.particular)
-            span, change = first_event(bound, kappa, stop - now, fresh)
+            span, change = first_event(bound, kappa, stop - now, fresh, slack)
             growth = piece.growth(span)
             homogeneous, forced = growth[: len(kappa)], growth[len(kappa) :]
             if record is not None:
@@ -112,6 +112,11 @@ class SwitchedNetwork:
                 fresh = change.device
                 mode = (*mode[:fresh], change.then, *mode[fresh + 1 :])
                 events += 1
+                ties = ties + 1 if span <= tol.TIE * stop else 0
+                if ties == 0:
+                    slack = 1.0
+                elif ties > tol.TIES_PER_DEVICE * len(mode):  # the same devices flip without end: let rounding be
+                    ties, slack = 1, slack * tol.TIE_SLACK
                 if record is not None:
                     record.changes.append((now, fresh, change.then))
                 if events > tol.EVENTS_PER_INTERVAL:

@@ -12,10 +12,14 @@ from interwind.errors import AccuracyNotReached
 from interwind.model.finding import Evidence, Finding, Severity
 from interwind.model.network import Network
 from interwind.model.observables import Observable
-from interwind.model.response import Event, Initial, TimeResponse
+from interwind.model.response import EnergyLedger, Event, Initial, TimeResponse
 from interwind_service import tolerances as tol
+from interwind_service.network.kind import Kind
+from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
+from interwind_service.response.device import is_smooth
 from interwind_service.response.energy import Energy, energy_of
+from interwind_service.response.nonlinear import NonlinearRun
 from interwind_service.response.observe import resolve
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readings import Readings, readings_of
@@ -54,6 +58,8 @@ def time_response_switching(
     time_s = step_s * np.arange(steps_of(stop_s, step_s) + 1)
     topology = admit(network)
     observables = resolve(topology, observe)
+    if any(is_smooth(topology, int(k)) for k in topology.of_kind(Kind.DIODE, Kind.ARRESTER)):
+        return _with_smooth_laws(topology, time_s, observables, initial, tolerance, sink, progress)
     prepared = switched_network(topology, float(time_s[-1]), step_s)
     x = start_state(prepared, initial)
     record = Trajectory()
@@ -63,7 +69,7 @@ def time_response_switching(
         prepared, energy, record, f"modal sums between events, ideal elements as {tol.IDEAL_EPSILON:g} Z"
     )
     readings = {piece.number: readings_of(prepared.tableau, piece.mode, observables) for piece in record.distinct()}
-    require_accuracy(evidence, energy, tolerance)
+    require_accuracy(evidence, energy.ledger, tolerance)
     samples = sample(record, readings, time_s, step_s)
     if sink is not None:
         sink(0, samples)
@@ -76,6 +82,37 @@ def time_response_switching(
         ledger=energy.ledger,
         findings=(*topology.findings, *undefined_findings(observables, readings)),
         evidence=evidence,
+    )
+
+
+def _with_smooth_laws(
+    topology: Topology,
+    time_s: FloatArray,
+    observables: tuple[Observable, ...],
+    initial: Initial,
+    tolerance: float,
+    sink: RowSink | None,
+    progress: Callable[[int, int], None] | None,
+) -> TimeResponse:
+    local = tol.STEP_SHARE * tolerance
+    for _ in range(tol.FINER_RUNS + 1):  # the ledger is the judge: finer steps while it does not close
+        run = NonlinearRun(topology, time_s, observables, initial, local, progress)
+        if run.evidence.energy_error <= tolerance and run.evidence.residual <= tolerance:
+            break
+        local *= tol.STEP_SHARE
+    require_accuracy(run.evidence, run.ledger, tolerance)
+    samples = run.samples
+    if sink is not None:
+        sink(0, samples)
+        samples, time_s = samples[:0], time_s[:0]
+    return TimeResponse(
+        observables,
+        samples,
+        time_s=time_s,
+        events=run.events,
+        ledger=run.ledger,
+        findings=(*topology.findings, *undefined_findings(observables, run.undefined)),
+        evidence=run.evidence,
     )
 
 
@@ -114,13 +151,13 @@ def evidence_of(
     )
 
 
-def require_accuracy(evidence: Evidence, energy: Energy, tolerance: float) -> None:
+def require_accuracy(evidence: Evidence, ledger: EnergyLedger, tolerance: float) -> None:
     """Refuse numbers whose energy ledger or equations miss the tolerance."""
     for name, value in (("energy_error", evidence.energy_error), ("residual", evidence.residual)):
         if not (math.isfinite(value) and value <= tolerance):
             raise AccuracyNotReached(
-                f"{name} is {value:.3g}; the tolerance is {tolerance:g}; {energy.ledger.numerical_j:.3g} J of "
-                f"{energy.ledger.supplied_j:.6g} J supplied are unaccounted for; check for loops without resistance, "
+                f"{name} is {value:.3g}; the tolerance is {tolerance:g}; {ledger.numerical_j:.3g} J of "
+                f"{ledger.supplied_j:.6g} J supplied are unaccounted for; check for loops without resistance, "
                 "or state a larger tolerance",
                 evidence=evidence,
             )

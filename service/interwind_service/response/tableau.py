@@ -18,7 +18,7 @@ from numpy.typing import NDArray
 
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
-from interwind_service.response.device import Device, device_of
+from interwind_service.response.device import Device, device_of, is_smooth
 from interwind_service.response.drives import Drives
 from interwind_service.response.ideal_limit import IdealLimit, winding_factor
 
@@ -178,6 +178,8 @@ def tableau_of(topology: Topology, drives: Drives, limit: IdealLimit) -> Tableau
         state += 1
     devices = []
     for branch in topology.of_kind(Kind.SWITCH, Kind.DIODE, Kind.SATURABLE):
+        if is_smooth(topology, int(branch)):
+            continue  # no modes: its row is filled in by the nonlinear solver
         own_state = -1
         if topology.kind[branch] == Kind.SATURABLE:
             own_state = state

@@ -1,0 +1,131 @@
+"""Laws of nonlinear branches: current and slope over one argument, a voltage or a flux linkage, for all branches at once.
+
+An exponential is continued by its tangent beyond e^60, where no current flows in any network; so an overlong trial step
+never overflows and no step need be limited for it.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.model import devices as dv
+from interwind_service import tolerances as tol
+from interwind_service.network.kind import Kind
+from interwind_service.network.topology import Topology
+from interwind_service.response.device import Device, LinearDiode, SaturableBranch
+
+FloatArray = NDArray[np.float64]
+IntArray = NDArray[np.int64]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Laws:
+    """``branch`` (q,); exponential, power and piecewise-linear branches by their positions among them.
+
+    ``leak_s`` lies across every exponential diode, as ideal blocking has everywhere: saturated, in series with an
+    inductor, its voltage would be fixed by nothing else.
+    """
+
+    branch: IntArray
+    exponential: IntArray
+    saturation_a: FloatArray
+    thermal_v: FloatArray
+    power: IntArray
+    reference_v: FloatArray
+    reference_a: FloatArray
+    exponent: FloatArray
+    broken: tuple[tuple[int, LinearDiode | SaturableBranch], ...]
+    leak_s: float
+
+    def currents(self, argument: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return currents and slopes di/d(argument), shapes of ``argument`` (..., q)."""
+        if len(self.exponential) == argument.shape[-1]:
+            return self._exponential(argument)
+        current, slope = np.empty_like(argument), np.empty_like(argument)
+        own = self.exponential
+        current[..., own], slope[..., own] = self._exponential(argument[..., own])
+        own = self.power
+        current[..., own], slope[..., own] = self._power(argument[..., own])
+        for position, device in self.broken:
+            current[..., position], slope[..., position] = _broken(device, argument[..., position])
+        return current, slope
+
+    def _exponential(self, v: FloatArray) -> tuple[FloatArray, FloatArray]:
+        u = v / self.thermal_v
+        clipped = np.minimum(u, tol.EXPONENT_CLIP)
+        grown = self.saturation_a * np.exp(clipped)
+        leak = self.leak_s * v
+        return grown * (1.0 + (u - clipped)) - self.saturation_a + leak, grown / self.thermal_v + self.leak_s
+
+    def _power(self, v: FloatArray) -> tuple[FloatArray, FloatArray]:
+        share = np.abs(v) / self.reference_v
+        inside = np.minimum(share, np.exp(tol.EXPONENT_CLIP / self.exponent))
+        rate = self.exponent * self.reference_a / self.reference_v * inside ** (self.exponent - 1.0)
+        at = self.reference_a * inside**self.exponent
+        return np.sign(v) * (at + rate * (share - inside) * self.reference_v), rate
+
+    def part(self, own: IntArray) -> Laws:
+        """Return the laws of some of the branches."""
+        place = {int(k): position for position, k in enumerate(own)}
+        exponential = np.isin(self.exponential, own)
+        power = np.isin(self.power, own)
+        return Laws(
+            self.branch[own],
+            np.array([place[int(k)] for k in self.exponential[exponential]], dtype=np.int64),
+            self.saturation_a[exponential],
+            self.thermal_v[exponential],
+            np.array([place[int(k)] for k in self.power[power]], dtype=np.int64),
+            self.reference_v[power],
+            self.reference_a[power],
+            self.exponent[power],
+            tuple((place[k], device) for k, device in self.broken if k in place),
+            self.leak_s,
+        )
+
+
+def _broken(device: LinearDiode | SaturableBranch, argument: FloatArray) -> tuple[FloatArray, FloatArray]:
+    if isinstance(device, LinearDiode):
+        on = argument > device.forward_v
+        slope = np.where(on, 1.0 / device.on_ohm, 1.0 / device.off_ohm)
+        return device.forward_v / device.off_ohm * on + slope * (argument - device.forward_v * on), slope
+    flux = np.abs(argument)
+    piece = np.clip(np.searchsorted(device.flux_wb, flux, side="right") - 1, 0, len(device.flux_wb) - 2)
+    slope = (np.diff(device.current_a) / np.diff(device.flux_wb))[piece]
+    return np.sign(argument) * (device.current_a[piece] + slope * (flux - device.flux_wb[piece])), slope
+
+
+def laws_of(topology: Topology, devices: tuple[Device, ...], leak_s: float) -> Laws:
+    """Return the laws of a network whose nonlinear branches are all solved for by their laws."""
+    branch, exponential, power, broken = [], [], [], []
+    parameters: dict[str, list[float]] = {"is": [], "vt": [], "vr": [], "ir": [], "ex": []}
+    by_branch = {device.branch: device for device in devices}
+    for k in topology.of_kind(Kind.DIODE, Kind.ARRESTER, Kind.SATURABLE).tolist():
+        element = topology.network.elements[topology.element[k]]
+        position = len(branch)
+        branch.append(k)
+        if isinstance(element, dv.Arrester):
+            power.append(position)
+            parameters["vr"].append(element.reference_voltage_v)
+            parameters["ir"].append(element.reference_current_a)
+            parameters["ex"].append(element.exponent)
+        elif isinstance(element, dv.Diode) and element.exponential:
+            exponential.append(position)
+            parameters["is"].append(float(element.saturation_current_a or 0.0))
+            parameters["vt"].append(float(element.thermal_voltage_v or 0.0))
+        else:
+            broken.append((position, by_branch[k]))
+    return Laws(
+        np.array(branch, dtype=np.int64),
+        np.array(exponential, dtype=np.int64),
+        np.array(parameters["is"]),
+        np.array(parameters["vt"]),
+        np.array(power, dtype=np.int64),
+        np.array(parameters["vr"]),
+        np.array(parameters["ir"]),
+        np.array(parameters["ex"]),
+        tuple(broken),
+        leak_s,
+    )

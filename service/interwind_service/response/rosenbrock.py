@@ -1,0 +1,138 @@
+"""RODAS4: an L-stable Rosenbrock method of order 4 with error control in energy units and dense output.
+
+    (M / (hγ) − J) u_i = f(t + c_i h, y + Σ a_ij u_j) + M Σ c_ij u_j / h + h d_i ∂f/∂t,      y₁ = y + Σ b_i u_i
+
+One factorization a step and no Newton iteration (Hairer & Wanner 1996, section IV.7). States are counted in the root of
+their energy, so one scale, the largest |x| so far, serves all of them.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind.errors import AccuracyNotReached
+from interwind_service import tolerances as tol
+from interwind_service.response.drives import Drives
+from interwind_service.response.nonlinear_field import Field
+from interwind_service.response.tableaux import C_TIME, D_TIME, GAMMA, A, C
+
+FloatArray = NDArray[np.float64]
+ComplexArray = NDArray[np.complex128]
+
+_LAST = len(C_TIME) - 1
+
+
+@dataclass(slots=True, eq=False)
+class Steps:
+    """Accepted steps: start, length, y at the start and the end (S, d), stages u (S, 6, d), drives at the start (S, k)."""
+
+    start_s: FloatArray
+    length_s: FloatArray
+    y0: FloatArray
+    y1: FloatArray
+    stages: FloatArray
+    w: ComplexArray
+
+
+@dataclass(slots=True, eq=False)
+class Effort:
+    """How hard it was: accepted and rejected steps, the largest |x| so far, and the next step to try, s."""
+
+    accepted: int = 0
+    rejected: int = 0
+    size: float = 0.0
+    step_s: float = 0.0
+
+
+def integrate(
+    field: Field,
+    drives: Drives,
+    y: FloatArray,
+    w: ComplexArray,
+    start_s: float,
+    stop_s: float,
+    tolerance: float,
+    effort: Effort,
+    sink: Callable[[Steps], None],
+) -> FloatArray:
+    """Integrate from ``start_s`` to ``stop_s`` and hand on the steps in blocks; return y at the stop.
+
+    Raises
+    ------
+    AccuracyNotReached : the step falls below the resolution of time.
+    """
+    states, mass = field.states, field.mass
+    now, h = start_s, min(effort.step_s, stop_s - start_s)
+    kept: list[tuple[float, float, FloatArray, FloatArray, FloatArray, ComplexArray]] = []
+    grown, previous_error, previous_h = False, tol.FIRST_ERROR, h
+    J, f_t, driven, W = None, None, field.drives(w), drives.W
+    diagonal = np.arange(len(y))
+    while now < stop_s:
+        last = now + h >= stop_s * (1.0 - tol.TIME_ROUNDING)
+        if last:
+            h = stop_s - now
+        if h <= tol.SMALLEST_STEP * max(abs(stop_s), abs(now)):
+            raise AccuracyNotReached(
+                f"at {now:.9g} s the step fell to {h:.3g} s; a law of the network is not smooth there; "
+                "give the device the capacitance or inductance it has"
+            )
+        if J is None:
+            J, f_t = field.jacobian(y, driven, field.drives(W @ w))
+        moved = drives.moved_to(w, C_TIME * h) if not drives.steady else np.broadcast_to(w, (len(C_TIME), len(w)))
+        along = field.drives(moved)
+        shifted = -J
+        shifted[diagonal, diagonal] += mass / (h * GAMMA)
+        inverse = np.linalg.inv(shifted)
+        stages = np.zeros((len(C_TIME), len(y)))
+        coupling = C / h
+        for i in range(len(C_TIME)):
+            before = stages[:i]
+            argument = y + A[i, :i] @ before
+            right = field.value(argument, along[i]) + mass * (coupling[i, :i] @ before)
+            if D_TIME[i]:
+                right += (h * D_TIME[i]) * f_t
+            stages[i] = inverse @ right
+        y1 = argument + stages[_LAST]
+        size = max(effort.size, float(np.linalg.norm(y1[:states])))
+        error = float(np.linalg.norm(stages[_LAST, :states])) / (tolerance * size) if size > 0.0 else 0.0
+        if not np.isfinite(error):
+            error = tol.OVERFLOWN_ERROR
+        factor = min(tol.STEP_SHRINK, max(tol.STEP_GROWTH, (error**0.25) / tol.STEP_SAFETY))
+        if error <= 1.0:
+            if effort.accepted and error > 0.0:  # predictive control (Gustafsson 1994)
+                predicted = (previous_h / h) * (error**2 / previous_error) ** 0.25 / tol.STEP_SAFETY
+                factor = max(factor, min(tol.STEP_SHRINK, max(tol.STEP_GROWTH, predicted)))
+            previous_error, previous_h = max(tol.FIRST_ERROR, error), h
+            if states < len(y):  # what the stages leave of the algebraic equations would be taken for an error next
+                y1 = field.consistent(y1, along[_LAST])
+            kept.append((now, h, y, y1, stages, w))
+            effort.accepted += 1
+            effort.size = size
+            now = stop_s if last else now + h
+            y, w = y1, moved[_LAST]
+            driven = along[_LAST]
+            J = None
+            if len(kept) == tol.STEPS_TOGETHER:
+                sink(_stack(kept))
+                kept = []
+            following = h / factor
+            if grown:
+                following = min(following, h)
+            if not last or following < effort.step_s:
+                effort.step_s = following
+            h, grown = following, False
+        else:
+            effort.rejected += 1
+            h, grown = h / factor, True
+    if kept:
+        sink(_stack(kept))
+    return y
+
+
+def _stack(kept: list[tuple[float, float, FloatArray, FloatArray, FloatArray, ComplexArray]]) -> Steps:
+    start, length, y0, y1, stages, w = zip(*kept, strict=True)
+    return Steps(np.array(start), np.array(length), np.array(y0), np.array(y1), np.array(stages), np.array(w))
