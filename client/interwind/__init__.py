@@ -79,6 +79,7 @@ from interwind.model.observables import (
     WindingVoltage,
 )
 from interwind.model.periodic import PeriodicResponse
+from interwind.model.poles import PoleReport
 from interwind.model.readings import (
     EffectiveLeakage,
     InverseInductance,
@@ -207,6 +208,7 @@ __all__ = [
     "PeriodicResponse",
     "PermissionDenied",
     "PiecewiseLinear",
+    "PoleReport",
     "Port",
     "PortResponse",
     "Ramp",

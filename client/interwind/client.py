@@ -26,6 +26,7 @@ from interwind.model.identification import Identification
 from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.periodic import PeriodicResponse
+from interwind.model.poles import PoleReport
 from interwind.model.readings import Reading
 from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import (
@@ -156,6 +157,19 @@ class Client:
         arguments = {"network": net, "frequency_hz": frequency_hz, "observe": observe}
         response: FrequencyResponse = self._call("frequency_response", arguments, timeout_s, progress)
         return response
+
+    def poles(
+        self,
+        net: Network,
+        observe: Sequence[Observable] | None = None,
+        around_hz: float | None = None,
+        *,
+        timeout_s: float = DEFAULT_TIMEOUT_S,
+    ) -> PoleReport:
+        """Return the natural modes: poles, quality factors, residues, zeros, and where the energy of each is."""
+        arguments = {"network": net, "observe": observe, "around_hz": around_hz}
+        report: PoleReport = self._call("poles", arguments, timeout_s)
+        return report
 
     def port_response(
         self,

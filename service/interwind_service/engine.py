@@ -17,8 +17,9 @@ from interwind.model.digest import request_digest
 from interwind.model.identification import Identification
 from interwind.model.network import Network
 from interwind.model.periodic import PeriodicResponse
+from interwind.model.poles import PoleReport
 from interwind.model.report import RepairMethod, RepairReport, ValidityReport
-from interwind.model.response import FrequencyResponse, MnaSystem, PortResponse, TimeResponse
+from interwind.model.response import AdaptiveSweep, FrequencyResponse, MnaSystem, PortResponse, TimeResponse
 from interwind.model.vary import SampleWindings
 from interwind.model.windings import WindingSet
 from interwind_service.tolerances import DEFAULT_TOLERANCE
@@ -100,9 +101,19 @@ def stamp(network: Network) -> MnaSystem:
 @_with_provenance
 def frequency_response(network: Network, frequency_hz: Any, observe: Any = None) -> FrequencyResponse:
     """Solve the network over frequency."""
-    from interwind_service.response import frequency
+    from interwind_service.response import adaptive, frequency
 
+    if isinstance(frequency_hz, AdaptiveSweep):
+        return adaptive.adaptive_response(network, frequency_hz, observe)
     return frequency.frequency_response(network, frequency_hz, observe)
+
+
+@_with_provenance
+def poles(network: Network, observe: Any = None, around_hz: float | None = None) -> PoleReport:
+    """Find the natural modes of the network."""
+    from interwind_service.response import poles as modes
+
+    return modes.poles(network, observe, around_hz)
 
 
 @_with_provenance

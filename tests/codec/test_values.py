@@ -115,6 +115,7 @@ REQUESTS = {
     },
     "stamp": {"network": NETWORK},
     "frequency_response": {"network": NETWORK, "frequency_hz": np.array([1.0, 2.0]), "observe": OBSERVE},
+    "poles": {"network": NETWORK, "observe": OBSERVE, "around_hz": 1e5},
     "port_response": {"network": NETWORK, "frequency_hz": np.array([1.0, 2.0])},
     "time_response": {
         "network": NETWORK, "stop_s": 1.0, "step_s": 0.1, "observe": OBSERVE,
@@ -162,7 +163,7 @@ def _answers():
     noticed = _noticed()
     yield "check", iw.ValidityReport(
         iw.Verdict.INVALID, ("a", "b"), vector, vector, vector, -1.0, (iw.Culprit(("a", "b"), 0.1, 0.2, 0.15),),
-        matrix, matrix, **noticed,
+        matrix, matrix, margin=0.1, impossible_subsets=(("a", "b"),), blame=vector, **noticed,
     )  # fmt: skip
     yield (
         "repair",
@@ -183,6 +184,13 @@ def _answers():
     )  # fmt: skip
     yield "stamp", iw.MnaSystem(matrix, matrix, matrix, OBSERVE[:2], ("v0", "v1"), **noticed)
     yield "frequency_response", iw.FrequencyResponse(OBSERVE[:2], matrix + 1j, frequency_hz=vector, **noticed)
+    pole = vector - 1.0 + 1j
+    yield (
+        "poles",
+        iw.PoleReport(
+            pole, vector, vector, OBSERVE[:2], matrix + 1j, (pole, pole[:0]), (("T", "a"), ("c", "")), matrix, **noticed
+        ),
+    )
     tensor = rng.normal(size=(2, 1, 1)) + 1j
     yield "port_response", iw.PortResponse(("in",), vector, tensor, tensor, tensor, **noticed)
     events = (iw.Event(1e-3, "s1", "open"),)

@@ -29,6 +29,7 @@ UNITLESS = {
     # Couplings, ratios, gains, scattering and exponents have none.
     "WindingSet": {"coupling_uncertainty"},
     "VaryCoupling": {"values"},
+    "VaryReadings": {"values"},
     "EquivalentCircuit": {"turns_ratio", "leakage_error"},
     "VoltageRatio": {"ratio", "uncertainty"},
     "RepairWindingsRequest": {"weights", "floor"},
@@ -40,7 +41,7 @@ UNITLESS = {
     "CurrentByCurrent": {"gain"},
     "Arrester": {"exponent"},
     "Culprit": {"low", "high", "suggested"},
-    "CheckWindingsResponse": {"eigenvalues", "feasible_low", "feasible_high"},
+    "CheckWindingsResponse": {"eigenvalues", "feasible_low", "feasible_high", "margin", "blame"},
     # The matrices of a stamped network mix units by row and column.
     "StampNetworkResponse": {"conductance_matrix", "storage_matrix", "input_matrix"},
     # These hold the unit of the field they vary, or of the points they list.
@@ -58,6 +59,7 @@ UNITLESS = {
     "PeriodicAnalysis": {"tolerance"},
     "ComputeTimeResponseRequest": {"tolerance"},
     "ComputePeriodicResponseRequest": {"tolerance"},
+    "ComputePolesResponse": {"quality_factor", "residue", "participation"},
     "Evidence": {"residual", "condition", "reciprocity_error", "passivity_margin", "energy_error"},
     # The message tells the unit.
     "Finding": {"measured", "limit"},

@@ -17,6 +17,7 @@ SAID = {
     "CharacterizeWindings": "Client.characterize",
     "StampNetwork": "Client.stamp",
     "ComputeFrequencyResponse": "Client.frequency_response",
+    "ComputePoles": "Client.poles",
     "ComputePortResponse": "Client.port_response",
     "ComputeTimeResponse": "Client.time_response",
     "ComputePeriodicResponse": "Client.periodic_response",

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
+from interwind.codec import poles
 from interwind.codec import response as responses
 from interwind.codec.array import array_from_message, array_to_message
 from interwind.codec.call import Arguments, Call, column_count, point_count, size_of_network
@@ -169,7 +170,32 @@ def _periodic_arguments(message: Any) -> dict[str, Any]:
     return arguments
 
 
+def _poles_request(arguments: Arguments) -> Any:
+    network = arguments["network"]
+    observe = observables_to_messages(arguments.get("observe"), "observe")
+    message = response_service_pb2.ComputePolesRequest(
+        size=response_pb2.Size(observable_count=len(observe), **size_of_network(network)),
+        network=network_to_message(network),
+        observe=observe,
+    )
+    if arguments.get("around_hz") is not None:
+        message.around_hz = float(arguments["around_hz"])
+    return message
+
+
+def _poles_arguments(message: Any) -> dict[str, Any]:
+    return _network_argument(message) | {
+        "observe": observables_from_messages(message.observe, "observe") or None,
+        "around_hz": message.around_hz if message.HasField("around_hz") else None,
+    }
+
+
 RESPONSE_CALLS = (
+    Call(
+        "/interwind.v1.ResponseService/ComputePoles", "poles",
+        response_service_pb2.ComputePolesRequest, response_service_pb2.ComputePolesResponse, False,
+        _poles_request, _poles_arguments, poles.poles_to_message, poles.poles_from_message,
+    ),
     Call(
         "/interwind.v1.NetworkService/StampNetwork", "stamp",
         network_service_pb2.StampNetworkRequest, network_service_pb2.StampNetworkResponse, False,

@@ -87,6 +87,9 @@ def verdict_to_message(report: ValidityReport) -> windings_service_pb2.CheckWind
         ],
         feasible_low=array_to_message(report.feasible_low),
         feasible_high=array_to_message(report.feasible_high),
+        margin=report.margin,
+        impossible_subsets=[windings_service_pb2.WindingGroup(labels=labels) for labels in report.impossible_subsets],
+        blame=array_to_message(report.blame),
         **noticed_to_messages(report),
     )
 
@@ -106,6 +109,9 @@ def verdict_from_message(message: windings_service_pb2.CheckWindingsResponse) ->
         ),
         feasible_low=frozen_from(message.feasible_low, "feasible_low"),
         feasible_high=frozen_from(message.feasible_high, "feasible_high"),
+        margin=message.margin,
+        impossible_subsets=tuple(tuple(group.labels) for group in message.impossible_subsets),
+        blame=frozen_from(message.blame, "blame"),
         **noticed_from_message(message),
     )
 

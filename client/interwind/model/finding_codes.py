@@ -227,6 +227,14 @@ _CHARACTER = {
 }
 
 _NETWORK = {
+    "MODES_WITHIN_BANDWIDTH": FindingCode(
+        "Two natural modes lie closer together than their own bandwidth, so one peak may show both.",
+        "Nothing; read their poles, residues and participation to tell them apart.",
+    ),
+    "ADAPTIVE_PEAK_ERROR": FindingCode(
+        "How far the highest peak error of an adaptive sweep is below its tolerance.",
+        "Nothing; ask for a smaller tolerance_db when peaks are wanted more exactly.",
+    ),
     "ISOLATED_PART": FindingCode(
         "A part of the network has no conducting path to the reference; its voltages count from a node of its own.",
         "Nothing, when the isolation is meant; name its zero in references to choose another node.",

@@ -23,36 +23,43 @@ _sym_db = _symbol_database.Default()
 
 
 from interwind.v1 import array_pb2 as interwind_dot_v1_dot_array__pb2
+from interwind.v1 import finding_pb2 as interwind_dot_v1_dot_finding__pb2
 from interwind.v1 import network_pb2 as interwind_dot_v1_dot_network__pb2
 from interwind.v1 import observable_pb2 as interwind_dot_v1_dot_observable__pb2
 from interwind.v1 import response_pb2 as interwind_dot_v1_dot_response__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n#interwind/v1/response_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/network.proto\x1a\x1dinterwind/v1/observable.proto\x1a\x1binterwind/v1/response.proto\"\x89\x02\n\x1f\x43omputeFrequencyResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12+\n\x0c\x66requency_hz\x18\x03 \x01(\x0b\x32\x13.interwind.v1.ArrayH\x00\x12\x35\n\x0e\x61\x64\x61ptive_sweep\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.AdaptiveSweepH\x00\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.ObservableB\r\n\x0b\x66requencies\"H\n\rAdaptiveSweep\x12\x10\n\x08start_hz\x18\x01 \x01(\x01\x12\x0f\n\x07stop_hz\x18\x02 \x01(\x01\x12\x14\n\x0ctolerance_db\x18\x03 \x01(\x01\"\xe0\x01\n ComputeFrequencyResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\x91\x01\n\x1a\x43omputePortResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12)\n\x0c\x66requency_hz\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\"\xdb\x01\n\x1b\x43omputePortResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\x87\x02\n\x1a\x43omputeTimeResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12\x0e\n\x06stop_s\x18\x03 \x01(\x01\x12\x0e\n\x06step_s\x18\x04 \x01(\x01\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.Observable\x12+\n\x07initial\x18\x06 \x03(\x0b\x32\x1a.interwind.v1.InitialValue\x12\x14\n\x0csteady_start\x18\x07 \x01(\x08\x12\x11\n\ttolerance\x18\x08 \x01(\x01\"\xdb\x01\n\x1b\x43omputeTimeResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\xca\x01\n\x1e\x43omputePeriodicResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12\x10\n\x08period_s\x18\x03 \x01(\x01\x12\x0e\n\x06step_s\x18\x04 \x01(\x01\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x11\n\ttolerance\x18\x06 \x01(\x01\"\xdf\x01\n\x1f\x43omputePeriodicResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part2\xe4\x03\n\x0fResponseService\x12{\n\x18\x43omputeFrequencyResponse\x12-.interwind.v1.ComputeFrequencyResponseRequest\x1a..interwind.v1.ComputeFrequencyResponseResponse0\x01\x12l\n\x13\x43omputePortResponse\x12(.interwind.v1.ComputePortResponseRequest\x1a).interwind.v1.ComputePortResponseResponse0\x01\x12l\n\x13\x43omputeTimeResponse\x12(.interwind.v1.ComputeTimeResponseRequest\x1a).interwind.v1.ComputeTimeResponseResponse0\x01\x12x\n\x17\x43omputePeriodicResponse\x12,.interwind.v1.ComputePeriodicResponseRequest\x1a-.interwind.v1.ComputePeriodicResponseResponse0\x01\x62\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n#interwind/v1/response_service.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/finding.proto\x1a\x1ainterwind/v1/network.proto\x1a\x1dinterwind/v1/observable.proto\x1a\x1binterwind/v1/response.proto\"\x89\x02\n\x1f\x43omputeFrequencyResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12+\n\x0c\x66requency_hz\x18\x03 \x01(\x0b\x32\x13.interwind.v1.ArrayH\x00\x12\x35\n\x0e\x61\x64\x61ptive_sweep\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.AdaptiveSweepH\x00\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.ObservableB\r\n\x0b\x66requencies\"H\n\rAdaptiveSweep\x12\x10\n\x08start_hz\x18\x01 \x01(\x01\x12\x0f\n\x07stop_hz\x18\x02 \x01(\x01\x12\x14\n\x0ctolerance_db\x18\x03 \x01(\x01\"\xe0\x01\n ComputeFrequencyResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\x91\x01\n\x1a\x43omputePortResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12)\n\x0c\x66requency_hz\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\"\xdb\x01\n\x1b\x43omputePortResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\x87\x02\n\x1a\x43omputeTimeResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12\x0e\n\x06stop_s\x18\x03 \x01(\x01\x12\x0e\n\x06step_s\x18\x04 \x01(\x01\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.Observable\x12+\n\x07initial\x18\x06 \x03(\x0b\x32\x1a.interwind.v1.InitialValue\x12\x14\n\x0csteady_start\x18\x07 \x01(\x08\x12\x11\n\ttolerance\x18\x08 \x01(\x01\"\xdb\x01\n\x1b\x43omputeTimeResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\xca\x01\n\x1e\x43omputePeriodicResponseRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12\x10\n\x08period_s\x18\x03 \x01(\x01\x12\x0e\n\x06step_s\x18\x04 \x01(\x01\x12)\n\x07observe\x18\x05 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x11\n\ttolerance\x18\x06 \x01(\x01\"\xdf\x01\n\x1f\x43omputePeriodicResponseResponse\x12*\n\x08progress\x18\x01 \x01(\x0b\x32\x16.interwind.v1.ProgressH\x00\x12,\n\x06header\x18\x02 \x01(\x0b\x32\x1a.interwind.v1.ResultHeaderH\x00\x12*\n\x05\x63hunk\x18\x03 \x01(\x0b\x32\x19.interwind.v1.ResultChunkH\x00\x12.\n\x07trailer\x18\x04 \x01(\x0b\x32\x1b.interwind.v1.ResultTrailerH\x00\x42\x06\n\x04part\"\xb0\x01\n\x13\x43omputePolesRequest\x12 \n\x04size\x18\x01 \x01(\x0b\x32\x12.interwind.v1.Size\x12&\n\x07network\x18\x02 \x01(\x0b\x32\x15.interwind.v1.Network\x12)\n\x07observe\x18\x03 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x16\n\taround_hz\x18\x04 \x01(\x01H\x00\x88\x01\x01\x42\x0c\n\n_around_hz\"\xec\x03\n\x14\x43omputePolesResponse\x12\'\n\npole_per_s\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array\x12)\n\x0c\x66requency_hz\x18\x02 \x01(\x0b\x32\x13.interwind.v1.Array\x12+\n\x0equality_factor\x18\x03 \x01(\x0b\x32\x13.interwind.v1.Array\x12-\n\x0bobservables\x18\x04 \x03(\x0b\x32\x18.interwind.v1.Observable\x12$\n\x07residue\x18\x05 \x01(\x0b\x32\x13.interwind.v1.Array\x12%\n\x05zeros\x18\x06 \x03(\x0b\x32\x16.interwind.v1.ZeroList\x12/\n\x0cparticipants\x18\x07 \x03(\x0b\x32\x19.interwind.v1.WindingName\x12*\n\rparticipation\x18\x08 \x01(\x0b\x32\x13.interwind.v1.Array\x12\'\n\x08\x66indings\x18\t \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\n \x03(\x0b\x32\x15.interwind.v1.Caution\x12(\n\x08\x65vidence\x18\x0b \x01(\x0b\x32\x16.interwind.v1.Evidence\"3\n\x08ZeroList\x12\'\n\nzero_per_s\x18\x01 \x01(\x0b\x32\x13.interwind.v1.Array2\xbb\x04\n\x0fResponseService\x12{\n\x18\x43omputeFrequencyResponse\x12-.interwind.v1.ComputeFrequencyResponseRequest\x1a..interwind.v1.ComputeFrequencyResponseResponse0\x01\x12U\n\x0c\x43omputePoles\x12!.interwind.v1.ComputePolesRequest\x1a\".interwind.v1.ComputePolesResponse\x12l\n\x13\x43omputePortResponse\x12(.interwind.v1.ComputePortResponseRequest\x1a).interwind.v1.ComputePortResponseResponse0\x01\x12l\n\x13\x43omputeTimeResponse\x12(.interwind.v1.ComputeTimeResponseRequest\x1a).interwind.v1.ComputeTimeResponseResponse0\x01\x12x\n\x17\x43omputePeriodicResponse\x12,.interwind.v1.ComputePeriodicResponseRequest\x1a-.interwind.v1.ComputePeriodicResponseResponse0\x01\x62\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
 _builder.BuildTopDescriptorsAndMessages(DESCRIPTOR, 'interwind.v1.response_service_pb2', _globals)
 if not _descriptor._USE_C_DESCRIPTORS:
   DESCRIPTOR._loaded_options = None
-  _globals['_COMPUTEFREQUENCYRESPONSEREQUEST']._serialized_start=168
-  _globals['_COMPUTEFREQUENCYRESPONSEREQUEST']._serialized_end=433
-  _globals['_ADAPTIVESWEEP']._serialized_start=435
-  _globals['_ADAPTIVESWEEP']._serialized_end=507
-  _globals['_COMPUTEFREQUENCYRESPONSERESPONSE']._serialized_start=510
-  _globals['_COMPUTEFREQUENCYRESPONSERESPONSE']._serialized_end=734
-  _globals['_COMPUTEPORTRESPONSEREQUEST']._serialized_start=737
-  _globals['_COMPUTEPORTRESPONSEREQUEST']._serialized_end=882
-  _globals['_COMPUTEPORTRESPONSERESPONSE']._serialized_start=885
-  _globals['_COMPUTEPORTRESPONSERESPONSE']._serialized_end=1104
-  _globals['_COMPUTETIMERESPONSEREQUEST']._serialized_start=1107
-  _globals['_COMPUTETIMERESPONSEREQUEST']._serialized_end=1370
-  _globals['_COMPUTETIMERESPONSERESPONSE']._serialized_start=1373
-  _globals['_COMPUTETIMERESPONSERESPONSE']._serialized_end=1592
-  _globals['_COMPUTEPERIODICRESPONSEREQUEST']._serialized_start=1595
-  _globals['_COMPUTEPERIODICRESPONSEREQUEST']._serialized_end=1797
-  _globals['_COMPUTEPERIODICRESPONSERESPONSE']._serialized_start=1800
-  _globals['_COMPUTEPERIODICRESPONSERESPONSE']._serialized_end=2023
-  _globals['_RESPONSESERVICE']._serialized_start=2026
-  _globals['_RESPONSESERVICE']._serialized_end=2510
+  _globals['_COMPUTEFREQUENCYRESPONSEREQUEST']._serialized_start=196
+  _globals['_COMPUTEFREQUENCYRESPONSEREQUEST']._serialized_end=461
+  _globals['_ADAPTIVESWEEP']._serialized_start=463
+  _globals['_ADAPTIVESWEEP']._serialized_end=535
+  _globals['_COMPUTEFREQUENCYRESPONSERESPONSE']._serialized_start=538
+  _globals['_COMPUTEFREQUENCYRESPONSERESPONSE']._serialized_end=762
+  _globals['_COMPUTEPORTRESPONSEREQUEST']._serialized_start=765
+  _globals['_COMPUTEPORTRESPONSEREQUEST']._serialized_end=910
+  _globals['_COMPUTEPORTRESPONSERESPONSE']._serialized_start=913
+  _globals['_COMPUTEPORTRESPONSERESPONSE']._serialized_end=1132
+  _globals['_COMPUTETIMERESPONSEREQUEST']._serialized_start=1135
+  _globals['_COMPUTETIMERESPONSEREQUEST']._serialized_end=1398
+  _globals['_COMPUTETIMERESPONSERESPONSE']._serialized_start=1401
+  _globals['_COMPUTETIMERESPONSERESPONSE']._serialized_end=1620
+  _globals['_COMPUTEPERIODICRESPONSEREQUEST']._serialized_start=1623
+  _globals['_COMPUTEPERIODICRESPONSEREQUEST']._serialized_end=1825
+  _globals['_COMPUTEPERIODICRESPONSERESPONSE']._serialized_start=1828
+  _globals['_COMPUTEPERIODICRESPONSERESPONSE']._serialized_end=2051
+  _globals['_COMPUTEPOLESREQUEST']._serialized_start=2054
+  _globals['_COMPUTEPOLESREQUEST']._serialized_end=2230
+  _globals['_COMPUTEPOLESRESPONSE']._serialized_start=2233
+  _globals['_COMPUTEPOLESRESPONSE']._serialized_end=2725
+  _globals['_ZEROLIST']._serialized_start=2727
+  _globals['_ZEROLIST']._serialized_end=2778
+  _globals['_RESPONSESERVICE']._serialized_start=2781
+  _globals['_RESPONSESERVICE']._serialized_end=3352
 # @@protoc_insertion_point(module_scope)

@@ -1,4 +1,5 @@
 from interwind.v1 import array_pb2 as _array_pb2
+from interwind.v1 import finding_pb2 as _finding_pb2
 from interwind.v1 import network_pb2 as _network_pb2
 from interwind.v1 import observable_pb2 as _observable_pb2
 from interwind.v1 import response_pb2 as _response_pb2
@@ -126,3 +127,47 @@ class ComputePeriodicResponseResponse(_message.Message):
     chunk: _response_pb2.ResultChunk
     trailer: _response_pb2.ResultTrailer
     def __init__(self, progress: _Optional[_Union[_response_pb2.Progress, _Mapping]] = ..., header: _Optional[_Union[_response_pb2.ResultHeader, _Mapping]] = ..., chunk: _Optional[_Union[_response_pb2.ResultChunk, _Mapping]] = ..., trailer: _Optional[_Union[_response_pb2.ResultTrailer, _Mapping]] = ...) -> None: ...
+
+class ComputePolesRequest(_message.Message):
+    __slots__ = ("size", "network", "observe", "around_hz")
+    SIZE_FIELD_NUMBER: _ClassVar[int]
+    NETWORK_FIELD_NUMBER: _ClassVar[int]
+    OBSERVE_FIELD_NUMBER: _ClassVar[int]
+    AROUND_HZ_FIELD_NUMBER: _ClassVar[int]
+    size: _response_pb2.Size
+    network: _network_pb2.Network
+    observe: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
+    around_hz: float
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., around_hz: _Optional[float] = ...) -> None: ...
+
+class ComputePolesResponse(_message.Message):
+    __slots__ = ("pole_per_s", "frequency_hz", "quality_factor", "observables", "residue", "zeros", "participants", "participation", "findings", "cautions", "evidence")
+    POLE_PER_S_FIELD_NUMBER: _ClassVar[int]
+    FREQUENCY_HZ_FIELD_NUMBER: _ClassVar[int]
+    QUALITY_FACTOR_FIELD_NUMBER: _ClassVar[int]
+    OBSERVABLES_FIELD_NUMBER: _ClassVar[int]
+    RESIDUE_FIELD_NUMBER: _ClassVar[int]
+    ZEROS_FIELD_NUMBER: _ClassVar[int]
+    PARTICIPANTS_FIELD_NUMBER: _ClassVar[int]
+    PARTICIPATION_FIELD_NUMBER: _ClassVar[int]
+    FINDINGS_FIELD_NUMBER: _ClassVar[int]
+    CAUTIONS_FIELD_NUMBER: _ClassVar[int]
+    EVIDENCE_FIELD_NUMBER: _ClassVar[int]
+    pole_per_s: _array_pb2.Array
+    frequency_hz: _array_pb2.Array
+    quality_factor: _array_pb2.Array
+    observables: _containers.RepeatedCompositeFieldContainer[_observable_pb2.Observable]
+    residue: _array_pb2.Array
+    zeros: _containers.RepeatedCompositeFieldContainer[ZeroList]
+    participants: _containers.RepeatedCompositeFieldContainer[_observable_pb2.WindingName]
+    participation: _array_pb2.Array
+    findings: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Finding]
+    cautions: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Caution]
+    evidence: _finding_pb2.Evidence
+    def __init__(self, pole_per_s: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., frequency_hz: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., quality_factor: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., observables: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., residue: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., zeros: _Optional[_Iterable[_Union[ZeroList, _Mapping]]] = ..., participants: _Optional[_Iterable[_Union[_observable_pb2.WindingName, _Mapping]]] = ..., participation: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., findings: _Optional[_Iterable[_Union[_finding_pb2.Finding, _Mapping]]] = ..., cautions: _Optional[_Iterable[_Union[_finding_pb2.Caution, _Mapping]]] = ..., evidence: _Optional[_Union[_finding_pb2.Evidence, _Mapping]] = ...) -> None: ...
+
+class ZeroList(_message.Message):
+    __slots__ = ("zero_per_s",)
+    ZERO_PER_S_FIELD_NUMBER: _ClassVar[int]
+    zero_per_s: _array_pb2.Array
+    def __init__(self, zero_per_s: _Optional[_Union[_array_pb2.Array, _Mapping]] = ...) -> None: ...

@@ -41,6 +41,11 @@ class ResponseServiceStub(object):
                 request_serializer=interwind_dot_v1_dot_response__service__pb2.ComputeFrequencyResponseRequest.SerializeToString,
                 response_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputeFrequencyResponseResponse.FromString,
                 _registered_method=True)
+        self.ComputePoles = channel.unary_unary(
+                '/interwind.v1.ResponseService/ComputePoles',
+                request_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePolesRequest.SerializeToString,
+                response_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputePolesResponse.FromString,
+                _registered_method=True)
         self.ComputePortResponse = channel.unary_stream(
                 '/interwind.v1.ResponseService/ComputePortResponse',
                 request_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePortResponseRequest.SerializeToString,
@@ -65,6 +70,13 @@ class ResponseServiceServicer(object):
 
     def ComputeFrequencyResponse(self, request, context):
         """Computes complex peak values over frequency.
+        """
+        context.set_code(grpc.StatusCode.UNIMPLEMENTED)
+        context.set_details('Method not implemented!')
+        raise NotImplementedError('Method not implemented!')
+
+    def ComputePoles(self, request, context):
+        """Finds poles, residues and zeros, and where the energy of each mode is.
         """
         context.set_code(grpc.StatusCode.UNIMPLEMENTED)
         context.set_details('Method not implemented!')
@@ -98,6 +110,11 @@ def add_ResponseServiceServicer_to_server(servicer, server):
                     servicer.ComputeFrequencyResponse,
                     request_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputeFrequencyResponseRequest.FromString,
                     response_serializer=interwind_dot_v1_dot_response__service__pb2.ComputeFrequencyResponseResponse.SerializeToString,
+            ),
+            'ComputePoles': grpc.unary_unary_rpc_method_handler(
+                    servicer.ComputePoles,
+                    request_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputePolesRequest.FromString,
+                    response_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePolesResponse.SerializeToString,
             ),
             'ComputePortResponse': grpc.unary_stream_rpc_method_handler(
                     servicer.ComputePortResponse,
@@ -144,6 +161,33 @@ class ResponseService(object):
             '/interwind.v1.ResponseService/ComputeFrequencyResponse',
             interwind_dot_v1_dot_response__service__pb2.ComputeFrequencyResponseRequest.SerializeToString,
             interwind_dot_v1_dot_response__service__pb2.ComputeFrequencyResponseResponse.FromString,
+            options,
+            channel_credentials,
+            insecure,
+            call_credentials,
+            compression,
+            wait_for_ready,
+            timeout,
+            metadata,
+            _registered_method=True)
+
+    @staticmethod
+    def ComputePoles(request,
+            target,
+            options=(),
+            channel_credentials=None,
+            call_credentials=None,
+            insecure=False,
+            compression=None,
+            wait_for_ready=None,
+            timeout=None,
+            metadata=None):
+        return grpc.experimental.unary_unary(
+            request,
+            target,
+            '/interwind.v1.ResponseService/ComputePoles',
+            interwind_dot_v1_dot_response__service__pb2.ComputePolesRequest.SerializeToString,
+            interwind_dot_v1_dot_response__service__pb2.ComputePolesResponse.FromString,
             options,
             channel_credentials,
             insecure,

@@ -41,7 +41,7 @@ class CheckWindingsRequest(_message.Message):
     def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., windings: _Optional[_Union[_windings_pb2.WindingSet, _Mapping]] = ...) -> None: ...
 
 class CheckWindingsResponse(_message.Message):
-    __slots__ = ("verdict", "labels", "eigenvalues", "eigenvalues_h", "witness_current_a", "witness_energy_j", "culprits", "feasible_low", "feasible_high", "findings", "cautions", "evidence")
+    __slots__ = ("verdict", "labels", "eigenvalues", "eigenvalues_h", "witness_current_a", "witness_energy_j", "culprits", "feasible_low", "feasible_high", "findings", "cautions", "evidence", "margin", "impossible_subsets", "blame")
     VERDICT_FIELD_NUMBER: _ClassVar[int]
     LABELS_FIELD_NUMBER: _ClassVar[int]
     EIGENVALUES_FIELD_NUMBER: _ClassVar[int]
@@ -54,6 +54,9 @@ class CheckWindingsResponse(_message.Message):
     FINDINGS_FIELD_NUMBER: _ClassVar[int]
     CAUTIONS_FIELD_NUMBER: _ClassVar[int]
     EVIDENCE_FIELD_NUMBER: _ClassVar[int]
+    MARGIN_FIELD_NUMBER: _ClassVar[int]
+    IMPOSSIBLE_SUBSETS_FIELD_NUMBER: _ClassVar[int]
+    BLAME_FIELD_NUMBER: _ClassVar[int]
     verdict: Verdict
     labels: _containers.RepeatedScalarFieldContainer[str]
     eigenvalues: _array_pb2.Array
@@ -66,7 +69,10 @@ class CheckWindingsResponse(_message.Message):
     findings: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Finding]
     cautions: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Caution]
     evidence: _finding_pb2.Evidence
-    def __init__(self, verdict: _Optional[_Union[Verdict, str]] = ..., labels: _Optional[_Iterable[str]] = ..., eigenvalues: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., eigenvalues_h: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., witness_current_a: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., witness_energy_j: _Optional[float] = ..., culprits: _Optional[_Iterable[_Union[Culprit, _Mapping]]] = ..., feasible_low: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., feasible_high: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., findings: _Optional[_Iterable[_Union[_finding_pb2.Finding, _Mapping]]] = ..., cautions: _Optional[_Iterable[_Union[_finding_pb2.Caution, _Mapping]]] = ..., evidence: _Optional[_Union[_finding_pb2.Evidence, _Mapping]] = ...) -> None: ...
+    margin: float
+    impossible_subsets: _containers.RepeatedCompositeFieldContainer[WindingGroup]
+    blame: _array_pb2.Array
+    def __init__(self, verdict: _Optional[_Union[Verdict, str]] = ..., labels: _Optional[_Iterable[str]] = ..., eigenvalues: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., eigenvalues_h: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., witness_current_a: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., witness_energy_j: _Optional[float] = ..., culprits: _Optional[_Iterable[_Union[Culprit, _Mapping]]] = ..., feasible_low: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., feasible_high: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., findings: _Optional[_Iterable[_Union[_finding_pb2.Finding, _Mapping]]] = ..., cautions: _Optional[_Iterable[_Union[_finding_pb2.Caution, _Mapping]]] = ..., evidence: _Optional[_Union[_finding_pb2.Evidence, _Mapping]] = ..., margin: _Optional[float] = ..., impossible_subsets: _Optional[_Iterable[_Union[WindingGroup, _Mapping]]] = ..., blame: _Optional[_Union[_array_pb2.Array, _Mapping]] = ...) -> None: ...
 
 class Culprit(_message.Message):
     __slots__ = ("first", "second", "low", "high", "suggested")
@@ -229,3 +235,9 @@ class CharacterizeWindingsResponse(_message.Message):
     cautions: _containers.RepeatedCompositeFieldContainer[_finding_pb2.Caution]
     evidence: _finding_pb2.Evidence
     def __init__(self, windings: _Optional[_Union[_windings_pb2.WindingSet, _Mapping]] = ..., leakage_h: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., leakage_uncertainty_h: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., all_shorted_leakage_h: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., all_shorted_leakage_uncertainty_h: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., inverse_inductance_per_h: _Optional[_Union[_array_pb2.Array, _Mapping]] = ..., modes: _Optional[_Union[_characterization_pb2.Modes, _Mapping]] = ..., equivalents: _Optional[_Iterable[_Union[_characterization_pb2.EquivalentCircuit, _Mapping]]] = ..., sharing: _Optional[_Iterable[_Union[_characterization_pb2.CurrentSharing, _Mapping]]] = ..., findings: _Optional[_Iterable[_Union[_finding_pb2.Finding, _Mapping]]] = ..., cautions: _Optional[_Iterable[_Union[_finding_pb2.Caution, _Mapping]]] = ..., evidence: _Optional[_Union[_finding_pb2.Evidence, _Mapping]] = ...) -> None: ...
+
+class WindingGroup(_message.Message):
+    __slots__ = ("labels",)
+    LABELS_FIELD_NUMBER: _ClassVar[int]
+    labels: _containers.RepeatedScalarFieldContainer[str]
+    def __init__(self, labels: _Optional[_Iterable[str]] = ...) -> None: ...
