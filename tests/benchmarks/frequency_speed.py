@@ -78,7 +78,7 @@ def main() -> None:
                 volts = [k for k, item in enumerate(asked) if isinstance(item, iw.NodeVoltage)]
                 gap = np.abs(mine - theirs)[:, volts].max() / np.abs(mine[:, volts]).max()
                 print(
-                    f"{name} {count}: {len(system.unknowns)} unknowns, plain {plain * share:.2f} s, whole call {own:.2f} s, "
+                    f"{name} {count}: {len(system.unknowns)} unknowns, plain {plain * share:.2f} s, whole {own:.2f} s, "
                     f"ratio {plain * share / own:.1f}, difference {gap:.1e}, {answer.evidence.method[:30]}",
                     flush=True,
                 )

@@ -84,6 +84,25 @@ def test_many(first):
         check(seed, "wide")
 
 
+@pytest.mark.parametrize("seed", range(5000, 5015))
+def test_stiff(seed):
+    """1 mHz to 10 GHz in one call, a reduction and all: 1e-9 at its ends and in its middle."""
+    network = random_network(seed, "wide")
+    topology = number(network)
+    f = np.geomspace(1e-3, 1e10, 60)
+    zeros = tuple(topology.nodes[k] for k in topology.parts.reference)
+    observe = [NodeVoltage(n) for n in network.nodes]
+    try:
+        answer = frequency_response(network, f, observe)
+    except InvalidNetwork:
+        assert Reference(network, float(f[7]), zeros).singular
+        return
+    for place in (0, 29, 59):
+        reference = Reference(network, float(f[place]), zeros)
+        v = np.array([reference.voltage(n) for n in network.nodes])
+        assert np.abs(answer.samples[place] - v).max() <= 1e-9 * np.abs(v).max()
+
+
 @pytest.mark.parametrize("leak", [1e-4, 1e-7, 1e-10, 1e-13])
 @pytest.mark.parametrize("frequency_hz", [1.0, 1e3, 1e6])
 def test_tight_coupling_keeps_its_leakage(leak, frequency_hz):

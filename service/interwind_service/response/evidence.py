@@ -43,6 +43,8 @@ def asymmetry(H: ComplexArray, voltage: NDArray[np.bool_]) -> FloatArray:
 
 def passivity(H: ComplexArray) -> FloatArray:
     """Return the smallest eigenvalue of (H + Hᴴ)/2 over max(‖H‖₂, 1), shape (f,)."""
+    if H.shape[1] == 1:
+        return H[:, 0, 0].real / np.maximum(np.abs(H[:, 0, 0]), 1.0)
     hermitian = 0.5 * (H + H.conj().transpose(0, 2, 1))
     return np.linalg.eigvalsh(hermitian)[:, 0] / np.maximum(np.linalg.norm(H, ord=2, axis=(1, 2)), 1.0)
 
