@@ -204,3 +204,14 @@ def test_full_spool_is_told_and_passes(order):
                         client.check(iw.WindingSet([f"w{k}" for k in range(1200)], np.eye(1200)))
         finally:
             subprocess.run(["umount", folder], check=True)
+
+
+def test_killed_forkserver_is_started_again(lone_service, order):
+    """Whatever is killed below the server, it serves again."""
+    workers = lone_service.workers()
+    for pid in set(lone_service.descendants()) - set(workers):
+        os.kill(pid, signal.SIGKILL)
+    with iw.connect(lone_service.address) as client:
+        wait_until(lambda: not any(alive(pid) for pid in workers), 5)
+        assert client.check(order("fine"), timeout_s=60).labels == ("fine",)
+        assert client.health()
