@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 
 from interwind.errors import InvalidRequest
+from interwind.model.finding import Verdict
 from interwind.model.readings import (
     EffectiveLeakage,
     InverseInductance,
@@ -22,6 +23,7 @@ from interwind.model.windings import WindingSet
 from interwind_service.windings.characterize import characterize
 from interwind_service.windings.identify import identify
 from interwind_service.windings.readings import predicted, stated_value
+from interwind_service.windings.verdict import check
 
 LABELS = ("a", "b", "c", "d")
 TURNS = np.array([30.0, 12.0, 5.0, 9.0])
@@ -113,6 +115,25 @@ def test_covariance_of_a_linear_case_in_closed_form():
     r = found.windings.inductance_h[0, 1] / found.windings.inductance_h[1, 1]
     c = np.array([1.0, -2.0 * r, r * r])
     np.testing.assert_allclose(found.leakage_uncertainty_h[0, 1], np.sqrt(c @ expected @ c), rtol=1e-9)
+
+
+def test_error_bars_survive_the_way_to_characterize():
+    """The identified set carries the deviations of its couplings: its leakage bars are near those of the fit.
+
+    A leakage and a self-inductance both read to 1 % make a coupling that knows neither apart: up to √3 wider bars
+    (derived). The verdict is sure, where entries taken as independent would leave it open.
+    """
+    L = tight_set()
+    found = identify(LABELS, [read(reading, L, relative=0.01) for reading in FORMS["open and short"]])
+    carried = characterize(found.windings).leakage_uncertainty_h
+
+    off = ~np.eye(4, dtype=bool)
+    ratio = carried[off] / found.leakage_uncertainty_h[off]
+    assert 0.99 < ratio.min()
+    assert ratio.max() < np.sqrt(3.0) * 1.01
+    assert check(found.windings).verdict is Verdict.VALID
+    entries = WindingSet(LABELS, L, inductance_uncertainty_h=found.windings.inductance_uncertainty_h)
+    assert check(entries).verdict is Verdict.UNDECIDED
 
 
 def test_polarity_travels_and_is_asked_for():

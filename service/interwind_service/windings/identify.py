@@ -59,10 +59,7 @@ def identify(labels: Sequence[str], readings: Sequence[Reading], aim: tuple[str,
             f"the fit did not come to rest, chi-square {fitted.chi_square:.3g}. "
             + (found.findings[0].message if found.findings else "Give readings nearer to each other, or more of them")
         )
-    deviation = np.zeros(L.shape)
-    deviation[np.triu_indices(len(names))] = np.sqrt(covariance.diagonal())
-    deviation = np.maximum(deviation, deviation.T)
-    coils = WindingSet(names, L, inductance_uncertainty_h=deviation)
+    coils = _with_deviations(names, L, covariance)
     leakage, leakage_deviation = _leakages(coils, covariance)
     following, said = _following(coils, covariance, leakage, leakage_deviation, found, aim)
     return Identification(
@@ -87,9 +84,35 @@ def _covariance(fitted: Fit) -> FloatArray:
     return half @ half.T
 
 
+def _with_deviations(labels: tuple[str, ...], L: FloatArray, covariance: FloatArray) -> WindingSet:
+    """The fitted set with one deviation of every entry, and of every coupling with its correlations taken into account.
+
+    dk_ij = dL_ij / sqrt(L_ii L_jj) − k_ij (dL_ii / L_ii + dL_jj / L_jj) / 2; in a tight set far below dL_ij alone.
+    """
+    root = np.sqrt(L.diagonal())
+    scale = np.outer(root, root)
+    k = L / scale
+    own = L.diagonal()
+    deviation_k = _of_pairs(covariance, -0.5 * k / own[:, None], 1.0 / scale, -0.5 * k / own[None, :])
+    deviation_h = np.zeros(L.shape)
+    deviation_h[np.triu_indices(len(L))] = np.sqrt(covariance.diagonal())
+    return WindingSet(
+        labels,
+        L,
+        coupling_uncertainty=deviation_k,
+        inductance_uncertainty_h=np.maximum(deviation_h, deviation_h.T),
+    )
+
+
 def _leakages(coils: WindingSet, covariance: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Pair leakages (n, n), H, and their deviations from the full covariance: dℓ = dL_ii − 2 r dL_ij + r² dL_jj."""
-    n, L = coils.size, coils.inductance_h
+    """Pair leakages (n, n), H, and their deviations: dℓ_ij = dL_ii − 2 r dL_ij + r² dL_jj, r = L_ij / L_jj."""
+    r = coils.inductance_h / coils.self_inductance_h
+    return pair_leakage(coils), _of_pairs(covariance, np.ones_like(r), -2.0 * r, r * r)
+
+
+def _of_pairs(covariance: FloatArray, first: FloatArray, mutual: FloatArray, second: FloatArray) -> FloatArray:
+    """Deviation (n, n) of a_ij dL_ii + b_ij dL_ij + c_ij dL_jj for every pair, from the full covariance."""
+    n = len(first)
     where = np.zeros((n, n), dtype=int)
     where[np.triu_indices(n)] = np.arange(len(covariance))
     where = np.maximum(where, where.T)
@@ -97,10 +120,10 @@ def _leakages(coils: WindingSet, covariance: FloatArray) -> tuple[FloatArray, Fl
     for i in range(n):
         for j in range(n):
             if i != j:
-                r = L[i, j] / L[j, j]
-                places, c = [where[i, i], where[i, j], where[j, j]], np.array([1.0, -2.0 * r, r * r])
+                places = [where[i, i], where[i, j], where[j, j]]
+                c = np.array([first[i, j], mutual[i, j], second[i, j]])
                 deviation[i, j] = np.sqrt(max(c @ covariance[np.ix_(places, places)] @ c, 0.0))
-    return pair_leakage(coils), deviation
+    return deviation
 
 
 def _following(
