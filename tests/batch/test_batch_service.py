@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import hashlib
 from collections.abc import Iterator
 
 import link
@@ -9,6 +10,8 @@ import numpy as np
 import pytest
 
 import interwind as iw
+from interwind.calling import Deadline
+from interwind.v1 import batch_service_pb2 as messages
 from interwind_service.testing import RunningService, wait_until
 
 COUNT = 60
@@ -191,3 +194,54 @@ def test_second_server_is_kept_out(tmp_path):
     with RunningService("--workers", "1", "--state-dir", str(tmp_path)):
         with pytest.raises(RuntimeError, match="in use by another server"):
             RunningService("--workers", "1", "--state-dir", str(tmp_path))
+
+
+def parts(solver, batch, **fields):
+    """The raw parts of a stream of rows."""
+    request = messages.StreamBatchResultsRequest(batch_id=batch.id, **fields)
+    path = "/interwind.v1.BatchService/StreamBatchResults"
+    return list(solver._caller.stream(path, request, messages.StreamBatchResultsResponse, Deadline(30.0)))
+
+
+def test_rows_are_streamed_from_any_row_on(solver):
+    """A stream begins with the chunk that holds the row asked for, and its bytes match the checksum it states."""
+    batch = solver.submit_batch(link.network(), iw.CheckAnalysis(), columns()[:1])
+    whole = batch.result()
+    for start in (0, 13, COUNT - 1):
+        header, head, *data = parts(solver, batch, start_row=start)
+        assert COUNT == header.header.variant_count
+        assert head.chunk.first_row <= start < head.chunk.first_row + head.chunk.row_count
+        own = b"".join(part.data.data for part in data if part.WhichOneof("part") == "data")[: head.chunk.size_bytes]
+        assert head.chunk.sha256 == hashlib.sha256(own).hexdigest()
+        values = np.frombuffer(own, "<f8").reshape(head.chunk.row_count, 2)
+        rows = slice(head.chunk.first_row, head.chunk.first_row + head.chunk.row_count)
+        assert np.array_equal(values, whole.table["eigenvalues"][rows])
+    (only,) = parts(solver, batch, start_row=COUNT)
+    assert "header" == only.WhichOneof("part")
+    with pytest.raises(iw.OutOfRange):
+        parts(solver, batch, start_row=COUNT + 1)
+
+
+def test_an_unfinished_batch_is_refused_unless_one_waits(solver):
+    """Without ``wait`` the rows of a batch that is not done are NotReady; the next move is named."""
+    vary = [iw.Vary("load", "resistance_ohm", np.linspace(5.0, 30.0, 400))]
+    batch = solver.submit_batch(link.network(), iw.TimeAnalysis(2e-2, 2e-7), vary)
+    with pytest.raises(iw.NotReady, match="set wait"):
+        parts(solver, batch)
+    batch.delete()
+
+
+def test_another_token_sees_no_batch(tmp_path):
+    """Batches belong to the token that submitted them."""
+    tokens = tmp_path / "tokens"
+    tokens.write_text("one-token-of-many\nanother-token\n")
+    tokens.chmod(0o600)
+    with RunningService("--workers", "1", "--token-file", str(tokens)) as server:
+        with iw.connect(server.address, token="one-token-of-many") as mine:
+            batch = mine.submit_batch(link.network(), iw.CheckAnalysis(), columns()[:1])
+            assert batch.result().ok.sum() == COUNT - 1
+            with iw.connect(server.address, token="another-token") as theirs:
+                assert [] == list(theirs.batches())
+                with pytest.raises(iw.NotFound):
+                    theirs.batch(batch.id).progress()
+            assert [batch.id] == [progress.batch_id for progress in mine.batches()]
