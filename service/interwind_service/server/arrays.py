@@ -81,6 +81,7 @@ class ArrayDoor:
             raise InvalidRequest.at(
                 "data", f"{upload.received_bytes + len(data)} bytes found, shape and dtype say {upload.size_bytes}"
             )
+        self._folder.make_room(len(data))
         while data:  # an unbuffered file may take less than all
             taken = upload.file.write(data)
             upload.hash.update(data[:taken])

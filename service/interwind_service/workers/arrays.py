@@ -5,11 +5,14 @@ from __future__ import annotations
 import os
 import tempfile
 import time
+from contextlib import suppress
 from pathlib import Path
 
 from interwind.codec.array import content_hash
-from interwind.errors import ArrayEvicted, Overloaded
+from interwind.errors import ArrayEvicted, InvalidRequest, Overloaded
 from interwind_service.tolerances import ARRAY_UPLOAD_IDLE_S, SPOOL_FULL_RETRY_S
+
+PART = "part-"  # how the file of an unfinished array begins
 
 
 class ArrayFolder:
@@ -46,38 +49,41 @@ class ArrayFolder:
         name = content_hash(data)
         if self.path(name) is None:
             handle, part = self.begin(len(data))
+            self.make_room(len(data))
             with os.fdopen(handle, "wb") as file:
                 file.write(data)
             part.replace(self.folder / name)
         return name
 
     def begin(self, size_bytes: int) -> tuple[int, Path]:
-        """Make room for ``size_bytes`` and open a file to be renamed once it is whole."""
-        self._make_room(size_bytes)
-        handle, part = tempfile.mkstemp(prefix="part-", dir=self.folder)
-        return handle, Path(part)
-
-    def _make_room(self, size_bytes: int) -> None:
+        """Open a file for an array of ``size_bytes``, to be renamed to its hash once it is whole."""
         if size_bytes > self.budget_bytes:
-            raise Overloaded(
-                f"an array of {size_bytes} bytes found, the store holds {self.budget_bytes}; ask for less",
+            raise InvalidRequest.at(
+                "shape",
+                f"an array of {size_bytes} bytes found, the store holds {self.budget_bytes}; split it",
                 reason="ARRAY_TOO_LARGE",
             )
+        handle, part = tempfile.mkstemp(prefix=PART, dir=self.folder)
+        return handle, Path(part)
+
+    def make_room(self, size_bytes: int) -> None:
+        """Let the least recently used arrays go until ``size_bytes`` more fit the budget."""
         held = []
         for entry in os.scandir(self.folder):
-            try:
+            with suppress(FileNotFoundError):
                 status = entry.stat()
-            except FileNotFoundError:
-                continue
-            held.append((status.st_mtime, status.st_size, entry))
+                held.append((status.st_mtime, status.st_size, entry))
         total = size_bytes + sum(size for _, size, _ in held)
         fresh = time.time() - ARRAY_UPLOAD_IDLE_S
         for used, size, entry in sorted(held, key=lambda item: item[0]):
             if total <= self.budget_bytes:
                 return
-            if entry.name.startswith("part-") and used > fresh:
-                continue
-            Path(entry.path).unlink(missing_ok=True)
-            total -= size
+            if not entry.name.startswith(PART) or used < fresh:
+                Path(entry.path).unlink(missing_ok=True)
+                total -= size
         if total > self.budget_bytes:
-            raise Overloaded("the array store is full of unfinished uploads", retry_after_s=SPOOL_FULL_RETRY_S)
+            raise Overloaded(
+                "the array store is full of unfinished uploads; try again",
+                reason="ARRAYS_FULL",
+                retry_after_s=SPOOL_FULL_RETRY_S,
+            )
