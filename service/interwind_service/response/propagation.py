@@ -75,6 +75,7 @@ class Propagation:
         self.generator, self.readout, self.step_s, self.steps = generator, readout, step_s, steps
         self.first, self.last = first, first + steps
         self.n, self.size, self.jump = len(start), len(flow.M), flow.jump.T
+        self.jumps = bool(np.any(flow.jump))
         self._x = start.astype(np.float64)
         self.events = EventSteps.of(generator.events, step_s)
         width = max(1, len(readout)) * self.size
@@ -174,17 +175,24 @@ class _Walk:
         self.pieces = _Pieces(run, run.events.inside_step[low:high], run.events.inside_time[low:high])
         kinked = np.searchsorted(eventful, self.pieces.steps)
         self.kinked = local[kinked], row[kinked]
-        order = np.argsort(local, kind="stable")
+        order = np.argsort(local.astype(np.int16), kind="stable")
         self.row, self.kick = row[order], self._kicks(eventful, kinked)[order]
         self.bounds = np.searchsorted(local[order], np.arange(run.block + 1))
 
     def _kicks(self, eventful: IntArray, kinked: IntArray) -> FloatArray:
         run, n = self.run, self.run.n
-        before = run.generator.state(eventful * run.step_s)
-        kick = np.empty((len(eventful), run.size))
-        kick[:, n:] = run.generator.state((eventful + 1) * run.step_s) - before @ run.move[n:, n:]
-        kick[:, :n] = kick[:, n:] @ run.jump
-        kick[kinked, :n] = self.pieces.forced() - before[kinked] @ run.move[n:, :n]
+        if len(eventful) and eventful[-1] - eventful[0] + 1 == len(eventful):
+            xi = run.generator.state(np.arange(eventful[0], eventful[-1] + 2) * run.step_s)
+            before, after = xi[:-1], xi[1:]
+        else:
+            before = run.generator.state(eventful * run.step_s)
+            after = run.generator.state((eventful + 1) * run.step_s)
+        kick = np.zeros((len(eventful), run.size))
+        kick[:, n:] = after - before @ run.move[n:, n:]
+        if run.jumps:
+            kick[:, :n] = kick[:, n:] @ run.jump
+        if len(kinked):
+            kick[kinked, :n] = self.pieces.forced() - before[kinked] @ run.move[n:, :n]
         return kick
 
     def go(self, y: FloatArray) -> FloatArray:
@@ -203,12 +211,14 @@ class _Walk:
 
     def gather(self, states: FloatArray) -> None:
         """Add the Gramian of the steps walked."""
-        run = self.run
-        whole = np.ones(states.shape[:2], dtype=bool)
+        run, walked = self.run, states[:-1]
+        if not len(self.pieces.steps) and self.last_steps == run.block:
+            run.gram.add(run.step_level, walked.reshape(-1, run.size))
+            return
+        whole = np.ones(walked.shape[:2], dtype=bool)
         whole[self.kinked] = False
         whole[self.last_steps :, -1] = False
-        walked = states[:-1]
-        run.gram.add(run.step_level, walked[whole[:-1]])
+        run.gram.add(run.step_level, walked[whole])
         if len(self.pieces.steps):
             self.pieces.gather(states[self.kinked][:, : run.n])
 
