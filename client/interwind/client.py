@@ -117,10 +117,20 @@ class Client:
         return report
 
     def identify(
-        self, labels: Sequence[str], readings: Sequence[Reading], *, timeout_s: float = DEFAULT_TIMEOUT_S
+        self,
+        labels: Sequence[str],
+        readings: Sequence[Reading],
+        aim: tuple[str, str] | None = None,
+        *,
+        timeout_s: float = DEFAULT_TIMEOUT_S,
     ) -> Identification:
-        """Find the set that explains the readings best, and how well each entry is known."""
-        answer: Identification = self._call("identify", {"labels": labels, "readings": readings}, timeout_s)
+        """Find the set that explains the readings best, how well each entry is known, and what to read next.
+
+        ``aim``: the pair whose leakage the next reading is to sharpen, its driven winding first; None = the one known
+        worst.
+        """
+        arguments = {"labels": labels, "readings": readings, "aim": aim}
+        answer: Identification = self._call("identify", arguments, timeout_s)
         return answer
 
     def characterize(

@@ -75,11 +75,11 @@ def repair(
 
 
 @_with_provenance
-def identify(labels: Any, readings: Any) -> Identification:
+def identify(labels: Any, readings: Any, aim: Any = None) -> Identification:
     """Find the set that fits the readings."""
     from interwind_service.windings import identify as desk
 
-    return desk.identify(labels, readings)
+    return desk.identify(labels, readings, aim)
 
 
 @_with_provenance

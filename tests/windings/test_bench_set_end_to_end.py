@@ -74,6 +74,15 @@ def test_context_and_connections_travel(solver):
     assert sharing.windings == ("s", "c")
 
 
+def test_the_next_reading_follows_the_leakage_asked_for(solver):
+    """Asked for 1-4 the answer shorts 1 and 4, asked for 2-5 it shorts 2 and 5."""
+    readings = [OpenInductance(label, own, 1e-3 * own) for label, own in zip(LABELS, TRUE_OWN_H, strict=True)]
+    readings += [ShortedInductance(p[0], (p[1],), 1e-6 * uh, 5e-8 * uh) for p, uh in SHORT_UH.items()]
+    for aim in (("1", "4"), ("2", "5")):
+        following = solver.identify(LABELS, readings, aim).next_reading
+        assert {following.winding, *following.shorted} == set(aim)
+
+
 def test_errors_come_back_as_they_were(solver, bench):
     """The same classes, reasons and field paths on this side of the wire."""
     with pytest.raises(iw.InvalidRequest) as caught:

@@ -75,6 +75,9 @@ def _identify_request(arguments: Arguments) -> Any:
     for position, reading in enumerate(arguments["readings"]):
         with field_path(f"readings[{position}]"):
             message.readings.append(reading_to_message(reading))
+    if arguments.get("aim") is not None:
+        with field_path("aim"):
+            message.aim.extend(_pair(arguments["aim"]))
     return message
 
 
@@ -83,7 +86,8 @@ def _identify_arguments(message: Any) -> dict[str, Any]:
     for position, reading in enumerate(message.readings):
         with field_path(f"readings[{position}]"):
             readings.append(reading_from_message(reading))
-    return {"labels": labels_of(tuple(message.labels), "labels"), "readings": tuple(readings)}
+    aim = tuple(message.aim) or None
+    return {"labels": labels_of(tuple(message.labels), "labels"), "readings": tuple(readings), "aim": aim}
 
 
 def _characterize_request(arguments: Arguments) -> Any:

@@ -25,7 +25,8 @@ class Identification(JsonForm):
     """The answer of `identify`, by weighted least squares over all sets that can exist.
 
     ``windings`` carries one deviation of each entry and of each coupling, which know nothing of each other: bars of
-    leakages are best read here. ``covariance_h2`` (m, m), H², m = n (n + 1) / 2: of the upper triangle of L, row by row;
+    leakages are best read here. ``covariance_h2`` (m, m), H², m = n (n + 1) / 2: of the upper triangle of L, row by
+    row;
     ``chi_square`` = Σ ((reading − fitted) / uncertainty)²; ``degrees_of_freedom`` = readings − m;
     ``residuals`` (readings,): each (reading − fitted) over the standard deviation of that difference, NaN where the
     reading alone decides its own value; ``outliers`` worst first;

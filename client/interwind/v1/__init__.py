@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "d90a26acb198c67f157c219e81667b52b2943acbc66bd9cbf3148cac63622e2a"
+SOURCE_SHA256 = "744222aa0892e7e96004be338f9c51d0bd44278fc93f2ff92721a2f117c99781"

@@ -149,14 +149,16 @@ class CouplingChange(_message.Message):
     def __init__(self, pair: _Optional[_Union[WindingPair, _Mapping]] = ..., before: _Optional[float] = ..., after: _Optional[float] = ..., change_in_uncertainties: _Optional[float] = ...) -> None: ...
 
 class IdentifyWindingsRequest(_message.Message):
-    __slots__ = ("size", "labels", "readings")
+    __slots__ = ("size", "labels", "readings", "aim")
     SIZE_FIELD_NUMBER: _ClassVar[int]
     LABELS_FIELD_NUMBER: _ClassVar[int]
     READINGS_FIELD_NUMBER: _ClassVar[int]
+    AIM_FIELD_NUMBER: _ClassVar[int]
     size: _response_pb2.Size
     labels: _containers.RepeatedScalarFieldContainer[str]
     readings: _containers.RepeatedCompositeFieldContainer[_reading_pb2.Reading]
-    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., labels: _Optional[_Iterable[str]] = ..., readings: _Optional[_Iterable[_Union[_reading_pb2.Reading, _Mapping]]] = ...) -> None: ...
+    aim: _containers.RepeatedScalarFieldContainer[str]
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., labels: _Optional[_Iterable[str]] = ..., readings: _Optional[_Iterable[_Union[_reading_pb2.Reading, _Mapping]]] = ..., aim: _Optional[_Iterable[str]] = ...) -> None: ...
 
 class IdentifyWindingsResponse(_message.Message):
     __slots__ = ("windings", "covariance_h2", "chi_square", "degree_of_freedom_count", "residuals", "outliers", "next_reading", "leakage_h", "leakage_uncertainty_h", "findings", "cautions", "evidence")
