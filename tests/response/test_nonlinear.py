@@ -42,7 +42,7 @@ def clipped_tank(thermal_v: float | None) -> iw.Network:
 
 
 def test_order_four():
-    """The error falls with the fourth power of the step: at a local tolerance τ the step goes as τ^¼ and the error as τ."""
+    """The error falls with the fourth power of the step."""
     topology, time_s = number(clipped_tank(0.05)), np.linspace(0.0, 10e-6, 5)
     observed = [iw.ElementVoltage("C"), iw.ElementCurrent("L")]
     exact = NonlinearRun(topology, time_s, observed, None, 1e-12).samples

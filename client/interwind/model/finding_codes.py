@@ -253,4 +253,27 @@ _NETWORK = {
     ),
 }
 
-FINDING_CODES = MappingProxyType({**_WINDINGS, **_REPAIR, **_READINGS, **_CHARACTER, **_NETWORK})
+_PERIODIC = {
+    "OFFSET_UNDETERMINED": FindingCode(
+        "A lossless loop keeps any constant current or voltage, so nothing decides the offset; none is shown.",
+        "Give the loop the resistance it has.",
+    ),
+    "UNSTABLE_PERIODIC_STATE": FindingCode(
+        "A Floquet multiplier exceeds 1: the state repeats, but the smallest disturbance leads away from it.",
+        "Run the network in time to see where it goes, and close the loop that is missing, such as a control.",
+    ),
+    "NEARLY_UNDAMPED": FindingCode(
+        "A disturbance decays by less than a ten-thousandth in a period.",
+        "Nothing, when such a slow decay is meant; else give the network the losses it has.",
+    ),
+    "NEAR_PERIOD_DOUBLING": FindingCode(
+        "A real Floquet multiplier is close to -1, where the state begins to repeat only after two periods.",
+        "Vary the drive a little and see whether the state still repeats every period.",
+    ),
+    "SEVERAL_PERIODIC_STATES": FindingCode(
+        "Another start of the search led to a different periodic state.",
+        "Run the network in time from the start that is meant; the state shown is the one reached from rest.",
+    ),
+}
+
+FINDING_CODES = MappingProxyType({**_WINDINGS, **_REPAIR, **_READINGS, **_CHARACTER, **_NETWORK, **_PERIODIC})

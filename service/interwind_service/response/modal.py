@@ -48,12 +48,12 @@ class Modes:
     @property
     def state_signal(self) -> ComplexArray:
         """Rows of ``signal`` that are states."""
-        return self.signal[-self.left.shape[1] :]
+        return self.signal[len(self.signal) - self.left.shape[1] :]
 
     @property
     def state_forced(self) -> ComplexArray:
         """Rows of ``forced`` that are states."""
-        return self.forced[-self.left.shape[1] :]
+        return self.forced[len(self.forced) - self.left.shape[1] :]
 
     def amplitudes(self, x: FloatArray, w: ComplexArray) -> ComplexArray:
         """Return κ of a start from x with the drives at w, shape (h,)."""
@@ -80,6 +80,8 @@ class Equilibrated:
 
     def solve(self, rhs: FloatArray | ComplexArray) -> FloatArray | ComplexArray:
         """Solve for all columns of ``rhs``."""
+        if rhs.shape[1] == 0:
+            return rhs
         if np.iscomplexobj(rhs):
             return self.solve(rhs.real) + 1j * self.solve(rhs.imag)
         first = self._once(rhs)
@@ -152,7 +154,11 @@ def modes_of(tableau: Tableau, mode: Mode, instant: Instant, rate_per_s: float, 
             forced[:, _basis(exponent, power, s, order), source] += direct[:, channel]
     half = eigenvalue.imag >= 0.0
     weight = np.where(eigenvalue[half].imag > 0.0, 2.0, 1.0)
-    particular = forced[-states:, power == 0].sum(axis=1) if states else np.zeros((0, len(tableau.drives.exponent)))
+    particular = (
+        forced[len(forced) - states :, power == 0].sum(axis=1)
+        if states
+        else np.zeros((0, len(tableau.drives.exponent)))
+    )
     return Modes(
         eigenvalue[half], weight[:, None] * left[half], signal[:, half], exponent, power, forced, particular, condition
     )

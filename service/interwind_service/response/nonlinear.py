@@ -31,7 +31,7 @@ ComplexArray = NDArray[np.complex128]
 
 
 class NonlinearRun:
-    """One run over [0, stop] at a local tolerance: samples, events, ledger and effort, gathered as the steps are made."""
+    """One run over [0, stop] at a local tolerance: samples, events, ledger and effort, gathered step by step."""
 
     def __init__(
         self,

@@ -1,4 +1,4 @@
-"""Laws of nonlinear branches: current and slope over one argument, a voltage or a flux linkage, for all branches at once.
+"""Laws of nonlinear branches: current and slope over one argument, a voltage or a flux linkage.
 
 An exponential is continued by its tangent beyond e^60, where no current flows in any network; so an overlong trial step
 never overflows and no step need be limited for it.

@@ -10,6 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
+from interwind_service.response.faults import shorted_sources, stranded_sources
 from interwind_service.response.modal import Instant, Modes, instant_of, modes_of
 from interwind_service.response.tableau import Mode, Tableau
 
@@ -91,6 +92,8 @@ class Piece:
     powers: FloatArray | None
     weights: FloatArray
     jump: NDArray[np.bool_]
+    shorted: tuple[int, ...]
+    stranded: tuple[int, ...]
 
     def growth(self, time_s: float) -> ComplexArray:
         """Return e^{λt} and t^q e^{st} / q! at one instant, shape (h + b,)."""
@@ -239,6 +242,8 @@ class Pieces:
             self.count, mode, modes, at.rows, guard, forced, look_out(modes, self.span_s), np.empty((0, 0)), rise,
             np.abs(modes.eigenvalue), float(np.abs(modes.exponent).max(initial=0.0)), rates,
             order, order.astype(float) if order.any() else None, weights, _jump_modes(self.tableau, mode, modes),
+            shorted_sources(self.tableau, mode),
+            stranded_sources(self.tableau, mode),
         )  # fmt: skip
         basis = bare.basis(bare.look)
         found = replace(bare, table=np.ascontiguousarray(np.hstack([basis.real, -basis.imag])))

@@ -28,7 +28,7 @@ _LAST = len(C_TIME) - 1
 
 @dataclass(slots=True, eq=False)
 class Steps:
-    """Accepted steps: start, length, y at the start and the end (S, d), stages u (S, 6, d), drives at the start (S, k)."""
+    """Accepted steps: start, length, y at start and end (S, d), stages u (S, 6, d), drives at the start (S, k)."""
 
     start_s: FloatArray
     length_s: FloatArray

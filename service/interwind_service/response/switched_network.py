@@ -15,8 +15,9 @@ from interwind_service.response.complementarity import consistent_modes
 from interwind_service.response.device import SaturableBranch, TimedSwitch
 from interwind_service.response.drives import breakpoints, closed_at, drives_of
 from interwind_service.response.events import first_event
+from interwind_service.response.faults import refuse_short, refuse_stranded
 from interwind_service.response.ideal_limit import ideal_limit_of
-from interwind_service.response.piece import Pieces
+from interwind_service.response.piece import Piece, Pieces
 from interwind_service.response.tableau import Mode, Tableau, tableau_of
 from interwind_service.response.trajectory import Trajectory
 
@@ -96,6 +97,8 @@ class SwitchedNetwork:
             piece, modes = bound.piece, bound.piece.modes
             kappa = modes.left @ (x - bound.particular)
             span, change = first_event(bound, kappa, stop - now, fresh, slack)
+            if (piece.shorted or piece.stranded) and span > tol.FAULT_SPAN * (stop - start):
+                self._require_possible(piece, self.tableau.drives.moved(w, 0.5 * span), now)
             growth = piece.growth(span)
             homogeneous, forced = growth[: len(kappa)], growth[len(kappa) :]
             if record is not None:
@@ -123,6 +126,15 @@ class SwitchedNetwork:
                     self._chattering(record, start, stop)
             passage.peak_j = max(passage.peak_j, 0.5 * float(x @ x))
         passage.x, passage.mode, passage.jacobian = x, mode, phi
+
+    def _require_possible(self, piece: Piece, w: ComplexArray, time_s: float) -> None:
+        """Refuse a source that is not zero while ideal devices short it or leave it no path."""
+        position = self.tableau.topology.input_branch.tolist()
+        drive = (self.tableau.drives.U @ w).real
+        for branches, refuse in ((piece.shorted, refuse_short), (piece.stranded, refuse_stranded)):
+            for branch in branches:
+                if drive[position.index(branch)] != 0.0:
+                    refuse(self.tableau, piece.mode, branch, time_s)
 
     def _chattering(self, record: Trajectory | None, start: float, stop: float) -> None:
         last = record.changes[-tol.CHATTER_WINDOW :] if record is not None else []
