@@ -58,18 +58,26 @@ def test_random_deaths_lose_and_double_nothing(tmp_path, deaths):
         undisturbed = submit(client, "peace").result()
     assert VARIANTS - 1 == undisturbed.ok.sum()
     dice = random.Random(deaths)
-    died, number, children = 0, 0, []
+    died, number, children, early = 0, 0, [], 0
     while died < deaths:
         number += 1
         done = False
         while not done:
             with serve(tmp_path / "state") as server:
-                killer = threading.Timer(dice.uniform(0.0, 1.5), server.process.send_signal, [signal.SIGKILL])
-                if died < deaths:
+                killer = threading.Timer(dice.uniform(0.0, 2.0), server.process.send_signal, [signal.SIGKILL])
+                in_submission = dice.random() < 0.2
+                target = dice.randrange(VARIANTS)  # otherwise it dies once so many rows are there
+                if in_submission and died < deaths:
                     killer.start()
                 with iw.connect(server.address, retries=0) as client, contextlib.suppress(iw.Unavailable):
                     batch = submit(client, f"batch {number}")
                     children += descendants_of(server.pid)
+                    for progress in batch.watch():
+                        if died < deaths and not in_submission and target <= progress.done_count < VARIANTS:
+                            time.sleep(dice.uniform(0.0, 0.05))
+                            server.process.send_signal(signal.SIGKILL)
+                            early += 1
+                            break
                     assert same(undisturbed, batch.result())
                     assert VARIANTS == batch.progress().done_count
                     batch.delete()
@@ -77,7 +85,7 @@ def test_random_deaths_lose_and_double_nothing(tmp_path, deaths):
                 killer.cancel()
                 died += server.process.poll() is not None
                 server.stop(signal.SIGKILL)
-    print(f"{died} deaths, {number} batches")
+    print(f"{died} deaths, {early} of them between two chunks of {number} batches")
     time.sleep(2.0)
     assert [] == [pid for pid in children if alive(pid)]
 
