@@ -6,7 +6,8 @@ import ast
 
 # Below this a literal is a tolerance, not a coefficient; above its inverse it is a stand-in for infinity.
 SMALL = 1e-3
-NUMBER_FILES = {"interwind_service.tolerances", "interwind_service.response.tableau"}
+NUMBERS = "interwind_service.tolerances"
+TABLES = {"interwind_service.response.tableau"}
 UNIT_PREFIXES = {"UNIT_FACTORS", "_MICRO"}
 NUMERIC_ROOMS = ("windings", "network", "response", "engine", "tolerances")
 # The outermost edges: one for calls, one for the worker process that serves them.
@@ -16,13 +17,18 @@ EDGES = {"interwind_service.server.boundary", "interwind_service.workers.process
 GIVEN_SIGNATURES = {"shutdown"}
 
 
+def thresholds(root):
+    """The files that hold the thresholds."""
+    return sorted((root / "service/interwind_service/tolerances").glob("*.py"))
+
+
 def service(modules):
     """The modules of the service by name."""
     return {name: tree for name, tree in modules.items() if name.startswith("interwind_service")}
 
 
 def test_thresholds_stand_in_one_file(modules):
-    """A number such as a tolerance has a name and a reason, and both stand in tolerances.py; unit prefixes are none."""
+    """A number such as a tolerance has a name and a reason, and both stand in tolerances; unit prefixes are none."""
     offenders = []
     for name, tree in service(modules).items():
         prefixes = {
@@ -33,33 +39,46 @@ def test_thresholds_stand_in_one_file(modules):
         }
         for node in ast.walk(tree):
             small = isinstance(node, ast.Constant) and isinstance(node.value, float) and 0 < node.value < SMALL
-            if small and node not in prefixes and name not in NUMBER_FILES:
+            if small and node not in prefixes and not name.startswith(NUMBERS) and name not in TABLES:
                 offenders.append(f"{name}:{node.lineno}: {node.value!r}")
     assert [] == offenders
 
 
 def test_every_threshold_has_its_reason(root):
-    """Every name in tolerances.py is upper case, with its reason on its line or at the head of its paragraph."""
-    text = (root / "service/interwind_service/tolerances.py").read_text(encoding="utf-8")
-    lines = text.splitlines()
+    """Every threshold is named in upper case, its reason on its line or at the head of its paragraph."""
     offenders = []
-    for node in ast.parse(text).body:
-        if isinstance(node, ast.Assign | ast.AnnAssign):
-            target = node.targets[0] if isinstance(node, ast.Assign) else node.target
-            above = node.lineno - 2
-            while lines[above] and not lines[above].startswith("#"):
-                above -= 1
-            said = lines[above].startswith("#") or "#" in lines[node.end_lineno - 1]
-            if not (isinstance(target, ast.Name) and target.id.isupper() and said):
-                offenders.append(f"{node.lineno}: {lines[node.lineno - 1]}")
+    for path in thresholds(root):
+        lines = path.read_text(encoding="utf-8").splitlines()
+        for node in ast.parse("\n".join(lines)).body:
+            if isinstance(node, ast.Assign | ast.AnnAssign):
+                target = node.targets[0] if isinstance(node, ast.Assign) else node.target
+                above = node.lineno - 2
+                while lines[above] and not lines[above].startswith("#"):
+                    above -= 1
+                said = lines[above].startswith("#") or "#" in lines[node.end_lineno - 1]
+                if not (isinstance(target, ast.Name) and target.id.isupper() and said):
+                    offenders.append(f"{path.name}:{node.lineno}: {lines[node.lineno - 1]}")
     assert [] == offenders
+
+
+def test_no_threshold_is_named_twice(root):
+    """One name, one value: the files of thresholds share one namespace."""
+    named = [
+        node.targets[0].id
+        for path in thresholds(root)
+        for node in ast.parse(path.read_text(encoding="utf-8")).body
+        if isinstance(node, ast.Assign) and isinstance(node.targets[0], ast.Name)
+    ]
+    assert sorted(set(named)) == sorted(named)
 
 
 def test_every_threshold_is_used(modules):
     """A threshold nobody reads is deleted."""
     defined = {
         node.targets[0].id
-        for node in modules["interwind_service.tolerances"].body
+        for name, tree in modules.items()
+        if name.startswith(NUMBERS)
+        for node in tree.body
         if isinstance(node, ast.Assign) and isinstance(node.targets[0], ast.Name)
     }
     used = set()
@@ -122,14 +141,3 @@ def test_no_boolean_by_position(modules):
                 flags = [a.arg for a in positional if isinstance(a.annotation, ast.Name) and a.annotation.id == "bool"]
                 offenders.extend(f"{name}:{node.lineno} {node.name}({flag})" for flag in flags)
     assert [] == offenders
-
-
-def test_no_threshold_is_named_twice(modules):
-    """A second assignment of the same name would silently change the first one's value."""
-    names = [
-        node.targets[0].id
-        for node in modules["interwind_service.tolerances"].body
-        if isinstance(node, ast.Assign) and isinstance(node.targets[0], ast.Name)
-    ]
-
-    assert len(set(names)) == len(names)

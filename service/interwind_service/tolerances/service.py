@@ -1,0 +1,40 @@
+"""Limits of the front and of its workers."""
+
+WORKER_OOM_SCORE_ADJUST = 700  # the kernel, short of memory, takes a worker and not the server
+WORKER_RESPAWN_PAUSE_S = 0.2  # between tries to start a process when the system has none to give
+IDLE_LOOK_S = 0.5  # how soon a worker that died without work is replaced
+WORKER_LEAVE_S = 0.3  # a stopping server waits so long for its workers; they see its end by themselves
+INLINE_ANSWER_BYTES = 64 * 1024  # below this a file costs more than the pipe (measured: 0.4 ms against 0.3 ms)
+MAX_REQUEST_BYTES = 4 * 2**20  # what every gRPC library sends and takes unasked; larger arrays go through PutArray
+MAX_ARRAY_PART_BYTES = 2**20  # one part of an array: the chunk size at which Python streams fastest
+MAX_SIZE_HEADER_BYTES = 64  # five varints and their keys
+DEFAULT_QUEUE_PER_WORKER = 4  # waiting calls a worker: with calls of a second, nobody waits longer than a few
+DEFAULT_MAX_TIMEOUT_S = 600.0  # no call may hold a worker longer; batches are for that
+# Of the machine's memory for all calls together; the rest is for whoever else is on the node
+DEFAULT_MEMORY_SHARE = 0.5
+# Address space of an idle worker (libraries, arenas), before its share of the budget
+WORKER_BASE_ADDRESS_BYTES = 2 * 2**30
+DEFAULT_ARRAY_STORE_BYTES = 512 * 2**20  # uploaded and fetched arrays together; the least recently used leave first
+ARRAY_UPLOAD_IDLE_S = 600.0  # an upload nobody continues is forgotten
+MAX_OPEN_UPLOADS = 64  # unfinished uploads at a time; the longest idle leaves first
+SPOOL_FULL_RETRY_S = 2.0  # a full spool empties as answers are read
+MAX_WINDINGS = 4000  # a dense set of this size is 128 MB a matrix and some minutes of eigenvalues
+RETRY_AFTER_FLOOR_S = 0.1  # shortest wait asked of a refused caller
+RETRY_AFTER_CEILING_S = 5.0  # longest wait asked of a refused caller; load changes faster than that
+DEFAULT_GRACE_S = 10.0  # a drain waits so long for running calls, below the 30 s service supervisors allow
+HANDSHAKE_TIMEOUT_MS = 5_000  # a connection that says nothing is closed
+MAX_CONNECTION_AGE_MS = 1_800_000  # after that a client connects anew, and so finds servers that were added
+MAX_CONNECTION_IDLE_MS = 300_000  # a connection without calls is closed; clients reconnect by themselves
+KEEPALIVE_MIN_INTERVAL_MS = 30_000  # the client pings every 60 s while it has calls; twice as often is tolerated
+MAX_CONCURRENT_STREAMS = 256  # calls a connection may have open at once
+CALL_MEAN_WEIGHT = 0.1  # weight of the newest call in the running mean of call seconds
+FIRST_CALL_S = 1.0  # what a call is taken to last before any was measured
+# Dense complex copies a solve holds at once: matrix, factor, right sides, scratch, two of headroom
+ESTIMATE_MATRICES = 6
+UNSTATED_BYTES = 64 * 2**20  # what a request may cost beyond its stated size: enough to type small ones by hand
+ESTIMATE_COPIES = 4  # copies of a request in flight: received, piped, parsed, decoded
+LOG_QUEUE_LINES = 10_000  # lines that may wait for a slow reader of stderr; later ones are counted and dropped
+TOKEN_RELOAD_INTERVAL_S = 1.0  # how often the token file is looked at, at most
+PROGRESS_INTERVAL_S = 0.1  # progress is for eyes; more often it only costs
+HEALTH_INTERVAL_S = 0.5  # how soon health tells that no worker can be had
+PARENT_POLL_S = 0.2  # how often an embedded server looks whether its parent lives
