@@ -13,7 +13,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
-from scipy.stats import chi2, norm
+from scipy.special import chdtri, ndtri  # the distributions themselves; scipy.stats takes a second to import
 
 from interwind.model.frozen import FloatArray
 from interwind_service.tolerances import (
@@ -46,7 +46,7 @@ def agrees(fitted: Fit) -> bool:
     count, unknowns = fitted.jacobian.shape
     largest = float(np.max(np.nan_to_num(np.abs(standardised(fitted)))))
     return largest <= _limit(count) and fitted.chi_square <= float(
-        chi2.isf(CONTRADICTION_PROBABILITY, max(count - unknowns, 1))
+        chdtri(max(count - unknowns, 1), CONTRADICTION_PROBABILITY)
     )
 
 
@@ -112,7 +112,7 @@ def _without(used: Sequence[Taken], labels: Sequence[str], kept: Sequence[int], 
 
 def _limit(count: int) -> float:
     """|w| that chance reaches once in a hundred identifications of ``count`` readings (Bonferroni)."""
-    return float(norm.isf(OUTLIER_PROBABILITY / (2.0 * count)))
+    return -float(ndtri(OUTLIER_PROBABILITY / (2.0 * count)))
 
 
 def inside(L: FloatArray) -> FloatArray:

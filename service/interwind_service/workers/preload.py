@@ -21,6 +21,9 @@ MODULES = (
     "interwind_service.response.frequency",
     "interwind_service.response.ports",
     "interwind_service.response.time",
+    "interwind_service.response.periodic",
+    "interwind_service.response.adaptive",
+    "interwind_service.response.stack",
 )
 
 atexit.register(os._exit, 0)  # the forkserver has nothing to tidy up; it leaves as soon as the server is gone
