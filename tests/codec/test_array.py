@@ -6,6 +6,7 @@ import hashlib
 
 import numpy as np
 import pytest
+
 from interwind.codec.array import array_from_message, array_to_message, stored_arrays, typed_arrays
 from interwind.errors import InvalidRequest
 from interwind.v1 import array_pb2

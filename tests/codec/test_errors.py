@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import pytest
 from google.rpc import status_pb2
+
 from interwind.codec.errors import DETAIL_LIMIT_BYTES, VIOLATION_LIMIT, error_to_status, status_to_error, to_status
 from interwind.errors import FieldViolation, InvalidNetwork, Overloaded, error_classes
 from interwind.model.finding import Evidence

@@ -5,9 +5,10 @@ from __future__ import annotations
 import dataclasses
 import json
 
-import interwind as iw
 import numpy as np
 import pytest
+
+import interwind as iw
 from interwind.codec.calls import BY_ENGINE
 from interwind.codec.stream import NamedArray, decode_stream, encode_stream
 from interwind.model.digest import request_digest

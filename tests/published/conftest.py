@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-import interwind as iw
 import pytest
+
+import interwind as iw
 
 
 @pytest.fixture(scope="session")
