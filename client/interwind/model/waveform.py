@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import Enum
-from typing import Any, Union
+from typing import Any
 
 import numpy as np
 
@@ -60,7 +60,7 @@ class Sine(_Numbers):
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Trapezoid(_Numbers):
-    """Repeats: from ``delay_s`` on rises low → high in ``rise_s``, stays ``high_s``, falls in ``fall_s``, stays low to ``period_s``.
+    """Repeats every ``period_s``: from ``delay_s`` on rises in ``rise_s``, stays high ``high_s``, falls in ``fall_s``.
 
     Before ``delay_s`` the train already repeats, so a delay is a phase.
     """
@@ -192,10 +192,10 @@ class SampledRecord:
         return hash((self.interval_s, self.start_s, self.value.tobytes()))
 
 
-Waveform = Union[
-    Constant, Step, Ramp, Sine, Trapezoid, DoubleExponential, PiecewiseLinear,
-    StandardImpulse, DampedSine, OffsetFaultCurrent, SampledRecord,
-]  # fmt: skip
+Waveform = (
+    Constant | Step | Ramp | Sine | Trapezoid | DoubleExponential | PiecewiseLinear
+    | StandardImpulse | DampedSine | OffsetFaultCurrent | SampledRecord
+)  # fmt: skip
 WAVEFORMS: tuple[type[Any], ...] = (
     Constant, Step, Ramp, Sine, Trapezoid, DoubleExponential, PiecewiseLinear,
     StandardImpulse, DampedSine, OffsetFaultCurrent, SampledRecord,

@@ -42,7 +42,7 @@ def model_of(topology: Topology, s0: float) -> StateSpace:
 
 
 def _verify(space: StateSpace, resolvent_at: Callable[[float], Resolvent]) -> None:
-    """Hold C (s − A)⁻¹ B + D + s Y1 against direct solves on the real axis, branch voltages and currents each by size."""
+    """Hold C (s − A)⁻¹ B + D + s Y1 against direct solves on the real axis, voltages and currents each by size."""
     identity = np.eye(space.states)
     rest = space.C @ np.linalg.solve(space.shift * identity - space.A, space.B)
     direct_part = space.gain_at_shift - rest
