@@ -186,3 +186,32 @@ def test_d16_peak_short_circuit_factor(solver, ratio, kappa, exact):
     assert answer[iw.ElementCurrent("L")].max() == pytest.approx(exact, abs=1e-6)
     assert 1.02 + 0.98 * np.exp(-3 / ratio) == pytest.approx(kappa, abs=1e-6)
     assert kappa == pytest.approx(exact, rel=6e-3)
+
+
+@pytest.mark.parametrize(
+    ("degrees", "watt"), [(15, 3055.555556), (30, 5555.555556), (45, 7500.0), (60, 8888.888889), (90, 10000.0)]
+)
+def test_e11_dual_active_bridge(solver, degrees, watt):
+    """Ideal square sources through 20 µH: P = n V1 V2 φ(π − φ)/(2π² f L), 400 V, 100 V, n = 4, 100 kHz.
+
+    From memory: De Doncker, Divan & Kheraluwala 1991; recomputed.
+    """
+    period = 1e-5
+
+    def square(volt: float, delay_s: float) -> iw.Trapezoid:
+        return iw.Trapezoid(
+            low=-volt, high=volt, period_s=period, rise_s=0.0, high_s=period / 2, fall_s=0.0, delay_s=delay_s
+        )
+
+    net = iw.Network(
+        "0",
+        [
+            iw.VoltageSource("V1", "a", "0", square(400.0, 0.0)),
+            iw.Inductor("L", "a", "b", 20e-6),
+            iw.IdealTransformer("T", "b", "0", "c", "0", 4.0),
+            iw.VoltageSource("V2", "c", "0", square(100.0, period * degrees / 360)),
+        ],
+    )
+    answer = solver.periodic_response(net, period, period / 100, [iw.ElementCurrent("L")])
+    assert -answer.mean_power_w["V1"] == pytest.approx(watt, rel=1e-9)
+    assert answer.mean_power_w["V2"] == pytest.approx(watt, rel=1e-9)

@@ -16,6 +16,7 @@ from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.periodic import PeriodicResponse
 from interwind_service import tolerances as tol
+from interwind_service.network.kind import Kind
 from interwind_service.response.admit import admit
 from interwind_service.response.commensurate import require_commensurate
 from interwind_service.response.cycle_map import CycleMap, FixedPoint, fixed_point
@@ -24,6 +25,7 @@ from interwind_service.response.energy import energy_of
 from interwind_service.response.figures import figures_of
 from interwind_service.response.observe import resolve
 from interwind_service.response.output_grid import steps_of
+from interwind_service.response.periodic_linear import periodic_response_linear
 from interwind_service.response.readings import readings_of
 from interwind_service.response.start import residual_state
 from interwind_service.response.switched_network import switched_network
@@ -54,6 +56,8 @@ def periodic_response(
     require_commensurate(network, period_s)
     topology = admit(network)
     observables = resolve(topology, observe)
+    if not topology.of_kind(Kind.SWITCH, Kind.DIODE, Kind.ARRESTER, Kind.SATURABLE).size:
+        return periodic_response_linear(topology, period_s, step_s, observables, tolerance)
     prepared = switched_network(topology, period_s, step_s, period_s)
     start = residual_state(prepared.tableau)
     cycle = CycleMap(prepared, prepared.start_mode(start))
