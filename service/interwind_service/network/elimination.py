@@ -45,29 +45,34 @@ def eliminate(A: FloatArray, b: FloatArray | None = None, *, preference: FloatAr
     rows, columns = A.shape
     right = np.zeros((rows, 0)) if b is None else b
     work = np.hstack((A, right, np.eye(rows)))
-    largest = np.abs(A).max(initial=0.0)
+    size = np.abs(A)  # of the entries in open rows and columns, 0 elsewhere
+    largest = size.max(initial=0.0)
+    by_row, by_column = size.max(axis=1, initial=0.0), size.max(axis=0, initial=0.0)
     open_row, open_column = np.ones(rows, dtype=bool), np.ones(columns, dtype=bool)
     pivot_rows: list[int] = []
     pivots: list[int] = []
-    while open_row.any() and open_column.any():
-        size = np.abs(work[:, :columns]) * open_row[:, None] * open_column
-        top = size.max()
-        if top <= STRUCTURAL_PIVOT * largest:
-            break
+    while (top := by_row.max(initial=0.0)) > STRUCTURAL_PIVOT * largest:
         if preference is None:
-            row, column = divmod(int(size.argmax()), columns)
+            row = int(by_row.argmax())
+            column = int(size[row].argmax())
         else:
-            best = size.max(axis=0)
-            near = np.flatnonzero(best >= STRUCTURAL_PIVOT_SHARE * top)
+            near = np.flatnonzero(by_column >= STRUCTURAL_PIVOT_SHARE * top)
             column = int(near[np.argmin(preference[near])])
             row = int(size[:, column].argmax())
         work[row] /= work[row, column]
+        filled = np.flatnonzero(work[row])
         others = np.flatnonzero(work[:, column])
         others = others[others != row]
-        if others.size:
-            work[others] -= np.outer(work[others, column], work[row])
-            work[others, column] = 0.0
+        work[np.ix_(others, filled)] -= np.outer(work[others, column], work[row, filled])
+        work[others, column] = 0.0
         open_row[row] = open_column[column] = False
+        size[row] = size[:, column] = 0.0
+        changed = filled[filled < columns]
+        block = np.ix_(others, changed)
+        size[block] = np.abs(work[block]) * open_row[others, None] * open_column[changed]
+        by_row[row] = by_column[column] = 0.0
+        by_row[others] = size[others].max(axis=1, initial=0.0)
+        by_column[changed] = size[:, changed].max(axis=0, initial=0.0)
         pivot_rows.append(row)
         pivots.append(column)
     free = np.flatnonzero(open_column)

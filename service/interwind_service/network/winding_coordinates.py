@@ -25,11 +25,33 @@ FloatArray = NDArray[np.float64]
 
 @dataclass(frozen=True, slots=True, eq=False)
 class WindingCoordinates:
-    """i = N y, S = Nᵀ L N (n, n); ``rank`` = number of non-zero leakages, n unless the coupling is perfect."""
+    """i = N y, S = Nᵀ L N (n, n); ``rank`` = number of non-zero leakages, n unless the coupling is perfect.
+
+    ``scale`` (n,) of a loosely coupled group, N = diag(scale); products with N are products with it.
+    """
 
     N: FloatArray
     S: FloatArray
     rank: int
+    scale: FloatArray | None = None
+
+    def currents(self, y: FloatArray) -> FloatArray:
+        """Return i = N y, shape (n, k), real or complex."""
+        return self.N @ y if self.scale is None else self.scale[:, None] * y
+
+    def of_currents(self, i: FloatArray) -> FloatArray:
+        """Return y of N y = i, shape (n, k), real or complex."""
+        return np.linalg.solve(self.N, i) if self.scale is None else i / self.scale[:, None]
+
+    def columns(self, Q: FloatArray) -> FloatArray:
+        """Return Q N, shape (k, n)."""
+        return Q @ self.N if self.scale is None else Q * self.scale
+
+    def losses(self, resistance_ohm: FloatArray) -> FloatArray:
+        """Return Nᵀ R N."""
+        if self.scale is None:
+            return self.N.T @ resistance_ohm @ self.N
+        return self.scale[:, None] * resistance_ohm * self.scale
 
 
 def winding_coordinates(group: WindingGroup) -> WindingCoordinates:
@@ -41,7 +63,7 @@ def winding_coordinates(group: WindingGroup) -> WindingCoordinates:
         base = group.inductance_h / np.outer(scale, scale)  # exact: powers of two
     preference = group.resistance_ohm.diagonal() / group.inductance_h.diagonal()
     if _is_loose(base):
-        return WindingCoordinates(np.diag(1.0 / scale), base, group.size)
+        return WindingCoordinates(np.diag(1.0 / scale), base, group.size, 1.0 / scale)
     order, pivots, U = _factor(_Pair(base, np.zeros_like(base)), preference)
     zero = pivots <= tol.PERFECT_COUPLING_PIVOT * group.size * base.diagonal().max()
     pivots = np.where(zero, 0.0, pivots)

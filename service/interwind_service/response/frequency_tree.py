@@ -74,8 +74,8 @@ class FrequencyTree:
     current: IntArray
     loops: IntArray
 
-    def matrix(self, s: ComplexArray) -> ComplexArray:
-        """Return M(s), shape (f, n, columns)."""
+    def matrix(self, s: ComplexArray | FloatArray) -> ComplexArray:
+        """Return M(s), shape (f, n, columns), real where s is."""
         M0, M1, M2 = self.M
         stack = M1[None] * s[:, None, None]
         stack += M0[None]
@@ -241,7 +241,7 @@ class _Equations:
     def _write_groups(self, M0: FloatArray, M1: FloatArray) -> None:
         T, own_row, own_column = len(self.Q), len(M0) - len(self.apart), self.columns - len(self.apart)
         for g, (group, where, own) in enumerate(zip(self.topology.groups, self.groups, self.coordinates, strict=True)):
-            cuts = self.Q[:, group.branches] @ own.N
+            cuts = own.columns(self.Q[:, group.branches])
             M0[:T, where], M0[where, :T] = cuts, -cuts.T
             resistance = group.resistance_ohm
             for w in [w for one, w in self.apart if one == g]:
@@ -249,7 +249,7 @@ class _Equations:
                 M0[where, own_column], M0[own_row, where] = own.N[w], -own.N[w]
                 M0[own_row, own_column] = 1.0 / group.resistance_ohm[w, w]
                 own_row, own_column = own_row + 1, own_column + 1
-            M0[where, where] = own.N.T @ resistance @ own.N
+            M0[where, where] = own.losses(resistance)
             M1[where, where] = own.S
 
     def _subtract_current(

@@ -66,11 +66,11 @@ def resolvent(basis: StateBasis, roles: Roles, s0: float) -> Resolvent:
     topology, coordinates = storage.topology, storage.coordinates
     tree = frequency_tree(topology, coordinates, roles, s0, drives_of(topology))
     inputs, states = len(tree.drives), basis.X.shape[1]
-    M = tree.matrix(np.array([s0], dtype=complex))[0].real
+    M = tree.matrix(np.array([s0]))[0]
     right = np.zeros((len(M), inputs + states))
     right[:, :inputs] = -tree.J - M[:, tree.known] @ tree.imposed
     right[:, inputs:] = _initial(tree, basis, s0)
-    answer = solve(np.ascontiguousarray(M[:, tree.unknown])[None], right[None])
+    answer = solve(np.take(M, tree.unknown, axis=1)[None], right[None])
     if not np.isfinite(answer.x).all():
         raise InvalidNetwork.at("elements", f"no unique solution at s = {s0:.3g} 1/s", reason="SINGULAR_NETWORK")
     z = np.zeros((M.shape[1], inputs + states))
@@ -126,7 +126,7 @@ def _signals(tree: FrequencyTree, basis: StateBasis, s0: float, z: FloatArray) -
     )
     current[storage.inductors, inputs:] += basis.X[storage.inductor_rows] / s0
     for group, columns, coordinates in zip(topology.groups, tree.groups, storage.coordinates, strict=True):
-        current[group.branches] = coordinates.N @ z[columns]
+        current[group.branches] = coordinates.currents(z[columns])
     carried = np.flatnonzero(tree.current >= 0)
     current[carried] = z[tree.current[carried]]
     for transformer in topology.transformers:

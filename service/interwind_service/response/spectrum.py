@@ -95,7 +95,7 @@ def solve_band(tree: FrequencyTree, index: NDArray[np.int64], s: ComplexArray) -
     unknown = tree.unknown
     M = tree.matrix(s)
     right = -(M[:, :, tree.known] @ tree.imposed) - tree.J
-    answer = solve(np.ascontiguousarray(M[:, :, unknown]), right)
+    answer = solve(np.take(M, unknown, axis=2) if tree.known.size else M, right)
     Z = np.empty((len(s), M.shape[2], len(tree.drives)), dtype=np.complex128)
     Z[:, unknown] = answer.x
     Z[:, tree.known] = tree.imposed

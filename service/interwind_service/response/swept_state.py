@@ -15,7 +15,6 @@ from numpy.typing import NDArray
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import WindingCoordinates
-from interwind_service.response.factor import equilibrate
 from interwind_service.response.frequency_tree import Drive, FrequencyTree
 from interwind_service.response.spectrum import Band, bands, solve_band
 from interwind_service.response.sweep import SweptBand, check_points
@@ -166,7 +165,7 @@ def _columns(swept: SweptBand, tree: FrequencyTree) -> ComplexArray:
     Z = swept.signals(rows)
     basis = swept.basis
     for where, own, rows in zip(tree.groups, tree.coordinates, basis.storage.groups, strict=True):
-        Z[:, where] = np.linalg.solve(own.N, Z[:, where])
+        Z[:, where] = own.of_currents(Z[:, where])
         Z[0, where.start : where.start + own.rank] = basis.X[rows] @ (swept.U @ swept.t[:, 0]) + basis.P[rows]
     for column, ohm in tree.drops():
         Z[:, column] *= ohm
@@ -181,7 +180,7 @@ def _gap(band: Band, Z: ComplexArray) -> float:
     blocks = [(Z[:, :T], band.Z[:, :T], noise[:, :T].max(initial=0.0))]
     for where, own in zip(tree.groups, tree.coordinates, strict=True):
         floor = (noise[:, where] @ np.abs(own.N).T).max(initial=0.0)
-        blocks.append((own.N @ Z[:, where], own.N @ band.Z[:, where], floor))
+        blocks.append((own.currents(Z[:, where]), own.currents(band.Z[:, where]), floor))
         floor = (noise[:, where] @ np.abs(own.S)).max(initial=0.0)
         blocks.append((own.S @ Z[:, where], own.S @ band.Z[:, where], floor))
     rest = np.flatnonzero(tree.current >= 0)
@@ -198,9 +197,16 @@ def _gap(band: Band, Z: ComplexArray) -> float:
 def _residual(band: Band, Z: ComplexArray) -> float:
     """|b − A x|∞ / (|A|∞ |x|∞ + |b|∞) of the swept solution in the tree's equations, scaled as they are solved."""
     tree = band.tree
-    M = tree.matrix(band.s)
-    A, rows, columns = equilibrate(np.ascontiguousarray(M[:, :, tree.unknown]))
-    b = -(M[:, :, tree.known] @ tree.imposed + tree.J) * rows[:, :, None]
-    x = Z[:, tree.unknown] / columns[:, :, None]
-    size = np.abs(A).sum(axis=2).max() * np.abs(x).max(initial=0.0) + np.abs(b).max(initial=0.0)
-    return float(np.abs(b - A @ x).max(initial=0.0) / size) if size > 0.0 else 0.0
+    M, columns = tree.matrix(band.s)[0], band.scale[0, tree.unknown]
+    if not columns.size:
+        return 0.0
+    b = -(M[:, tree.known] @ tree.imposed + tree.J)
+    A = M[:, tree.unknown] if tree.known.size else M
+    x = Z[0, tree.unknown]
+    weight = np.abs(A) * columns
+    largest = weight.max(axis=1)
+    rows = 1.0 / np.where(largest > 0.0, largest, 1.0)
+    gap = b - A @ x
+    x_size = np.abs(x / columns[:, None]).max(initial=0.0)
+    size = (weight.sum(axis=1) * rows).max() * x_size + np.abs(b * rows[:, None]).max(initial=0.0)
+    return float(np.abs(gap * rows[:, None]).max(initial=0.0) / size) if size > 0.0 else 0.0
