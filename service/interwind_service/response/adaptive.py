@@ -99,10 +99,11 @@ def adaptive_frequencies(
 
 def _span(sweep: AdaptiveSweep) -> tuple[float, float]:
     start, stop = float(sweep.start_hz), float(sweep.stop_hz)
-    if not (np.isfinite(start) and start > 0.0):
-        raise InvalidRequest.at("start_hz", f"{start!r} Hz found; a finite frequency above 0 is expected")
-    if not (np.isfinite(stop) and stop > start):
-        raise InvalidRequest.at("stop_hz", f"{stop!r} Hz found; a finite frequency above start_hz is expected")
+    low, high = tol.MODAL_LEAST_HZ, tol.MODAL_MOST_HZ
+    if not low <= start <= high:
+        raise InvalidRequest.at("start_hz", f"{start!r} Hz found; {low:g} to {high:g} Hz is expected")
+    if not start < stop <= high:
+        raise InvalidRequest.at("stop_hz", f"{stop!r} Hz found; above start_hz and at most {high:g} Hz is expected")
     if not (np.isfinite(sweep.tolerance_db) and sweep.tolerance_db >= tol.ADAPTIVE_LEAST_DB):
         raise InvalidRequest.at(
             "tolerance_db", f"{sweep.tolerance_db!r} dB found; at least {tol.ADAPTIVE_LEAST_DB:g} is expected"

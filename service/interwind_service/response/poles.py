@@ -18,7 +18,7 @@ import numpy as np
 import scipy.linalg as sl
 from numpy.typing import NDArray
 
-from interwind.errors import InvalidNetwork
+from interwind.errors import AccuracyNotReached, InvalidNetwork, InvalidRequest
 from interwind.model.finding import Evidence, Finding, Severity
 from interwind.model.network import Network
 from interwind.model.observables import Observable
@@ -60,6 +60,11 @@ def poles(network: Network, observe: Sequence[Observable] | None = None, around_
     rows = linear_rows(topology, asked)
     _, phasors = drives_of(topology)
     u = phasors[: len(topology.inputs)]
+    if not (np.isfinite(space.A).all() and np.isfinite(space.B).all() and np.isfinite(space.C).all()):
+        raise AccuracyNotReached(
+            "the state equations leave the range of numbers; state around_hz near the modes, or check the units of the "
+            "elements"
+        )
     values, left, right = sl.eig(space.A, left=True, right=True)
     keep = np.flatnonzero(values.imag >= 0.0)
     keep = keep[np.argsort(np.abs(values[keep]), kind="stable")]
@@ -97,6 +102,9 @@ def model_at(topology: Topology, around_hz: float | None) -> StateSpace:
             f"up to {states} states found; modes are computed up to {tol.MODAL_STATES}; ask for a list of frequencies",
         )
     if around_hz is not None:
+        low, high = tol.MODAL_LEAST_HZ, tol.MODAL_MOST_HZ
+        if not low <= around_hz <= high:
+            raise InvalidRequest.at("around_hz", f"{around_hz!r} Hz found; {low:g} to {high:g} Hz is expected")
         return model_of(topology, 2.0 * np.pi * around_hz)
     space = model_of(topology, tol.MODAL_FIRST_SHIFT)
     speed = np.abs(np.linalg.eigvals(space.A))

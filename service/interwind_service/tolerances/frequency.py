@@ -25,6 +25,10 @@ NOISE_SHARE = 1e-6
 RECIPROCITY_LIMIT = 1e-9
 PASSIVITY_LIMIT = -1e-9
 
+# Beyond this many nodes and branches Y and S of a port response follow from Z, where its condition is below the other: a
+# few digits of twelve are lost.
+PORT_SOLVES_BRANCHES = 600
+PORT_INVERSE_CONDITION = 1e4
 # A swept band and the frequency tree agree to this, voltages and currents each over their largest.
 SWEEP_AGREEMENT = 1e-10
 # Points of a swept band at which the energy of its windings is looked at for cautions.
@@ -71,6 +75,9 @@ ASIDE = 1e-7
 MODAL_STATES = 1500
 # Where the state equations are centred, 1/s, before the modes are known; they are centred again on what is found.
 MODAL_FIRST_SHIFT = 1e6
+# Where modes may be looked for, Hz: from periods of a year to beyond any lumped network.
+MODAL_LEAST_HZ = 1e-8
+MODAL_MOST_HZ = 1e15
 # A generalized eigenvalue this far above the largest entry of A is a zero at infinity, moved by rounding.
 INFINITE_ZERO = 1e-10
 # Adaptive sweep: even points a decade, and points on the flanks of a mode in half bandwidths from its centre.
