@@ -35,7 +35,7 @@ def port_response(network: Network, frequency_hz: object) -> PortResponse:
 
     V = Z I, I = Y V, and with r the reference resistances of the ports S = 2 r^(−½) Z' r^(−½) − 1, Z' the impedance of
     the network with r across each port. Each comes from a solve of its own: the ports driven by currents, by voltages,
-    and terminated; none is the inverse of another.
+    and terminated; none is the inverse of another, but in a large network whose Z exists and is far from singular.
 
     Parameters
     ----------
@@ -71,9 +71,15 @@ def port_response(network: Network, frequency_hz: object) -> PortResponse:
     burdens = [el.Resistor(name, p.a, p.b, p.reference_ohm) for name, p in _named(network, "burden")]
     imposed = [el.VoltageSource(name, p.a, p.b) for name, p in _named(network, "voltage")]
     Z = _matrix(silent, driven, f)
-    Y = _matrix(silent, imposed, f)
-    loaded = _matrix(silent, [*burdens, *driven], f)
-    root = 1.0 / np.sqrt([port.reference_ohm for port in network.ports])
+    reference = np.array([port.reference_ohm for port in network.ports])
+    if _large(topology) and not np.isnan(Z.values).any():
+        loaded = dataclasses.replace(Z, values=_terminated(Z.values, reference))
+        inverse = _inverse(Z.values)
+        Y = _matrix(silent, imposed, f).values if inverse is None else inverse
+    else:
+        loaded = _matrix(silent, [*burdens, *driven], f)
+        Y = _matrix(silent, imposed, f).values
+    root = 1.0 / np.sqrt(reference)
     S = 2.0 * root[:, None] * loaded.values * root - np.eye(len(root))
     if np.isnan(S).any(axis=(1, 2)).all():
         raise InvalidNetwork.at("elements", f"no solution at any frequency asked for; {loaded.why}", reason="SINGULAR")
@@ -83,12 +89,31 @@ def port_response(network: Network, frequency_hz: object) -> PortResponse:
         tuple(port.name for port in network.ports),
         f,
         Z.values,
-        Y.values,
+        Y,
         S,
         (*topology.findings, *loaded.findings),
         hazards(topology),
         evidence,
     )
+
+
+def _large(topology: Topology) -> bool:
+    """Whether a solve costs so much that one has to do for Z, Y and S."""
+    return len(topology.nodes) + len(topology.kind) > tol.PORT_SOLVES_BRANCHES
+
+
+def _terminated(Z: ComplexArray, reference: FloatArray) -> ComplexArray:
+    """Z' = Z (1 + Z/r)⁻¹: nothing cancels."""
+    right = np.eye(len(reference)) + Z / reference[:, None]
+    return np.linalg.solve(right.transpose(0, 2, 1), Z.transpose(0, 2, 1)).transpose(0, 2, 1)
+
+
+def _inverse(Z: ComplexArray) -> ComplexArray | None:
+    """Y = Z⁻¹, None where that would lose digits."""
+    scale = 1.0 / np.sqrt(np.maximum(np.abs(np.einsum("fii->fi", Z)), np.finfo(float).tiny))
+    if np.linalg.cond(Z * scale[:, :, None] * scale[:, None, :]).max() > tol.PORT_INVERSE_CONDITION:
+        return None
+    return np.linalg.inv(Z)
 
 
 def _named(network: Network, kind: str) -> list[tuple[str, Port]]:
