@@ -159,3 +159,29 @@ def test_current_into_an_island_is_refused():
     )
     with pytest.raises(InvalidNetwork, match="no return"):
         time_response(net, 1e-3, 1e-4)
+
+
+def test_one_quantity_stated_twice_with_two_values():
+    """The current of a single winding has two names; two values contradict, and the difference is told."""
+    coil = WindingSet(("w",), [[1e-3]])
+    net = Network("0", [el.Windings("T", coil, {"w": ("a", "0")}), el.Resistor("R", "a", "0", 1.0)])
+    both = {ob.ElementCurrent("T"): 1.0, ob.WindingCurrent("T", "w"): 1.5}
+    with pytest.raises(InvalidRequest, match=r"0\.5 apart"):
+        time_response(net, 1e-3, 1e-4, initial=both)
+
+
+def test_cautions_come_with_the_numbers():
+    """A surge on a winding is touchable; a large capacitor keeps its energy."""
+    net = Network(
+        "0",
+        [
+            el.VoltageSource("V", "a", "0", wf.StandardImpulse(wf.ImpulseShape.SWITCHING_250_2500, 1000.0)),
+            el.Resistor("R", "a", "b", 1.0),
+            el.Capacitor("C", "b", "0", 50e-6),
+        ],
+    )
+    answer = time_response(net, 1e-3, 1e-5, [ob.ElementCurrent("R")])
+    codes = {caution.code for caution in answer.cautions}
+    assert {"TOUCHABLE_VOLTAGE", "STORED_ENERGY"} <= codes
+    touched = next(caution for caution in answer.cautions if caution.code == "TOUCHABLE_VOLTAGE")
+    assert touched.measured == pytest.approx(1000.0, rel=1e-3)

@@ -89,12 +89,21 @@ def _stated(basis: StateBasis, initial: Mapping[ob.Observable, float]) -> FloatA
     topology = storage.topology
     values = np.zeros(storage.size)
     windings = np.zeros(len(topology.kind))
+    named: dict[int, ob.Observable] = {}
     for item, given in initial.items():
         branch = _place(topology, item)
         value = float(given)
         if not np.isfinite(value):
             raise InvalidRequest.at(f"initial[{item!r}]", f"{value!r} found; a finite number is expected")
-        windings[branch] = value
+        if branch in named and windings[branch] != value:
+            raise InvalidRequest.at(
+                f"initial[{item!r}]",
+                f"{value!r} found, but {named[branch]!r}, the same quantity, is {windings[branch].item()!r}: "
+                f"{abs(value - windings[branch].item()):.6g} apart; state it once",
+            )
+        if value != 0.0 and topology.value[branch] == 0.0:
+            raise InvalidRequest.at(f"initial[{item!r}]", f"{value!r} found; the element is 0 and stores nothing")
+        named[branch], windings[branch] = item, value
     values[storage.capacitor_rows] = windings[storage.capacitors]
     values[storage.inductor_rows] = windings[storage.inductors]
     for group, rows, own in zip(topology.groups, storage.groups, storage.coordinates, strict=True):

@@ -19,6 +19,7 @@ from interwind.model.observables import Observable
 from interwind.model.periodic import PeriodicResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
+from interwind_service.response.cautions import cautions_of
 from interwind_service.response.exponential import expm1
 from interwind_service.response.flow import Flow, flow_of
 from interwind_service.response.generator import Generator, generator_of
@@ -32,6 +33,7 @@ from interwind_service.response.recording import Window
 from interwind_service.response.residual import equation_residual
 from interwind_service.response.state_space import StateSpace
 from interwind_service.response.time_model import model_of
+from interwind_service.response.time_stress import stress_of
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]
@@ -99,6 +101,7 @@ def periodic_response_linear(
         mean_power_w=_mean_power(topology, flow, run.gramian / period_s),
         ledger=ledger,
         findings=(*topology.findings, *_findings(found)),
+        cautions=cautions_of(topology, stress_of(topology, flow, generator, states, observables, figures.peak)),
         evidence=evidence,
     )
 

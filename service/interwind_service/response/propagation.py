@@ -82,7 +82,7 @@ class Propagation:
         block_bits = int(np.clip(np.log2(tol.BLOCK_ENTRIES / width), tol.LEAST_BLOCK_BITS, tol.MOST_BLOCK_BITS))
         if len(self.events.steps) * tol.SPARSE_EVENTS > steps:
             block_bits = min(block_bits, tol.WALKED_BLOCK_BITS)
-        self._block_bits = min(block_bits, max(0, int(np.ceil(np.log2(max(steps, 1))))))
+        self._block_bits = min(block_bits, max(0, int(np.ceil(np.log2(max(steps, 1) / tol.TESTED_STATES)))))
         block = 1 << self._block_bits
         self.block = block
         chunk_bits = int(max(0.0, np.log2(max(1.0, tol.CHUNK_ENTRIES / (block * max(len(readout), self.size))))))

@@ -72,7 +72,7 @@ class Recorder:
         self.samples = np.empty((window.kept if keep else 0, columns))
         self.lowest = np.full((window.kept, columns), np.inf) if envelope else None
         self.highest = np.full((window.kept, columns), -np.inf) if envelope else None
-        self._peak = np.zeros(columns)
+        self.peaks = np.zeros(columns)
         self._peak_step = np.full(columns, window.first)
         self._sum, self._square = np.zeros(columns), np.zeros(columns)
 
@@ -95,8 +95,8 @@ class Recorder:
             self.highest[own] = np.maximum(self.highest[own], np.maximum.reduceat(rows, heads, axis=0))
         columns = np.arange(rows.shape[1])
         where = np.abs(rows).argmax(axis=0)
-        larger = np.abs(rows[where, columns]) > np.abs(self._peak)
-        self._peak = np.where(larger, rows[where, columns], self._peak)
+        larger = np.abs(rows[where, columns]) > np.abs(self.peaks)
+        self.peaks = np.where(larger, rows[where, columns], self.peaks)
         self._peak_step = np.where(larger, first + where, self._peak_step)
         weight = np.ones(len(rows))
         weight[0] -= 0.5 * (first == window.first)
@@ -109,4 +109,4 @@ class Recorder:
         steps = self.window.last - self.window.first
         mean = np.where(np.isnan(means), self._sum / steps, means)
         square = np.where(np.isnan(mean_squares), self._square / steps, mean_squares)
-        return RecordFigures(mean, np.sqrt(np.maximum(square, 0.0)), self._peak, step_s * self._peak_step)
+        return RecordFigures(mean, np.sqrt(np.maximum(square, 0.0)), self.peaks, step_s * self._peak_step)

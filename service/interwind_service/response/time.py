@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 
 import numpy as np
 from numpy.typing import NDArray
@@ -17,6 +17,7 @@ from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
+from interwind_service.response.cautions import cautions_of
 from interwind_service.response.flow import Flow, flow_of
 from interwind_service.response.generator import Generator, generator_of
 from interwind_service.response.initial import start_of
@@ -30,9 +31,10 @@ from interwind_service.response.residual import equation_residual
 from interwind_service.response.state_space import StateSpace
 from interwind_service.response.switching import time_response_switching
 from interwind_service.response.time_model import model_of
+from interwind_service.response.time_stress import stress_of
+from interwind_service.rows import RowSink, offer
 
 FloatArray = NDArray[np.float64]
-RowSink = Callable[[int, FloatArray], None]
 
 _SWITCHED = (Kind.SWITCH, Kind.DIODE, Kind.ARRESTER, Kind.SATURABLE)
 
@@ -79,6 +81,8 @@ def time_response(
     topology = admit(network)
     asked = resolve(topology, observe)
     window = window_of(recording or Recording(), step_s, steps)
+    if sink is None and recording is None:
+        sink = offer(asked, steps + 1)
     if sink is None and window.kept * len(asked) > tol.MAX_RESPONSE_VALUES:
         raise InvalidRequest.at(
             "observe",
@@ -126,6 +130,7 @@ def time_response(
         lowest=recorder.lowest,
         highest=recorder.highest,
         findings=(*topology.findings, *start.findings),
+        cautions=cautions_of(topology, stress_of(topology, flow, generator, run.states, asked, recorder.peaks)),
         evidence=evidence,
     )
 

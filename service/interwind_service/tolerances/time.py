@@ -42,8 +42,8 @@ MAX_RESPONSE_VALUES = 64_000_000
 INCONSISTENT_START = 1e-12
 # Relative size of a singular value of A that counts as none when a point of rest is sought.
 REST_RESIDUAL = 1e-13
-# States kept during a run to test the equations at.
-TESTED_STATES = 64
+# States kept during a run, to test the equations at and to take the stress of its cautions from.
+TESTED_STATES = 256
 # A resolvent at s0 moves undamped slow modes by eps s0: over a run of this many 1/s0 their phase is off by 2e-10.
 SLOW_PHASE = 1e6
 # Multiples of s0 at which reduced equations with controlled sources are held against direct solves.
