@@ -134,9 +134,10 @@ def time_response(
     tolerance: float = DEFAULT_TOLERANCE,
 ) -> TimeResponse:
     """Solve the network over time."""
-    from interwind_service.response import time
+    from interwind_service.response import observed_stress, time
 
-    return time.time_response(network, stop_s, step_s, observe, initial, tolerance)
+    answer = time.time_response(network, stop_s, step_s, observe, initial, tolerance)
+    return observed_stress.with_cautions(network, answer)
 
 
 @_with_provenance
@@ -144,9 +145,10 @@ def periodic_response(
     network: Network, period_s: float, step_s: float, observe: Any = None, tolerance: float = DEFAULT_TOLERANCE
 ) -> PeriodicResponse:
     """Find one period of the steady state, directly."""
-    from interwind_service.response import periodic
+    from interwind_service.response import observed_stress, periodic
 
-    return periodic.periodic_response(network, period_s, step_s, observe, tolerance)
+    answer = periodic.periodic_response(network, period_s, step_s, observe, tolerance)
+    return observed_stress.with_cautions(network, answer)
 
 
 def sample_windings(windings: WindingSet, sample: SampleWindings) -> NDArray[Any]:
@@ -168,3 +170,10 @@ def stacked_responses(stack: Stack, columns: Any, into: NDArray[Any]) -> NDArray
     from interwind_service.response import stack as desk
 
     return desk.stacked_responses(stack, columns, into)
+
+
+def clear_eigenvalues(windings: WindingSet, columns: Any, count: int) -> tuple[NDArray[Any], NDArray[Any]]:
+    """Return the eigenvalues of many variants of a set (V, n), and for which they settle that it can exist (V,)."""
+    from interwind_service.windings import variants
+
+    return variants.clear_eigenvalues(windings, columns, count)
