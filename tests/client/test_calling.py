@@ -199,7 +199,7 @@ def test_server_that_restarts_is_found_again():
                     assert call.result(15).worker_count == 1
 
 
-def test_dead_proxy_in_the_environment_does_not_matter():
+def test_dead_proxy_in_the_environment_does_not_matter(real_service):
     """Loopback never goes through http_proxy."""
     script = (
         "import sys, interwind as iw\n"
@@ -207,10 +207,9 @@ def test_dead_proxy_in_the_environment_does_not_matter():
         "    print(solver.server_info().api_version)\n"
     )
     dead = {"http_proxy": "http://127.0.0.1:9", "https_proxy": "http://127.0.0.1:9", "grpc_proxy": "http://127.0.0.1:9"}
-    with RunningService("--workers", "1", environment=dead) as service:
-        answer = subprocess.run(
-            [sys.executable, "-c", script, service.address], env={**os.environ, **dead}, capture_output=True, text=True
-        )
+    answer = subprocess.run(
+        [sys.executable, "-c", script, real_service.address], env={**os.environ, **dead}, capture_output=True, text=True
+    )
 
     assert (answer.stdout.strip(), answer.returncode) == ("v1", 0)
 
@@ -225,11 +224,10 @@ def test_addresses_that_are_none_are_refused(address, monkeypatch):
         iw.connect()
 
 
-def test_calls_from_many_threads_share_one_client():
+def test_calls_from_many_threads_share_one_client(real_service):
     """A client is safe to share."""
     coils = iw.WindingSet(("a", "b"), [[1.0, 0.5], [0.5, 1.0]])
-    with RunningService("--workers", "2", "--queue-limit", "100") as service, iw.connect(service.address) as client:
-        with futures.ThreadPoolExecutor(8) as threads:
-            reports = list(threads.map(lambda _: client.check(coils), range(40)))
+    with iw.connect(real_service.address) as client, futures.ThreadPoolExecutor(8) as threads:
+        reports = list(threads.map(lambda _: client.check(coils), range(40)))
 
     assert {report.verdict for report in reports} == {iw.Verdict.VALID}

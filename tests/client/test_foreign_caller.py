@@ -8,8 +8,6 @@ from pathlib import Path
 
 import pytest
 
-from interwind_service.testing import RunningService
-
 PROTO = Path(__file__).parents[2] / "proto"
 
 STRANGER = '''
@@ -109,19 +107,18 @@ def scratch(tmp_path_factory) -> Path:
     return folder
 
 
-def test_contract_alone_is_enough(scratch):
+def test_contract_alone_is_enough(scratch, real_service):
     """A check, a frequency response and a streamed time response, without the client package.
 
     Values: k = 1e-3 / sqrt(4e-3 * 1e-3) = 0.5, so the eigenvalues are 0.5 and 1.5; i = 1 / (1 + j) = 0.5 - 0.5 j;
     1 - exp(-10) = 0.999954600070 (derived).
     """
-    with RunningService("--workers", "1") as service:
-        told = subprocess.run(
-            [sys.executable, "-P", str(scratch / "stranger.py"), service.address],
-            cwd=scratch,
-            capture_output=True,
-            text=True,
-        )
+    told = subprocess.run(
+        [sys.executable, "-P", str(scratch / "stranger.py"), real_service.address],
+        cwd=scratch,
+        capture_output=True,
+        text=True,
+    )
 
     assert told.stderr == ""
     assert told.stdout.splitlines() == [

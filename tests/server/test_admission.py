@@ -94,11 +94,11 @@ def test_what_can_never_fit_is_told_apart_from_what_does_not_fit_now(small, orde
     assert 100 <= int(pushback) <= 5000
 
 
-def test_false_size_is_refused_by_the_worker():
+def test_false_size_is_refused_by_the_worker(small):
     """Counts below the true ones are refused, with the field and both numbers."""
     windings = BY_ENGINE["check"].encode_request(windings=WindingSet([str(k) for k in range(5)], [[1.0] * 5] * 5))
     windings.size.winding_count = 2
-    with RunningService("--workers", "1") as service, grpc.insecure_channel(service.address) as channel:
+    with grpc.insecure_channel(small.address) as channel:
         with pytest.raises(grpc.RpcError) as caught:
             channel.unary_unary(CHECK)(windings.SerializeToString(), timeout=60)
 

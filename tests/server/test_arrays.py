@@ -16,12 +16,12 @@ from interwind.v1 import array_pb2, array_service_pb2
 from interwind_service.testing import RunningService
 
 PUT = "/interwind.v1.ArrayService/PutArray"
-BUDGET_BYTES = 3 * 2**20
+BUDGET_BYTES = 6 * 2**20
 
 
 @pytest.fixture(scope="module")
 def small_store() -> Iterator[RunningService]:
-    """A server that holds three MiB of arrays."""
+    """A server that holds six MiB of arrays."""
     with RunningService("--workers", "1", "--array-store-bytes", str(BUDGET_BYTES)) as running:
         yield running
 
@@ -93,28 +93,27 @@ def test_what_cannot_be_stored_is_named(put, name, count, field):
     assert [violation.field for violation in caught.value.violations] == [field]
 
 
-def test_unfinished_uploads_cannot_exceed_the_budget(put):
-    """The budget holds for what has arrived, whatever was announced; whoever comes too late is told when to return."""
-    contents = [numbers(seed, 2**18) for seed in range(10, 13)]
-    for content in contents:
-        put(content, 0, content[: 2**20 - 8])
-    with pytest.raises(iw.Overloaded) as caught:
-        put(numbers(13, 2**18), 0, numbers(13, 2**18)[: 2**20 - 8])
-
-    assert caught.value.reason == "ARRAYS_FULL"
-    assert caught.value.retry_after_s > 0
-
-
-def test_least_recently_used_leave_and_are_sent_again():
+def test_least_recently_used_leave_and_are_sent_again(small_store):
     """An array that left is `ArrayEvicted` to whoever names it; the client uploads it anew by itself."""
-    with RunningService("--workers", "1", "--array-store-bytes", str(2 * BUDGET_BYTES)) as service:
-        with iw.connect(service.address) as client:
-            sets = [iw.WindingSet([f"w{k}" for k in range(400)], np.eye(400) + 0.01 * seed) for seed in range(4)]
-            reports = [client.check(windings) for windings in sets]  # 1.28 MB each, and their answers as much again
-            name = hashlib.sha256(sets[0].inductance_h.tobytes()).hexdigest()
-            with pytest.raises(iw.ArrayEvicted):
-                client._arrays(Deadline(30.0)).get(name)
-            again = client.check(sets[0])
+    with iw.connect(small_store.address) as client:
+        sets = [iw.WindingSet([f"w{k}" for k in range(400)], np.eye(400) + 0.01 * seed) for seed in range(4)]
+        reports = [client.check(windings) for windings in sets]  # 1.28 MB each, and their answers as much again
+        name = hashlib.sha256(sets[0].inductance_h.tobytes()).hexdigest()
+        with pytest.raises(iw.ArrayEvicted):
+            client._arrays(Deadline(30.0)).get(name)
+        again = client.check(sets[0])
 
     assert {report.verdict for report in reports} == {again.verdict} == {iw.Verdict.VALID}
     assert np.array_equal(again.feasible_low, reports[0].feasible_low, equal_nan=True)
+
+
+def test_unfinished_uploads_cannot_exceed_the_budget(put):
+    """The budget holds for what has arrived, whatever was announced; whoever comes too late is told when to return."""
+    contents = [numbers(seed, 2**18) for seed in range(10, 16)]
+    for content in contents:
+        put(content, 0, content[: 2**20 - 8])
+    with pytest.raises(iw.Overloaded) as caught:
+        put(numbers(16, 2**18), 0, numbers(16, 2**18)[: 2**20 - 8])
+
+    assert caught.value.reason == "ARRAYS_FULL"
+    assert caught.value.retry_after_s > 0

@@ -6,6 +6,7 @@ import datetime
 import ipaddress
 import ssl
 import urllib.request
+from collections.abc import Iterator
 from pathlib import Path
 
 import grpc
@@ -75,18 +76,8 @@ def served_name(address: str) -> str:
     return x509.load_pem_x509_certificate(pem.encode()).subject.rfc4514_string()
 
 
-def test_tls_serves_whoever_trusts_it_and_nobody_in_plain_text(authority):
-    """The authority's certificate opens the door; without it, or without TLS, it stays shut."""
-    cert, key = authority.issue("first", "server")
-    with RunningService(*ONE, "--tls-cert", cert, "--tls-key", key) as service:
-        with iw.connect(service.address, tls_ca=str(authority.path), retries=0) as client:
-            assert client.server_info().worker_count == 1
-        with iw.connect(service.address, retries=0) as client, pytest.raises(iw.Unavailable):
-            client.server_info()
-
-
-def test_certificates_change_without_a_restart(authority):
-    """The next handshake after the files were replaced shows the new name; open connections live on."""
+def test_tls_serves_whoever_trusts_it_and_changes_its_certificate_without_a_restart(authority):
+    """The authority's certificate opens the door, plain text does not; replaced files show at the next handshake."""
     cert, key = authority.issue("first", "server")
     with RunningService(*ONE, "--tls-cert", cert, "--tls-key", key) as service:
         with iw.connect(service.address, tls_ca=str(authority.path), retries=0) as client:
@@ -94,6 +85,10 @@ def test_certificates_change_without_a_restart(authority):
             before = served_name(service.address)
             authority.issue("second", "server")
             after = served_name(service.address)
+            client.server_info()  # open connections live on
+        with iw.connect(service.address, tls_ca=str(authority.path), retries=0) as client:
+            client.server_info()
+        with iw.connect(service.address, retries=0) as client, pytest.raises(iw.Unavailable):
             client.server_info()
 
     assert (before, after) == ("CN=first", "CN=second")
@@ -112,79 +107,77 @@ def test_clients_show_their_own_certificate_where_it_is_asked(authority):
         wait_until(lambda: any(line.get("client") == "name-a bench" for line in service.log()), 2)
 
 
-@pytest.fixture
-def token_file(tmp_path) -> Path:
-    path = tmp_path / "tokens"
+@pytest.fixture(scope="module")
+def token_file(tmp_path_factory) -> Path:
+    path = tmp_path_factory.mktemp("tokens") / "tokens"
     path.touch(mode=0o600)
     path.write_text("first-token\nsecond-token\n")
     return path
 
 
-def test_tokens_open_the_door_and_stay_out_of_the_log(token_file):
-    """A token of the file is let in; none, or another, is told so; health needs none."""
-    with RunningService(*ONE, "--token-file", str(token_file)) as service:
-        for token in ("first-token", "second-token"):
-            with iw.connect(service.address, token=token, retries=0) as client:
-                client.server_info()
-        for token, reason in ((None, "UNAUTHENTICATED"), ("third-token", "UNKNOWN_TOKEN"), ("", "UNKNOWN_TOKEN")):
-            with iw.connect(service.address, token=token, retries=0) as client:
-                with pytest.raises(iw.Unauthenticated) as caught:
-                    client.check(iw.WindingSet(("a",), [[1.0]]))
-                assert caught.value.reason == reason
-                assert client.health()
-        wait_until(lambda: sum("token-" in line.get("client", "") for line in service.log()) == 2, 2)
-        clients = {line["client"] for line in service.log() if "client" in line}
-
-        assert len(clients) == 2
-        assert "first-token" not in service.log_text()
-
-
-def test_token_file_is_read_again(token_file):
-    """A token that is taken out of the file stops working, a new one works, without a restart."""
-    with RunningService(*ONE, "--token-file", str(token_file)) as service:
-        with iw.connect(service.address, token="third-token", retries=0) as client:
-            with pytest.raises(iw.Unauthenticated):
-                client.server_info()
-            token_file.write_text("third-token\n")
-
-            def let_in() -> bool:
-                try:
-                    client.server_info()
-                except iw.Unauthenticated:
-                    return False
-                return True
-
-            wait_until(let_in, 5)
-        with iw.connect(service.address, token="first-token", retries=0) as client:
-            with pytest.raises(iw.Unauthenticated):
-                client.server_info()
-
-
-def test_token_file_that_others_may_read_is_refused(token_file):
-    """Mode 0600 is expected, and said."""
-    token_file.chmod(0o644)
-    with pytest.raises(RuntimeError, match="0600"):
-        RunningService(*ONE, "--token-file", str(token_file))
-
-
-def test_one_unauthenticated_message_of_100_megabytes_is_not_read(token_file):
-    """One call, one message of 100 MB: less than 50 ms of processor, no growth."""
-
-    def cost(pid: int) -> tuple[float, int]:
-        fields = Path(f"/proc/{pid}/stat").read_text().rpartition(")")[2].split()
-        return (int(fields[11]) + int(fields[12])) / 100, int(fields[21]) * 4096
-
+@pytest.fixture(scope="module")
+def guarded(token_file) -> Iterator[RunningService]:
+    """A server that asks for a token."""
     with RunningService(*ONE, "--token-file", str(token_file)) as service:
         with iw.connect(service.address, token="first-token") as client:
             wait_until(lambda: client.server_info().blas_thread_count == 1, 60)
-        cpu_s, resident = cost(service.pid)
-        with grpc.insecure_channel(service.address) as channel, pytest.raises(grpc.RpcError) as caught:
-            channel.unary_unary("/interwind.v1.ArrayService/PutArray")(bytes(100_000_000), timeout=20)
-        after_s, grown = cost(service.pid)
+        yield service
+
+
+def test_one_unauthenticated_message_of_100_megabytes_is_not_read(guarded):
+    """One call, one message of 100 MB: less than 50 ms of processor, no growth."""
+
+    def cost() -> tuple[float, int]:
+        fields = Path(f"/proc/{guarded.pid}/stat").read_text().rpartition(")")[2].split()
+        return (int(fields[11]) + int(fields[12])) / 100, int(fields[21]) * 4096
+
+    cpu_s, resident = cost()
+    with grpc.insecure_channel(guarded.address) as channel, pytest.raises(grpc.RpcError) as caught:
+        channel.unary_unary("/interwind.v1.ArrayService/PutArray")(bytes(100_000_000), timeout=20)
+    after_s, grown = cost()
 
     assert caught.value.code() is grpc.StatusCode.UNAUTHENTICATED
     assert after_s - cpu_s <= 0.05
     assert grown - resident < 8e6
+
+
+def test_tokens_open_the_door_and_stay_out_of_the_log(guarded):
+    """A token of the file is let in; none, or another, is told so; health needs none."""
+    for token in ("first-token", "second-token"):
+        with iw.connect(guarded.address, token=token, retries=0) as client:
+            client.server_info()
+    for token, reason in ((None, "UNAUTHENTICATED"), ("third-token", "UNKNOWN_TOKEN"), ("", "UNKNOWN_TOKEN")):
+        with iw.connect(guarded.address, token=token, retries=0) as client:
+            with pytest.raises(iw.Unauthenticated) as caught:
+                client.check(iw.WindingSet(("a",), [[1.0]]))
+            assert caught.value.reason == reason
+            assert client.health()
+
+    def callers() -> set[str]:
+        return {line["client"] for line in guarded.log() if "client" in line}
+
+    wait_until(lambda: len(callers()) == 2, 2)
+    assert all(caller.startswith("token-") for caller in callers())
+    assert "first-token" not in guarded.log_text()
+
+
+def test_token_file_is_read_again(guarded, token_file):
+    """A token that is taken out of the file stops working, a new one works, without a restart."""
+    with iw.connect(guarded.address, token="third-token", retries=0) as client:
+        with pytest.raises(iw.Unauthenticated):
+            client.server_info()
+        token_file.write_text("third-token\n")
+
+        def let_in() -> bool:
+            try:
+                client.server_info()
+            except iw.Unauthenticated:
+                return False
+            return True
+
+        wait_until(let_in, 5)
+    with iw.connect(guarded.address, token="first-token", retries=0) as client, pytest.raises(iw.Unauthenticated):
+        client.server_info()
 
 
 def test_reflection_can_be_switched_off():
