@@ -132,12 +132,12 @@ def time_response(
     observe: Any = None,
     initial: Any = None,
     tolerance: float = DEFAULT_TOLERANCE,
+    recording: Recording | None = None,
 ) -> TimeResponse:
     """Solve the network over time."""
-    from interwind_service.response import observed_stress, time
+    from interwind_service.response import time
 
-    answer = time.time_response(network, stop_s, step_s, observe, initial, tolerance)
-    return observed_stress.with_cautions(network, answer)
+    return time.time_response(network, stop_s, step_s, observe, initial, tolerance, recording=recording)
 
 
 @_with_provenance
@@ -145,10 +145,9 @@ def periodic_response(
     network: Network, period_s: float, step_s: float, observe: Any = None, tolerance: float = DEFAULT_TOLERANCE
 ) -> PeriodicResponse:
     """Find one period of the steady state, directly."""
-    from interwind_service.response import observed_stress, periodic
+    from interwind_service.response import periodic
 
-    answer = periodic.periodic_response(network, period_s, step_s, observe, tolerance)
-    return observed_stress.with_cautions(network, answer)
+    return periodic.periodic_response(network, period_s, step_s, observe, tolerance)
 
 
 def sample_windings(windings: WindingSet, sample: SampleWindings) -> NDArray[Any]:

@@ -61,3 +61,15 @@ def test_a_harmless_network_gets_the_standing_statement_only():
     """5 V and nothing stored: an engineering estimate, no more."""
     run = engine.time_response(divider(iw.Constant(5.0)), 1e-6, 1e-6)
     assert ["ENGINEERING_ESTIMATE"] == list(codes(run))
+
+
+def test_a_switched_network_tells_its_source_and_its_capacitor():
+    """600 V behind an open switch, nobody looking: told; 1 mF charged to it over both nodes observed: 180 J (derived)."""
+    gate = iw.GateTimes([1.0], initially_closed=True)
+    net = divider(iw.Constant(600.0))
+    net = iw.Network("0v", [*net.elements[:1], iw.Switch("S", "bus", "mid", gate, 1e-3), iw.Resistor("R", "mid", "out", 1.0),
+                            *net.elements[2:]])  # fmt: skip
+    unseen = engine.time_response(net, 1e-6, 1e-6, [iw.ElementCurrent("R")])
+    charged = engine.time_response(net, 50e-3, 1e-3, [iw.NodeVoltage("out")])
+    assert 600.0 == codes(unseen)["TOUCHABLE_VOLTAGE"]
+    assert codes(charged)["STORED_ENERGY"] == pytest.approx(180.0, rel=1e-6)

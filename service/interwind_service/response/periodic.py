@@ -10,20 +10,23 @@ from collections.abc import Callable, Sequence
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import AccuracyNotReached
+from interwind.errors import AccuracyNotReached, InvalidNetwork
 from interwind.model.finding import Evidence, Finding, Severity
 from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.periodic import PeriodicResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
+from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
+from interwind_service.response.cautions import cautions_of
 from interwind_service.response.commensurate import require_commensurate
 from interwind_service.response.cycle_map import CycleMap, FixedPoint, fixed_point
-from interwind_service.response.device import TimedSwitch
+from interwind_service.response.device import TimedSwitch, is_smooth
 from interwind_service.response.energy import energy_of
 from interwind_service.response.figures import figures_of
 from interwind_service.response.observe import resolve
+from interwind_service.response.observed_stress import observed_stress
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.periodic_linear import periodic_response_linear
 from interwind_service.response.readings import readings_of
@@ -58,6 +61,7 @@ def periodic_response(
     observables = resolve(topology, observe)
     if not topology.of_kind(Kind.SWITCH, Kind.DIODE, Kind.ARRESTER, Kind.SATURABLE).size:
         return periodic_response_linear(topology, period_s, step_s, observables, tolerance)
+    _refuse_smooth(topology)
     prepared = switched_network(topology, period_s, step_s, period_s)
     start = residual_state(prepared.tableau)
     cycle = CycleMap(prepared, prepared.start_mode(start))
@@ -85,9 +89,10 @@ def periodic_response(
     readings = {piece.number: readings_of(prepared.tableau, piece.mode, observables) for piece in record.distinct()}
     figures = figures_of(record, readings, period_s, tol.HARMONICS, tol.SETTLE_SHARE * step_s)
     names = [element.name for element in network.elements]
+    samples = sample(record, readings, time_s, step_s)
     return PeriodicResponse(
         observables,
-        sample(record, readings, time_s, step_s),
+        samples,
         period_s=period_s,
         time_s=time_s,
         means=figures.mean,
@@ -100,8 +105,20 @@ def periodic_response(
         events=events_of(prepared, record),
         ledger=energy.ledger,
         findings=(*topology.findings, *findings, *undefined_findings(observables, readings)),
+        cautions=cautions_of(topology, observed_stress(topology, observables, samples, figures.peak)),
         evidence=evidence,
     )
+
+
+def _refuse_smooth(topology: Topology) -> None:
+    for branch in topology.of_kind(Kind.DIODE, Kind.ARRESTER).tolist():
+        if is_smooth(topology, branch):
+            raise InvalidNetwork.at(
+                f"elements[{topology.element[branch]}]",
+                f"{topology.names[branch]!r} follows a smooth law, for which no periodic response is offered; run it in "
+                "time, or state the diode by its forward voltage and resistance",
+                reason="NOT_OFFERED",
+            )
 
 
 def _without_offset(cycle: CycleMap, found: FixedPoint) -> FloatArray:

@@ -17,10 +17,12 @@ from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
+from interwind_service.response.cautions import cautions_of
 from interwind_service.response.device import is_smooth
 from interwind_service.response.energy import Energy, energy_of
 from interwind_service.response.nonlinear import NonlinearRun
 from interwind_service.response.observe import resolve
+from interwind_service.response.observed_stress import observed_stress
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readings import Readings, readings_of
 from interwind_service.response.start import start_state
@@ -71,6 +73,7 @@ def time_response_switching(
     readings = {piece.number: readings_of(prepared.tableau, piece.mode, observables) for piece in record.distinct()}
     require_accuracy(evidence, energy.ledger, tolerance)
     samples = sample(record, readings, time_s, step_s)
+    cautions = cautions_of(topology, observed_stress(topology, observables, samples))
     if sink is not None:
         sink(0, samples)
         samples, time_s = samples[:0], time_s[:0]
@@ -81,6 +84,7 @@ def time_response_switching(
         events=events_of(prepared, record),
         ledger=energy.ledger,
         findings=(*topology.findings, *undefined_findings(observables, readings)),
+        cautions=cautions,
         evidence=evidence,
     )
 
@@ -102,6 +106,7 @@ def _with_smooth_laws(
         local *= tol.STEP_SHARE
     require_accuracy(run.evidence, run.ledger, tolerance)
     samples = run.samples
+    cautions = cautions_of(topology, observed_stress(topology, observables, samples))
     if sink is not None:
         sink(0, samples)
         samples, time_s = samples[:0], time_s[:0]
@@ -112,6 +117,7 @@ def _with_smooth_laws(
         events=run.events,
         ledger=run.ledger,
         findings=(*topology.findings, *undefined_findings(observables, run.undefined)),
+        cautions=cautions,
         evidence=run.evidence,
     )
 
