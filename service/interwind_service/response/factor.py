@@ -66,7 +66,9 @@ def equilibrate(A: ComplexArray) -> tuple[ComplexArray, FloatArray, FloatArray]:
         size *= column[:, None, :]
         r *= row
         c *= column
-    return A * r[:, :, None] * c[:, None, :], r, c
+    scaled = A * r[:, :, None]
+    scaled *= c[:, None, :]
+    return scaled, r, c
 
 
 def _root(largest: FloatArray) -> FloatArray:
