@@ -64,11 +64,11 @@ def test_a_harmless_network_gets_the_standing_statement_only():
 
 
 def test_a_switched_network_tells_its_source_and_its_capacitor():
-    """600 V behind an open switch, nobody looking: told; 1 mF charged to it over both nodes observed: 180 J (derived)."""
+    """600 V behind a switch, nobody looking: told; 1 mF charged to it, its node observed: 180 J (derived)."""
     gate = iw.GateTimes([1.0], initially_closed=True)
-    net = divider(iw.Constant(600.0))
-    net = iw.Network("0v", [*net.elements[:1], iw.Switch("S", "bus", "mid", gate, 1e-3), iw.Resistor("R", "mid", "out", 1.0),
-                            *net.elements[2:]])  # fmt: skip
+    source, _, capacitor = divider(iw.Constant(600.0)).elements
+    switch, resistor = iw.Switch("S", "bus", "mid", gate, 1e-3), iw.Resistor("R", "mid", "out", 1.0)
+    net = iw.Network("0v", [source, switch, resistor, capacitor])
     unseen = engine.time_response(net, 1e-6, 1e-6, [iw.ElementCurrent("R")])
     charged = engine.time_response(net, 50e-3, 1e-3, [iw.NodeVoltage("out")])
     assert 600.0 == codes(unseen)["TOUCHABLE_VOLTAGE"]
