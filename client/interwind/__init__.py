@@ -92,6 +92,7 @@ from interwind.model.readings import (
     ShortedInductance,
     VoltageRatio,
 )
+from interwind.model.recording import RecordFigures, Recording
 from interwind.model.report import Change, Culprit, RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import (
     AdaptiveSweep,
@@ -214,6 +215,8 @@ __all__ = [
     "Ramp",
     "ReadingContext",
     "ReadingForm",
+    "RecordFigures",
+    "Recording",
     "RepairMethod",
     "RepairReport",
     "Resistor",

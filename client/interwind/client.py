@@ -28,6 +28,7 @@ from interwind.model.observables import Observable
 from interwind.model.periodic import PeriodicResponse
 from interwind.model.poles import PoleReport
 from interwind.model.readings import Reading
+from interwind.model.recording import Recording
 from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import (
     AdaptiveSweep,
@@ -203,13 +204,14 @@ class Client:
         initial: Initial = None,
         tolerance: float = 1e-6,
         *,
+        recording: Recording | None = None,
         timeout_s: float = DEFAULT_TIMEOUT_S,
         progress: Progress | None = None,
     ) -> TimeResponse:
         """Return samples at 0, step_s, 2 step_s, … stop_s."""
         arguments = {
             "network": net, "stop_s": stop_s, "step_s": step_s,
-            "observe": observe, "initial": initial, "tolerance": tolerance,
+            "observe": observe, "initial": initial, "tolerance": tolerance, "recording": recording,
         }  # fmt: skip
         response: TimeResponse = self._call("time_response", arguments, timeout_s, progress)
         return response

@@ -121,6 +121,7 @@ REQUESTS = {
     "time_response": {
         "network": NETWORK, "stop_s": 1.0, "step_s": 0.1, "observe": OBSERVE,
         "initial": {iw.WindingCurrent("T", "a"): 1.0, iw.ElementVoltage("c"): 2.0}, "tolerance": 1e-5,
+        "recording": iw.Recording(0.1, 0.9, 3, envelope=True),
     },
     "periodic_response": {"network": NETWORK, "period_s": 1.0, "step_s": 0.1, "observe": None, "tolerance": 1e-5},
 }  # fmt: skip
@@ -196,7 +197,11 @@ def _answers():
     yield "port_response", iw.PortResponse(("in",), vector, tensor, tensor, tensor, **noticed)
     events = (iw.Event(1e-3, "s1", "open"),)
     ledger = iw.EnergyLedger(1.0, 0.5, 0.4, 0.1, 0.0, {"r": 0.5})
-    yield "time_response", iw.TimeResponse(OBSERVE[:2], matrix, time_s=vector, events=events, ledger=ledger, **noticed)
+    figures = iw.RecordFigures(vector, vector, vector, vector)
+    yield "time_response", iw.TimeResponse(
+        OBSERVE[:2], matrix, time_s=vector, events=events, ledger=ledger, figures=figures, lowest=matrix,
+        highest=matrix, **noticed,
+    )  # fmt: skip
     yield "periodic_response", iw.PeriodicResponse(
         OBSERVE[:2], matrix, period_s=1e-3, time_s=vector, means=vector, rmses=vector, peaks=vector,
         peak_times_s=vector, harmonic_values=matrix + 1j, multipliers=vector + 1j, mean_power_w={"r": 1.0},

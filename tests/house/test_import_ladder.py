@@ -9,12 +9,13 @@ from collections.abc import Iterator
 LANGUAGE = {"model", "errors"}
 # A room not yet placed may use nothing; test_every_room_is_on_the_ladder names it.
 UNPLACED: tuple[set[str], set[str]] = (set(), set())
-GROUND = {"tolerances", "version", "progress"}
+GROUND = {"tolerances", "version", "progress", "rows"}
 # Each room of the service: what it may import of the service, and of the client's language.
 SERVICE: dict[str, tuple[set[str], set[str]]] = {
     "tolerances": (set(), set()),
     "version": (set(), set()),
     "progress": ({"tolerances"}, set()),
+    "rows": ({"tolerances"}, {"model"}),
     "windings": (GROUND, LANGUAGE),
     "network": (GROUND, LANGUAGE),
     "response": (GROUND | {"windings", "network"}, LANGUAGE),
@@ -47,6 +48,7 @@ FOREIGN: dict[str, set[str]] = {
     "interwind_service.tolerances": set(),
     "interwind_service.version": set(),
     "interwind_service.progress": set(),
+    "interwind_service.rows": {"numpy"},
     "interwind_service.testing": set(),
     "interwind_service.windings": NUMERIC,
     "interwind_service.network": NUMERIC,

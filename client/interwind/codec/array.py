@@ -108,9 +108,7 @@ def array_from_message(message: array_pb2.Array, field: str, *, real: bool = Tru
             array = numbers.view("<c16")
         else:
             if dtype.kind == "i" and not (np.abs(numbers) < 2.0 ** (8 * dtype.itemsize - 1)).all():
-                raise InvalidRequest.at(
-                    f"{field}.values", f"a number found that no {dtype} holds"
-                )
+                raise InvalidRequest.at(f"{field}.values", f"a number found that no {dtype} holds")
             array = numbers.astype(dtype)
         if not shape:
             shape = () if array.size == 1 else (array.size,)

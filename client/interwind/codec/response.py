@@ -11,6 +11,7 @@ from interwind.codec.observable import observable_to_message, observables_from_m
 from interwind.codec.stream import NamedArray, StreamResult, decode_stream, encode_stream
 from interwind.codec.windings import frozen_from, noticed_from_message, noticed_to_messages
 from interwind.model.periodic import PeriodicResponse
+from interwind.model.recording import RecordFigures
 from interwind.model.response import (
     EnergyLedger,
     Event,
@@ -23,6 +24,7 @@ from interwind.v1 import network_service_pb2, response_pb2, response_service_pb2
 
 Messages = Iterable[Any]
 ProgressCallback = Callable[[int, int], None] | None
+_FIGURES = ("means", "rmses", "peaks", "peak_times_s")
 _PERIODIC_ARRAYS = ("time_s", "means", "rmses", "peaks", "peak_times_s", "harmonic_values", "multipliers")
 
 
@@ -102,18 +104,21 @@ def ports_from_messages(messages: Messages, progress: ProgressCallback = None) -
 
 def time_to_messages(response: TimeResponse) -> Iterator[Any]:
     """Yield the messages of a time response."""
+    arrays = [NamedArray("samples", response.samples, response.observables), NamedArray("time_s", response.time_s)]
+    for name in ("lowest", "highest"):
+        if getattr(response, name) is not None:
+            arrays.append(NamedArray(name, getattr(response, name), response.observables))
+    if response.figures is not None:
+        arrays += [NamedArray(name, getattr(response.figures, name)) for name in _FIGURES]
+    part = response_service_pb2.ComputeTimeResponseResponse
+    return encode_stream(part, arrays, response, lambda trailer: time_trailer(response, trailer))
 
-    def finish(trailer: response_pb2.ResultTrailer) -> None:
-        _events_to_messages(response.events, trailer)
-        if response.ledger is not None:
-            trailer.ledger.CopyFrom(ledger_to_message(response.ledger))
 
-    return encode_stream(
-        response_service_pb2.ComputeTimeResponseResponse,
-        [NamedArray("time_s", response.time_s), NamedArray("samples", response.samples, response.observables)],
-        response,
-        finish,
-    )
+def time_trailer(response: TimeResponse, trailer: response_pb2.ResultTrailer) -> None:
+    """Put the events and the ledger of a time response into its trailer."""
+    _events_to_messages(response.events, trailer)
+    if response.ledger is not None:
+        trailer.ledger.CopyFrom(ledger_to_message(response.ledger))
 
 
 def time_from_messages(messages: Messages, progress: ProgressCallback = None) -> TimeResponse:
@@ -126,6 +131,9 @@ def time_from_messages(messages: Messages, progress: ProgressCallback = None) ->
         time_s=result.arrays["time_s"],
         events=events_from_messages(trailer.events),
         ledger=ledger_from_message(trailer.ledger) if trailer.HasField("ledger") else None,
+        figures=RecordFigures(**_arrays(result, _FIGURES)) if "means" in result.arrays else None,
+        lowest=result.arrays.get("lowest"),
+        highest=result.arrays.get("highest"),
         **_noticed(result),
     )
 

@@ -17,6 +17,7 @@ from interwind.codec.observable import (
 )
 from interwind.errors import InvalidRequest, field_path
 from interwind.model.frozen import frozen_vector
+from interwind.model.recording import Recording
 from interwind.model.response import DEFAULT_TOLERANCE_DB, AdaptiveSweep, SteadyStart
 from interwind.v1 import network_service_pb2, response_pb2, response_service_pb2
 
@@ -105,6 +106,12 @@ def _time_request(arguments: Arguments) -> Any:
         steady_start=isinstance(initial, SteadyStart),
         tolerance=float(arguments.get("tolerance") or 0.0),
     )
+    recording = arguments.get("recording")
+    if recording is not None:
+        message.recording.from_s, message.recording.every_count = recording.from_s, recording.every
+        message.recording.envelope = recording.envelope
+        if recording.until_s is not None:
+            message.recording.until_s = recording.until_s
     if initial is not None and not isinstance(initial, SteadyStart):
         for observable, value in initial.items():
             with field_path("initial"):
@@ -131,6 +138,7 @@ def _time_arguments(message: Any) -> dict[str, Any]:
         "step_s": message.step_s,
         "observe": observables_from_messages(message.observe, "observe") or None,
         "initial": initial,
+        "recording": _recording(message.recording) if message.HasField("recording") else None,
     }
     if message.tolerance:
         arguments["tolerance"] = message.tolerance
@@ -139,6 +147,12 @@ def _time_arguments(message: Any) -> dict[str, Any]:
 
 def _at_least_1d(value: Any) -> Any:
     return [value] if isinstance(value, int | float) else value
+
+
+def _recording(message: Any) -> Recording:
+    until_s = message.until_s if message.HasField("until_s") else None
+    with field_path("recording"):
+        return Recording(message.from_s, until_s, message.every_count or 1, message.envelope)
 
 
 def _periodic_request(arguments: Arguments) -> Any:

@@ -97,6 +97,38 @@ def encode_stream(
     yield trailer
 
 
+class RowStream:
+    """A time response that goes out row by row while it is made: header, samples, then times and trailer."""
+
+    def __init__(self, part: type[Any], send: Callable[[Any], None]) -> None:
+        self._part, self._send = part, send
+        self._writer = ChunkWriter(part)
+        self._rows = 0
+        self.begun = False
+
+    def begin(self, columns: Sequence[Observable], rows: int) -> None:
+        """Announce the table."""
+        self.begun, self._rows = True, rows
+        table = NamedArray("samples", np.empty((0, len(columns))), tuple(columns))
+        header = header_of([table, NamedArray("time_s", np.empty(0))], [(rows, len(columns)), (rows,)])
+        self._send(self._part(header=header))
+
+    def add(self, first: int, samples: NDArray[np.float64]) -> None:
+        """Send rows, in order; ``first`` is the place of the first one."""
+        for message in self._writer.chunks(samples):
+            self._send(message)
+
+    def end(self, value: Any, step_s: float, finish: Callable[[Any], None]) -> None:
+        """Send the times k step_s and the trailer of ``value``, to which ``finish`` may add."""
+        for start in range(0, self._rows, CHUNK_BYTES):
+            stop = min(self._rows, start + CHUNK_BYTES)
+            for message in self._writer.chunks(step_s * np.arange(start, stop)):
+                self._send(message)
+        trailer = self._writer.trailer(value)
+        finish(trailer.trailer)
+        self._send(trailer)
+
+
 @dataclass(slots=True, eq=False)
 class StreamResult:
     """A streamed answer put together: arrays by name, their columns, and the trailer."""

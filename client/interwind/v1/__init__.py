@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "744222aa0892e7e96004be338f9c51d0bd44278fc93f2ff92721a2f117c99781"
+SOURCE_SHA256 = "02f0bd974d9c35173fa74737e50c67057f94dd5802eff62c0c7abbfc0f68985c"

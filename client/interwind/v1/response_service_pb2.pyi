@@ -69,7 +69,7 @@ class ComputePortResponseResponse(_message.Message):
     def __init__(self, progress: _Optional[_Union[_response_pb2.Progress, _Mapping]] = ..., header: _Optional[_Union[_response_pb2.ResultHeader, _Mapping]] = ..., chunk: _Optional[_Union[_response_pb2.ResultChunk, _Mapping]] = ..., trailer: _Optional[_Union[_response_pb2.ResultTrailer, _Mapping]] = ...) -> None: ...
 
 class ComputeTimeResponseRequest(_message.Message):
-    __slots__ = ("size", "network", "stop_s", "step_s", "observe", "initial", "steady_start", "tolerance")
+    __slots__ = ("size", "network", "stop_s", "step_s", "observe", "initial", "steady_start", "tolerance", "recording")
     SIZE_FIELD_NUMBER: _ClassVar[int]
     NETWORK_FIELD_NUMBER: _ClassVar[int]
     STOP_S_FIELD_NUMBER: _ClassVar[int]
@@ -78,6 +78,7 @@ class ComputeTimeResponseRequest(_message.Message):
     INITIAL_FIELD_NUMBER: _ClassVar[int]
     STEADY_START_FIELD_NUMBER: _ClassVar[int]
     TOLERANCE_FIELD_NUMBER: _ClassVar[int]
+    RECORDING_FIELD_NUMBER: _ClassVar[int]
     size: _response_pb2.Size
     network: _network_pb2.Network
     stop_s: float
@@ -86,7 +87,20 @@ class ComputeTimeResponseRequest(_message.Message):
     initial: _containers.RepeatedCompositeFieldContainer[_response_pb2.InitialValue]
     steady_start: bool
     tolerance: float
-    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., stop_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., initial: _Optional[_Iterable[_Union[_response_pb2.InitialValue, _Mapping]]] = ..., steady_start: bool = ..., tolerance: _Optional[float] = ...) -> None: ...
+    recording: Recording
+    def __init__(self, size: _Optional[_Union[_response_pb2.Size, _Mapping]] = ..., network: _Optional[_Union[_network_pb2.Network, _Mapping]] = ..., stop_s: _Optional[float] = ..., step_s: _Optional[float] = ..., observe: _Optional[_Iterable[_Union[_observable_pb2.Observable, _Mapping]]] = ..., initial: _Optional[_Iterable[_Union[_response_pb2.InitialValue, _Mapping]]] = ..., steady_start: bool = ..., tolerance: _Optional[float] = ..., recording: _Optional[_Union[Recording, _Mapping]] = ...) -> None: ...
+
+class Recording(_message.Message):
+    __slots__ = ("from_s", "until_s", "every_count", "envelope")
+    FROM_S_FIELD_NUMBER: _ClassVar[int]
+    UNTIL_S_FIELD_NUMBER: _ClassVar[int]
+    EVERY_COUNT_FIELD_NUMBER: _ClassVar[int]
+    ENVELOPE_FIELD_NUMBER: _ClassVar[int]
+    from_s: float
+    until_s: float
+    every_count: int
+    envelope: bool
+    def __init__(self, from_s: _Optional[float] = ..., until_s: _Optional[float] = ..., every_count: _Optional[int] = ..., envelope: bool = ...) -> None: ...
 
 class ComputeTimeResponseResponse(_message.Message):
     __slots__ = ("progress", "header", "chunk", "trailer")

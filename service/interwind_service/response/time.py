@@ -7,27 +7,25 @@ from collections.abc import Sequence
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import AccuracyNotReached, InvalidRequest
-from interwind.model.finding import Evidence
+from interwind.errors import InvalidRequest
 from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.recording import Recording
-from interwind.model.response import EnergyLedger, Initial, TimeResponse
+from interwind.model.response import Initial, TimeResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
-from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
 from interwind_service.response.cautions import cautions_of
-from interwind_service.response.flow import Flow, flow_of
+from interwind_service.response.flow import flow_of
 from interwind_service.response.generator import Generator, generator_of
 from interwind_service.response.initial import start_of
 from interwind_service.response.ledger import ledger_of
-from interwind_service.response.linear_run import LinearRun, run_linear
+from interwind_service.response.linear_evidence import evidence_of_run, require_run
+from interwind_service.response.linear_run import run_linear
 from interwind_service.response.observe import resolve
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readout import Readout, readout_of
 from interwind_service.response.recording import Recorder, window_of
-from interwind_service.response.residual import equation_residual
 from interwind_service.response.state_space import StateSpace
 from interwind_service.response.switching import time_response_switching
 from interwind_service.response.time_model import model_of
@@ -115,8 +113,10 @@ def time_response(
     run = run_linear(flow, generator, begin, own_rows, take, step_s=step_s, steps=steps, window=window)
     ledger = ledger_of(space, flow, generator, start, run.gramian, run.end)
     peak = max(start.stored_before_j, start.stored_after_j, run.peak_energy(flow.energy, steps * step_s))
-    evidence = _evidence(topology, space, flow, run, ledger, peak)
-    _require(evidence, tolerance)
+    evidence = evidence_of_run(
+        "structural reduction, resolvent blocks, exact propagation", space, flow, run, ledger, peak
+    )
+    require_run(evidence, tolerance)
     figures = None
     if recording is not None:
         exact = window_moments(own_rows, readout, run.window_gramian, generator, step_s * (window.last - window.first))
@@ -164,35 +164,3 @@ def _centre(generator: Generator, stop_s: float, step_s: float) -> float:
     """Choose s0, 1/s: between the step and the run, or at the fastest drive while slow modes still keep their phase."""
     fastest = float(generator.rate.max(initial=0.0))
     return max(1.0 / float(np.sqrt(step_s * stop_s)), min(fastest, tol.SLOW_PHASE / stop_s))
-
-
-def _evidence(
-    topology: Topology,
-    space: StateSpace,
-    flow: Flow,
-    run: LinearRun,
-    ledger: EnergyLedger,
-    peak_j: float,
-) -> Evidence:
-    size = max(abs(ledger.supplied_j), peak_j)
-    return Evidence(
-        method="structural reduction, resolvent blocks, exact propagation",
-        residual=max(space.residual, equation_residual(topology, flow.signals, flow.M, run.states, space.shift)),
-        condition=space.condition,
-        energy_error=abs(ledger.numerical_j) / size if size > 0.0 else 0.0,
-    )
-
-
-def _require(evidence: Evidence, tolerance: float) -> None:
-    if not evidence.energy_error <= tolerance:
-        raise AccuracyNotReached(
-            f"energy_error: {evidence.energy_error:.3g} found; tolerance is {tolerance:.3g}; the energy ledger does "
-            "not close, so the response is not returned",
-            evidence=evidence,
-        )
-    if not evidence.residual <= tolerance:
-        raise AccuracyNotReached(
-            f"residual: {evidence.residual:.3g} found; tolerance is {tolerance:.3g}; the equations are not met, so the "
-            "response is not returned",
-            evidence=evidence,
-        )

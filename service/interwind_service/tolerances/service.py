@@ -38,3 +38,6 @@ TOKEN_RELOAD_INTERVAL_S = 1.0  # how often the token file is looked at, at most
 PROGRESS_INTERVAL_S = 0.1  # progress is for eyes; more often it only costs
 HEALTH_INTERVAL_S = 0.5  # how soon health tells that no worker can be had
 PARENT_POLL_S = 0.2  # how often an embedded server looks whether its parent lives
+
+# A table shorter than this is made before it is sent; a longer one goes out while it is made.
+STREAMED_ROWS_BYTES = 4 * 1024 * 1024

@@ -13,10 +13,13 @@ from google.protobuf.message import DecodeError
 from interwind.codec.array import stored_arrays
 from interwind.codec.calls import CALLS, Call
 from interwind.codec.errors import to_status
+from interwind.codec.response import time_trailer
+from interwind.codec.stream import RowStream
 from interwind.errors import InterwindError, InvalidRequest, Overloaded
 from interwind.v1 import response_pb2
 from interwind_service import engine
 from interwind_service.progress import listening
+from interwind_service.rows import streaming_rows
 from interwind_service.workers.arrays import ArrayFolder
 from interwind_service.workers.estimate import check_size
 from interwind_service.workers.spool import SpoolWriter, room_in_spool
@@ -62,13 +65,23 @@ def run_call(work: CallWork, *, notify: Callable[[Any], None]) -> CallAnswer:
         sized = "size" in message.DESCRIPTOR.fields_by_name
         if sized and type(message.size).FromString(work.size_header) != message.size:
             raise InvalidRequest.at("size", "it is not the first field, or stands twice; send one size, first")
-        with room_in_spool(), stored_arrays(work.arrays), listening(_teller(call, notify)):
+        rows = RowStream(call.response_class, lambda part: spool.write(part.SerializeToString()))
+        listener = rows if call.engine == "time_response" else None
+        with (
+            room_in_spool(),
+            stored_arrays(work.arrays),
+            listening(_teller(call, notify)),
+            streaming_rows(listener),
+        ):
             arguments = call.decode(message)
             if sized:
                 check_size(message.size, arguments)
             result = getattr(engine, call.engine)(**arguments)
-            for response in call.encode(result):
-                spool.write(response.SerializeToString())
+            if rows.begun:
+                rows.end(result, arguments["step_s"], lambda trailer: time_trailer(result, trailer))
+            else:
+                for response in call.encode(result):
+                    spool.write(response.SerializeToString())
     except InterwindError as error:
         return CallAnswer(status=to_status(error), reason=error.reason, solve_s=time.monotonic() - started_s)
     except MemoryError:
