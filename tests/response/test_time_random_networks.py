@@ -124,3 +124,13 @@ def test_inputs_are_not_changed():
     one, other = (time_response(network, STOP_S, STOP_S / 100) for _ in range(2))
     assert np.array_equal(one.samples, other.samples)
     assert one.ledger == other.ledger
+
+
+def test_what_the_sources_see_is_reciprocal_and_passive():
+    """On the real axis the transfer matrix is symmetric up to sign and positive, and the evidence says so."""
+    for spread in ("narrow", "wide"):
+        for seed in range(8):
+            answer = solved(driven(networks.random_network(seed, spread), WAVES["step"]), 10)
+            if answer is not None:
+                assert answer.evidence.reciprocity_error < 1e-12, (spread, seed)
+                assert answer.evidence.passivity_margin > -1e-12, (spread, seed)

@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind.errors import AccuracyNotReached
-from interwind.model.finding import Evidence, Finding, Severity
+from interwind.model.finding import Finding, Severity
 from interwind.model.observables import Observable
 from interwind.model.periodic import PeriodicResponse
 from interwind_service import tolerances as tol
@@ -25,12 +25,12 @@ from interwind_service.response.flow import Flow, flow_of
 from interwind_service.response.generator import Generator, generator_of
 from interwind_service.response.initial import Start
 from interwind_service.response.ledger import ledger_of, stored
+from interwind_service.response.linear_evidence import evidence_of_run, require_run
 from interwind_service.response.linear_run import LinearRun, run_linear
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.periodic_figures import Figures, figures_over_period
 from interwind_service.response.readout import Signals, readout_of
 from interwind_service.response.recording import Window
-from interwind_service.response.residual import equation_residual
 from interwind_service.response.state_space import StateSpace
 from interwind_service.response.time_model import model_of
 from interwind_service.response.time_stress import stress_of
@@ -73,17 +73,11 @@ def periodic_response_linear(
     u = generator.U @ states[0, flow.states :]
     energy = stored(space, flow.energy @ states[0], u)
     ledger = ledger_of(space, flow, generator, Start(found.z, energy, energy, 0.0, ()), run.gramian, run.end)
-    size = max(abs(ledger.supplied_j), run.peak_energy(flow.energy, period_s))
-    evidence = Evidence(
-        method="structural reduction, resolvent blocks, direct, (I - Phi) x = q",
-        residual=max(space.residual, equation_residual(topology, flow.signals, flow.M, run.states, space.shift)),
-        condition=space.condition,
-        energy_error=abs(ledger.numerical_j) / size if size > 0.0 else 0.0,
-        periods_propagated=2 + bool(found.free.shape[1]),
-    )
-    for name, value in (("energy_error", evidence.energy_error), ("residual", evidence.residual)):
-        if not value <= tolerance:
-            raise AccuracyNotReached(f"{name}: {value:.3g} found; tolerance is {tolerance:.3g}", evidence=evidence)
+    evidence = evidence_of_run(
+        "structural reduction, resolvent blocks, direct, (I - Phi) x = q",
+        space, flow, run, ledger, run.peak_energy(flow.energy, period_s), periods=2 + bool(found.free.shape[1]),
+    )  # fmt: skip
+    require_run(evidence, tolerance)
     readout = readout_of(topology, observables)
     rows = readout.rows @ flow.signals
     figures: Figures = figures_over_period(flow, generator, readout, rows, states, run.gramian, period_s)
