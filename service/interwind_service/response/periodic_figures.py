@@ -110,21 +110,21 @@ def _peaks(
     columns = np.arange(samples.shape[1])
     peak, at_s = samples[where, columns].copy(), step_s * where
     ladder = Ladder.of(flow.M, step_s)
-    offsets = np.linspace(0.0, 1.0, tol.PEAK_POINTS)
+    offsets = np.linspace(0.0, 1.0, tol.LINEAR_PEAK_POINTS)
     for column in columns:
         for step in (where[column] - 1, where[column]):
             if not 0 <= step < len(states) - 1:
                 continue
             for begin, length, state in _pieces(flow, generator, ladder, int(step), states[step], step_s):
                 low, high = 0.0, 1.0
-                for _ in range(tol.PEAK_ROUNDS):
+                for _ in range(tol.LINEAR_PEAK_ROUNDS):
                     share = low + (high - low) * offsets
                     y = ladder.advance(np.repeat(state[None], len(share), axis=0), share * length)
                     values = readout.finish(y @ rows.T)[:, column]
                     best = int(np.abs(values).argmax())
                     if abs(values[best]) > abs(peak[column]):
                         peak[column], at_s[column] = values[best], begin + length * share[best]
-                    width = (high - low) / (tol.PEAK_POINTS - 1)
+                    width = (high - low) / (tol.LINEAR_PEAK_POINTS - 1)
                     low, high = max(0.0, share[best] - width), min(1.0, share[best] + width)
     return peak, at_s
 

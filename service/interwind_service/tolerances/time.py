@@ -66,8 +66,8 @@ REST_SEPARATION = 10.0
 # Samples of one period from which peaks, and figures of powers, are taken: 4096 tell harmonics of products to 1e-7.
 PERIOD_SAMPLES = 4096
 # A peak is sought on so many points of a step, so many times on the best interval: to 1e-4 of a sample step.
-PEAK_POINTS = 18
-PEAK_ROUNDS = 3
+LINEAR_PEAK_POINTS = 18
+LINEAR_PEAK_ROUNDS = 3
 # A direction whose multiplier is this near to 1 keeps any offset: rounding of the propagation is some 1e-14.
 FREE_OFFSET = 1e-12
 # What one period adds along such a direction counts as a steady gain above this share of the states.
