@@ -18,6 +18,7 @@ from interwind.model.identification import Identification
 from interwind.model.network import Network
 from interwind.model.periodic import PeriodicResponse
 from interwind.model.poles import PoleReport
+from interwind.model.recording import Recording
 from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import AdaptiveSweep, FrequencyResponse, MnaSystem, PortResponse, TimeResponse
 from interwind.model.vary import SampleWindings
