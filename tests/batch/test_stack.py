@@ -180,3 +180,20 @@ def test_tape_writes_nothing_twice_and_uses_registers_again():
         for array, known in zip(found, expected, strict=True):
             assert np.array_equal(array, known)
     assert number(link.network()).nodes  # the base network is not changed by any of this
+
+
+def test_stacked_eigenvalues_are_those_of_the_verdict():
+    """Sets of four windings, possible and impossible, stated either way: eigenvalues and verdicts one by one."""
+    rng = np.random.default_rng(8)
+    k = rng.uniform(-0.75, 0.75, (60, 6))
+    coils = iw.WindingSet.from_coupling(tuple("abcd"), [1e-3, 2e-3, 5e-4, 1e-2], np.eye(4), 0.1)
+    pairs = [(coils.labels[i], coils.labels[j]) for i in range(4) for j in range(i)]
+    vary = [iw.VaryCoupling("T", pair, k[:, m]) for m, pair in enumerate(pairs)]
+    eigenvalues, settled = engine.clear_eigenvalues(coils, vary, 60)
+    net = iw.Network("zero", [iw.Windings("T", coils, {label: (label, "zero") for label in coils.labels})])
+    overrides, numbers = lay_out(net, vary)
+    for row in range(60):
+        report = engine.check(overrides.variant(numbers[row]).element("T").windings)
+        assert np.allclose(report.eigenvalues, eigenvalues[row], rtol=0.0, atol=1e-14)
+        assert (report.verdict is iw.Verdict.VALID) == settled[row]
+    assert 10 < settled.sum() < 50

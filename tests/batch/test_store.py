@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 import sqlite3
 import subprocess
 import sys
@@ -9,7 +10,7 @@ import sys
 import pytest
 from plain_batch import plan
 
-from interwind.errors import InvalidRequest, NotFound, OutOfRange, Unavailable
+from interwind.errors import InvalidRequest, NotFound, OutOfRange, Overloaded, Unavailable
 from interwind.model.batch import BatchState
 from interwind_service.batch.folder import StateFolder
 from interwind_service.batch.schema import MIGRATIONS
@@ -131,6 +132,16 @@ def test_a_newer_format_is_refused(tmp_path):
         Store(folder, retain_s=1.0)
     assert "STATE_FOLDER_TOO_NEW" == caught.value.reason
     folder.close()
+
+
+def test_results_that_cannot_fit_are_refused_at_once(store):
+    """A batch whose results are larger than what the disk has left is not begun; the two sizes are told."""
+    made = plan(store.folder, 4, 4)
+    vast = dataclasses.replace(made, forecast=dataclasses.replace(made.forecast, result_bytes=10**18))
+    with pytest.raises(Overloaded) as caught:
+        store.create(vast)
+    assert ("STATE_FOLDER_FULL", str(10**18)) == (caught.value.reason, caught.value.metadata["result_bytes"])
+    assert [] == list(store.folder.incoming.iterdir())
 
 
 def test_what_cannot_be_written_is_refused_and_nothing_is_kept(store):

@@ -139,6 +139,10 @@ def solve_rows(desk: Desk, numbers: FloatArray, first_row: int) -> Rows:
     answered = np.zeros(len(numbers), dtype=bool)
     if desk.stack is not None:
         answered = engine.stacked_responses(desk.stack, desk.overrides.columns(numbers), values)
+    if isinstance(desk.analysis, CheckAnalysis):
+        element = checked_windings(desk.overrides.network, desk.analysis)
+        own = [c for c in desk.overrides.columns(numbers) if getattr(c, "windings_name", "") == element.name]
+        values[0], answered = engine.clear_eigenvalues(element.windings, own, len(numbers))
     answer = _answerer(desk.overrides.network, desk.analysis, layout)
     for k in np.flatnonzero(~answered).tolist():
         try:

@@ -13,7 +13,7 @@ import sqlite3
 import time
 from collections.abc import Callable
 
-from interwind.errors import InvalidRequest, NotFound, OutOfRange
+from interwind.errors import InvalidRequest, NotFound, OutOfRange, Overloaded
 from interwind.model.batch import BatchProgress, BatchState
 from interwind_service.batch import folder as files
 from interwind_service.batch.chunks import ChunkLedger
@@ -71,6 +71,15 @@ class Store:
                         batch_id=known["batch_id"],
                     )
                 return str(known["batch_id"])
+            free = shutil.disk_usage(self.folder.path).free
+            if plan.forecast.result_bytes > free:
+                shutil.rmtree(self.folder.incoming / plan.folder, ignore_errors=True)
+                raise Overloaded(
+                    f"the results need {plan.forecast.result_bytes} bytes, the state folder has {free} left; observe less,"
+                    " delete batches that are done, or submit the variants in parts",
+                    reason="STATE_FOLDER_FULL",
+                    metadata={"result_bytes": str(plan.forecast.result_bytes), "free_bytes": str(free)},
+                )
             batch_id = secrets.token_hex(8)
             (self.folder.incoming / plan.folder).rename(self.folder.batch(batch_id))
             files.sync_folder(self.folder.batches)

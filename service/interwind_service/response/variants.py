@@ -15,17 +15,12 @@ from numpy.typing import NDArray
 from interwind.model import elements as el
 from interwind.model.vary import (
     Column,
-    SampleWindings,
     Vary,
-    VaryCoupling,
-    VaryInductance,
-    VaryMatrix,
-    VaryReadings,
     variant_count,
 )
-from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import WindingCoordinates
+from interwind_service.windings.variants import loose, vary_matrices
 
 FloatArray = NDArray[np.float64]
 Name = tuple[str | int, ...]
@@ -73,7 +68,7 @@ def variants_of(
     values: dict[int, FloatArray] = {}
     matrices: dict[int, FloatArray] = {}
     drives: list[FloatArray | None] = [None] * drive_count
-    for column in sorted(columns, key=lambda item: isinstance(item, VaryCoupling)):
+    for column in columns:
         if isinstance(column, Vary):
             branch = int(topology.branches_of(column.element)[0])
             element = topology.network.elements[topology.element[branch]]
@@ -88,19 +83,20 @@ def variants_of(
                     values[branch] = 1.0 / number if inverted else number
             else:
                 return None
-        elif isinstance(column, SampleWindings | VaryReadings):
-            return None  # matrices are made of them one by one, before
-        else:
-            group = next(k for k, g in enumerate(topology.groups) if g.name == column.windings_name)
-            base = topology.groups[group].inductance_h
-            L = matrices.setdefault(group, np.broadcast_to(base, (count, *base.shape)).copy())
-            _set_entries(L, topology.groups[group].labels, column)
     groups = {}
-    for group, L in matrices.items():
+    for group, base in enumerate(topology.groups):
+        own = [item for item in columns if not isinstance(item, Vary) and item.windings_name == base.name]
+        if not own:
+            continue
+        element = topology.network.elements[base.position]
+        L = vary_matrices(element.windings, own, count) if isinstance(element, el.Windings) else None
+        if L is None:
+            return None
+        matrices[group] = L
         N = coordinates[group].N
         if np.any(N != np.diag(N.diagonal())):
             return None
-        fit &= _loose(L)
+        fit &= loose(L)
         scale = N.diagonal()
         groups[group] = {
             (i, j): np.ascontiguousarray(L[:, i, j, None] * (scale[i] * scale[j]))
@@ -110,31 +106,3 @@ def variants_of(
     if any(control.sensed in values for control in topology.controls):
         return None
     return Variants(fit, values, groups, matrices, tuple(drives))
-
-
-def _set_entries(L: FloatArray, labels: tuple[str, ...], column: VaryMatrix | VaryInductance | VaryCoupling) -> None:
-    if isinstance(column, VaryMatrix):
-        L[...] = column.inductance_h
-        return
-    i, j = (labels.index(label) for label in column.pair)
-    if isinstance(column, VaryInductance):
-        L[:, i, j] = L[:, j, i] = column.values_h
-    else:
-        with np.errstate(invalid="ignore"):
-            L[:, i, j] = L[:, j, i] = column.values * np.sqrt(L[:, i, i] * L[:, j, j])
-
-
-def _loose(L: FloatArray) -> NDArray[np.bool_]:
-    """Say which matrices are symmetric, with every pivot of their coupling matrix above `LOOSE_PIVOT`."""
-    n = L.shape[1]
-    with np.errstate(all="ignore"):
-        root = np.sqrt(np.einsum("vii->vi", L))
-        K = L / (root[:, :, None] * root[:, None, :])
-        good = (L == L.transpose(0, 2, 1)).all(axis=(1, 2)) & np.isfinite(K).all(axis=(1, 2))
-        pivots = np.ones(len(L))
-        for k in range(n):
-            pivots = np.minimum(pivots, K[:, k, k])
-            for i in range(k + 1, n):
-                factor = K[:, i, k] / K[:, k, k]
-                K[:, i, k + 1 :] -= factor[:, None] * K[:, k, k + 1 :]
-    return good & (pivots > tol.LOOSE_PIVOT)

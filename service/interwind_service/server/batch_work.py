@@ -31,9 +31,11 @@ from interwind_service.tolerances import (
     BATCH_CHUNK_BYTES,
     BATCH_CHUNK_ROWS,
     BATCH_CHUNK_S,
+    BATCH_FORECAST_COLD_S,
     BATCH_FORECAST_POINTS,
     BATCH_FORECAST_ROWS,
     BATCH_FORECAST_S,
+    BATCH_FORECAST_TICK_S,
     BATCH_VARIANT_LIMIT,
     WORKER_BASE_BYTES,
 )
@@ -141,25 +143,26 @@ def _submission(recipe: bytes) -> Submission:
 def _seconds(desk: Desk, numbers: Any) -> tuple[float, float]:
     """Time some variants from all over the batch: return the seconds of a call, and of each row in it.
 
-    The first look pays for what a worker loads once; more rows are tried while that is quick. What a stack does not
-    answer is tried at some of its points only, so that a heavy variant does not keep the caller waiting.
+    In processor time, for others may keep the machine busy. The first look pays for what a worker loads once; more
+    rows are tried while that is quick. What a stack does not answer is tried at some of its points only, so that a
+    heavy variant does not keep the caller waiting.
     """
     points_share = 1.0
     if desk.stack is None:
         analysis, points_share = shortened(desk.analysis, BATCH_FORECAST_POINTS)
         desk = desk_of(desk.overrides, analysis)
     call_s = row_s = first_s = 0.0
-    for count in (1, 1, *BATCH_FORECAST_ROWS):
+    for look, count in enumerate((1, 1, *BATCH_FORECAST_ROWS)):
         rows = numbers[np.linspace(0, len(numbers), min(count, len(numbers)) + 1)[1:].astype(np.int64) - 1]
-        began_s = time.perf_counter()
+        began_s = time.process_time()
         solve_rows(desk, rows, 0)
-        spent_s = time.perf_counter() - began_s
+        spent_s = max(time.process_time() - began_s, BATCH_FORECAST_TICK_S)
         if len(rows) == 1:
             first_s = row_s = spent_s
         else:
             row_s = max(spent_s - first_s, spent_s / 10) / len(rows)
             call_s = max(spent_s - row_s * len(rows), 0.0)
-        if spent_s > BATCH_FORECAST_S:
+        if spent_s > (BATCH_FORECAST_S if look else BATCH_FORECAST_COLD_S):
             break
     return call_s, row_s * points_share
 

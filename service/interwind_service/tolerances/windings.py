@@ -149,3 +149,7 @@ SLIP_RATIO = 1.1
 # Next reading. Each candidate is taken to be read to one per cent; a gain of less than five per cent is none.
 NEXT_READING_UNCERTAINTY = 0.01
 NEXT_READING_GAIN = 0.05
+
+# Many variants. Smallest eigenvalue of a coupling matrix over n from which no rounding makes it negative: thousands of
+# roundings.
+CLEAR_EIGENVALUE = 1e-12
