@@ -36,8 +36,8 @@ class StateBasis:
 
     ``X`` (storage, n), XᵀEX = I, so that q is in √J and stored energy is ½ |q|² + ½ uᵀ (PᵀEP) u; ``P`` (storage,
     inputs), XᵀEP = 0. ``voltage_impulse``, ``current_impulse`` (branches, inputs): what a unit step of an input passes
-    through a branch in no time, Vs and As; between steps these times du/dt are part of its voltage and current. ``dual``
-    (storage, n) replaces X where q is read, in networks with controlled sources.
+    through a branch in no time, Vs and As; between steps these times du/dt are part of its voltage and current.
+    ``dual`` (storage, n) replaces X where q is read, in networks with controlled sources.
     """
 
     storage: Storage

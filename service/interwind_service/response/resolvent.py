@@ -92,7 +92,7 @@ def resolvent(basis: StateBasis, roles: Roles, s0: float) -> Resolvent:
 
 
 def _initial(tree: FrequencyTree, basis: StateBasis, s0: float) -> FloatArray:
-    """Right sides of unit states: charges enter the current law, fluxes the windings, both what senses their current."""
+    """Right sides of unit states: charges enter the current law, fluxes the windings, both what senses their flow."""
     storage = basis.storage
     value = storage.topology.value
     right = np.zeros((len(tree.M[0]), basis.X.shape[1]))

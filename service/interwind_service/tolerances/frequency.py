@@ -25,8 +25,8 @@ NOISE_SHARE = 1e-6
 RECIPROCITY_LIMIT = 1e-9
 PASSIVITY_LIMIT = -1e-9
 
-# Beyond this many nodes and branches Y and S of a port response follow from Z, where its condition is below the other: a
-# few digits of twelve are lost.
+# Beyond this many nodes and branches Y and S of a port response follow from Z, where its condition is below the
+# other: a few digits of twelve are lost.
 PORT_SOLVES_BRANCHES = 600
 PORT_INVERSE_CONDITION = 1e4
 # A swept band and the frequency tree agree to this, voltages and currents each over their largest.
