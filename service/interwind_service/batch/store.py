@@ -75,8 +75,8 @@ class Store:
             if plan.forecast.result_bytes > free:
                 shutil.rmtree(self.folder.incoming / plan.folder, ignore_errors=True)
                 raise Overloaded(
-                    f"the results need {plan.forecast.result_bytes} bytes, the state folder has {free} left; observe less,"
-                    " delete batches that are done, or submit the variants in parts",
+                    f"the results need {plan.forecast.result_bytes} bytes, the state folder has {free} left; observe"
+                    " less, delete batches that are done, or submit the variants in parts",
                     reason="STATE_FOLDER_FULL",
                     metadata={"result_bytes": str(plan.forecast.result_bytes), "free_bytes": str(free)},
                 )
