@@ -33,7 +33,7 @@ def test_h01_transistor_amplifier(solver):
     initial = {iw.ElementVoltage(f"C{k}"): v for k, v in enumerate((-3.0, 3.0, 3.0, 3.0, 6.0), start=1)}
     nodes = [iw.NodeVoltage(str(k)) for k in range(1, 9)]
     wave = solver.time_response(
-        transistor_amplifier(), stop_s=0.2, step_s=0.01, observe=nodes, initial=initial, tolerance=2e-8, timeout_s=240
+        transistor_amplifier(), stop_s=0.2, step_s=0.01, observe=nodes, initial=initial, tolerance=3e-10, timeout_s=240
     )
     published = (-0.5562145012262709e-2, 3.006522471903042, 2.849958788608128, 2.926422536206241, 2.704617865010554,
                  2.761837778393145, 4.770927631616772, 1.236995868091548)  # fmt: skip

@@ -173,3 +173,17 @@ def test_a_ledger_that_does_not_close_is_refused():
     with pytest.raises(iw.AccuracyNotReached) as refused:
         time_response_switching(chopper(), 1e-4, 1e-6, None, None, 1e-18)
     assert refused.value.evidence.energy_error > 1e-18
+
+
+def test_periodic_response_of_a_smooth_law_is_not_offered():
+    network = iw.Network(
+        "g",
+        [
+            iw.VoltageSource("E", "a", "g", iw.Sine(1.0, 50.0)),
+            iw.Diode("D", "a", "b", saturation_current_a=1e-9, thermal_voltage_v=0.03),
+            iw.Resistor("R", "b", "g", 1.0),
+        ],
+    )
+    with pytest.raises(iw.InvalidNetwork, match="'D'") as refused:
+        periodic_response(network, 0.02, 1e-3)
+    assert refused.value.reason == "NOT_OFFERED"

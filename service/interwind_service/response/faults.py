@@ -75,7 +75,7 @@ def refuse_stranded(tableau: Tableau, mode: Mode, branch: int, time_s: float) ->
     names = [device.name for device, own in zip(tableau.devices, mode, strict=True) if own == 0 and device.ideal_in(0)]
     raise InvalidNetwork.at(
         f"elements[{tableau.topology.element[branch]}]",
-        f"{tableau.topology.names[branch]!r} has no path at {time_s:.9g} s while {', '.join(map(repr, names))} are open, "
-        "all ideal; give one of them its blocking resistance, or the current another path",
+        f"{tableau.topology.names[branch]!r} has no path at {time_s:.9g} s while {', '.join(map(repr, names))} are "
+        "open, all ideal; give one of them its blocking resistance, or the current another path",
         reason="CURRENT_WITHOUT_PATH",
     )

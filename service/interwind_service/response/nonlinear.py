@@ -122,8 +122,8 @@ def _expected_size(field: Field, drives: Drives, w: ComplexArray, span_s: float)
     """
     u = np.zeros(field.size)
     rows = field.drives(drives.moved_to(w, span_s * np.linspace(0.0, 1.0, tol.SIZE_LOOKS)))
-    f = field.value(np.broadcast_to(u, (len(rows), len(u))), rows)
-    J, _ = field.jacobian(u, rows[0], np.zeros_like(rows[0]))
+    f = rows[:, : field.size]  # the laws as they are at 0: beyond, their currents would be no guide
+    J, _ = field.jacobian(u, np.zeros_like(rows[0]), np.zeros_like(rows[0]))
     rest = np.linalg.lstsq(J, f.T, rcond=None)[0][: field.states]
     growth = span_s * float(np.linalg.norm(f[:, : field.states], axis=1).max())
     return min(float(np.linalg.norm(rest, axis=0).max()), growth)

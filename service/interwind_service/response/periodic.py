@@ -115,8 +115,8 @@ def _refuse_smooth(topology: Topology) -> None:
         if is_smooth(topology, branch):
             raise InvalidNetwork.at(
                 f"elements[{topology.element[branch]}]",
-                f"{topology.names[branch]!r} follows a smooth law, for which no periodic response is offered; run it in "
-                "time, or state the diode by its forward voltage and resistance",
+                f"{topology.names[branch]!r} follows a smooth law, for which no periodic response is offered; "
+                "run it in time, or state the diode by its forward voltage and resistance",
                 reason="NOT_OFFERED",
             )
 

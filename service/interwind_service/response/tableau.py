@@ -18,7 +18,7 @@ from numpy.typing import NDArray
 
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
-from interwind_service.response.device import Device, device_of, is_smooth
+from interwind_service.response.device import Device, SaturableBranch, device_of, is_smooth
 from interwind_service.response.drives import Drives
 from interwind_service.response.ideal_limit import IdealLimit, winding_factor
 
@@ -115,114 +115,143 @@ class Tableau:
 
 def tableau_of(topology: Topology, drives: Drives, limit: IdealLimit) -> Tableau:
     """Assemble the tableau of a numbered network; ``limit`` says what stands in for ideal elements."""
-    branches = len(topology.kind)
-    zero = np.zeros(len(topology.nodes), dtype=bool)
-    zero[topology.parts.reference] = True
-    column_of_node = np.full(len(topology.nodes), -1)
-    column_of_node[~zero] = np.arange(np.count_nonzero(~zero))
-    nodes = int(np.count_nonzero(~zero))
-    current = nodes + np.arange(branches)
+    return _Assembly(topology, drives, limit).tableau()
 
-    factors: dict[int, tuple[slice, FloatArray]] = {}
-    members: list[tuple[NDArray[np.int64], FloatArray, FloatArray]] = []
-    for group in topology.groups:
-        members.append((group.branches, winding_factor(group), limit.winding_resistance(group)))
-    for branch in topology.of_kind(Kind.INDUCTOR):
-        if topology.value[branch] > 0.0:
-            members.append((np.array([branch]), np.sqrt([[topology.value[branch]]]), np.zeros((1, 1))))
-    rates = sum(S.shape[1] for _, S, _ in members)
-    size = nodes + branches + rates
-    capacitors = [int(k) for k in topology.of_kind(Kind.CAPACITOR) if topology.value[k] > 0.0]
-    saturable = [int(k) for k in topology.of_kind(Kind.SATURABLE)]
-    states = rates + len(capacitors) + len(saturable)
-    M, N = np.zeros((size, size)), np.zeros((size, states))
-    F, P = np.zeros((size, len(drives.exponent)), dtype=complex), np.zeros((states, size))
 
-    def voltage(branch: int) -> FloatArray:
-        row = np.zeros(size)
-        for node, sign in ((topology.start[branch], 1.0), (topology.finish[branch], -1.0)):
-            if column_of_node[node] >= 0:
-                row[column_of_node[node]] += sign
+class _Assembly:
+    """The rows and columns of a tableau while they are filled in, one kind of element after another."""
+
+    def __init__(self, topology: Topology, drives: Drives, limit: IdealLimit) -> None:
+        self.topology, self.drives, self.limit = topology, drives, limit
+        self.members = self._inductive()
+        kept = np.setdiff1d(np.arange(len(topology.nodes)), topology.parts.reference)
+        self.column_of_node = np.full(len(topology.nodes), -1)
+        self.column_of_node[kept] = np.arange(len(kept))
+        self.nodes, self.branches = len(kept), len(topology.kind)
+        self.current = self.row = self.nodes + np.arange(self.branches)
+        self.capacitors = [int(k) for k in topology.of_kind(Kind.CAPACITOR) if topology.value[k] > 0.0]
+        rates = sum(S.shape[1] for _, S, _ in self.members)
+        self.size = self.nodes + self.branches + rates
+        self.states = rates + len(self.capacitors) + len(topology.of_kind(Kind.SATURABLE))
+        self.M, self.N = np.zeros((self.size, self.size)), np.zeros((self.size, self.states))
+        self.F = np.zeros((self.size, len(drives.exponent)), dtype=complex)
+        self.P = np.zeros((self.states, self.size))
+
+    def tableau(self) -> Tableau:
+        """Fill in all rows."""
+        for branch in range(self.branches):  # Kirchhoff's current law, currents leaving the node
+            self.M[: self.nodes, self.current[branch]] = self.voltage(branch)[: self.nodes]
+        for node, leak_s in self.limit.leaks:
+            self.M[self.column_of_node[node], self.column_of_node[node]] += leak_s
+        factors = self._windings()
+        capacitor_state = self._capacitors(sum(S.shape[1] for _, S, _ in self.members))
+        devices = self._devices(self.states - len(self.topology.of_kind(Kind.SATURABLE)))
+        self._sources()
+        self._resistive()
+        self._transformers()
+        self._controlled()
+        return Tableau(
+            self.topology, self.drives, self.limit, self.M, self.N, self.F, self.P, self.column_of_node, self.current,
+            self.row, factors, capacitor_state, devices,
+        )  # fmt: skip
+
+    def voltage(self, branch: int) -> FloatArray:
+        """Return the row over s that gives the voltage of a branch."""
+        row = np.zeros(self.size)
+        for node, sign in ((self.topology.start[branch], 1.0), (self.topology.finish[branch], -1.0)):
+            if self.column_of_node[node] >= 0:
+                row[self.column_of_node[node]] += sign
         return row
 
-    for branch in range(branches):  # Kirchhoff's current law, currents leaving the node
-        M[:nodes, current[branch]] = voltage(branch)[:nodes]
-    for node, leak_s in limit.leaks:
-        M[column_of_node[node], column_of_node[node]] += leak_s
-    row_of_branch = nodes + np.arange(branches)
+    def _inductive(self) -> list[tuple[NDArray[np.int64], FloatArray, FloatArray]]:
+        """Return (branches, S, R) of every winding group and inductor."""
+        found = [(g.branches, winding_factor(g), self.limit.winding_resistance(g)) for g in self.topology.groups]
+        for branch in self.topology.of_kind(Kind.INDUCTOR):
+            value = self.topology.value[branch]
+            if value > 0.0:
+                found.append((np.array([branch]), np.sqrt([[value]]), np.zeros((1, 1))))
+        return found
 
-    state = 0
-    for own, S, R in members:
-        rank = S.shape[1]
-        columns = slice(state, state + rank)
-        rate = nodes + branches + np.arange(state, state + rank)
-        for k, branch in enumerate(own):
-            M[row_of_branch[branch]] = voltage(branch)
-            M[row_of_branch[branch], current[own]] -= R[k]
-            M[row_of_branch[branch], rate] -= S[k]
-            factors[int(branch)] = (columns, S[k])
-        for k in range(rank):
-            M[rate[k], current[own]] = S[:, k]
-            N[rate[k], state + k] = 1.0
-            P[state + k, rate[k]] = 1.0
-        state += rank
-    capacitor_state: dict[int, int] = {}
-    for branch in capacitors:
-        root = np.sqrt(topology.value[branch])
-        row = row_of_branch[branch]
-        M[row] = voltage(branch)
-        M[row, current[branch]] -= limit.series_ohm[branch]
-        N[row, state] = 1.0 / root
-        P[state, current[branch]] = 1.0 / root
-        capacitor_state[branch] = state
-        state += 1
-    devices = []
-    for branch in topology.of_kind(Kind.SWITCH, Kind.DIODE, Kind.SATURABLE):
-        if is_smooth(topology, int(branch)):
-            continue  # no modes: its row is filled in by the nonlinear solver
-        own_state = -1
-        if topology.kind[branch] == Kind.SATURABLE:
-            own_state = state
-            state += 1
-        device = device_of(topology, int(branch), own_state, limit)
-        if own_state >= 0:
-            P[own_state] = voltage(int(branch)) / device.root
-        devices.append(device)
+    def _windings(self) -> dict[int, tuple[slice, FloatArray]]:
+        """V − R i − S dz/dt = 0 and S' i = z."""
+        factors: dict[int, tuple[slice, FloatArray]] = {}
+        state = 0
+        for own, S, R in self.members:
+            rank = S.shape[1]
+            rate = self.nodes + self.branches + np.arange(state, state + rank)
+            for k, branch in enumerate(own):
+                self.M[self.row[branch]] = self.voltage(int(branch))
+                self.M[self.row[branch], self.current[own]] -= R[k]
+                self.M[self.row[branch], rate] -= S[k]
+                factors[int(branch)] = (slice(state, state + rank), S[k])
+            for k in range(rank):
+                self.M[rate[k], self.current[own]] = S[:, k]
+                self.N[rate[k], state + k] = 1.0
+                self.P[state + k, rate[k]] = 1.0
+            state += rank
+        return factors
 
-    U = drives.U
-    for position, branch in enumerate(topology.input_branch):
-        row = row_of_branch[branch]
-        if topology.kind[branch] == Kind.VOLTAGE_SOURCE:
-            M[row] = voltage(int(branch))
-        else:
-            M[row, current[branch]] = 1.0
-        F[row] = U[position]
-    for branch in range(branches):
-        row = row_of_branch[branch]
-        kind, value = topology.kind[branch], topology.value[branch]
-        if kind == Kind.RESISTOR or (kind == Kind.INDUCTOR and value == 0.0):
-            M[row] = voltage(branch)
-            M[row, current[branch]] = -(value if value > 0.0 else limit.short_ohm)
-        elif kind == Kind.CAPACITOR and value == 0.0:
-            M[row, current[branch]] = 1.0
-    for pair in topology.transformers:
-        M[row_of_branch[pair.first]] = voltage(pair.first) - pair.ratio * voltage(pair.second)
-        M[row_of_branch[pair.first], current[pair.first]] -= limit.series_ohm[pair.first]
-        M[row_of_branch[pair.second], current[pair.second]] = 1.0
-        M[row_of_branch[pair.second], current[pair.first]] = pair.ratio
-    for control in topology.controls:
-        row = row_of_branch[control.branch]
-        if topology.kind[control.branch] == Kind.CONTROLLED_VOLTAGE:
-            M[row] = voltage(control.branch)
-        else:
-            M[row, current[control.branch]] = 1.0
-        if control.sensed >= 0:
-            M[row, current[control.sensed]] -= control.gain
-        else:
+    def _capacitors(self, first: int) -> dict[int, int]:
+        """V − r i = y / sqrt(C) and dy/dt = i / sqrt(C)."""
+        place = {}
+        for state, branch in enumerate(self.capacitors, start=first):
+            root = np.sqrt(self.topology.value[branch])
+            self.M[self.row[branch]] = self.voltage(branch)
+            self.M[self.row[branch], self.current[branch]] -= self.limit.series_ohm[branch]
+            self.N[self.row[branch], state] = 1.0 / root
+            self.P[state, self.current[branch]] = 1.0 / root
+            place[branch] = state
+        return place
+
+    def _devices(self, first: int) -> tuple[Device, ...]:
+        """Their rows depend on their modes; smooth laws have none, and are filled in by the nonlinear solver."""
+        devices, state = [], first
+        for branch in self.topology.of_kind(Kind.SWITCH, Kind.DIODE, Kind.SATURABLE).tolist():
+            if is_smooth(self.topology, branch):
+                continue
+            saturable = self.topology.kind[branch] == Kind.SATURABLE
+            device = device_of(self.topology, branch, state if saturable else -1, self.limit)
+            if isinstance(device, SaturableBranch):
+                self.P[state] = self.voltage(branch) / device.root
+                state += 1
+            devices.append(device)
+        return tuple(devices)
+
+    def _sources(self) -> None:
+        for position, branch in enumerate(self.topology.input_branch.tolist()):
+            if self.topology.kind[branch] == Kind.VOLTAGE_SOURCE:
+                self.M[self.row[branch]] = self.voltage(branch)
+            else:
+                self.M[self.row[branch], self.current[branch]] = 1.0
+            self.F[self.row[branch]] = self.drives.U[position]
+
+    def _resistive(self) -> None:
+        """Resistors, and what a value of 0 turns inductors and capacitors into: a short, nothing."""
+        for branch in range(self.branches):
+            kind, value = self.topology.kind[branch], self.topology.value[branch]
+            if kind == Kind.RESISTOR or (kind == Kind.INDUCTOR and value == 0.0):
+                self.M[self.row[branch]] = self.voltage(branch)
+                self.M[self.row[branch], self.current[branch]] = -(value if value > 0.0 else self.limit.short_ohm)
+            elif kind == Kind.CAPACITOR and value == 0.0:
+                self.M[self.row[branch], self.current[branch]] = 1.0
+
+    def _transformers(self) -> None:
+        for pair in self.topology.transformers:
+            self.M[self.row[pair.first]] = self.voltage(pair.first) - pair.ratio * self.voltage(pair.second)
+            self.M[self.row[pair.first], self.current[pair.first]] -= self.limit.series_ohm[pair.first]
+            self.M[self.row[pair.second], self.current[pair.second]] = 1.0
+            self.M[self.row[pair.second], self.current[pair.first]] = pair.ratio
+
+    def _controlled(self) -> None:
+        for control in self.topology.controls:
+            row = self.row[control.branch]
+            if self.topology.kind[control.branch] == Kind.CONTROLLED_VOLTAGE:
+                self.M[row] = self.voltage(control.branch)
+            else:
+                self.M[row, self.current[control.branch]] = 1.0
+            if control.sensed >= 0:
+                self.M[row, self.current[control.sensed]] -= control.gain
+                continue
             for node, sign in ((control.start, 1.0), (control.finish, -1.0)):
-                if column_of_node[node] >= 0:
-                    M[row, column_of_node[node]] -= sign * control.gain
-    return Tableau(
-        topology, drives, limit, M, N, F, P, column_of_node, current, row_of_branch, factors, capacitor_state,
-        tuple(devices),
-    )  # fmt: skip
+                if self.column_of_node[node] >= 0:
+                    self.M[row, self.column_of_node[node]] -= sign * control.gain
