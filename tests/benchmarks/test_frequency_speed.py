@@ -1,0 +1,44 @@
+"""Many frequencies: whole call against one `numpy.linalg.solve` a frequency on the matrices of `stamp`."""
+
+from __future__ import annotations
+
+import importlib.util
+from pathlib import Path
+
+import pytest
+
+import interwind as iw
+
+_spec = importlib.util.spec_from_file_location("frequency_speed", Path(__file__).with_name("frequency_speed.py"))
+benchmark = importlib.util.module_from_spec(_spec)
+_spec.loader.exec_module(benchmark)
+
+
+@pytest.fixture(scope="module")
+def solver():
+    with iw.connect() as client:
+        yield client
+
+
+CASES = [
+    (benchmark.transformer, 30, 5),
+    (benchmark.transformer, 100, 12),
+    (benchmark.transformer, 300, 25),
+    (benchmark.ladder, 100, 12),
+    (benchmark.ladder, 300, 25),
+]
+
+
+@pytest.mark.long
+@pytest.mark.parametrize(("build", "count", "times"), CASES)
+def test_many_frequencies_for_the_price_of_one(solver, build, count, times):
+    """1000 frequencies over five decades."""
+    own, plain, _ = benchmark.ratio(solver, build(count), 5)
+    assert plain > times * own
+
+
+def test_a_hundred_windings(solver):
+    """The plain answer and the swept one agree, the swept one comes sooner by far."""
+    own, plain, gap = benchmark.ratio(solver, benchmark.transformer(100), 2)
+    assert gap < 1e-9
+    assert plain > 5 * own
