@@ -36,7 +36,7 @@ def ledger_of(
     voltage, current = flow.signals[: signals.branches], flow.signals[signals.branches : 2 * signals.branches]
     dissipated = _dissipated(topology, voltage, current, gramian)
     sources = topology.of_kind(*_SOURCES)
-    supplied = -float(np.einsum("ka,ab,kb->", voltage[sources], gramian, current[sources]))
+    supplied = -float(np.sum((voltage[sources] @ gramian) * current[sources]))
     from_jumps, lost = _jumps(space, generator)
     from_start = start.stored_after_j - start.stored_before_j + start.lost_j
     stored_end = stored(space, flow.energy @ end, generator.U @ end[flow.states :])
@@ -64,7 +64,8 @@ def stored(space: StateSpace, q: FloatArray, u: FloatArray) -> float:
 def _dissipated(topology: Topology, voltage: FloatArray, current: FloatArray, gramian: FloatArray) -> dict[str, float]:
     answer: dict[str, float] = {}
     resistors = np.flatnonzero((topology.kind == Kind.RESISTOR) & (topology.value > 0.0))
-    power = np.einsum("ka,ab,kb->k", voltage[resistors], gramian, voltage[resistors]) / topology.value[resistors]
+    v = voltage[resistors]
+    power = np.sum((v @ gramian) * v, axis=1) / topology.value[resistors]
     for branch, joule in zip(resistors.tolist(), power.tolist(), strict=True):
         answer[topology.names[branch]] = joule
     for group in topology.groups:

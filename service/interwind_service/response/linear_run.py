@@ -32,7 +32,7 @@ class LinearRun:
     def peak_energy(self, energy: FloatArray, stop_s: float) -> float:
         """Return the largest ½ |energy y|², ``energy`` (n, n + g), among ``states``, or its mean over the run."""
         seen = float(np.square(self.states @ energy.T).sum(axis=1).max())
-        mean = float(np.einsum("ka,ab,kb->", energy, self.gramian, energy)) / stop_s
+        mean = float(np.sum((energy @ self.gramian) * energy)) / stop_s
         return 0.5 * max(seen, mean)
 
 

@@ -154,7 +154,7 @@ def _mean_power(topology: Topology, flow: Flow, mean: FloatArray) -> dict[str, f
     """Mean power absorbed by every element, W."""
     signals = Signals(topology)
     voltage, current = flow.signals[: signals.branches], flow.signals[signals.branches : 2 * signals.branches]
-    power = np.einsum("ka,ab,kb->k", voltage, mean, current)
+    power = np.sum((voltage @ mean) * current, axis=1)
     answer = dict.fromkeys((element.name for element in topology.network.elements), 0.0)
     for name, watt in zip(topology.names, power.tolist(), strict=True):
         answer[name] += watt
