@@ -27,6 +27,7 @@ from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.periodic import PeriodicResponse
 from interwind.model.poles import PoleReport
+from interwind.model.port_figures import PortFigure, PortFigures
 from interwind.model.readings import Reading
 from interwind.model.recording import Recording
 from interwind.model.report import RepairMethod, RepairReport, ValidityReport
@@ -194,6 +195,19 @@ class Client:
         arguments = {"network": net, "frequency_hz": frequency_hz}
         response: PortResponse = self._call("port_response", arguments, timeout_s, progress)
         return response
+
+    def port_figures(
+        self,
+        net: Network,
+        frequency_hz: ArrayLike,
+        figures: Sequence[PortFigure],
+        *,
+        timeout_s: float = DEFAULT_TIMEOUT_S,
+    ) -> PortFigures:
+        """Return what is read off the ports: insertion loss, mixed modes, transfers, the best link."""
+        arguments = {"network": net, "frequency_hz": frequency_hz, "figures": figures}
+        answer: PortFigures = self._call("port_figures", arguments, timeout_s)
+        return answer
 
     def time_response(
         self,

@@ -18,6 +18,7 @@ from interwind.model.identification import Identification
 from interwind.model.network import Network
 from interwind.model.periodic import PeriodicResponse
 from interwind.model.poles import PoleReport
+from interwind.model.port_figures import PortFigures
 from interwind.model.recording import Recording
 from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import AdaptiveSweep, FrequencyResponse, MnaSystem, PortResponse, TimeResponse
@@ -123,6 +124,14 @@ def port_response(network: Network, frequency_hz: Any) -> PortResponse:
     from interwind_service.response import ports
 
     return ports.port_response(network, frequency_hz)
+
+
+@_with_provenance
+def port_figures(network: Network, frequency_hz: Any, figures: Any) -> PortFigures:
+    """Read off the ports what people ask for."""
+    from interwind_service.response import port_figures as desk
+
+    return desk.port_figures(network, frequency_hz, figures)
 
 
 @_with_provenance

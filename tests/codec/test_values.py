@@ -101,6 +101,13 @@ def test_networks_come_back_from_json():
     assert len(kinds) == 15
 
 
+PLACES = ("in", iw.Differential("in", "out"), iw.Common("in", "out"))
+LINK = iw.LinkEfficiency(("in",), ("out", "third"))
+FIGURES = (
+    iw.Scattering(PLACES[1], PLACES[2]), iw.InsertionLoss(PLACES[0], PLACES[1], 0.1, 100.0),
+    iw.VoltageTransfer(*PLACES[:2]), iw.CurrentTransfer(*PLACES[:2]), iw.InputImpedance(PLACES[1]),
+    iw.InputAngle(PLACES[0]), LINK, iw.OptimumLoad(LINK, "third"), iw.OptimumDrive(LINK, "in"),
+)  # fmt: skip
 REQUESTS = {
     "check": {"windings": PAIR},
     "repair": {
@@ -118,6 +125,7 @@ REQUESTS = {
     "frequency_response": {"network": NETWORK, "frequency_hz": np.array([1.0, 2.0]), "observe": OBSERVE},
     "poles": {"network": NETWORK, "observe": OBSERVE, "around_hz": 1e5},
     "port_response": {"network": NETWORK, "frequency_hz": np.array([1.0, 2.0])},
+    "port_figures": {"network": NETWORK, "frequency_hz": np.array([1.0, 2.0]), "figures": FIGURES},
     "time_response": {
         "network": NETWORK, "stop_s": 1.0, "step_s": 0.1, "observe": OBSERVE,
         "initial": {iw.WindingCurrent("T", "a"): 1.0, iw.ElementVoltage("c"): 2.0}, "tolerance": 1e-5,
@@ -194,6 +202,7 @@ def _answers():
         ),
     )
     tensor = rng.normal(size=(2, 1, 1)) + 1j
+    yield "port_figures", iw.PortFigures(FIGURES[:2], vector, matrix + 1j, **noticed)
     yield "port_response", iw.PortResponse(("in",), vector, tensor, tensor, tensor, **noticed)
     events = (iw.Event(1e-3, "s1", "open"),)
     ledger = iw.EnergyLedger(1.0, 0.5, 0.4, 0.1, 0.0, {"r": 0.5})

@@ -59,6 +59,7 @@ UNITLESS = {
     "PeriodicAnalysis": {"tolerance"},
     "ComputeTimeResponseRequest": {"tolerance"},
     "ComputePeriodicResponseRequest": {"tolerance"},
+    "ComputePortFiguresResponse": {"samples"},
     "ComputePolesResponse": {"quality_factor", "residue", "participation"},
     "Evidence": {"residual", "condition", "reciprocity_error", "passivity_margin", "energy_error"},
     # The message tells the unit.

@@ -19,6 +19,7 @@ SAID = {
     "ComputeFrequencyResponse": "Client.frequency_response",
     "ComputePoles": "Client.poles",
     "ComputePortResponse": "Client.port_response",
+    "ComputePortFigures": "Client.port_figures",
     "ComputeTimeResponse": "Client.time_response",
     "ComputePeriodicResponse": "Client.periodic_response",
     "SubmitBatch": "Client.submit_batch",

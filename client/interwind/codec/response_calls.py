@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from interwind.codec import poles
+from interwind.codec import poles, port_figures
 from interwind.codec import response as responses
 from interwind.codec.array import array_from_message, array_to_message
 from interwind.codec.call import Arguments, Call, column_count, point_count, size_of_network
@@ -87,6 +87,26 @@ def _ports_request(arguments: Arguments) -> Any:
 def _ports_arguments(message: Any) -> dict[str, Any]:
     frequency_hz = frozen_vector(array_from_message(message.frequency_hz, "frequency_hz"), "frequency_hz")
     return _network_argument(message) | {"frequency_hz": frequency_hz}
+
+
+def _figures_request(arguments: Arguments) -> Any:
+    network = arguments["network"]
+    frequency_hz = frozen_vector(_at_least_1d(arguments["frequency_hz"]), "frequency_hz")
+    figures = port_figures.figures_to_messages(arguments["figures"])
+    return response_service_pb2.ComputePortFiguresRequest(
+        size=response_pb2.Size(
+            point_count=frequency_hz.size,
+            observable_count=3 * len(network.ports) ** 2 + len(figures),
+            **size_of_network(network),
+        ),
+        network=network_to_message(network),
+        frequency_hz=array_to_message(frequency_hz),
+        figures=figures,
+    )
+
+
+def _figures_arguments(message: Any) -> dict[str, Any]:
+    return _ports_arguments(message) | {"figures": port_figures.figures_from_messages(message.figures)}
 
 
 def _time_request(arguments: Arguments) -> Any:
@@ -225,6 +245,12 @@ RESPONSE_CALLS = (
         "/interwind.v1.ResponseService/ComputePortResponse", "port_response",
         response_service_pb2.ComputePortResponseRequest, response_service_pb2.ComputePortResponseResponse, True,
         _ports_request, _ports_arguments, responses.ports_to_messages, responses.ports_from_messages,
+    ),
+    Call(
+        "/interwind.v1.ResponseService/ComputePortFigures", "port_figures",
+        response_service_pb2.ComputePortFiguresRequest, response_service_pb2.ComputePortFiguresResponse, False,
+        _figures_request, _figures_arguments,
+        port_figures.port_figures_to_message, port_figures.port_figures_from_message,
     ),
     Call(
         "/interwind.v1.ResponseService/ComputeTimeResponse", "time_response",

@@ -239,6 +239,10 @@ _NETWORK = {
         "A part of the network has no conducting path to the reference; its voltages count from a node of its own.",
         "Nothing, when the isolation is meant; name its zero in references to choose another node.",
     ),
+    "FIGURE_UNDETERMINED": FindingCode(
+        "A figure of the ports does not exist, or has lost its digits, at some frequencies; there it is NaN.",
+        "Drive and measure at places that are joined, and give a lossless link the losses it has.",
+    ),
     "SINGULAR_AT_FREQUENCY": FindingCode(
         "At this frequency the network has no unique solution; the row is NaN.",
         "Give the elements named the losses they have, or leave the frequency out.",

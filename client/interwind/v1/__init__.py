@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "02f0bd974d9c35173fa74737e50c67057f94dd5802eff62c0c7abbfc0f68985c"
+SOURCE_SHA256 = "51afd1b82da8023735072cf393361c9c1011d6a5c7e66f172ef521d0a0f012da"

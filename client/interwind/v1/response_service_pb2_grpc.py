@@ -51,6 +51,11 @@ class ResponseServiceStub(object):
                 request_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePortResponseRequest.SerializeToString,
                 response_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputePortResponseResponse.FromString,
                 _registered_method=True)
+        self.ComputePortFigures = channel.unary_unary(
+                '/interwind.v1.ResponseService/ComputePortFigures',
+                request_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePortFiguresRequest.SerializeToString,
+                response_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputePortFiguresResponse.FromString,
+                _registered_method=True)
         self.ComputeTimeResponse = channel.unary_stream(
                 '/interwind.v1.ResponseService/ComputeTimeResponse',
                 request_serializer=interwind_dot_v1_dot_response__service__pb2.ComputeTimeResponseRequest.SerializeToString,
@@ -89,6 +94,13 @@ class ResponseServiceServicer(object):
         context.set_details('Method not implemented!')
         raise NotImplementedError('Method not implemented!')
 
+    def ComputePortFigures(self, request, context):
+        """Computes insertion loss, mixed-mode and transfer figures, and the best link between the ports.
+        """
+        context.set_code(grpc.StatusCode.UNIMPLEMENTED)
+        context.set_details('Method not implemented!')
+        raise NotImplementedError('Method not implemented!')
+
     def ComputeTimeResponse(self, request, context):
         """Computes values over time.
         """
@@ -120,6 +132,11 @@ def add_ResponseServiceServicer_to_server(servicer, server):
                     servicer.ComputePortResponse,
                     request_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputePortResponseRequest.FromString,
                     response_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePortResponseResponse.SerializeToString,
+            ),
+            'ComputePortFigures': grpc.unary_unary_rpc_method_handler(
+                    servicer.ComputePortFigures,
+                    request_deserializer=interwind_dot_v1_dot_response__service__pb2.ComputePortFiguresRequest.FromString,
+                    response_serializer=interwind_dot_v1_dot_response__service__pb2.ComputePortFiguresResponse.SerializeToString,
             ),
             'ComputeTimeResponse': grpc.unary_stream_rpc_method_handler(
                     servicer.ComputeTimeResponse,
@@ -215,6 +232,33 @@ class ResponseService(object):
             '/interwind.v1.ResponseService/ComputePortResponse',
             interwind_dot_v1_dot_response__service__pb2.ComputePortResponseRequest.SerializeToString,
             interwind_dot_v1_dot_response__service__pb2.ComputePortResponseResponse.FromString,
+            options,
+            channel_credentials,
+            insecure,
+            call_credentials,
+            compression,
+            wait_for_ready,
+            timeout,
+            metadata,
+            _registered_method=True)
+
+    @staticmethod
+    def ComputePortFigures(request,
+            target,
+            options=(),
+            channel_credentials=None,
+            call_credentials=None,
+            insecure=False,
+            compression=None,
+            wait_for_ready=None,
+            timeout=None,
+            metadata=None):
+        return grpc.experimental.unary_unary(
+            request,
+            target,
+            '/interwind.v1.ResponseService/ComputePortFigures',
+            interwind_dot_v1_dot_response__service__pb2.ComputePortFiguresRequest.SerializeToString,
+            interwind_dot_v1_dot_response__service__pb2.ComputePortFiguresResponse.FromString,
             options,
             channel_credentials,
             insecure,

@@ -95,3 +95,10 @@ ADAPTIVE_SAME = 1e-7
 ADAPTIVE_PROMINENT = 1e-3
 # Tolerances below this are lost in the rounding of the peak itself.
 ADAPTIVE_LEAST_DB = 1e-6
+
+# Port figures. Beyond this condition of the terminated ports a figure keeps fewer than six of the twelve digits of S.
+FIGURE_CONDITION = 1e6
+# A link whose ports lose less than this share of what they carry has no best load: it is lossless to rounding.
+LINK_LOSS_FLOOR = 1e-12
+# Power over loss below this is rounding: nothing is coupled.
+LINK_COUPLING_FLOOR = 1e-14
