@@ -48,8 +48,8 @@ def _own_period(waveform: wf.Waveform | None, path: str, name: str) -> float | N
 
 
 def _require(path: str, name: str, own_s: float, period_s: float) -> None:
-    cycles = period_s / own_s
-    whole = max(1, round(cycles))
+    cycles = period_s / own_s if own_s > 0.0 else np.inf
+    whole = max(1, round(cycles)) if np.isfinite(cycles) else 1
     if abs(cycles - whole) > tol.COMMENSURATE * whole:
         raise InvalidRequest.at(
             "period_s",

@@ -85,11 +85,11 @@ def _train(train: wf.Trapezoid, stop_s: float, step_s: float) -> Corners:
     used = sum(spans.values())
     if used > train.period_s * (1.0 + 4.0 * np.finfo(float).eps):
         raise InvalidRequest.at("period_s", f"{train.period_s!r} s found; rise, high and fall take {used!r} s together")
-    first = int(np.floor(-train.delay_s / train.period_s)) - 1
+    phase_s = float(np.remainder(train.delay_s, train.period_s))
     count = stop_s / train.period_s + 3.0
     if 4.0 * count > MAX_WAVEFORM_CORNERS:
         raise _too_many(4.0 * count)
-    start = train.delay_s + train.period_s * (first + np.arange(int(count) + 1))
+    start = phase_s + train.period_s * np.arange(-1, int(count))
     swing = train.high - train.low
     rise = swing / train.rise_s if train.rise_s else 0.0
     fall = -swing / train.fall_s if train.fall_s else 0.0

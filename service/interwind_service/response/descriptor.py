@@ -64,7 +64,7 @@ def _all_values(storage: Storage, branches: int) -> StateBasis:
     blocks = [np.diag(1.0 / np.sqrt(single))]
     for own in storage.coordinates:
         S = own.S[: own.rank, : own.rank]
-        blocks.append(sl.solve_triangular(sl.cholesky(S), np.eye(own.rank)))
+        blocks.append(sl.solve_triangular(sl.cholesky(S, check_finite=False), np.eye(own.rank)))
     inputs = len(storage.topology.inputs)
     nothing = np.zeros((branches, inputs))
     return StateBasis(storage, sl.block_diag(*blocks), np.zeros((storage.size, inputs)), nothing, nothing)

@@ -12,10 +12,12 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from interwind.errors import AccuracyNotReached
 from interwind_service.tolerances import (
     EXPONENTIAL_BASE_NORM,
     EXPONENTIAL_GAUSS_POINTS,
     EXPONENTIAL_TAYLOR_DEGREE,
+    LARGEST_EXPONENT,
 )
 
 FloatArray = NDArray[np.float64]
@@ -41,6 +43,12 @@ class Ladder:
     def of(cls, matrix: FloatArray, span: float, *, least_depth: int = 0) -> Ladder:
         """Build the ladder of ``matrix`` (n, n), 1/s, over ``span``, s, at least ``least_depth`` rungs deep."""
         size = float(np.abs(matrix).sum(axis=0).max(initial=0.0)) * span
+        if not size <= LARGEST_EXPONENT:
+            raise AccuracyNotReached(
+                f"the fastest mode goes through {size:.3g} time constants between samples that are held together; at "
+                f"most {LARGEST_EXPONENT:g} can be; shorten the run, or leave out the smallest elements",
+                reason="OUT_OF_NUMBERS",
+            )
         depth = least_depth
         if size > EXPONENTIAL_BASE_NORM:
             depth = max(depth, int(np.ceil(np.log2(size / EXPONENTIAL_BASE_NORM))))

@@ -26,7 +26,7 @@ def evidence_of_run(
         condition=space.condition,
         reciprocity_error=reciprocity,
         passivity_margin=passivity,
-        energy_error=abs(ledger.numerical_j) / size if size > 0.0 else 0.0,
+        energy_error=0.0 if size == 0.0 else abs(ledger.numerical_j) / size,
         periods_propagated=periods,
     )
 

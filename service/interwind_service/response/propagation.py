@@ -78,14 +78,14 @@ class Propagation:
         self.jumps = bool(np.any(flow.jump))
         self._x = start.astype(np.float64)
         self.events = EventSteps.of(generator.events, step_s)
-        width = max(1, len(readout)) * self.size
+        width = max(1, len(readout)) * max(1, self.size)
         block_bits = int(np.clip(np.log2(tol.BLOCK_ENTRIES / width), tol.LEAST_BLOCK_BITS, tol.MOST_BLOCK_BITS))
         if len(self.events.steps) * tol.SPARSE_EVENTS > steps:
             block_bits = min(block_bits, tol.WALKED_BLOCK_BITS)
         self._block_bits = min(block_bits, max(0, int(np.ceil(np.log2(max(steps, 1) / tol.TESTED_STATES)))))
         block = 1 << self._block_bits
         self.block = block
-        chunk_bits = int(max(0.0, np.log2(max(1.0, tol.CHUNK_ENTRIES / (block * max(len(readout), self.size))))))
+        chunk_bits = int(max(0.0, np.log2(max(1.0, tol.CHUNK_ENTRIES / (block * max(1, len(readout), self.size))))))
         self._chunk_bits = min(chunk_bits, max(0, int(np.ceil(np.log2(max(1.0, steps / block))))))
         self.chunk = 1 << self._chunk_bits
         step_level = self._chunk_bits + self._block_bits

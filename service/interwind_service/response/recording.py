@@ -10,7 +10,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import InvalidRequest
+from interwind.errors import AccuracyNotReached, InvalidRequest
 from interwind.model.recording import RecordFigures, Recording
 from interwind_service.tolerances import GRID_MISFIT
 
@@ -103,6 +103,15 @@ class Recorder:
         weight[-1] -= 0.5 * (first + len(rows) - 1 == window.last)
         self._sum += weight @ rows
         self._square += weight @ np.square(rows)
+
+    def require_numbers(self) -> None:
+        """Refuse a record that left the range of numbers."""
+        if not np.isfinite(self._sum).all():
+            raise AccuracyNotReached(
+                "a voltage or current left the range of floating-point numbers; bring the values of sources and "
+                "elements closer to each other",
+                reason="OUT_OF_NUMBERS",
+            )
 
     def figures(self, step_s: float, means: FloatArray, mean_squares: FloatArray) -> RecordFigures:
         """Return the figures; where the exact mean or mean square (columns,) is NaN the samples' own is taken."""

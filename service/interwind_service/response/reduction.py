@@ -88,8 +88,8 @@ def _orthonormal(E11: FloatArray, second: Elimination) -> tuple[FloatArray, Floa
         return Z, particular
     E = Z.T @ E11 @ Z
     scale = 1.0 / np.sqrt(E.diagonal())
-    U = sl.cholesky(E * np.outer(scale, scale))
-    X = sl.solve_triangular(U, (Z * scale).T, trans="T").T
+    U = sl.cholesky(E * np.outer(scale, scale), check_finite=False)
+    X = sl.solve_triangular(U, (Z * scale).T, trans="T", check_finite=False).T
     return X, particular - X @ (X.T @ (E11 @ particular))
 
 

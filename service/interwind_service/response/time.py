@@ -111,6 +111,7 @@ def time_response(
 
     own_rows = readout.rows @ flow.signals
     run = run_linear(flow, generator, begin, own_rows, take, step_s=step_s, steps=steps, window=window)
+    recorder.require_numbers()
     ledger = ledger_of(space, flow, generator, start, run.gramian, run.end)
     peak = max(start.stored_before_j, start.stored_after_j, run.peak_energy(flow.energy, steps * step_s))
     evidence = evidence_of_run(
@@ -163,4 +164,5 @@ def _refuse_growth(space: StateSpace, stop_s: float) -> None:
 def _centre(generator: Generator, stop_s: float, step_s: float) -> float:
     """Choose s0, 1/s: between the step and the run, or at the fastest drive while slow modes still keep their phase."""
     fastest = float(generator.rate.max(initial=0.0))
-    return max(1.0 / float(np.sqrt(step_s * stop_s)), min(fastest, tol.SLOW_PHASE / stop_s))
+    centre = max(1.0 / float(np.sqrt(step_s) * np.sqrt(stop_s)), min(fastest, tol.SLOW_PHASE / stop_s))
+    return float(np.clip(centre, 1.0 / tol.LARGEST_RATE, tol.LARGEST_RATE))

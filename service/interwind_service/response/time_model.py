@@ -24,8 +24,20 @@ def model_of(topology: Topology, s0: float) -> StateSpace:
     Raises
     ------
     InvalidNetwork : the network has no unique solution.
-    AccuracyNotReached : the numerical reduction of controlled sources misses direct solves.
+    AccuracyNotReached : the numerical reduction of controlled sources misses direct solves, or the element values are
+        beyond what arithmetic can hold together.
     """
+    try:
+        return _model(topology, s0)
+    except np.linalg.LinAlgError as error:
+        raise AccuracyNotReached(
+            "the element values are too far apart for arithmetic to hold them together; bring them closer, or leave "
+            "out what is negligible",
+            reason="OUT_OF_NUMBERS",
+        ) from error
+
+
+def _model(topology: Topology, s0: float) -> StateSpace:
     storage = storage_of(topology, all_coordinates(topology))
     roles = roles_of(topology, at_zero=False)
     if not topology.controls:

@@ -17,6 +17,7 @@ from interwind.errors import InvalidRequest
 from interwind.model import waveform as wf
 from interwind_service.response.corners import Corners, corners_of, snap
 from interwind_service.response.impulse_shapes import SHAPES
+from interwind_service.tolerances import LARGEST_RATE
 
 FloatArray = NDArray[np.float64]
 _LINE = np.array([[0.0, 1.0], [0.0, 0.0]])
@@ -88,6 +89,8 @@ def _sine(amplitude: float, frequency_hz: float, phase_rad: float) -> Channel:
 
 
 def _damped(amplitude: float, rate: float, frequency_hz: float, phase_rad: float) -> Channel:
+    if not abs(frequency_hz) <= LARGEST_RATE:
+        raise InvalidRequest.at("frequency_hz", f"{frequency_hz!r} found; at most {LARGEST_RATE:g} Hz is expected")
     omega = 2.0 * np.pi * frequency_hz
 
     def state(time_s: FloatArray) -> FloatArray:
@@ -151,8 +154,8 @@ def _impulse(impulse: wf.StandardImpulse, step_s: float) -> list[Channel]:
     chop = snap(np.array([impulse.chopped_at_s]), step_s)
     level = sum(float(channel.state(chop)[0] @ channel.output) for channel in channels)
     chopped = [_until(channel, chop) for channel in channels]
-    if impulse.collapse_s:
-        end = snap(chop + impulse.collapse_s, step_s)
+    end = snap(chop + impulse.collapse_s, step_s)
+    if end[0] > chop[0]:
         slope = -level / float(end[0] - chop[0])
         fall = Corners(np.array([0.0, chop[0], end[0]]), np.array([0.0, level, 0.0]), np.array([0.0, slope, 0.0]))
         chopped.append(_line(fall))
@@ -172,5 +175,7 @@ def _finite(waveform: wf.Waveform, *fields: str) -> None:
 def _positive(waveform: wf.Waveform, *fields: str) -> None:
     for name in fields:
         value = getattr(waveform, name)
-        if not (np.isfinite(value) and value > 0.0):
-            raise InvalidRequest.at(name, f"{value!r} found; a finite time above 0 is expected")
+        if not (np.isfinite(value) and value * LARGEST_RATE >= 1.0):
+            raise InvalidRequest.at(
+                name, f"{value!r} found; a finite time from {1.0 / LARGEST_RATE:g} s on is expected"
+            )

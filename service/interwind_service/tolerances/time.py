@@ -72,5 +72,9 @@ LINEAR_PEAK_ROUNDS = 3
 FREE_OFFSET = 1e-12
 # What one period adds along such a direction counts as a steady gain above this share of the states.
 RESONANT_GAIN = 1e-9
+# Rates beyond this, 1/s, and times below its inverse are no physics, and their squares leave the range of numbers.
+LARGEST_RATE = 1e30
+# Largest |M| span of a matrix exponential: 160 halvings, each a matrix that is kept.
+LARGEST_EXPONENT = 1e45
 # Corners of one waveform within one run: 4 million take 100 MB and a few seconds.
 MAX_WAVEFORM_CORNERS = 4_000_000
