@@ -71,6 +71,8 @@ BAD = [
     (el.Resistor("x", "a", "0", -1.0), "elements[1].resistance_ohm"),
     (el.Resistor("x", "a", "0", np.nan), "elements[1].resistance_ohm"),
     (el.Resistor("x", "a", "0", np.inf), "elements[1].resistance_ohm"),
+    (el.Resistor("x", "a", "0", 1e-40), "elements[1].resistance_ohm"),
+    (el.Capacitor("x", "a", "0", 1e40), "elements[1].capacitance_f"),
     (el.Inductor("x", "a", "0", -1e-9), "elements[1].inductance_h"),
     (el.Capacitor("x", "a", "0", -1e-12), "elements[1].capacitance_f"),
     (el.VoltageSource("x", "a", "0", phasor=complex(np.nan, 0)), "elements[1].phasor"),

@@ -188,7 +188,7 @@ def test_observables_are_checked(observe, field):
 
 
 @pytest.mark.parametrize(("f", "field"), [([], "frequency_hz"), ([[1.0]], "frequency_hz"), ([1.0, -1.0], "frequency_hz[1]"),
-                                          ([np.inf], "frequency_hz[0]"), ([np.nan], "frequency_hz[0]")])  # fmt: skip
+                                          ([np.inf], "frequency_hz[0]"), ([1e30], "frequency_hz[0]"), ([np.nan], "frequency_hz[0]")])  # fmt: skip
 def test_frequencies_are_checked(f, field):
     """A vector of finite frequencies from 0 on."""
     with pytest.raises(InvalidRequest) as refused:

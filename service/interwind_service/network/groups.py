@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 from interwind.errors import InvalidWindings, field_path
 from interwind.model.elements import Windings
 from interwind.model.windings import WindingSet
+from interwind_service import tolerances as tol
 
 FloatArray = NDArray[np.float64]
 
@@ -70,7 +71,14 @@ def _refuse_unknown(coils: WindingSet) -> None:
             "before solving; an unknown coupling is never taken as zero",
         )
     self_h = coils.inductance_h.diagonal()
-    for i in np.flatnonzero(~(np.isfinite(self_h) & (self_h > 0.0))):
+    for i in np.flatnonzero(~((self_h >= tol.LEAST_MAGNITUDE) & (self_h <= tol.LARGEST_MAGNITUDE))):
         raise InvalidWindings.at(
-            f"inductance_h[{i}][{i}]", f"{self_h[i]!r} H found; a finite number above 0 is expected"
+            f"inductance_h[{i}][{i}]",
+            f"{float(self_h[i])!r} H found; a number above 0, {tol.LEAST_MAGNITUDE:g} to {tol.LARGEST_MAGNITUDE:g}, "
+            "is expected; check its unit",
+        )
+    for place in np.argwhere(~(np.abs(coils.resistance_ohm) <= tol.LARGEST_MAGNITUDE)):
+        raise InvalidWindings.at(
+            "resistance_ohm" + "".join(f"[{k}]" for k in place),
+            f"{float(coils.resistance_ohm[tuple(place)])!r} ohm found; at most {tol.LARGEST_MAGNITUDE:g} is expected",
         )

@@ -9,26 +9,39 @@ from interwind.errors import InvalidNetwork, field_path
 from interwind.model import elements as el
 from interwind.model.devices import Gate, GateTimes
 from interwind.model.network import Network, Port
+from interwind_service import tolerances as tol
 
 _Check = Callable[[float], str | None]
+
+
+_RANGE = f"{tol.LEAST_MAGNITUDE:g} to {tol.LARGEST_MAGNITUDE:g}"
+
+
+def within_range(value: float) -> bool:
+    """Whether a magnitude is one that no product of a few of its like takes out of floating point."""
+    return tol.LEAST_MAGNITUDE <= value <= tol.LARGEST_MAGNITUDE
 
 
 def _at_least_zero(value: float) -> str | None:
     if not math.isfinite(value):
         return "a finite number is expected; leave the element out if it is not there"
-    return None if value >= 0.0 else "it may not be negative; a passive element has none below 0"
+    if value < 0.0:
+        return "it may not be negative; a passive element has none below 0"
+    return None if value == 0.0 or within_range(value) else f"0 or {_RANGE} is expected; check its unit"
 
 
 def _above_zero(value: float) -> str | None:
-    return None if math.isfinite(value) and value > 0.0 else "a finite number above 0 is expected"
+    return None if within_range(value) else f"a number above 0, {_RANGE}, is expected"
 
 
 def _finite(value: float) -> str | None:
-    return None if math.isfinite(value) else "a finite number is expected"
+    return None if value == 0.0 or within_range(abs(value)) else f"0 or a magnitude of {_RANGE} is expected"
 
 
 def _zero_to_infinity(value: float) -> str | None:
-    return None if value >= 0.0 else "0 to inf is expected; 0 conducts ideally, inf blocks ideally"
+    if value in (0.0, math.inf) or within_range(value):
+        return None
+    return f"0, {_RANGE} or inf is expected; 0 conducts ideally, inf blocks ideally"
 
 
 _DOMAIN: dict[type, dict[str, _Check]] = {
@@ -70,8 +83,8 @@ def _check_item(item: el.Element | Port) -> None:
         if (reason := check(float(value))) is not None:
             raise InvalidNetwork.at(name, f"{value!r} found; {reason}", value=value)
     if isinstance(item, el.VoltageSource | el.CurrentSource) and item.phasor is not None:
-        if not (math.isfinite(item.phasor.real) and math.isfinite(item.phasor.imag)):
-            raise InvalidNetwork.at("phasor", f"{item.phasor!r} found; a finite number is expected")
+        if (reason := _finite(math.hypot(item.phasor.real, item.phasor.imag))) is not None:
+            raise InvalidNetwork.at("phasor", f"{item.phasor!r} found; {reason}")
     if isinstance(item, el.IdealTransformer) and item.turns_ratio == 0.0:
         raise InvalidNetwork.at("turns_ratio", "0.0 found; it may not be 0; a short circuit is a resistor of 0 ohm")
     if isinstance(item, el.Switch):

@@ -46,9 +46,11 @@ def checked_frequencies(frequency_hz: object) -> FloatArray:
         raise InvalidNetwork.at(
             "frequency_hz", f"shape {f.shape} found; a vector of at least one frequency is expected"
         )
-    for k in np.flatnonzero(~(np.isfinite(f) & (f >= 0.0))):
+    good = (f == 0.0) | ((f >= tol.LEAST_FREQUENCY_HZ) & (f <= tol.LARGEST_FREQUENCY_HZ))
+    for k in np.flatnonzero(~good):
         raise InvalidNetwork.at(
-            f"frequency_hz[{k}]", f"{float(f[k])!r} Hz found; a finite frequency from 0 on is expected"
+            f"frequency_hz[{k}]",
+            f"{float(f[k])!r} Hz found; 0 or {tol.LEAST_FREQUENCY_HZ:g} to {tol.LARGEST_FREQUENCY_HZ:g} Hz is expected",
         )
     return f
 

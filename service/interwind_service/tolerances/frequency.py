@@ -1,5 +1,8 @@
 """Thresholds of the frequency and port response."""
 
+# Frequencies other than 0: beyond, their products with element values leave floating point.
+LEAST_FREQUENCY_HZ = 1e-20
+LARGEST_FREQUENCY_HZ = 1e20
 # Stacks of systems up to this size are inverted together; beyond, LAPACK one by one is faster.
 STACKED_SOLVE_SIZE = 32
 # Passes of the equilibration: rows and columns are then within a factor 2 of each other.
