@@ -21,6 +21,7 @@ import interwind as iw
 solver = iw.connect()
 solver.server_info()
 print(solver._embedded.pid, flush=True)
+print(solver.address, flush=True)
 time.sleep(60)
 """
 
@@ -48,17 +49,21 @@ def test_embedded_service_ends_after_a_crash_of_its_parent(no_address):
     """Kill -9 of the user's process: 2 s later the service and its workers are gone."""
     with subprocess.Popen([sys.executable, "-c", CRASHING], stdout=subprocess.PIPE, text=True) as parent:
         server = int(parent.stdout.readline())
+        folder = parent.stdout.readline().strip().removeprefix("unix:").rpartition("/")[0]
         family = [server, *descendants_of(server)]
         assert all(alive(pid) for pid in family)
+        assert os.path.isdir(folder)
         parent.send_signal(signal.SIGKILL)
         parent.wait()
     wait_until(lambda: not any(alive(pid) for pid in family), 2)
+    assert not os.path.exists(folder)
 
 
 def test_embedded_service_ends_with_a_program_that_forgot_to_close(no_address):
     """A script that simply ends leaves nobody behind."""
     script = CRASHING.replace("time.sleep(60)", "")
-    server = int(subprocess.run([sys.executable, "-c", script], capture_output=True, check=True).stdout)
+    told = subprocess.run([sys.executable, "-c", script], capture_output=True, check=True)
+    server = int(told.stdout.splitlines()[0])
     wait_until(lambda: not alive(server), 2)
 
 

@@ -42,7 +42,7 @@ def check(windings):
     )
 
 
-def time_response(network, stop_s, step_s, observe=None, initial=None, tolerance=1e-6):
+def time_response(network, stop_s, step_s, observe=None, initial=None, tolerance=1e-6, recording=None):
     report(0, 2)
     count = round(stop_s / step_s) + 1
     time_s = np.arange(count) * step_s

@@ -6,6 +6,7 @@ import asyncio
 import contextlib
 import json
 import os
+import shutil
 import signal
 from collections.abc import AsyncIterator
 from pathlib import Path
@@ -60,7 +61,10 @@ async def _serve(settings: Settings) -> int:
                 async with _serving(settings, pool, spool, batches) as address:
                     print(json.dumps({"listening": address}), flush=True)
                     emit("listening", address=address, version=SERVICE_VERSION, pid=os.getpid(), workers=pool.count)
-                    await _until(stop, settings.parent_pid)
+                    if not await _asked_to_stop(stop, settings.parent_pid):
+                        for folder in (spool, Path(address.removeprefix("unix:")).parent):
+                            shutil.rmtree(folder, ignore_errors=True)
+                        os._exit(1)  # nobody is left to drain for; the workers follow, and batches survive any end
         finally:
             await asyncio.to_thread(pool.shutdown, cancel_futures=True)
     emit("stopped")
@@ -121,8 +125,9 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
         await server.stop(settings.grace_s)
 
 
-async def _until(stop: asyncio.Event, parent_pid: int) -> None:
-    """Wait until asked to stop, or until ``parent_pid`` is no longer the parent."""
+async def _asked_to_stop(stop: asyncio.Event, parent_pid: int) -> bool:
+    """Wait until asked to stop; return False when ``parent_pid`` is no longer the parent."""
     while not stop.is_set() and (not parent_pid or os.getppid() == parent_pid):
         with contextlib.suppress(TimeoutError):
             await asyncio.wait_for(stop.wait(), PARENT_POLL_S if parent_pid else None)
+    return stop.is_set()

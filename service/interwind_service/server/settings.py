@@ -55,7 +55,11 @@ class Settings:
     reflection: bool = _setting(True, "answer questions about the contract itself")
     metrics_listen: str = _setting("", "HOST:PORT for metrics (empty: none)")
     spool_dir: str = _setting("", "folder for results on their way out (empty: memory-backed where there is one)")
-    parent_pid: int = _setting(0, "stop when this process is no longer the parent (0: never)", "at least 0")
+    parent_pid: int = _setting(
+        0,
+        "end, with the folder of the socket, when this is not the parent (embedded)",
+        "at least 0",
+    )
 
     def __post_init__(self) -> None:
         for entry in dataclasses.fields(self):
@@ -66,6 +70,8 @@ class Settings:
             raise SettingsError("--tls-cert, --tls-key: one found without the other; state both or neither")
         if self.tls_client_ca and not self.tls_cert:
             raise SettingsError("--tls-client-ca: found without --tls-cert; client certificates need TLS")
+        if self.parent_pid and not self.listen.startswith("unix:"):
+            raise SettingsError("--parent-pid: found with a port; an embedded service listens on unix:PATH")
         for name in ("listen", "metrics_listen"):
             value = getattr(self, name)
             if value or name == "listen":
