@@ -53,6 +53,7 @@ def size_of_network(network: Network) -> dict[str, int]:
     return {
         "winding_count": max(sets, default=0),
         "unknown_count": len(network.nodes) + sum(sets) + len(network.elements),
+        "coupling_count": sum(size**2 for size in sets),
     }
 
 

@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "51afd1b82da8023735072cf393361c9c1011d6a5c7e66f172ef521d0a0f012da"
+SOURCE_SHA256 = "314ecca42f0ccc9ed86ff61f5ed1493f50fcc9bbe662e9919cfcde63c6a1950a"

@@ -27,7 +27,7 @@ from interwind.v1 import finding_pb2 as interwind_dot_v1_dot_finding__pb2
 from interwind.v1 import observable_pb2 as interwind_dot_v1_dot_observable__pb2
 
 
-DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x1binterwind/v1/response.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/finding.proto\x1a\x1dinterwind/v1/observable.proto\"z\n\x04Size\x12\x15\n\rwinding_count\x18\x01 \x01(\x03\x12\x15\n\runknown_count\x18\x02 \x01(\x03\x12\x13\n\x0bpoint_count\x18\x03 \x01(\x03\x12\x18\n\x10observable_count\x18\x04 \x01(\x03\x12\x15\n\rvariant_count\x18\x05 \x01(\x03\"3\n\x08Progress\x12\x12\n\ndone_count\x18\x01 \x01(\x03\x12\x13\n\x0btotal_count\x18\x02 \x01(\x03\"9\n\x0cResultHeader\x12)\n\x06\x61rrays\x18\x01 \x03(\x0b\x32\x19.interwind.v1.ResultArray\"\x8d\x01\n\x0bResultArray\x12\x0c\n\x04name\x18\x01 \x01(\t\x12\r\n\x05shape\x18\x02 \x03(\x03\x12\"\n\x05\x64type\x18\x03 \x01(\x0e\x32\x13.interwind.v1.Dtype\x12)\n\x07\x63olumns\x18\x04 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x12\n\nport_names\x18\x05 \x03(\t\"1\n\x0bResultChunk\x12\x14\n\x0coffset_bytes\x18\x01 \x01(\x03\x12\x0c\n\x04\x64\x61ta\x18\x02 \x01(\x0c\"\x88\x03\n\rResultTrailer\x12(\n\x08\x65vidence\x18\x01 \x01(\x0b\x32\x16.interwind.v1.Evidence\x12\'\n\x08\x66indings\x18\x02 \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\x03 \x03(\x0b\x32\x15.interwind.v1.Caution\x12\x12\n\nsize_bytes\x18\x04 \x01(\x03\x12\x0e\n\x06sha256\x18\x05 \x01(\t\x12#\n\x06\x65vents\x18\x06 \x03(\x0b\x32\x13.interwind.v1.Event\x12*\n\x06ledger\x18\x07 \x01(\x0b\x32\x1a.interwind.v1.EnergyLedger\x12\x41\n\x0cmean_power_w\x18\x08 \x03(\x0b\x32+.interwind.v1.ResultTrailer.MeanPowerWEntry\x12\x10\n\x08period_s\x18\t \x01(\x01\x1a\x31\n\x0fMeanPowerWEntry\x12\x0b\n\x03key\x18\x01 \x01(\t\x12\r\n\x05value\x18\x02 \x01(\x01:\x02\x38\x01\"7\n\x05\x45vent\x12\x0e\n\x06time_s\x18\x01 \x01(\x01\x12\x0f\n\x07\x65lement\x18\x02 \x01(\t\x12\r\n\x05state\x18\x03 \x01(\t\"\x93\x02\n\x0c\x45nergyLedger\x12\x12\n\nsupplied_j\x18\x01 \x01(\x01\x12\x14\n\x0c\x64issipated_j\x18\x02 \x01(\x01\x12\x17\n\x0fstored_change_j\x18\x03 \x01(\x01\x12\x17\n\x0flost_in_jumps_j\x18\x04 \x01(\x01\x12\x13\n\x0bnumerical_j\x18\x05 \x01(\x01\x12U\n\x17\x64issipated_by_element_j\x18\x06 \x03(\x0b\x32\x34.interwind.v1.EnergyLedger.DissipatedByElementJEntry\x1a;\n\x19\x44issipatedByElementJEntry\x12\x0b\n\x03key\x18\x01 \x01(\t\x12\r\n\x05value\x18\x02 \x01(\x01:\x02\x38\x01\"K\n\x0cInitialValue\x12,\n\nobservable\x18\x01 \x01(\x0b\x32\x18.interwind.v1.Observable\x12\r\n\x05value\x18\x02 \x01(\x01\x62\x06proto3')
+DESCRIPTOR = _descriptor_pool.Default().AddSerializedFile(b'\n\x1binterwind/v1/response.proto\x12\x0cinterwind.v1\x1a\x18interwind/v1/array.proto\x1a\x1ainterwind/v1/finding.proto\x1a\x1dinterwind/v1/observable.proto\"\x92\x01\n\x04Size\x12\x15\n\rwinding_count\x18\x01 \x01(\x03\x12\x15\n\runknown_count\x18\x02 \x01(\x03\x12\x13\n\x0bpoint_count\x18\x03 \x01(\x03\x12\x18\n\x10observable_count\x18\x04 \x01(\x03\x12\x15\n\rvariant_count\x18\x05 \x01(\x03\x12\x16\n\x0e\x63oupling_count\x18\x06 \x01(\x03\"3\n\x08Progress\x12\x12\n\ndone_count\x18\x01 \x01(\x03\x12\x13\n\x0btotal_count\x18\x02 \x01(\x03\"9\n\x0cResultHeader\x12)\n\x06\x61rrays\x18\x01 \x03(\x0b\x32\x19.interwind.v1.ResultArray\"\x8d\x01\n\x0bResultArray\x12\x0c\n\x04name\x18\x01 \x01(\t\x12\r\n\x05shape\x18\x02 \x03(\x03\x12\"\n\x05\x64type\x18\x03 \x01(\x0e\x32\x13.interwind.v1.Dtype\x12)\n\x07\x63olumns\x18\x04 \x03(\x0b\x32\x18.interwind.v1.Observable\x12\x12\n\nport_names\x18\x05 \x03(\t\"1\n\x0bResultChunk\x12\x14\n\x0coffset_bytes\x18\x01 \x01(\x03\x12\x0c\n\x04\x64\x61ta\x18\x02 \x01(\x0c\"\x88\x03\n\rResultTrailer\x12(\n\x08\x65vidence\x18\x01 \x01(\x0b\x32\x16.interwind.v1.Evidence\x12\'\n\x08\x66indings\x18\x02 \x03(\x0b\x32\x15.interwind.v1.Finding\x12\'\n\x08\x63\x61utions\x18\x03 \x03(\x0b\x32\x15.interwind.v1.Caution\x12\x12\n\nsize_bytes\x18\x04 \x01(\x03\x12\x0e\n\x06sha256\x18\x05 \x01(\t\x12#\n\x06\x65vents\x18\x06 \x03(\x0b\x32\x13.interwind.v1.Event\x12*\n\x06ledger\x18\x07 \x01(\x0b\x32\x1a.interwind.v1.EnergyLedger\x12\x41\n\x0cmean_power_w\x18\x08 \x03(\x0b\x32+.interwind.v1.ResultTrailer.MeanPowerWEntry\x12\x10\n\x08period_s\x18\t \x01(\x01\x1a\x31\n\x0fMeanPowerWEntry\x12\x0b\n\x03key\x18\x01 \x01(\t\x12\r\n\x05value\x18\x02 \x01(\x01:\x02\x38\x01\"7\n\x05\x45vent\x12\x0e\n\x06time_s\x18\x01 \x01(\x01\x12\x0f\n\x07\x65lement\x18\x02 \x01(\t\x12\r\n\x05state\x18\x03 \x01(\t\"\x93\x02\n\x0c\x45nergyLedger\x12\x12\n\nsupplied_j\x18\x01 \x01(\x01\x12\x14\n\x0c\x64issipated_j\x18\x02 \x01(\x01\x12\x17\n\x0fstored_change_j\x18\x03 \x01(\x01\x12\x17\n\x0flost_in_jumps_j\x18\x04 \x01(\x01\x12\x13\n\x0bnumerical_j\x18\x05 \x01(\x01\x12U\n\x17\x64issipated_by_element_j\x18\x06 \x03(\x0b\x32\x34.interwind.v1.EnergyLedger.DissipatedByElementJEntry\x1a;\n\x19\x44issipatedByElementJEntry\x12\x0b\n\x03key\x18\x01 \x01(\t\x12\r\n\x05value\x18\x02 \x01(\x01:\x02\x38\x01\"K\n\x0cInitialValue\x12,\n\nobservable\x18\x01 \x01(\x0b\x32\x18.interwind.v1.Observable\x12\r\n\x05value\x18\x02 \x01(\x01\x62\x06proto3')
 
 _globals = globals()
 _builder.BuildMessageAndEnumDescriptors(DESCRIPTOR, _globals)
@@ -38,26 +38,26 @@ if not _descriptor._USE_C_DESCRIPTORS:
   _globals['_RESULTTRAILER_MEANPOWERWENTRY']._serialized_options = b'8\001'
   _globals['_ENERGYLEDGER_DISSIPATEDBYELEMENTJENTRY']._loaded_options = None
   _globals['_ENERGYLEDGER_DISSIPATEDBYELEMENTJENTRY']._serialized_options = b'8\001'
-  _globals['_SIZE']._serialized_start=130
-  _globals['_SIZE']._serialized_end=252
-  _globals['_PROGRESS']._serialized_start=254
-  _globals['_PROGRESS']._serialized_end=305
-  _globals['_RESULTHEADER']._serialized_start=307
-  _globals['_RESULTHEADER']._serialized_end=364
-  _globals['_RESULTARRAY']._serialized_start=367
-  _globals['_RESULTARRAY']._serialized_end=508
-  _globals['_RESULTCHUNK']._serialized_start=510
-  _globals['_RESULTCHUNK']._serialized_end=559
-  _globals['_RESULTTRAILER']._serialized_start=562
-  _globals['_RESULTTRAILER']._serialized_end=954
-  _globals['_RESULTTRAILER_MEANPOWERWENTRY']._serialized_start=905
-  _globals['_RESULTTRAILER_MEANPOWERWENTRY']._serialized_end=954
-  _globals['_EVENT']._serialized_start=956
-  _globals['_EVENT']._serialized_end=1011
-  _globals['_ENERGYLEDGER']._serialized_start=1014
-  _globals['_ENERGYLEDGER']._serialized_end=1289
-  _globals['_ENERGYLEDGER_DISSIPATEDBYELEMENTJENTRY']._serialized_start=1230
-  _globals['_ENERGYLEDGER_DISSIPATEDBYELEMENTJENTRY']._serialized_end=1289
-  _globals['_INITIALVALUE']._serialized_start=1291
-  _globals['_INITIALVALUE']._serialized_end=1366
+  _globals['_SIZE']._serialized_start=131
+  _globals['_SIZE']._serialized_end=277
+  _globals['_PROGRESS']._serialized_start=279
+  _globals['_PROGRESS']._serialized_end=330
+  _globals['_RESULTHEADER']._serialized_start=332
+  _globals['_RESULTHEADER']._serialized_end=389
+  _globals['_RESULTARRAY']._serialized_start=392
+  _globals['_RESULTARRAY']._serialized_end=533
+  _globals['_RESULTCHUNK']._serialized_start=535
+  _globals['_RESULTCHUNK']._serialized_end=584
+  _globals['_RESULTTRAILER']._serialized_start=587
+  _globals['_RESULTTRAILER']._serialized_end=979
+  _globals['_RESULTTRAILER_MEANPOWERWENTRY']._serialized_start=930
+  _globals['_RESULTTRAILER_MEANPOWERWENTRY']._serialized_end=979
+  _globals['_EVENT']._serialized_start=981
+  _globals['_EVENT']._serialized_end=1036
+  _globals['_ENERGYLEDGER']._serialized_start=1039
+  _globals['_ENERGYLEDGER']._serialized_end=1314
+  _globals['_ENERGYLEDGER_DISSIPATEDBYELEMENTJENTRY']._serialized_start=1255
+  _globals['_ENERGYLEDGER_DISSIPATEDBYELEMENTJENTRY']._serialized_end=1314
+  _globals['_INITIALVALUE']._serialized_start=1316
+  _globals['_INITIALVALUE']._serialized_end=1391
 # @@protoc_insertion_point(module_scope)

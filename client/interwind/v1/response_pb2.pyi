@@ -9,18 +9,20 @@ from typing import ClassVar as _ClassVar, Iterable as _Iterable, Mapping as _Map
 DESCRIPTOR: _descriptor.FileDescriptor
 
 class Size(_message.Message):
-    __slots__ = ("winding_count", "unknown_count", "point_count", "observable_count", "variant_count")
+    __slots__ = ("winding_count", "unknown_count", "point_count", "observable_count", "variant_count", "coupling_count")
     WINDING_COUNT_FIELD_NUMBER: _ClassVar[int]
     UNKNOWN_COUNT_FIELD_NUMBER: _ClassVar[int]
     POINT_COUNT_FIELD_NUMBER: _ClassVar[int]
     OBSERVABLE_COUNT_FIELD_NUMBER: _ClassVar[int]
     VARIANT_COUNT_FIELD_NUMBER: _ClassVar[int]
+    COUPLING_COUNT_FIELD_NUMBER: _ClassVar[int]
     winding_count: int
     unknown_count: int
     point_count: int
     observable_count: int
     variant_count: int
-    def __init__(self, winding_count: _Optional[int] = ..., unknown_count: _Optional[int] = ..., point_count: _Optional[int] = ..., observable_count: _Optional[int] = ..., variant_count: _Optional[int] = ...) -> None: ...
+    coupling_count: int
+    def __init__(self, winding_count: _Optional[int] = ..., unknown_count: _Optional[int] = ..., point_count: _Optional[int] = ..., observable_count: _Optional[int] = ..., variant_count: _Optional[int] = ..., coupling_count: _Optional[int] = ...) -> None: ...
 
 class Progress(_message.Message):
     __slots__ = ("done_count", "total_count")

@@ -31,7 +31,8 @@ class Compute:
         """Yield the serialized responses. Leaving early, for whatever reason, ends the worker that computes them."""
         header = size_header(request)
         size = read_size(header)
-        ticket = self._admission.enter(call.client, compute_bytes(size, len(request)), result_bytes(size))
+        needed = compute_bytes(size, len(request), call.method)
+        ticket = self._admission.enter(call.client, needed, result_bytes(size))
         path = self._spool / call.id
         try:
             work = CallWork(call.method, request, header, str(path), self._arrays)

@@ -24,7 +24,14 @@ def read_size(header: bytes) -> response_pb2.Size:
         size = response_pb2.Size.FromString(header)
     except DecodeError as error:
         raise InvalidRequest.at("size", "its bytes are no interwind.v1.Size") from error
-    for name in ("winding_count", "unknown_count", "point_count", "observable_count", "variant_count"):
+    for name in (
+        "winding_count",
+        "unknown_count",
+        "point_count",
+        "observable_count",
+        "variant_count",
+        "coupling_count",
+    ):
         value = getattr(size, name)
         if value < 0:
             raise InvalidRequest.at(f"size.{name}", f"{value} found; a count is not negative")

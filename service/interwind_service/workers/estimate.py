@@ -10,7 +10,20 @@ from interwind.errors import InvalidRequest
 from interwind.model.network import Network
 from interwind.model.windings import WindingSet
 from interwind.v1 import response_pb2
-from interwind_service.tolerances import ESTIMATE_COPIES, ESTIMATE_MATRICES, UNSTATED_BYTES
+from interwind_service.tolerances import (
+    ESTIMATE_COPIES,
+    ESTIMATE_MATRICES,
+    ESTIMATE_UNKNOWN_BYTES,
+    SPARSE_COUPLING,
+    SPARSE_UNKNOWNS,
+    UNSTATED_BYTES,
+)
+
+# Calls that solve large networks of little coupling by sparse factors (`response.sparse_nodal`).
+_SPARSE_CALLS = frozenset(
+    f"/interwind.v1.ResponseService/{name}"
+    for name in ("ComputeFrequencyResponse", "ComputePortResponse", "ComputePortFigures")
+)
 
 
 def result_bytes(size: response_pb2.Size) -> int:
@@ -18,10 +31,24 @@ def result_bytes(size: response_pb2.Size) -> int:
     return 16 * (size.observable_count + 1) * size.point_count
 
 
-def compute_bytes(size: response_pb2.Size, request_bytes: int) -> int:
-    """Return the bytes a worker needs: 16 m² a dense complex matrix, times the copies a solve holds, and the result."""
+def compute_bytes(size: response_pb2.Size, request_bytes: int, method: str = "") -> int:
+    """Return the bytes a worker needs: 16 m² a dense complex matrix, times those a solve holds, and the result.
+
+    A call of ``method`` that solves a network by sparse factors needs the matrices of its sets only.
+    """
     largest = max(size.winding_count, size.unknown_count)
-    return ESTIMATE_MATRICES * 16 * largest**2 + ESTIMATE_COPIES * request_bytes + result_bytes(size)
+    entries = _coupling_count(size) if method in _SPARSE_CALLS and _is_sparse(size) else largest**2
+    held = ESTIMATE_MATRICES * 16 * entries + ESTIMATE_UNKNOWN_BYTES * largest
+    return held + ESTIMATE_COPIES * request_bytes + result_bytes(size)
+
+
+def _is_sparse(size: response_pb2.Size) -> bool:
+    return size.unknown_count > SPARSE_UNKNOWNS and _coupling_count(size) < SPARSE_COUPLING * size.unknown_count
+
+
+def _coupling_count(size: response_pb2.Size) -> int:
+    """The entries stated, else the most that sets of this size can have."""
+    return size.coupling_count or size.winding_count * size.unknown_count
 
 
 def recount(arguments: Mapping[str, Any]) -> dict[str, int]:
@@ -42,14 +69,14 @@ def recount(arguments: Mapping[str, Any]) -> dict[str, int]:
     return counts
 
 
-def check_size(stated: response_pb2.Size, arguments: Mapping[str, Any]) -> None:
+def check_size(stated: response_pb2.Size, arguments: Mapping[str, Any], method: str = "") -> None:
     """Refuse a count stated below the true one. What is left at 0 is not stated, which only small requests may do."""
     counts = recount(arguments)
     for name, counted in counts.items():
         if 0 < getattr(stated, name) < counted:
             _refuse(name, getattr(stated, name), counted)
     true = response_pb2.Size(**counts)
-    if compute_bytes(true, 0) > compute_bytes(stated, 0) + UNSTATED_BYTES:
+    if compute_bytes(true, 0, method) > compute_bytes(stated, 0, method) + UNSTATED_BYTES:
         name = max(counts, key=lambda name: counts[name] - getattr(stated, name))
         _refuse(name, getattr(stated, name), counts[name])
 

@@ -75,7 +75,7 @@ def run_call(work: CallWork, *, notify: Callable[[Any], None]) -> CallAnswer:
         ):
             arguments = call.decode(message)
             if sized:
-                check_size(message.size, arguments)
+                check_size(message.size, arguments, work.method)
             result = getattr(engine, call.engine)(**arguments)
             if rows.begun:
                 rows.end(result, arguments["step_s"], lambda trailer: time_trailer(result, trailer))
