@@ -239,6 +239,10 @@ _NETWORK = {
         "A part of the network has no conducting path to the reference; its voltages count from a node of its own.",
         "Nothing, when the isolation is meant; name its zero in references to choose another node.",
     ),
+    "INCONSISTENT_START": FindingCode(
+        "The state given for t = 0 contradicts the network; charge and flux are kept, and what jumps is named.",
+        "Nothing, when the jump is meant; else state values that fit, or start at rest with SteadyStart.",
+    ),
     "FIGURE_UNDETERMINED": FindingCode(
         "A figure of the ports does not exist, or has lost its digits, at some frequencies; there it is NaN.",
         "Drive and measure at places that are joined, and give a lossless link the losses it has.",
