@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-import interwind as iw
 import numpy as np
 import pytest
+
+import interwind as iw
 from interwind_service import engine
 
 OUT = iw.NodeVoltage("out")
