@@ -222,15 +222,20 @@ def field_path(prefix: str) -> Iterator[None]:
     try:
         yield
     except InvalidRequest as error:
-        violations = tuple(
-            FieldViolation(join_path(prefix, violation.field), violation.description) for violation in error.violations
-        )
-        message = error.message
-        if len(violations) == 1 and message == f"{error.violations[0].field}: {error.violations[0].description}":
-            message = f"{violations[0].field}: {violations[0].description}"
-        raise type(error)(
-            message, reason=error.reason, violations=violations, metadata=error.metadata, evidence=error.evidence
-        ) from error
+        raise at_path(prefix, error) from error
+
+
+def at_path(prefix: str, error: InvalidRequest) -> InvalidRequest:
+    """Return the error with ``prefix`` before its field paths."""
+    violations = tuple(
+        FieldViolation(join_path(prefix, violation.field), violation.description) for violation in error.violations
+    )
+    message = error.message
+    if len(violations) == 1 and message == f"{error.violations[0].field}: {error.violations[0].description}":
+        message = f"{violations[0].field}: {violations[0].description}"
+    return type(error)(
+        message, reason=error.reason, violations=violations, metadata=error.metadata, evidence=error.evidence
+    )
 
 
 def join_path(prefix: str, field: str) -> str:

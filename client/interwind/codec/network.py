@@ -13,7 +13,7 @@ from typing import Any
 from interwind.codec.array import array_from_message, array_to_message
 from interwind.codec.waveform import waveform_from_message, waveform_to_message
 from interwind.codec.windings import windings_from_message, windings_to_message
-from interwind.errors import InvalidRequest, field_path
+from interwind.errors import InvalidRequest, at_path, field_path
 from interwind.model import devices
 from interwind.model import elements as model
 from interwind.model.network import Network, Port
@@ -56,10 +56,12 @@ def network_to_message(network: Network) -> network_pb2.Network:
 
 def network_from_message(message: network_pb2.Network) -> Network:
     """Return the network of a message; `InvalidRequest` names the field, such as ``elements[3].resistance_ohm``."""
-    elements = []
-    for position, element in enumerate(message.elements):
-        with field_path(f"elements[{position}]"):
+    elements: list[model.Element] = []
+    try:
+        for element in message.elements:
             elements.append(_element_from_message(element))
+    except InvalidRequest as error:  # one handler for all: entering a context for each would cost more than decoding it
+        raise at_path(f"elements[{len(elements)}]", error) from error
     ports = []
     for position, port in enumerate(message.ports):
         with field_path(f"ports[{position}]"):

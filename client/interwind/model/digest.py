@@ -3,12 +3,18 @@
 from __future__ import annotations
 
 import hashlib
+import struct
 from collections.abc import Mapping
 from dataclasses import fields, is_dataclass
 from enum import Enum
+from functools import cache
 from typing import Any
 
 import numpy as np
+
+
+_NUMBER = b"a0:;"  # what an array without axes begins with, so that 1.0 and np.float64(1.0) agree
+_DOUBLE = struct.Struct("<d")
 
 
 def request_digest(call: str, arguments: Mapping[str, Any]) -> str:
@@ -21,16 +27,21 @@ def request_digest(call: str, arguments: Mapping[str, Any]) -> str:
 
 def _add(digest: Any, value: Any) -> None:
     """Feed one value, each kind with a mark of its own so that neighbours cannot run into each other."""
-    if value is None:
+    if type(value) is float:  # the most frequent kind first
+        digest.update(_NUMBER + _DOUBLE.pack(value))
+    elif value is None:
         digest.update(b"n")
     elif isinstance(value, str):
         data = value.encode()
         digest.update(b"s%d:" % len(data) + data)
     elif isinstance(value, Enum):
         _add(digest, value.name)
-    elif isinstance(value, bool | int | float | complex | np.generic | np.ndarray):
+    elif isinstance(value, bool | int | float):
+        digest.update(_NUMBER + _DOUBLE.pack(value))
+    elif isinstance(value, complex | np.generic | np.ndarray):
         array = np.ascontiguousarray(value, dtype="<c16" if np.iscomplexobj(value) else "<f8")
-        digest.update(b"a%d:" % array.ndim + b",".join(b"%d" % length for length in np.shape(value)) + b";")
+        shape = np.shape(value)
+        digest.update(b"a%d:" % len(shape) + b",".join(b"%d" % length for length in shape) + b";")
         digest.update(array.tobytes())
     elif isinstance(value, Mapping):
         digest.update(b"m%d:" % len(value))
@@ -38,11 +49,17 @@ def _add(digest: Any, value: Any) -> None:
             _add(digest, key)
             _add(digest, item)
     elif is_dataclass(value):
-        _add(digest, type(value).__name__)
-        for item in fields(value):
-            _add(digest, getattr(value, item.name))
+        kind = type(value)
+        _add(digest, kind.__name__)
+        for name in _names(kind):
+            _add(digest, getattr(value, name))
     else:
         items = tuple(value)
         digest.update(b"t%d:" % len(items))
         for item in items:
             _add(digest, item)
+
+
+@cache
+def _names(kind: type[Any]) -> tuple[str, ...]:
+    return tuple(field.name for field in fields(kind))

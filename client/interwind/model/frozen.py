@@ -56,6 +56,8 @@ def frozen_square(value: Any, field: str, size: int) -> FloatArray:
 
 def plain_float(value: Any, field: str) -> float:
     """Return ``value`` as a float; anything that is not one real number is refused."""
+    if type(value) is float:
+        return value
     array = frozen_floats(value, field)
     if array.ndim != 0:
         raise InvalidRequest.at(field, f"shape {array.shape} found; one number is expected")
