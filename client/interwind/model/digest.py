@@ -49,7 +49,7 @@ def _add(digest: Any, value: Any) -> None:
             _add(digest, key)
             _add(digest, item)
     elif is_dataclass(value):
-        kind = type(value)
+        kind: Any = type(value)
         _add(digest, kind.__name__)
         for name in _names(kind):
             _add(digest, getattr(value, name))
@@ -61,5 +61,5 @@ def _add(digest: Any, value: Any) -> None:
 
 
 @cache
-def _names(kind: type[Any]) -> tuple[str, ...]:
+def _names(kind: Any) -> tuple[str, ...]:
     return tuple(field.name for field in fields(kind))
