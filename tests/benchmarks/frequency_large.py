@@ -13,6 +13,7 @@ import platform
 import statistics
 import sys
 import time
+from dataclasses import dataclass
 from pathlib import Path
 
 import numpy as np
@@ -21,8 +22,6 @@ import scipy.linalg as sl
 import interwind as iw
 
 FREQUENCIES = np.geomspace(1e4, 1e9, 1000)
-DIRECT_POINTS = 20
-REPEATS = 3
 
 
 def dense_set(count: int, capacitors: int = 150, seed: int = 1) -> iw.Network:
@@ -52,13 +51,13 @@ def factor_seconds(system: iw.MnaSystem) -> float:
     return time.perf_counter() - begin
 
 
-def direct_error(system: iw.MnaSystem, network: iw.Network, answer: iw.PortResponse) -> float:
+def direct_error(system: iw.MnaSystem, network: iw.Network, answer: iw.PortResponse, points: int) -> float:
     """Largest difference of Z from direct solves, over the largest entry of Z at that frequency."""
     rows = [system.unknowns.index(iw.NodeVoltage(port.a)) for port in network.ports]
     right = np.zeros((len(system.G), len(rows)), dtype=complex)
     right[rows, range(len(rows))] = 1.0
     worst = 0.0
-    for k in np.linspace(0, len(FREQUENCIES) - 1, DIRECT_POINTS).astype(int).tolist():
+    for k in np.linspace(0, len(FREQUENCIES) - 1, points).astype(int).tolist():
         A = system.G + 2j * np.pi * FREQUENCIES[k] * system.C
         Z = sl.solve(A, right, overwrite_a=True, check_finite=False)[rows]
         worst = max(worst, float(np.abs(answer.impedance_ohm[k] - Z).max() / np.abs(Z).max()))
@@ -81,26 +80,33 @@ def peak_mb() -> float:
     return max(status[pid][1] for pid in below - {os.getpid()})
 
 
-def run(count: int) -> None:
+@dataclass(frozen=True)
+class Measured:
+    """Medians of the whole call and of one factorization, s; error of Z; peak memory of a worker, MB."""
+
+    unknowns: int
+    call_s: float
+    factor_s: float
+    error: float
+    peak_mb: float
+    answer: iw.PortResponse
+
+
+def measure(count: int, repeats: int = 3, direct_points: int = 20) -> Measured:
     """Measure one size, factorizations and calls in turn."""
     network = dense_set(count)
     factors, calls = [], []
     with iw.connect() as solver:
         system = solver.stamp(network, timeout_s=120)
-        for _ in range(REPEATS):
+        for _ in range(repeats):
             factors.append(factor_seconds(system))
             begin = time.perf_counter()
             answer = solver.port_response(network, FREQUENCIES, timeout_s=600)
             calls.append(time.perf_counter() - begin)
+            factors.append(factor_seconds(system))
         peak = peak_mb()
-        error = direct_error(system, network, answer)
-    factor, call = statistics.median(factors), statistics.median(calls)
-    print(
-        f"N = {count}, {len(system.unknowns)} unknowns: whole call {call:.2f} s = {call / factor:.1f} complex LU of "
-        f"{factor:.2f} s (medians of {REPEATS}); error against {DIRECT_POINTS} direct points {error:.1e}; "
-        f"peak memory of a worker {peak:.0f} MB; {answer.evidence.method}",
-        flush=True,
-    )
+    error = direct_error(system, network, answer, direct_points)
+    return Measured(len(system.unknowns), statistics.median(calls), statistics.median(factors), error, peak, answer)
 
 
 def main() -> None:
@@ -108,7 +114,13 @@ def main() -> None:
     print(f"{platform.processor() or platform.machine()}, Python {platform.python_version()}, NumPy {np.__version__}")
     print(f"command: {' '.join(sys.argv)}", flush=True)
     for count in [int(word) for word in sys.argv[1:]] or [1000]:
-        run(count)
+        found = measure(count)
+        print(
+            f"N = {count}, {found.unknowns} unknowns: whole call {found.call_s:.2f} s = "
+            f"{found.call_s / found.factor_s:.1f} complex LU of {found.factor_s:.2f} s (medians); error against direct "
+            f"points {found.error:.1e}; peak memory of a worker {found.peak_mb:.0f} MB; {found.answer.evidence.method}",
+            flush=True,
+        )
 
 
 if __name__ == "__main__":
