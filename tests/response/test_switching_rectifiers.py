@@ -150,3 +150,23 @@ def test_bridge_on_a_capacitor(source_h):
     on = brentq(lambda a: np.sin(a - np.pi) - np.sin(off) * np.exp(-(a - off) / tau), np.pi + 1e-6, 1.5 * np.pi)
     area = quad(np.sin, on - np.pi, off)[0] + np.sin(off) * tau * (1 - np.exp(-(on - off) / tau))
     assert wave.mean(out) == pytest.approx(100.0 * area / np.pi, rel=1e-7)
+
+
+def test_critical_damping_costs_no_digits():
+    """A chopper with a critically damped filter, R = ½ √(L/C): two modes coincide, and the energy still closes."""
+    net = iw.Network(
+        "g",
+        [
+            iw.VoltageSource("E", "in", "g", iw.Constant(10.0)),
+            iw.Switch("S", "in", "x", iw.Gate(1e-5, 4e-6)),
+            iw.Diode("D", "g", "x"),
+            iw.Inductor("L", "x", "o", 1e-4),
+            iw.Resistor("R", "o", "g", 5.0),
+            iw.Capacitor("C", "o", "g", 1e-6),
+        ],
+    )
+    out = iw.NodeVoltage("o")
+    wave = periodic_response(net, 1e-5, 1e-6, [out, iw.ElementCurrent("L")])
+    assert wave.mean(out) == pytest.approx(4.0, rel=1e-8)
+    assert wave.evidence.energy_error < 1e-10
+    assert abs(sum(wave.mean_power_w.values())) < 1e-10 * wave.mean_power_w["R"]

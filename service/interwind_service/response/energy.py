@@ -16,10 +16,9 @@ from numpy.typing import NDArray
 from interwind.model.response import EnergyLedger
 from interwind_service.network.kind import Kind
 from interwind_service.response.device import SaturableBranch
-from interwind_service.response.modal_integrals import products
 from interwind_service.response.piece import Piece
 from interwind_service.response.tableau import Tableau
-from interwind_service.response.trajectory import Rows, Trajectory
+from interwind_service.response.trajectory import Rows, Trajectory, product_integrals
 
 FloatArray = NDArray[np.float64]
 
@@ -126,7 +125,7 @@ def energy_of(tableau: Tableau, run: Trajectory, start: FloatArray, end: FloatAr
         terms = known.setdefault(piece.number, power_terms(tableau, piece.mode))
         one = terms.one.coefficients(piece, group.kappa, group.w)
         other = terms.other.coefficients(piece, group.kappa, group.w)
-        per_segment = products(piece.rates, piece.order, group.span_s, one, other)
+        per_segment = product_integrals(piece, group.span_s, one, other)
         total = per_segment.sum(axis=0)
         np.add.at(absorbed, terms.element[terms.account == ABSORBED], total[terms.account == ABSORBED])
         np.add.at(heat, terms.element[terms.account == DISSIPATED], total[terms.account == DISSIPATED])

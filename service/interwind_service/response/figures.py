@@ -12,14 +12,12 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
-from interwind_service.response.modal_integrals import products, transform
+from interwind_service.response.modal_integrals import gauss_points, transform
 from interwind_service.response.readings import Readings
-from interwind_service.response.trajectory import Group, Trajectory
+from interwind_service.response.trajectory import Group, Trajectory, product_integrals
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]
-
-_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(tol.PANEL_NODES)
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -69,7 +67,7 @@ def _linear(own: Readings, group: Group, coefficients: ComplexArray, omega: Floa
     turned *= phase[:, None, :]
     spectrum[chosen] += 0.5 * np.einsum("srb,sbk->rk", rows, straight, optimize=True)
     spectrum[chosen] += 0.5 * np.einsum("srb,sbk->rk", rows.conj(), turned, optimize=True)
-    square[chosen] += products(piece.rates, piece.order, group.span_s, rows, rows).sum(axis=0)
+    square[chosen] += product_integrals(piece, group.span_s, rows, rows).sum(axis=0)
 
 
 def _by_panels(own: Readings, group: Group, coefficients: ComplexArray, omega: FloatArray, spectrum, square) -> None:
@@ -78,22 +76,12 @@ def _by_panels(own: Readings, group: Group, coefficients: ComplexArray, omega: F
         return
     shortest = np.pi / max(omega[-1], np.pi / group.span_s.max())
     for k, span in enumerate(group.span_s):
-        edges = _panel_edges(group, float(span), float(shortest))
-        middle, half = 0.5 * (edges[1:] + edges[:-1]), 0.5 * np.diff(edges)
-        t = (middle[:, None] + half[:, None] * _NODES).ravel()
-        weight = (half[:, None] * _WEIGHTS).ravel()
+        edges = group.piece.panels(float(span), float(shortest))
+        t, weight = gauss_points(edges)
         value = own.values((group.piece.basis(t) @ coefficients[k].T).real)[:, chosen]
         turning = np.exp(-1j * omega * (group.start_s[k] + t)[:, None]) * weight[:, None]
         spectrum[chosen] += value.T @ turning
         square[chosen] += weight @ value**2
-
-
-def _panel_edges(group: Group, span: float, shortest: float) -> FloatArray:
-    look = group.piece.look
-    edges = np.append(look[look < span], span)
-    pieces = np.maximum(1, np.ceil(np.diff(edges) / shortest).astype(int))
-    inner = [np.linspace(a, b, n + 1)[:-1] for a, b, n in zip(edges[:-1], edges[1:], pieces, strict=True)]
-    return np.append(np.concatenate(inner) if inner else np.zeros(0), span)
 
 
 def _peaks(own: Readings, group: Group, coefficients: ComplexArray, settle_s: float, peak, at) -> None:

@@ -15,10 +15,9 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.linalg import lapack
 
-from interwind.errors import InvalidNetwork
 from interwind_service import tolerances as tol
+from interwind_service.response.equilibrated import Equilibrated, refuse_singular
 from interwind_service.response.tableau import Mode, Tableau
 
 FloatArray = NDArray[np.float64]
@@ -60,43 +59,6 @@ class Modes:
         return self.left @ (x - (self.particular @ w).real)
 
 
-class Equilibrated:
-    """LU of a matrix, rows and columns scaled by powers of two (Ruiz 2001, from memory), with one refinement."""
-
-    def __init__(self, matrix: FloatArray) -> None:
-        size = len(matrix)
-        row, column = np.ones(size), np.ones(size)
-        magnitude = np.abs(matrix)
-        for _ in range(tol.MODAL_EQUILIBRATION_PASSES):
-            scaled = magnitude * row[:, None] * column
-            peak = scaled.max(axis=1)
-            row /= np.where(peak > 0.0, np.exp2(np.round(0.5 * np.log2(np.where(peak > 0.0, peak, 1.0)))), 1.0)
-            peak = scaled.max(axis=0)
-            column /= np.where(peak > 0.0, np.exp2(np.round(0.5 * np.log2(np.where(peak > 0.0, peak, 1.0)))), 1.0)
-        self.row, self.column, self.matrix = row, column, matrix
-        self.lu, self.pivot, self.info = lapack.dgetrf(matrix * row[:, None] * column)
-        scaled_norm = np.abs(matrix * row[:, None] * column).sum(axis=0).max(initial=0.0)
-        self.rcond = lapack.dgecon(self.lu, scaled_norm)[0] if self.info == 0 else 0.0
-
-    def solve(self, rhs: FloatArray | ComplexArray) -> FloatArray | ComplexArray:
-        """Solve for all columns of ``rhs``."""
-        if rhs.shape[1] == 0:
-            return rhs
-        if np.iscomplexobj(rhs):
-            return self.solve(rhs.real) + 1j * self.solve(rhs.imag)
-        first = self._once(rhs)
-        return first + self._once(rhs - self.matrix @ first)
-
-    def _once(self, rhs: FloatArray) -> FloatArray:
-        return lapack.dgetrs(self.lu, self.pivot, rhs * self.row[:, None])[0] * self.column[:, None]
-
-    def null_members(self) -> NDArray[np.int64]:
-        """Return the columns that take part in the smallest singular vector, largest first."""
-        vector = np.linalg.svd(self.matrix * self.row[:, None] * self.column)[2][-1]
-        order = np.argsort(-np.abs(vector))
-        return order[np.abs(vector)[order] > tol.NULL_MEMBER * np.abs(vector).max()]
-
-
 @dataclass(frozen=True, slots=True, eq=False)
 class Instant:
     """Signals straight from states and drives: s = SX x + SU w."""
@@ -129,21 +91,15 @@ def modes_of(tableau: Tableau, mode: Mode, instant: Instant, rate_per_s: float, 
     X = (P @ SR + np.eye(states)) / rate_per_s
     xs = P @ S0 / rate_per_s
 
-    fast, V_fast = np.linalg.eig(A) if states else (np.zeros(0, complex), np.zeros((0, 0), complex))
-    mu, V_slow = np.linalg.eig(X) if states else (fast, V_fast)
-    fast, V_fast = fast.astype(complex), V_fast.astype(complex)
-    slow, mu, V_slow = rate_per_s - 1.0 / mu.astype(complex), mu.astype(complex), V_slow.astype(complex)
-    order = np.argsort(np.abs(fast), kind="stable")
-    fast, V_fast = fast[order], V_fast[:, order]
-    order = np.argsort(-np.abs(mu), kind="stable")
-    slow, mu, V_slow = slow[order], mu[order], V_slow[:, order]
-    cut = _split(slow, fast, rate_per_s)
-    eigenvalue = np.concatenate([slow[:cut], fast[cut:]])
-    V = np.hstack([V_slow[:, :cut], V_fast[:, cut:]])
-    S = np.hstack([SR @ (V_slow[:, :cut] / mu[:cut]), instant.SX @ V_fast[:, cut:]])
-    left = np.linalg.inv(V) if states else V
-    condition = float(np.linalg.cond(V, 1)) if states else 1.0
+    found = _Spectrum.of(*_both_ends(A, X, instant.SX, SR, rate_per_s))
+    if (
+        found.condition > tol.DEFECTIVE_MODES
+    ):  # critical damping: modes that coincide are drawn apart by a rounding of A
+        jitter = 1.0 + tol.MODE_SPLITTING * np.random.default_rng(states).uniform(-1.0, 1.0, A.shape)
+        apart = _Spectrum.of(*_both_ends(A * jitter, X * jitter, instant.SX, SR, rate_per_s))
+        found = min(found, apart, key=lambda spectrum: spectrum.condition)
 
+    eigenvalue, V, S, left = found.with_conjugates()
     exponent, power, forced_modes = _forced(eigenvalue, left @ xs, tableau.drives.exponent, tableau.drives.link,
                                             tableau.drives.W, rate_per_s, span_s)  # fmt: skip
     signal = np.vstack([S, V])
@@ -152,16 +108,79 @@ def modes_of(tableau: Tableau, mode: Mode, instant: Instant, rate_per_s: float, 
     for channel, s in enumerate(tableau.drives.exponent):
         for order, source in enumerate(_followers(channel, tableau.drives.link)):
             forced[:, _basis(exponent, power, s, order), source] += direct[:, channel]
-    half = eigenvalue.imag >= 0.0
-    weight = np.where(eigenvalue[half].imag > 0.0, 2.0, 1.0)
     particular = (
         forced[len(forced) - states :, power == 0].sum(axis=1)
         if states
         else np.zeros((0, len(tableau.drives.exponent)))
     )
     return Modes(
-        eigenvalue[half], weight[:, None] * left[half], signal[:, half], exponent, power, forced, particular, condition
+        found.eigenvalue,
+        found.left,
+        np.vstack([found.S, found.V]),
+        exponent,
+        power,
+        forced,
+        particular,
+        found.condition,
     )
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class _Spectrum:
+    """One of each conjugate pair: ``eigenvalue`` (h,), ``V`` (n, h), signals ``S`` (m, h), ``left`` (h, n).
+
+    The inverse is taken of the real matrix (Re v, Im v): so Re V left = 1 to the condition times rounding, where two
+    separately rounded halves of a pair would leave the condition squared.
+    """
+
+    eigenvalue: ComplexArray
+    V: ComplexArray
+    S: ComplexArray
+    left: ComplexArray
+    condition: float
+
+    @classmethod
+    def of(cls, eigenvalue: ComplexArray, V: ComplexArray, S: ComplexArray) -> _Spectrum:
+        """Choose the halves and invert."""
+        half = eigenvalue.imag >= 0.0
+        eigenvalue, V, S = eigenvalue[half], V[:, half], S[:, half]
+        paired = np.flatnonzero(eigenvalue.imag > 0.0)
+        real = np.hstack([V.real, V.imag[:, paired]])
+        inverse = np.linalg.inv(real) if len(real) else real
+        left = inverse[: len(eigenvalue)].astype(complex)
+        left[paired] -= 1j * inverse[len(eigenvalue) :]
+        condition = float(np.linalg.norm(real, 1) * np.linalg.norm(inverse, 1)) if len(real) else 1.0
+        return cls(eigenvalue, V, S, left, condition)
+
+    def with_conjugates(self) -> tuple[ComplexArray, ComplexArray, ComplexArray, ComplexArray]:
+        """Return eigenvalues, V, S and left rows of all modes, the halves first."""
+        paired = self.eigenvalue.imag > 0.0
+        weight = np.where(paired, 0.5, 1.0)[:, None]
+        return (
+            np.concatenate([self.eigenvalue, self.eigenvalue[paired].conj()]),
+            np.hstack([self.V, self.V[:, paired].conj()]),
+            np.hstack([self.S, self.S[:, paired].conj()]),
+            np.vstack([weight * self.left, 0.5 * self.left[paired].conj()]),
+        )
+
+
+def _both_ends(
+    A: FloatArray, X: FloatArray, SX: FloatArray, SR: FloatArray, rate: float
+) -> tuple[ComplexArray, ComplexArray, ComplexArray]:
+    """Return eigenvalues (n,), vectors (n, n) and signals (m, n): slow modes from X = (s0 − A)⁻¹, fast ones from A."""
+    if not len(A):
+        return np.zeros(0, complex), np.zeros((0, 0), complex), np.zeros((len(SX), 0), complex)
+    fast, V_fast = (part.astype(complex) for part in np.linalg.eig(A))
+    mu, V_slow = (part.astype(complex) for part in np.linalg.eig(X))
+    order = np.argsort(np.abs(fast), kind="stable")
+    fast, V_fast = fast[order], V_fast[:, order]
+    order = np.argsort(-np.abs(mu), kind="stable")
+    mu, V_slow = mu[order], V_slow[:, order]
+    slow = rate - 1.0 / mu
+    cut = _split(slow, fast, rate)
+    V = np.hstack([V_slow[:, :cut], V_fast[:, cut:]])
+    S = np.hstack([SR @ (V_slow[:, :cut] / mu[:cut]), SX @ V_fast[:, cut:]])
+    return np.concatenate([slow[:cut], fast[cut:]]), V, S
 
 
 def _split(slow: ComplexArray, fast: ComplexArray, rate: float) -> int:
@@ -226,19 +245,3 @@ def _forced(
                 found[close, where[s, k + p + 1], source] += drive[close] * gap[close] ** k
     exponent = np.array([s for s, _ in where], dtype=complex)
     return exponent, np.array([q for _, q in where], dtype=np.int64), found
-
-
-def refuse_singular(factor: Equilibrated, tableau: Tableau) -> None:
-    """Raise InvalidNetwork naming what is undetermined when the equations have no unique solution."""
-    if factor.rcond > tol.SINGULAR_TABLEAU:
-        return
-    names: list[str] = []
-    nodes = {int(c): name for name, c in zip(tableau.topology.nodes, tableau.column_of_node, strict=True) if c >= 0}
-    branches = dict(zip(tableau.column_of_current.tolist(), tableau.topology.names, strict=True))
-    for member in factor.null_members().tolist():
-        text = f"node {nodes[member]!r}" if member in nodes else repr(branches.get(member, ""))
-        if text != "''" and text not in names:
-            names.append(text)
-    raise InvalidNetwork.at(
-        "elements", f"the network has no unique solution; what is undetermined involves {', '.join(names[:6])}"
-    )

@@ -18,6 +18,7 @@ FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]
 
 _NODES, _WEIGHTS = np.polynomial.legendre.leggauss(tol.GAUSS_NODES)
+_PANEL_NODES, _PANEL_WEIGHTS = np.polynomial.legendre.leggauss(tol.PANEL_NODES)
 
 
 def power_exponential(n: NDArray[np.int64], a: ComplexArray, tau: FloatArray) -> ComplexArray:
@@ -71,6 +72,12 @@ def products(
     total = np.einsum("srb,srb->sr", half, other)
     total += np.einsum("srb,srb->sr", np.matmul(one, mixed), other.conj())
     return 0.5 * total.real
+
+
+def gauss_points(edges: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Return points and weights of a composite Gauss-Legendre rule over panels, each (panels · points,)."""
+    middle, half = 0.5 * (edges[1:] + edges[:-1]), 0.5 * np.diff(edges)
+    return (middle[:, None] + half[:, None] * _PANEL_NODES).ravel(), (half[:, None] * _PANEL_WEIGHTS).ravel()
 
 
 def transform(

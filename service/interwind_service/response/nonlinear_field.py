@@ -17,7 +17,7 @@ from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
 from interwind_service.response.device import SaturableBranch
-from interwind_service.response.modal import Equilibrated, refuse_singular
+from interwind_service.response.equilibrated import Equilibrated, refuse_singular
 from interwind_service.response.nonlinear_laws import Laws
 from interwind_service.response.tableau import Mode, Tableau
 
@@ -66,13 +66,18 @@ class Field:
 
     def value(self, u: FloatArray, driven: FloatArray) -> FloatArray:
         """Return f, shape (..., d)."""
-        f, argument, wave = self._cut(u @ self.linear_u.T + driven)
-        if argument.shape[-1]:
-            j, _ = self.direct.currents(argument)
-            f = f + j @ self.over_j.T
-            wave = wave + j @ self.wave_j.T
-        if wave.shape[-1]:
-            f[..., self.states :] -= self.rho * self.waves.currents(wave)[0]
+        rows: FloatArray = u @ self.linear_u.T
+        rows += driven
+        d, e = u.shape[-1], len(self.direct.branch)
+        f: FloatArray = rows[..., :d]
+        if e:
+            j = self.direct.current(rows[..., d : d + e])
+            f += j @ self.over_j.T
+        if d > self.states:
+            wave = rows[..., d + e :]
+            if e:
+                wave += j @ self.wave_j.T
+            f[..., self.states :] -= self.rho * self.waves.current(wave)
         return f
 
     def jacobian(self, u: FloatArray, driven: FloatArray, rate: FloatArray) -> tuple[FloatArray, FloatArray]:

@@ -110,6 +110,13 @@ class Piece:
             found *= t**self.powers * self.weights
         return found
 
+    def panels(self, span_s: float, widest_s: float) -> FloatArray:
+        """Return the edges of panels over a segment, short against every living mode and at most ``widest_s`` wide."""
+        edges = np.append(self.look[self.look < span_s], span_s)
+        pieces = np.maximum(1, np.ceil(np.diff(edges) / widest_s).astype(int))
+        inner = [np.linspace(a, b, n + 1)[:-1] for a, b, n in zip(edges[:-1], edges[1:], pieces, strict=True)]
+        return np.append(np.concatenate(inner) if inner else np.zeros(0), span_s)
+
     def driven(self, w: ComplexArray) -> Driven:
         """Return the piece under the drives w at its start."""
         guard = self.guard_forced @ w

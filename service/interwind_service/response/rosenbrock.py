@@ -85,14 +85,15 @@ def integrate(
         moved = drives.moved_to(w, C_TIME * h) if not drives.steady else np.broadcast_to(w, (len(C_TIME), len(w)))
         along = field.drives(moved)
         shifted = -J
-        shifted[diagonal, diagonal] += mass / (h * GAMMA)
+        weight = mass / h
+        shifted[diagonal, diagonal] += weight / GAMMA
         inverse = np.linalg.inv(shifted)
-        stages = np.zeros((len(C_TIME), len(y)))
-        coupling = C / h
+        stages = np.empty((len(C_TIME), len(y)))
         for i in range(len(C_TIME)):
-            before = stages[:i]
-            argument = y + A[i, :i] @ before
-            right = field.value(argument, along[i]) + mass * (coupling[i, :i] @ before)
+            argument = y + A[i, :i] @ stages[:i] if i else y
+            right = field.value(argument, along[i])
+            if i:
+                right += weight * (C[i, :i] @ stages[:i])
             if D_TIME[i]:
                 right += (h * D_TIME[i]) * f_t
             stages[i] = inverse @ right

@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
-from interwind_service.response.modal_integrals import transform
+from interwind_service.response.modal_integrals import gauss_points, products, transform
 from interwind_service.response.piece import Piece
 from interwind_service.response.tableau import Tableau
 
@@ -33,6 +33,22 @@ class Rows:
         constant = int(np.flatnonzero((modes.exponent == 0.0) & (modes.power == 0))[0])
         forced[:, constant, 0] += self.offset
         return np.concatenate([free, np.tensordot(w, forced, axes=(1, 2))], axis=2)
+
+
+def product_integrals(piece: Piece, span_s: FloatArray, one: ComplexArray, other: ComplexArray) -> FloatArray:
+    """Return ∫ Re(one·f) Re(other·f) dt over segments of a piece, (segments, rows): in closed form, else by panels.
+
+    Modes that almost coincide carry large amplitudes of opposite sign. Their sum is right, but in the integral of a
+    product they cancel to the square of their condition; there the sums themselves are integrated by Gauss-Legendre.
+    """
+    if piece.modes.condition <= tol.CANCELLING_MODES:
+        return products(piece.rates, piece.order, span_s, one, other)
+    found = np.empty(one.shape[:2])
+    for k, span in enumerate(span_s.tolist()):
+        t, weight = gauss_points(piece.panels(span, span))
+        basis = piece.basis(t)
+        found[k] = weight @ ((basis @ one[k].T).real * (basis @ other[k].T).real)
+    return found
 
 
 @dataclass(frozen=True, slots=True, eq=False)
