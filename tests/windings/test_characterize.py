@@ -245,6 +245,14 @@ def test_bad_connections_are_refused_with_their_field(connections, frequency_hz,
     assert caught.value.violations[0].field == field
 
 
+def test_a_connection_that_shorts_itself_is_refused():
+    """Perfectly coupled windings of unequal turns in parallel leave no inductance."""
+    coils = WindingSet(("a", "b"), 1e-3 * np.array([[1.0, 2.0], [2.0, 4.0]]))
+    with pytest.raises(InvalidRequest, match="unequal turns") as caught:
+        characterize(coils, [InParallel("p", ("a", "b"))])
+    assert caught.value.reason == "SHORTED_BY_CONNECTION"
+
+
 def test_sets_without_an_answer_are_refused():
     """An unknown pair, and a set that cannot exist."""
     with pytest.raises(InvalidRequest, match="repair can fill it"):

@@ -7,7 +7,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
-from interwind.errors import InvalidRequest
+from interwind.errors import AccuracyNotReached, InvalidRequest
 from interwind.model.finding import Verdict
 from interwind.model.readings import (
     EffectiveLeakage,
@@ -173,7 +173,6 @@ def redundant():
     [
         (4, 1.2, "again"),
         (4, 1000.0, "check the unit"),
-        (7, 1e-6, "check the unit"),
         (9, 2.0, "factor 2"),
         (5, (5.0 / 30.0) ** 2, "other side"),
         (1, 1e-3, "check the unit"),
@@ -188,6 +187,12 @@ def test_a_gross_error_is_named_with_its_slip(redundant, position, factor, words
     assert outlier.position == position
     assert words in finding.message
     assert finding.limit == pytest.approx(stated_value(redundant[position])[0], rel=0.05)
+
+
+def test_an_error_that_no_windings_can_follow_is_refused_by_name(redundant):
+    """A leakage a million times too small, and sure of itself, leaves no fit to report: the error names the reading."""
+    with pytest.raises(AccuracyNotReached, match=r"Reading 8 of b-c .* check the unit"):
+        identify(LABELS, with_error(redundant, 7, 1e-6))
 
 
 def test_two_gross_errors_are_both_named(redundant):

@@ -88,6 +88,9 @@ COMPLETION_UNKNOWN_PAIRS = 2000
 
 # Nearest matrix. Fixed entries met to this part of their norm: some hundred roundings of the eigenvalue decomposition.
 NEAREST_RESIDUAL = 1e-14
+# The nearest matrix is asked to stay this many of those residuals a winding inside the cone, so that rounding cannot
+# put it outside.
+NEAREST_CLEARANCE = 4.0
 # Newton steps: quadratic convergence takes 5 to 15, a problem with hardly any room above the floor more.
 NEAREST_STEPS = 100
 # Conjugate gradient steps for one Newton direction, and the accuracy asked of the first directions (Qi & Sun 2006).
@@ -101,6 +104,8 @@ LEAKAGE_MOVED_RATIO = 1.1
 
 # Characterization. A winding group whose scaled matrix is closer to singular than this leaves its currents open.
 SINGULAR_RECIPROCAL_CONDITION = 1e-13
+# What a connection leaves below this part of the largest self-inductance is rounding and no inductance.
+NO_INDUCTANCE = 1e-14
 # The cantilever circuit of N windings has N²/2 branches; beyond this nobody reads it.
 EQUIVALENT_WINDINGS = 32
 # A star that misses a pair leakage by more than one per cent is said to be a fit: printed leakages are as good as that.
@@ -114,9 +119,12 @@ CORRECTION_LIMIT = 0.5
 DERIVATIVE_STEP = 1e-5
 # First guess. A pair that nothing speaks of starts half coupled: at zero a short-circuit reading has no slope.
 FIRST_COUPLING = 0.5
-# Noise that reads |k| above 1 starts just inside; the whole matrix starts with this smallest eigenvalue at least.
+# Noise that reads |k| above 1 starts just inside; the whole matrix starts with this smallest eigenvalue at least, well
+# inside the cone, for the steps to have room (of 90 wild mixtures a start at 1e-6 lost ten more).
 FIRST_COUPLING_LARGEST = 0.999999
-FIRST_MARGIN = 1e-6
+FIRST_MARGIN = 1e-2
+# An inverse matrix that was read, scaled to unit diagonal, is taken for singular below this: its L has no digit left.
+INVERSE_MARGIN = 1e-12
 # Fit. Marquardt damping: start, the least that still steers, and the one at which no step gains any more.
 FIT_DAMPING_START = 1e-3
 FIT_DAMPING_LEAST = 1e-15
@@ -126,6 +134,8 @@ FIT_DAMPING_LARGEST = 1e12
 # usual.
 FIT_GAIN = 1e-6
 FIT_STEPS = 200
+# Parts of a step in the matrix itself that are tried before one in its factor.
+FIT_FREE_PARTS = (1.0, 0.5, 0.1)
 # Readings scaled to norm 1 that determine a direction only below this say nothing about it beyond rounding.
 UNDETERMINED_SINGULAR_VALUE = 1e-9
 # A residual that keeps less than this part of its variance belongs to a reading that alone decides its own value.

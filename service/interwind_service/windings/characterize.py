@@ -12,7 +12,7 @@ from interwind.model.connection import CONNECTIONS, Connection, InParallel
 from interwind.model.finding import Evidence, Finding, Severity, Verdict
 from interwind.model.frozen import FloatArray, frozen_vector
 from interwind.model.windings import WindingSet
-from interwind_service.tolerances import EQUIVALENT_WINDINGS, STAR_ERROR
+from interwind_service.tolerances import EQUIVALENT_WINDINGS, NO_INDUCTANCE, STAR_ERROR
 from interwind_service.windings.equivalents import cantilever, pi, star, tee
 from interwind_service.windings.interconnect import in_parallel, in_series, shorted_and_open
 from interwind_service.windings.leakage import (
@@ -109,6 +109,14 @@ def _connected(
             raise InvalidRequest.at(f"connections[{position}]", f"{connection!r} found; a connection is expected")
     series = in_series(windings, connections)
     joined = shorted_and_open(in_parallel(series, connections), connections)
+    for label, own in zip(joined.labels, joined.inductance_h.diagonal(), strict=True):
+        if own <= NO_INDUCTANCE * float(series.inductance_h.diagonal().max()):
+            raise InvalidRequest.at(
+                "connections",
+                f"{label!r} has no inductance left ({own:.2g} H): windings in parallel with unequal turns, or beside a "
+                "shorted one, need leakage between them; change the connection, or state the leakage",
+                reason="SHORTED_BY_CONNECTION",
+            )
     sharing = tuple(
         current_sharing(series, c, connections, frequency_hz) for c in connections if isinstance(c, InParallel)
     )

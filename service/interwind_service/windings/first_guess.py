@@ -24,7 +24,7 @@ from interwind.model.readings import (
     ShortedInductance,
     VoltageRatio,
 )
-from interwind_service.tolerances import FIRST_COUPLING, FIRST_COUPLING_LARGEST, FIRST_MARGIN
+from interwind_service.tolerances import FIRST_COUPLING, FIRST_COUPLING_LARGEST, FIRST_MARGIN, INVERSE_MARGIN
 from interwind_service.windings.completion import largest_determinant
 from interwind_service.windings.intake import Taken
 from interwind_service.windings.pattern import solve_semidefinite
@@ -230,6 +230,6 @@ def _inverted(gamma: FloatArray) -> FloatArray | None:
         return None
     scale = 1.0 / np.sqrt(gamma.diagonal())
     normal = gamma * np.outer(scale, scale)
-    if np.linalg.eigvalsh(normal)[0] < FIRST_MARGIN**2:
+    if np.linalg.eigvalsh(normal)[0] < INVERSE_MARGIN:
         return None
     return np.linalg.inv(normal) * np.outer(scale, scale)

@@ -23,6 +23,7 @@ from interwind.model.readings import (
     ShortedInductance,
     VoltageRatio,
 )
+from interwind_service.windings.pattern import solve_semidefinite
 
 
 def windings_of(reading: Reading) -> tuple[str, ...]:
@@ -92,7 +93,10 @@ def _shorted(L: FloatArray, driven: int, shorted: list[int], resistance_h: Float
     inner = L[shorted][:, shorted]
     if lossy:
         inner = inner - 1j * np.diag(resistance_h)
-    u[shorted] = -np.linalg.solve(inner, L[shorted, driven])
+    try:
+        u[shorted] = -np.linalg.solve(inner, L[shorted, driven])
+    except np.linalg.LinAlgError:
+        u[shorted] = -solve_semidefinite(L[shorted][:, shorted], L[shorted, driven])
     return float((L[driven] @ u).real), np.outer(u, u).real
 
 

@@ -12,6 +12,7 @@ from interwind.model.finding import Evidence, Finding, Severity
 from interwind.model.frozen import FloatArray, frozen_vector, plain_float
 from interwind.model.report import RepairMethod, RepairReport
 from interwind.model.windings import WindingSet
+from interwind_service.tolerances import NEAREST_CLEARANCE, NEAREST_RESIDUAL
 from interwind_service.windings.before_after import changes_of, floor_decides, harm_of, rebuilt
 from interwind_service.windings.completable import complete
 from interwind_service.windings.completion import largest_determinant
@@ -183,7 +184,8 @@ def _nearest(coils: WindingSet, K: FloatArray, keep: FloatArray, weights: FloatA
                 "trust fewer pairs, or lower the floor",
                 reason="TRUSTED_PAIRS_CONTRADICT",
             )
-    result = nearest_correlation(K, trusted=keep, weights=weights, floor=floor)
+    clear = max(floor, NEAREST_CLEARANCE * NEAREST_RESIDUAL * len(K))
+    result = nearest_correlation(K, trusted=keep, weights=weights, floor=clear)
     return _Mended(result.matrix, [], method, result.violation, on_edge=True)
 
 
