@@ -59,7 +59,7 @@ def test_random_deaths_lose_and_double_nothing(tmp_path, deaths):
         undisturbed = submit(client, "peace").result()
     assert VARIANTS - 1 == undisturbed.ok.sum()
     dice = random.Random(deaths)
-    died, number, children, early = 0, 0, [], 0
+    died, number, children, midway = 0, 0, [], 0
     while died < deaths:
         number += 1
         done = False
@@ -77,16 +77,16 @@ def test_random_deaths_lose_and_double_nothing(tmp_path, deaths):
                         if died < deaths and not in_submission and target <= progress.done_count < VARIANTS:
                             time.sleep(dice.uniform(0.0, 0.05))
                             server.process.send_signal(signal.SIGKILL)
-                            early += 1
+                            midway += 1
                             break
                     assert same(undisturbed, batch.result())
                     assert VARIANTS == batch.progress().done_count
                     batch.delete()
                     done = True
                 killer.cancel()
-                died += server.process.poll() is not None
+                died += not done
                 server.stop(signal.SIGKILL)
-    print(f"{died} deaths, {early} of them between two chunks of {number} batches")
+    print(f"{died} deaths, {midway} of them between two chunks of {number} batches")
     time.sleep(2.0)
     assert [] == [pid for pid in children if alive(pid)]
 
