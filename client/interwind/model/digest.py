@@ -12,7 +12,6 @@ from typing import Any
 
 import numpy as np
 
-
 _NUMBER = b"a0:;"  # what an array without axes begins with, so that 1.0 and np.float64(1.0) agree
 _DOUBLE = struct.Struct("<d")
 
