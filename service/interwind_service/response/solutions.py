@@ -25,7 +25,7 @@ from interwind_service.response.sparse_nodal import (
     nodal_suspects,
     nodal_terminal,
 )
-from interwind_service.response.spectrum import Band, all_coordinates, bands, solve_band
+from interwind_service.response.spectrum import Band, all_coordinates, bands, solve_band, terminal_rows
 from interwind_service.response.sweep import SweptBand, sweep
 from interwind_service.response.swept_state import Comparison, SweptState, compare
 from interwind_service.response.undetermined import suspects
@@ -125,7 +125,7 @@ def _one_by_one(
 
 def _in_tree(band: Band, u: ComplexArray) -> Solution:
     singular = ~np.isfinite(band.condition)
-    rows = _terminal_rows(band)
+    rows = terminal_rows(band)
     state = TreeState(band, u)
     return Solution(
         index=band.index,
@@ -166,18 +166,6 @@ def _sparse(
         )
 
 
-def _terminal_rows(band: Band) -> FloatArray:
-    """What each drive meets, as rows over the columns of the tree: −current of a source, voltage of a current drive."""
-    tree = band.tree
-    rows = np.zeros((len(tree.drives), band.Z.shape[1]))
-    for k, drive in enumerate(tree.drives):
-        if drive.out_of < 0:
-            rows[k, tree.current[drive.branch]] = -1.0
-        else:
-            rows[k, : len(tree.tree)] = tree.paths[drive.into] - tree.paths[drive.out_of]
-    return rows
-
-
 def _swept(
     band: SweptBand,
     found: list[Comparison],
@@ -187,7 +175,6 @@ def _swept(
     rows: Sequence[int],
 ) -> Solution:
     state = SweptState(band, u, coordinates, rows)
-    noise = [tol.NOISE_SHARE * (x.band.scale @ np.abs(_terminal_rows(x.band)).T) * x.band.largest for x in found]
     return Solution(
         index=band.index,
         omega=band.s.imag,
@@ -196,9 +183,9 @@ def _swept(
         loudest=state.loudest(),
         drives=drives,
         terminal=lambda: _swept_terminal(band, drives),
-        noise=np.max(noise, axis=0),
+        noise=np.max([x.noise for x in found], axis=0),
         residual=max(x.residual for x in found),
-        condition=max(float(x.band.condition.max()) for x in found),
+        condition=max(x.condition for x in found),
         suspects=lambda k: "",
         method=SWEPT,
     )

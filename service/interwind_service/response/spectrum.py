@@ -104,3 +104,15 @@ def solve_band(tree: FrequencyTree, index: NDArray[np.int64], s: ComplexArray) -
     scale = np.zeros((len(s), M.shape[2]))
     scale[:, unknown] = answer.scale
     return Band(tree, index, s, Z, answer.residual, answer.condition, scale, answer.largest)
+
+
+def terminal_rows(band: Band) -> FloatArray:
+    """Return what each drive meets, as rows over the columns: −current of a source, voltage of a current drive."""
+    tree = band.tree
+    rows = np.zeros((len(tree.drives), band.Z.shape[1]))
+    for k, drive in enumerate(tree.drives):
+        if drive.out_of < 0:
+            rows[k, tree.current[drive.branch]] = -1.0
+        else:
+            rows[k, : len(tree.tree)] = tree.paths[drive.into] - tree.paths[drive.out_of]
+    return rows

@@ -16,7 +16,7 @@ from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import WindingCoordinates
 from interwind_service.response.frequency_tree import Drive, FrequencyTree
-from interwind_service.response.spectrum import Band, bands, solve_band
+from interwind_service.response.spectrum import Band, bands, solve_band, terminal_rows
 from interwind_service.response.sweep import SweptBand, check_points
 
 FloatArray = NDArray[np.float64]
@@ -132,11 +132,15 @@ class SweptState:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Comparison:
-    """``band`` is the tree's own answer at a point; ``gap`` the largest difference, ``residual`` of the swept one."""
+    """``gap``: the largest difference from the tree at a point; ``residual`` of the swept one in the tree's equations.
 
-    band: Band
+    ``condition`` of the tree's equations; ``noise`` (1, drives): terminal entries below it are rounding.
+    """
+
     gap: float
     residual: float
+    condition: float
+    noise: FloatArray
 
 
 def compare(
@@ -144,14 +148,23 @@ def compare(
 ) -> list[Comparison]:
     """Hold a band against the frequency tree at its ends and where it is loudest."""
     points = check_points(swept, np.linalg.norm(swept.t, axis=(0, 2)))
-    found = []
-    for point in points.tolist():
-        part = swept.index[[point]]
-        tree, _ = next(iter(bands(swept.topology, coordinates, frequency_hz[part], drives)))
-        band = solve_band(tree, part, swept.s[[point]])
-        Z = _columns(swept.at(np.array([point])), tree)
-        found.append(Comparison(band, _gap(band, Z), _residual(band, Z)))
-    return found
+    return [_compare_at(swept, point, coordinates, frequency_hz, drives) for point in points.tolist()]
+
+
+def _compare_at(
+    swept: SweptBand,
+    point: int,
+    coordinates: tuple[WindingCoordinates, ...],
+    frequency_hz: FloatArray,
+    drives: tuple[Drive, ...],
+) -> Comparison:
+    """Compare at one point; a tree of thousands of unknowns is not kept."""
+    part = swept.index[[point]]
+    tree, _ = next(iter(bands(swept.topology, coordinates, frequency_hz[part], drives)))
+    band = solve_band(tree, part, swept.s[[point]])
+    Z = _columns(swept.at(np.array([point])), tree)
+    noise = tol.NOISE_SHARE * (band.scale @ np.abs(terminal_rows(band)).T) * band.largest
+    return Comparison(_gap(band, Z), _residual(band, Z), float(band.condition.max()), noise)
 
 
 def _columns(swept: SweptBand, tree: FrequencyTree) -> ComplexArray:
