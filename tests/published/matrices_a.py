@@ -34,8 +34,7 @@ TEC03 = by_rows("-0.55 -0.15 -0.1; 0.9 0.9; 0.9")
 
 # Finger, RiskMetrics Monitor Q4 1997, Table 4; looked up: same collection, fing97.m
 FING97 = by_rows(
-    "0.18 -0.13 -0.26 0.19 -0.25 -0.12; 0.22 -0.14 0.31 0.16 0.09; 0.06 -0.08 0.04 0.04;"
-    "0.85 0.85 0.85; 0.85 0.85; 0.85"
+    "0.18 -0.13 -0.26 0.19 -0.25 -0.12; 0.22 -0.14 0.31 0.16 0.09; 0.06 -0.08 0.04 0.04;0.85 0.85 0.85; 0.85 0.85; 0.85"
 )
 
 # Bentler & Yuan, Psychometrika 76 (2011) 119-123, Table 1; looked up: same collection, beyu11.m

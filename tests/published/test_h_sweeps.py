@@ -39,7 +39,7 @@ def test_h04_building(data_folder):
 
 
 def test_h05_cd_player(data_folder):
-    """SLICOT "CD player", 120 states, 2 x 2 (looked up): 243 published magnitudes, column-major, to 1e-8 of the peak."""
+    """SLICOT "CD player", 120 states, 2 x 2 (looked up): 243 published magnitudes, by columns, to 1e-8 of the peak."""
     data = load(data_folder, "cdplayer")
     found = np.abs(sweep(data, 300.0)).transpose(0, 2, 1).reshape(243, 4)
     published = data["mag"] if data["mag"].shape == (243, 4) else data["mag"].T

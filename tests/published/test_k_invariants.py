@@ -13,7 +13,7 @@ HZ = np.array([10.0, 800 / (2 * math.pi), 5e3])
 
 
 def linear_transformer(impedance: float = 1.0, time: float = 1.0, turns: float = 1.0) -> iw.Network:
-    """B-10: L, R times ``impedance``, C over it; L, C times ``time``; the second winding with ``turns`` times the turns."""
+    """B-10: L, R times ``impedance``, C over it; L, C times ``time``; ``turns`` for those of the second winding."""
     a, b = impedance, impedance * time
     L = np.array([[0.5, 0.1], [0.1, 0.125]]) * np.outer([1, turns], [1, turns])
     coils = iw.WindingSet(("1", "2"), b * L, a * np.array([100.0, 40.0 * turns**2]))
