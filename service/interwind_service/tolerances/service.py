@@ -29,8 +29,8 @@ KEEPALIVE_MIN_INTERVAL_MS = 30_000  # the client pings every 60 s while it has c
 MAX_CONCURRENT_STREAMS = 256  # calls a connection may have open at once
 CALL_MEAN_WEIGHT = 0.1  # weight of the newest call in the running mean of call seconds
 FIRST_CALL_S = 1.0  # what a call is taken to last before any was measured
-# Dense complex matrices a solve holds at once, 16 m² bytes each (measured: 8.8 between 1000 and 2000 coupled windings)
-ESTIMATE_MATRICES = 9
+# Dense complex matrices a solve holds at once, 16 m² bytes each (measured: 7 to 8.6 from 500 to 2000 coupled windings)
+ESTIMATE_MATRICES = 8
 # What an unknown takes beside them: names, branches, rows, sparse factors (measured: 2.4 KB in a ladder)
 ESTIMATE_UNKNOWN_BYTES = 32 * 1024
 UNSTATED_BYTES = 64 * 2**20  # what a request may cost beyond its stated size: enough to type small ones by hand
