@@ -24,6 +24,7 @@ from interwind.model.report import RepairMethod, RepairReport, ValidityReport
 from interwind.model.response import AdaptiveSweep, FrequencyResponse, MnaSystem, PortResponse, TimeResponse
 from interwind.model.vary import SampleWindings
 from interwind.model.windings import WindingSet
+from interwind_service.network.hazards import STANDING
 from interwind_service.tolerances import DEFAULT_TOLERANCE
 from interwind_service.version import SERVICE_VERSION
 
@@ -35,7 +36,7 @@ R = TypeVar("R")
 
 
 def _with_provenance(function: Callable[P, R]) -> Callable[P, R]:
-    """Put the request's fingerprint and the service's version into the evidence of the answer."""
+    """Put the request's fingerprint and the service's version into the evidence; no answer goes without cautions."""
 
     @functools.wraps(function)
     def call(*args: P.args, **kwargs: P.kwargs) -> R:
@@ -44,6 +45,7 @@ def _with_provenance(function: Callable[P, R]) -> Callable[P, R]:
         arguments = dict(zip(names, args, strict=False)) | kwargs
         return replace(
             answer,
+            cautions=answer.cautions or (STANDING,),
             evidence=replace(
                 answer.evidence,
                 input_sha256=request_digest(function.__name__, arguments),

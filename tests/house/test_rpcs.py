@@ -8,6 +8,7 @@ import re
 
 import interwind
 import interwind.v1
+from interwind_service import engine
 
 # Each call of the contract: how a caller says it in Python. `Batch` is what `submit_batch` hands back.
 SAID = {
@@ -62,3 +63,10 @@ def test_every_call_is_made_somewhere(root):
     paths = [path for path in (root / "client/interwind").rglob("*.py") if path.parent.name != "v1"]
     text = "\n".join(path.read_text(encoding="utf-8") for path in paths)
     assert [] == [call for call in sorted(calls()) if not re.search(rf"\b{call}\b", text)]
+
+
+def test_no_answer_goes_without_cautions():
+    """Even a verdict on a matrix carries the standing statement."""
+    report = engine.check(interwind.WindingSet(("a",), [[1.0]]))
+
+    assert "ENGINEERING_ESTIMATE" in [caution.code for caution in report.cautions]
