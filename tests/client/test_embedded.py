@@ -70,7 +70,8 @@ def test_embedded_service_ends_with_a_program_that_forgot_to_close(no_address):
 def test_interrupt_at_the_terminal_cancels_the_call(no_address):
     """Ctrl-C reaches the user's process as KeyboardInterrupt, at once, in the middle of a call."""
     script = (
-        "import interwind as iw, numpy as np\n"
+        "import signal, interwind as iw, numpy as np\n"
+        "signal.signal(signal.SIGINT, signal.default_int_handler)  # a job in the background is born deaf to it\n"
         "with iw.connect() as solver:\n"
         "    solver.server_info()\n"
         "    print('ready', flush=True)\n"
