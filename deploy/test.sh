@@ -10,7 +10,7 @@ for argument in "$@"; do
   if [ "$argument" = --long ]; then long=yes; fi
 done
 
-environment .venv service,plot,dev
+environment .venv service,plot,cluster,dev
 export PATH="$PWD/.venv/bin:$PATH"
 
 stage "lint";              ruff check --quiet .
