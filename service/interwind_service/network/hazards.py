@@ -68,9 +68,9 @@ def _impulses(topology: Topology) -> list[Caution]:
     return [
         Caution(
             "IMPULSE_VOLTAGE",
-            f"{', '.join(peaks)} apply an impulse voltage. Impulse generators kill and stay charged after a shot; test "
-            "only in an interlocked, earthed bay under IEC 60060-1 with trained staff. Insulation coordination is not "
-            "decided here.",
+            f"An impulse voltage is applied by {', '.join(map(repr, peaks))}. Impulse generators kill and stay charged "
+            "after a shot; test only in an interlocked, earthed bay under IEC 60060-1 with trained staff. Insulation "
+            "coordination is not decided here.",
             measured=max(peaks.values()),
         )
     ]
