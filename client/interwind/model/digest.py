@@ -26,8 +26,14 @@ def request_digest(call: str, arguments: Mapping[str, Any]) -> str:
 
 def _add(digest: Any, value: Any) -> None:
     """Feed one value, each kind with a mark of its own so that neighbours cannot run into each other."""
-    if type(value) is float:  # the most frequent kind first
+    kind: Any = type(value)
+    names = _names(kind)
+    if kind is float:  # the most frequent kind first
         digest.update(_NUMBER + _DOUBLE.pack(value))
+    elif names is not None:
+        _add(digest, kind.__name__)
+        for name in names:
+            _add(digest, getattr(value, name))
     elif value is None:
         digest.update(b"n")
     elif isinstance(value, str):
@@ -47,11 +53,6 @@ def _add(digest: Any, value: Any) -> None:
         for key, item in value.items():
             _add(digest, key)
             _add(digest, item)
-    elif is_dataclass(value):
-        kind: Any = type(value)
-        _add(digest, kind.__name__)
-        for name in _names(kind):
-            _add(digest, getattr(value, name))
     else:
         items = tuple(value)
         digest.update(b"t%d:" % len(items))
@@ -60,5 +61,6 @@ def _add(digest: Any, value: Any) -> None:
 
 
 @cache
-def _names(kind: Any) -> tuple[str, ...]:
-    return tuple(field.name for field in fields(kind))
+def _names(kind: Any) -> tuple[str, ...] | None:
+    """The fields of a value's class, None when it is no dataclass; asked once a class."""
+    return tuple(field.name for field in fields(kind)) if is_dataclass(kind) else None
