@@ -6,6 +6,7 @@ short against every mode and harmonic. A peak is found on the grid of each segme
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
@@ -94,24 +95,42 @@ def _peaks(own: Readings, group: Group, coefficients: ComplexArray, settle_s: fl
     for k, span in enumerate(group.span_s):
         if jumps.size and span < tol.JUMP_SPAN * settle_s:
             continue
+
+        def evaluate(t: FloatArray, k: int = k) -> FloatArray:
+            return own.values((piece.basis(t) @ coefficients[k].T).real)
+
         t = np.append(piece.look[piece.look < span], span)
-        value = np.abs(own.values((piece.basis(t) @ coefficients[k].T).real))
-        for observable in np.flatnonzero(value.max(axis=0) * tol.PEAK_HEADROOM > np.abs(peak)):
-            column = value[:, observable]
-            padded = np.concatenate([[-1.0], column, [-1.0]])
-            tops = np.flatnonzero((padded[1:-1] >= padded[:-2]) & (padded[1:-1] >= padded[2:]))
-            for top in tops[column[tops] * tol.PEAK_HEADROOM > abs(peak[observable])]:
-                low, high = t[max(top - 1, 0)], t[min(top + 1, len(t) - 1)]
-                instant, found = _refine(own, piece, coefficients[k], int(observable), float(low), float(high), t[top])
-                if abs(found) > abs(peak[observable]):
-                    peak[observable], at[observable] = found, group.start_s[k] + instant
+        take_crests(t, evaluate(t), evaluate, group.start_s[k], peak, at)
 
 
-def _refine(own, piece, coefficients, observable: int, low: float, high: float, best: float) -> tuple[float, float]:
+def take_crests(
+    t: FloatArray,
+    value: FloatArray,
+    evaluate: Callable[[FloatArray], FloatArray],
+    start_s: float,
+    peak: FloatArray,
+    at: FloatArray,
+) -> None:
+    """Put into ``peak`` and ``at`` (observables,) the crests of ``value`` (T, observables) that stand above them."""
+    size = np.abs(value)
+    for observable in np.flatnonzero(size.max(axis=0) * tol.PEAK_HEADROOM > np.abs(peak)):
+        column = size[:, observable]
+        padded = np.concatenate([[-1.0], column, [-1.0]])
+        tops = np.flatnonzero((padded[1:-1] >= padded[:-2]) & (padded[1:-1] >= padded[2:]))
+        for top in tops[column[tops] * tol.PEAK_HEADROOM > abs(peak[observable])]:
+            low, high = t[max(top - 1, 0)], t[min(top + 1, len(t) - 1)]
+            instant, found = _refine(evaluate, int(observable), float(low), float(high), t[top])
+            if abs(found) > abs(peak[observable]):
+                peak[observable], at[observable] = found, start_s + instant
+
+
+def _refine(
+    evaluate: Callable[[FloatArray], FloatArray], observable: int, low: float, high: float, best: float
+) -> tuple[float, float]:
     """Narrow a bracket round a maximum of the magnitude by ever finer grids."""
     for _ in range(tol.PEAK_ROUNDS):
         t = np.linspace(low, high, tol.PEAK_POINTS)
-        value = own.values((piece.basis(t) @ coefficients.T).real)[:, observable]
+        value = evaluate(t)[:, observable]
         top = int(np.argmax(np.abs(value)))
         low, high, best = t[max(top - 1, 0)], t[min(top + 1, len(t) - 1)], t[top]
     return float(best), float(value[top])

@@ -81,24 +81,25 @@ class Field:
         return f
 
     def jacobian(self, u: FloatArray, driven: FloatArray, rate: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return ∂f/∂u, shape (d, d), and ∂f/∂t, shape (d,), for drives that change by ``rate``."""
-        _, argument, wave = self._cut(self.linear_u @ u + driven)
+        """Return ∂f/∂u, shape (..., d, d), and ∂f/∂t, shape (..., d), for drives that change by ``rate``."""
+        _, argument, wave = self._cut(u @ self.linear_u.T + driven)
         over_u, direct_u, wave_u = self._cut(self.linear_u.T)
-        J, f_t = over_u.T.copy(), rate[: self.size].copy()
+        J = np.array(np.broadcast_to(over_u.T, (*u.shape[:-1], self.size, self.size)))
+        f_t = rate[..., : self.size].copy()
         if argument.size:
             j, slope = self.direct.currents(argument)
-            lifted = slope[:, None] * direct_u.T
-            lifted_t = slope * rate[self.size : self.size + len(slope)]
+            lifted = slope[..., :, None] * direct_u.T
+            lifted_t = slope * rate[..., self.size : self.size + slope.shape[-1]]
             J += self.over_j @ lifted
-            f_t += self.over_j @ lifted_t
+            f_t += lifted_t @ self.over_j.T
         if wave.size:
-            wave_rows, wave_rate = wave_u.T, rate[len(rate) - len(wave) :]
+            wave_rows, wave_rate = wave_u.T, rate[..., rate.shape[-1] - wave.shape[-1] :]
             if argument.size:
-                wave = wave + self.wave_j @ j
-                wave_rows, wave_rate = wave_rows + self.wave_j @ lifted, wave_rate + self.wave_j @ lifted_t
+                wave = wave + j @ self.wave_j.T
+                wave_rows, wave_rate = wave_rows + self.wave_j @ lifted, wave_rate + lifted_t @ self.wave_j.T
             slope = self.rho * self.waves.currents(wave)[1]
-            J[self.states :] -= slope[:, None] * wave_rows
-            f_t[self.states :] -= slope * wave_rate
+            J[..., self.states :, :] -= slope[..., :, None] * wave_rows
+            f_t[..., self.states :] -= slope * wave_rate
         return J, f_t
 
     def direct_currents(self, u: FloatArray, driven: FloatArray) -> tuple[FloatArray, FloatArray]:

@@ -18,7 +18,7 @@ from interwind.errors import AccuracyNotReached
 from interwind_service import tolerances as tol
 from interwind_service.response.drives import Drives
 from interwind_service.response.nonlinear_field import Field
-from interwind_service.response.tableaux import C_TIME, D_TIME, GAMMA, A, C
+from interwind_service.response.tableaux import C_TIME, D_TIME, GAMMA, A, C, H
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]
@@ -36,6 +36,14 @@ class Steps:
     y1: FloatArray
     stages: FloatArray
     w: ComplexArray
+
+    def at(self, which: NDArray[np.int64], theta: FloatArray) -> FloatArray:
+        """Return y at the shares ``theta`` (T,) of the steps ``which`` (T,), by the dense output, shape (T, d)."""
+        share = theta[:, None]
+        k1, k2 = (np.einsum("j,sjd->sd", row, self.stages)[which] for row in H)
+        end = self.y1[which] + (1.0 - share) * (k1 + share * k2)
+        found: FloatArray = (1.0 - share) * self.y0[which] + share * end
+        return found
 
 
 @dataclass(slots=True, eq=False)

@@ -104,7 +104,7 @@ def _with_smooth_laws(
         if run.evidence.energy_error <= tolerance and run.evidence.residual <= tolerance:
             break
         local *= tol.STEP_SHARE
-    require_accuracy(run.evidence, run.ledger, tolerance)
+    require_accuracy(run.evidence, run.energy.ledger, tolerance)
     samples = run.samples
     cautions = cautions_of(topology, observed_stress(topology, observables, samples))
     if sink is not None:
@@ -114,9 +114,9 @@ def _with_smooth_laws(
         observables,
         samples,
         time_s=time_s,
-        events=run.events,
-        ledger=run.ledger,
-        findings=(*topology.findings, *undefined_findings(observables, run.undefined)),
+        events=run.record.events,
+        ledger=run.energy.ledger,
+        findings=(*topology.findings, *undefined_findings(observables, run.record.undefined)),
         cautions=cautions,
         evidence=run.evidence,
     )

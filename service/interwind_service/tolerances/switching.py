@@ -92,6 +92,7 @@ STEP_SAFETY = 0.9  # of the step that the error allows
 FIRST_ERROR = 0.01  # floor of the previous error in predictive control
 OVERFLOWN_ERROR = 1e10  # stands for an error that is no number
 STEPS_TOGETHER = 512  # steps sampled and booked at once
+TRANSITION_NUMBERS = 1_000_000  # entries of the systems of the variational equation solved together: 8 MB
 PIECES_KEPT = 512  # combinations of device states kept
 PIVOTS = 200  # pivots of the complementarity problem; three is the most seen
 PIVOT_PATIENCE = 5  # block pivots without progress before the least-index rule takes over

@@ -1,0 +1,150 @@
+"""A network with smooth laws, run by RODAS4 from one change of its drives or switches to the next."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from typing import Protocol
+
+import numpy as np
+from numpy.typing import NDArray
+
+from interwind_service import tolerances as tol
+from interwind_service.network.topology import Topology
+from interwind_service.response.device import LinearDiode, TimedSwitch
+from interwind_service.response.drives import Drives
+from interwind_service.response.monodromy import transition
+from interwind_service.response.nonlinear_field import Field, field_of
+from interwind_service.response.nonlinear_laws import Laws, laws_of
+from interwind_service.response.rosenbrock import Effort, Steps, integrate
+from interwind_service.response.switched_network import Passage, SwitchedNetwork, switched_network
+from interwind_service.response.tableau import Mode, Tableau
+
+FloatArray = NDArray[np.float64]
+ComplexArray = NDArray[np.complex128]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Stretch:
+    """An interval without a change of drives or switches: its field, and the drives w at its start."""
+
+    field: Field
+    mode: Mode
+    start_s: float
+    stop_s: float
+    w: ComplexArray
+
+
+class StepRecord(Protocol):
+    """What is read off a run: it hears of each stretch, of its steps in blocks, and of the very end."""
+
+    def begin(self, stretch: Stretch) -> None:
+        """Hear of a new stretch."""
+
+    def take(self, steps: Steps) -> None:
+        """Take some steps of the stretch."""
+
+    def finish(self, y: FloatArray, effort: Effort) -> None:
+        """Take the unknowns at the end of the run, and how hard it was."""
+
+
+@dataclass(slots=True, eq=False)
+class SmoothNetwork:
+    """A prepared network with its laws; each step keeps its local error to ``tolerance``."""
+
+    switched: SwitchedNetwork
+    laws: Laws
+    tolerance: float
+    fields: dict[Mode, Field] = field(default_factory=dict)
+
+    @property
+    def tableau(self) -> Tableau:
+        """The linear part."""
+        return self.switched.tableau
+
+    @property
+    def breakpoint_s(self) -> FloatArray:
+        """The instants at which a gate or waveform sets the network anew, both ends included."""
+        return self.switched.breakpoint_s
+
+    def start_mode(self, x: FloatArray) -> Mode:
+        """Return open switches and conducting diodes: a law has no modes, and books as heat what its slope takes."""
+        return tuple(
+            1 if isinstance(device, LinearDiode) else own
+            for device, own in zip(self.tableau.devices, self.switched.start_mode(x), strict=True)
+        )
+
+    def run(
+        self,
+        x: FloatArray,
+        mode: Mode,
+        *,
+        record: StepRecord | None = None,
+        monodromy: bool = False,
+        progress: Callable[[int, int], None] | None = None,
+    ) -> Passage:
+        """Run from x over all stretches; with ``monodromy`` also Φ = ∂x(end)/∂x(start)."""
+        passage = Passage(x, mode, np.eye(len(x)) if monodromy else None, 0.5 * float(x @ x))
+        effort, drives, at = Effort(size=float(np.linalg.norm(x))), self.tableau.drives, self.breakpoint_s
+        for k in range(len(at) - 1):
+            start, stop = float(at[k]), float(at[k + 1])
+            inside = 0.5 * (start + stop)
+            w = drives.moved(drives.state(inside), start - inside)
+            passage.mode = self.switched.mode_at(passage.mode, start, stop)
+            own = self.field(passage.mode)
+            if record is not None:
+                record.begin(Stretch(own, passage.mode, start, stop, w))
+            y = own.consistent(np.concatenate([passage.x, np.zeros(own.size - own.states)]), own.drives(w))
+            effort.size = max(effort.size, tol.SIZE_FLOOR * _expected_size(own, drives, w, stop - start))
+            effort.step_s = tol.FIRST_STEP * (stop - start)
+
+            def take(steps: Steps, own: Field = own) -> None:
+                if passage.jacobian is not None:
+                    passage.jacobian = transition(own, drives, steps) @ passage.jacobian
+                if record is not None:
+                    record.take(steps)
+                energy_j = 0.5 * float((steps.y1[:, : own.states] ** 2).sum(axis=1).max())
+                passage.peak_j = max(passage.peak_j, energy_j)
+
+            y = integrate(own, drives, y, w, start, stop, self.tolerance, effort, take)
+            passage.x = y[: own.states]
+            if progress is not None:
+                progress(k + 1, len(at) - 1)
+        if record is not None:
+            record.finish(y, effort)
+        return passage
+
+    def field(self, mode: Mode) -> Field:
+        """Return the equations while the switches stand in these modes."""
+        key = tuple(
+            own if isinstance(device, TimedSwitch) else 0
+            for device, own in zip(self.tableau.devices, mode, strict=True)
+        )
+        if key not in self.fields:
+            if len(self.fields) >= tol.PIECES_KEPT:
+                self.fields.pop(next(iter(self.fields)))
+            self.fields[key] = field_of(self.tableau, key, self.laws)
+        return self.fields[key]
+
+
+def smooth_network(
+    topology: Topology, stop_s: float, step_s: float, tolerance: float, period_s: float | None = None
+) -> SmoothNetwork:
+    """Prepare a network for a run over [0, stop]."""
+    switched = switched_network(topology, stop_s, step_s, period_s)
+    tableau = switched.tableau
+    return SmoothNetwork(switched, laws_of(topology, tableau.devices, 1.0 / tableau.limit.open_ohm), tolerance)
+
+
+def _expected_size(field: Field, drives: Drives, w: ComplexArray, span_s: float) -> float:
+    """Return about how large |x| grows under the drives of an interval: at rest, or by plain growth if that is less.
+
+    From a state of exactly 0 a relative error means nothing; this gives it a scale.
+    """
+    u = np.zeros(field.size)
+    rows = field.drives(drives.moved_to(w, span_s * np.linspace(0.0, 1.0, tol.SIZE_LOOKS)))
+    f = rows[:, : field.size]  # the laws as they are at 0: beyond, their currents would be no guide
+    J, _ = field.jacobian(u, np.zeros_like(rows[0]), np.zeros_like(rows[0]))
+    rest = np.linalg.lstsq(J, f.T, rcond=None)[0][: field.states]
+    growth = span_s * float(np.linalg.norm(f[:, : field.states], axis=1).max())
+    return min(float(np.linalg.norm(rest, axis=0).max()), growth)
