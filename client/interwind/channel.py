@@ -13,7 +13,7 @@ import grpc
 from interwind.errors import InvalidRequest
 
 DEFAULT_TIMEOUT_S = 30.0  # to the last byte; a call without a limit hangs for ever when something else does
-KEEPALIVE_MS = 60_000  # twice the interval the server tolerates
+KEEPALIVE_MS = 60_000  # how soon a connection that died without a word is noticed, while calls wait on it
 MAX_REQUEST_BYTES = 4 * 2**20  # what the server takes in one message
 
 ROUND_ROBIN = json.dumps({"loadBalancingConfig": [{"round_robin": {}}], "healthCheckConfig": {"serviceName": ""}})

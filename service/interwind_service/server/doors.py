@@ -11,10 +11,10 @@ from interwind_service.server.auth import Tokens
 from interwind_service.server.settings import Settings, SettingsError
 from interwind_service.tolerances import (
     HANDSHAKE_TIMEOUT_MS,
-    KEEPALIVE_MIN_INTERVAL_MS,
     MAX_CONCURRENT_STREAMS,
     MAX_CONNECTION_AGE_MS,
     MAX_CONNECTION_IDLE_MS,
+    MAX_PING_STRIKES,
     MAX_REQUEST_BYTES,
 )
 
@@ -28,7 +28,7 @@ def channel_options(settings: Settings) -> list[tuple[str, Any]]:
         ("grpc.max_connection_idle_ms", MAX_CONNECTION_IDLE_MS),
         ("grpc.max_connection_age_ms", MAX_CONNECTION_AGE_MS),
         ("grpc.max_connection_age_grace_ms", round(settings.max_timeout_s * 1000)),
-        ("grpc.http2.min_recv_ping_interval_without_data_ms", KEEPALIVE_MIN_INTERVAL_MS),
+        ("grpc.http2.max_ping_strikes", MAX_PING_STRIKES),
         ("grpc.max_concurrent_streams", MAX_CONCURRENT_STREAMS),
     ]
 
