@@ -11,13 +11,9 @@ from numpy.typing import NDArray
 
 from interwind.codec.array import array_from_message, array_to_message
 from interwind.codec.call import size_of_network
+from interwind.codec.initial import initial_from_messages, initial_to_messages
 from interwind.codec.network import network_from_message, network_to_message
-from interwind.codec.observable import (
-    observable_from_message,
-    observable_to_message,
-    observables_from_messages,
-    observables_to_messages,
-)
+from interwind.codec.observable import observables_from_messages, observables_to_messages
 from interwind.codec.reading import reading_from_message, reading_to_message
 from interwind.codec.stream import NamedArray, decode_stream, encode_stream
 from interwind.errors import InvalidRequest, field_path
@@ -26,7 +22,6 @@ from interwind.model import vary
 from interwind.model.finding import Evidence
 from interwind.model.network import Network
 from interwind.model.observables import Observable
-from interwind.model.response import SteadyStart
 from interwind.v1 import batch_pb2, batch_service_pb2, response_pb2
 
 STATUSES = tuple(model.VariantStatus)  # the wire numbers are 1 + the position
@@ -65,10 +60,7 @@ def submission_to_message(submission: Submission) -> Any:
     elif isinstance(analysis, model.TimeAnalysis):
         message.time.stop_s, message.time.step_s = analysis.stop_s, analysis.step_s
         message.time.tolerance = analysis.tolerance
-        message.time.steady_start = isinstance(analysis.initial, SteadyStart)
-        if analysis.initial is not None and not isinstance(analysis.initial, SteadyStart):
-            for observable, value in analysis.initial.items():
-                message.time.initial.add(observable=observable_to_message(observable), value=float(value))
+        message.time.steady_start = initial_to_messages(analysis.initial, message.time.initial)
     elif isinstance(analysis, model.PeriodicAnalysis):
         message.periodic.period_s, message.periodic.step_s = analysis.period_s, analysis.step_s
         message.periodic.tolerance = analysis.tolerance
@@ -105,14 +97,7 @@ def _frequency(body: Any) -> model.Analysis:
 
 
 def _time(body: Any) -> model.Analysis:
-    initial: Any = SteadyStart() if body.steady_start else None
-    if body.initial:
-        if body.steady_start:
-            raise InvalidRequest.at("initial", "values found beside steady_start; state one or the other")
-        initial = {}
-        for position, item in enumerate(body.initial):
-            with field_path(f"initial[{position}].observable"):
-                initial[observable_from_message(item.observable)] = item.value
+    initial = initial_from_messages(body.initial, steady_start=body.steady_start)
     observe = observables_from_messages(body.observe, "observe") or None
     return model.TimeAnalysis(body.stop_s, body.step_s, observe, initial, body.tolerance or 1e-6)
 

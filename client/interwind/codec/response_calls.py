@@ -8,17 +8,13 @@ from interwind.codec import poles, port_figures
 from interwind.codec import response as responses
 from interwind.codec.array import array_from_message, array_to_message
 from interwind.codec.call import Arguments, Call, column_count, point_count, size_of_network
+from interwind.codec.initial import initial_from_messages, initial_to_messages
 from interwind.codec.network import network_from_message, network_to_message
-from interwind.codec.observable import (
-    observable_from_message,
-    observable_to_message,
-    observables_from_messages,
-    observables_to_messages,
-)
+from interwind.codec.observable import observables_from_messages, observables_to_messages
 from interwind.errors import InvalidRequest, field_path
 from interwind.model.frozen import frozen_vector
 from interwind.model.recording import Recording
-from interwind.model.response import DEFAULT_TOLERANCE_DB, AdaptiveSweep, SteadyStart
+from interwind.model.response import DEFAULT_TOLERANCE_DB, AdaptiveSweep
 from interwind.v1 import network_service_pb2, response_pb2, response_service_pb2
 
 
@@ -110,7 +106,7 @@ def _figures_arguments(message: Any) -> dict[str, Any]:
 
 
 def _time_request(arguments: Arguments) -> Any:
-    network, initial = arguments["network"], arguments.get("initial")
+    network = arguments["network"]
     observe = observables_to_messages(arguments.get("observe"), "observe")
     stop_s, step_s = float(arguments["stop_s"]), float(arguments["step_s"])
     message = response_service_pb2.ComputeTimeResponseRequest(
@@ -123,7 +119,6 @@ def _time_request(arguments: Arguments) -> Any:
         stop_s=stop_s,
         step_s=step_s,
         observe=observe,
-        steady_start=isinstance(initial, SteadyStart),
         tolerance=float(arguments.get("tolerance") or 0.0),
     )
     recording = arguments.get("recording")
@@ -132,32 +127,16 @@ def _time_request(arguments: Arguments) -> Any:
         message.recording.envelope = recording.envelope
         if recording.until_s is not None:
             message.recording.until_s = recording.until_s
-    if initial is not None and not isinstance(initial, SteadyStart):
-        for observable, value in initial.items():
-            with field_path("initial"):
-                message.initial.add(observable=observable_to_message(observable), value=float(value))
+    message.steady_start = initial_to_messages(arguments.get("initial"), message.initial)
     return message
 
 
 def _time_arguments(message: Any) -> dict[str, Any]:
-    initial: Any = None
-    if message.steady_start:
-        if message.initial:
-            raise InvalidRequest.at("initial", "values found beside steady_start; state one or the other")
-        initial = SteadyStart()
-    elif message.initial:
-        initial = {}
-        for position, item in enumerate(message.initial):
-            with field_path(f"initial[{position}].observable"):
-                observable = observable_from_message(item.observable)
-                if observable in initial:
-                    raise InvalidRequest.at("", f"{observable!r} is given twice; give each state once")
-                initial[observable] = item.value
     arguments = _network_argument(message) | {
         "stop_s": message.stop_s,
         "step_s": message.step_s,
         "observe": observables_from_messages(message.observe, "observe") or None,
-        "initial": initial,
+        "initial": initial_from_messages(message.initial, steady_start=message.steady_start),
         "recording": _recording(message.recording) if message.HasField("recording") else None,
     }
     if message.tolerance:

@@ -2,20 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import InvalidNetwork, InvalidRequest
-from interwind.model import observables as ob
-from interwind.model.finding import Finding, Severity
-from interwind.model.response import Initial, SteadyStart
-from interwind_service.network.kind import Kind
-from interwind_service.network.topology import Topology
+from interwind.errors import InvalidNetwork
+from interwind.model.finding import Finding
+from interwind.model.response import SteadyStart
 from interwind_service.response.reduction import StateBasis
 from interwind_service.response.state_space import StateSpace
+from interwind_service.response.stated import Stated, inconsistent_start
 from interwind_service.tolerances import INCONSISTENT_START, REST_RESIDUAL
 
 FloatArray = NDArray[np.float64]
@@ -32,7 +29,7 @@ class Start:
     findings: tuple[Finding, ...]
 
 
-def start_of(space: StateSpace, initial: Initial, u: FloatArray) -> Start:
+def start_of(space: StateSpace, given: Stated, u: FloatArray) -> Start:
     """Return the consistent start for inputs u(0+), shape (inputs,).
 
     Stated values keep their charges and fluxes: q = XᵀE e. What does not fit is an impulse at 0; the energy that goes
@@ -40,15 +37,14 @@ def start_of(space: StateSpace, initial: Initial, u: FloatArray) -> Start:
 
     Raises
     ------
-    InvalidRequest : a value stated for something that stores no energy, or not a finite number.
     InvalidNetwork : `SteadyStart` where the sources at 0 leave no point of rest.
     """
     basis = space.basis
-    if isinstance(initial, SteadyStart):
+    if isinstance(given, SteadyStart):
         x = _rest(space, u)
         after = _stored(basis, basis.X @ (space.V @ x) + basis.P @ u)
         return Start(x, after, after, 0.0, ())
-    stated = _stated(basis, initial or {})
+    stated = _values(basis, given)
     q = basis.coordinates(stated[:, None])[:, 0]
     consistent = basis.X @ q + basis.P @ u
     before, after = _stored(basis, stated), _stored(basis, consistent)
@@ -84,53 +80,18 @@ def _stored(basis: StateBasis, values: FloatArray) -> float:
     return 0.5 * float(values @ basis.storage.weigh(values[:, None])[:, 0])
 
 
-def _stated(basis: StateBasis, initial: Mapping[ob.Observable, float]) -> FloatArray:
+def _values(basis: StateBasis, given: dict[int, float]) -> FloatArray:
+    """Return the stated values in the coordinates of the storage, the rest 0."""
     storage = basis.storage
     topology = storage.topology
+    by_branch = np.zeros(len(topology.kind))
+    by_branch[list(given)] = list(given.values())
     values = np.zeros(storage.size)
-    windings = np.zeros(len(topology.kind))
-    named: dict[int, ob.Observable] = {}
-    for item, given in initial.items():
-        branch = _place(topology, item)
-        value = float(given)
-        if not np.isfinite(value):
-            raise InvalidRequest.at(f"initial[{item!r}]", f"{value!r} found; a finite number is expected")
-        if branch in named and windings[branch] != value:
-            raise InvalidRequest.at(
-                f"initial[{item!r}]",
-                f"{value!r} found, but {named[branch]!r}, the same quantity, is {windings[branch].item()!r}: "
-                f"{abs(value - windings[branch].item()):.6g} apart; state it once",
-            )
-        if value != 0.0 and topology.value[branch] == 0.0:
-            raise InvalidRequest.at(f"initial[{item!r}]", f"{value!r} found; the element is 0 and stores nothing")
-        named[branch], windings[branch] = item, value
-    values[storage.capacitor_rows] = windings[storage.capacitors]
-    values[storage.inductor_rows] = windings[storage.inductors]
+    values[storage.capacitor_rows] = by_branch[storage.capacitors]
+    values[storage.inductor_rows] = by_branch[storage.inductors]
     for group, rows, own in zip(topology.groups, storage.groups, storage.coordinates, strict=True):
-        values[rows] = np.linalg.solve(own.N, windings[group.branches])[: own.rank]
+        values[rows] = np.linalg.solve(own.N, by_branch[group.branches])[: own.rank]
     return values
-
-
-def _place(topology: Topology, item: ob.Observable) -> int:
-    """Return the branch that an initial value belongs to."""
-    field = f"initial[{item!r}]"
-    if isinstance(item, ob.WindingCurrent):
-        branch = topology.winding(item.name, item.label)
-        if branch < 0:
-            raise InvalidRequest.at(field, "no such winding in the network")
-        return branch
-    if isinstance(item, ob.ElementVoltage | ob.ElementCurrent):
-        branches = topology.branches_of(item.name)
-        if not len(branches):
-            raise InvalidRequest.at(field, "no such element in the network")
-        kind = topology.kind[branches[0]]
-        wanted = Kind.CAPACITOR if isinstance(item, ob.ElementVoltage) else Kind.INDUCTOR
-        single = kind == Kind.WINDING and len(branches) == 1 and wanted == Kind.INDUCTOR
-        if kind == wanted or single:
-            return int(branches[0])
-    raise InvalidRequest.at(
-        field, "found; an initial value belongs to the voltage of a capacitor or the current of an inductor or winding"
-    )
 
 
 def _jump(basis: StateBasis, stated: FloatArray, consistent: FloatArray, lost: float, peak: float) -> Finding:
@@ -150,13 +111,4 @@ def _jump(basis: StateBasis, stated: FloatArray, consistent: FloatArray, lost: f
         for group, rows in zip(topology.groups, storage.groups, strict=True)
         if energy[rows].sum() > INCONSISTENT_START * peak
     ]
-    what = "; ".join(moved + [f"the currents of {name}" for name in groups])
-    return Finding(
-        code="INCONSISTENT_START",
-        severity=Severity.INFO,
-        field="initial",
-        message=f"the state given for t = 0 contradicts the network; with charge and flux kept it jumps: {what}; "
-        f"{lost:.6g} J are lost in the jump",
-        measured=lost,
-        limit=0.0,
-    )
+    return inconsistent_start(moved + [f"the currents of {name}" for name in groups], lost)

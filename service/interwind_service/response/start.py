@@ -5,12 +5,11 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import InvalidNetwork, InvalidRequest
-from interwind.model import observables as ob
+from interwind.errors import InvalidNetwork
 from interwind.model.response import Initial, SteadyStart
 from interwind_service import tolerances as tol
-from interwind_service.network.kind import Kind
 from interwind_service.response.device import SaturableBranch
+from interwind_service.response.stated import stated_of
 from interwind_service.response.switched_network import SwitchedNetwork
 from interwind_service.response.tableau import Mode, Tableau
 
@@ -22,32 +21,27 @@ def start_state(network: SwitchedNetwork, initial: Initial) -> FloatArray:
 
     Raises
     ------
-    InvalidRequest : an observable that is no state, or a value that is not finite, by its path.
+    InvalidRequest : as `stated_of`.
     InvalidNetwork : no state of rest (``SteadyStart``).
     """
-    if isinstance(initial, SteadyStart):
+    stated = stated_of(network.tableau.topology, initial)
+    if isinstance(stated, SteadyStart):
         return _at_rest(network)
     tableau = network.tableau
     x = residual_state(tableau)
-    currents: dict[int, float] = {}
-    for position, (item, value) in enumerate((initial or {}).items()):
-        path = f"initial[{position}]"
-        if not np.isfinite(value):
-            raise InvalidRequest.at(path, f"{value!r} found for {item!r}; a finite number is expected")
-        branch = _branch(tableau, item, path)
+    flux = np.zeros(tableau.states)
+    for branch, value in stated.items():
         if branch in tableau.capacitor_state:
             x[tableau.capacitor_state[branch]] = np.sqrt(tableau.topology.value[branch]) * value
         elif branch in tableau.factors:
-            currents[branch] = float(value)
+            columns, row = tableau.factors[branch]
+            flux[columns] += row * value  # z = S' i
         else:
             device = next(d for d in tableau.devices if d.branch == branch)
             x[device.state] = (
                 float(np.interp(abs(value), device.current_a, device.flux_wb)) * np.sign(value) / device.root
             )
-    for branch, value in currents.items():
-        columns, row = tableau.factors[branch]
-        x[columns] += row * value  # z = S' i
-    return x
+    return x + flux
 
 
 def residual_state(tableau: Tableau) -> FloatArray:
@@ -57,25 +51,6 @@ def residual_state(tableau: Tableau) -> FloatArray:
         if isinstance(device, SaturableBranch):
             x[device.state] = device.residual_wb / device.root
     return x
-
-
-def _branch(tableau: Tableau, item: object, path: str) -> int:
-    topology = tableau.topology
-    if isinstance(item, ob.WindingCurrent):
-        branch = topology.winding(item.name, item.label)
-        if branch >= 0:
-            return branch
-    elif isinstance(item, ob.ElementVoltage | ob.ElementCurrent):
-        branches = topology.branches_of(item.name)
-        kinds = (
-            (Kind.CAPACITOR,) if isinstance(item, ob.ElementVoltage) else (Kind.INDUCTOR, Kind.WINDING, Kind.SATURABLE)
-        )
-        if len(branches) == 1 and topology.kind[branches[0]] in kinds:
-            return int(branches[0])
-    raise InvalidRequest.at(
-        path,
-        f"{item!r} is no state; state the voltage of a capacitor or the current of an inductor or winding",
-    )
 
 
 def _at_rest(network: SwitchedNetwork) -> FloatArray:

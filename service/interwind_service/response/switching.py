@@ -26,6 +26,7 @@ from interwind_service.response.observed_stress import observed_stress
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readings import Readings, readings_of
 from interwind_service.response.start import start_state
+from interwind_service.response.start_jump import start_findings
 from interwind_service.response.switched_network import SwitchedNetwork, switched_network
 from interwind_service.response.trajectory import Rows, Trajectory
 
@@ -83,7 +84,11 @@ def time_response_switching(
         time_s=time_s,
         events=events_of(prepared, record),
         ledger=energy.ledger,
-        findings=(*topology.findings, *undefined_findings(observables, readings)),
+        findings=(
+            *topology.findings,
+            *start_findings(prepared.tableau, record, x, tol.SETTLE_SHARE * step_s),
+            *undefined_findings(observables, readings),
+        ),
         cautions=cautions,
         evidence=evidence,
     )

@@ -27,6 +27,7 @@ from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readout import Readout, readout_of
 from interwind_service.response.recording import Recorder, window_of
 from interwind_service.response.state_space import StateSpace
+from interwind_service.response.stated import stated_of
 from interwind_service.response.switching import time_response_switching
 from interwind_service.response.time_model import model_of
 from interwind_service.response.time_stress import stress_of
@@ -78,6 +79,7 @@ def time_response(
         raise InvalidRequest.at("tolerance", f"{tolerance!r} found; a finite number above 0 is expected")
     topology = admit(network)
     asked = resolve(topology, observe)
+    stated = stated_of(topology, initial)
     window = window_of(recording or Recording(), step_s, steps)
     if sink is None and recording is None:
         sink = offer(asked, steps + 1)
@@ -97,7 +99,7 @@ def time_response(
     space = model_of(topology, _centre(generator, stop_s, step_s))
     if topology.controls:
         _refuse_growth(space, stop_s)
-    start = start_of(space, initial, generator.U @ generator.state(np.zeros(1))[0])
+    start = start_of(space, stated, generator.U @ generator.state(np.zeros(1))[0])
     readout = readout_of(topology, asked)
     flow = flow_of(space, generator)
     begin = flow.start(start.x, generator.state(np.zeros(1))[0])
