@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind.model.response import EnergyLedger
+from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
 from interwind_service.response.device import SaturableBranch
 from interwind_service.response.piece import Piece
@@ -114,7 +115,7 @@ def stored_j(tableau: Tableau, x: FloatArray) -> float:
 
 
 def energy_of(tableau: Tableau, run: Trajectory, start: FloatArray, end: FloatArray, peak_j: float) -> Energy:
-    """Return the energy ledger of a run from state ``start`` to ``end``."""
+    """Return the energy ledger of a run from state ``start`` to ``end``; ``peak_j`` is the largest energy met."""
     topology = tableau.topology
     elements = len(topology.network.elements)
     absorbed, heat = np.zeros(elements), np.zeros(elements)
@@ -140,4 +141,6 @@ def energy_of(tableau: Tableau, run: Trajectory, start: FloatArray, end: FloatAr
         {name: float(own) for name, own in zip(names, heat, strict=True) if own != 0.0},
     )  # fmt: skip
     scale = max(abs(supplied), peak_j)
+    if abs(numerical) > tol.LEDGER_NOTICED * scale:  # the ends of the segments may miss the peak: look inside
+        scale = max(scale, run.peak_energy(tableau))
     return Energy(ledger, abs(numerical) / scale if scale > 0.0 else 0.0, absorbed)

@@ -30,13 +30,15 @@ class Change:
 
 
 def first_event(
-    driven: Driven, kappa: ComplexArray, span_s: float, fresh: int, slack: float = 1.0
+    driven: Driven, kappa: ComplexArray, span_s: float, fresh: int, tie_s: float, slack: float = 1.0
 ) -> tuple[float, Change | None]:
     """Return how far the piece may run, and the change that ends it, if one does.
 
     ``fresh`` is the device that has just changed, -1 for none: by rounding it may stand on the wrong side for a while,
-    so its guards count only from the first instant at which they hold. ``slack`` times the rounding of its terms is how
-    far a guard may fail: more than 1 only to leave an instant at which several devices tie.
+    so its guards count only from the first instant at which they hold, or if they fail and have only been falling. So
+    do guards of devices that changed with it: those that fail at the start and rise to 0 within ``tie_s``. ``slack``
+    times the rounding of its terms is how far a guard may fail: more than 1 only to leave an instant at which several
+    devices tie.
     """
     piece = driven.piece
     end = min(span_s, float(piece.look[-1]))
@@ -44,10 +46,12 @@ def first_event(
         return end, None
     sums = _Sums(driven, kappa, slack)
     guards = len(sums.floor)
+    g, dg = sums.at_start[:guards], sums.at_start[guards:]
+    recovering = (g < sums.floor) & (g + dg * tie_s > 0.0)
     held = None
-    if fresh >= 0:
-        held = piece.rows.device != fresh
-        held = held | (sums.at_start[:guards] > 0.0)
+    if fresh >= 0 or recovering.any():
+        held = ((piece.rows.device != fresh) & ~recovering) | (g > 0.0)
+        falling = dg < 0.0
     stop = int(np.searchsorted(piece.look, end, side="left"))
     low, width = min(sums.first_look(), stop), tol.SCAN_BLOCK
     before, t_before = sums.at_start, 0.0
@@ -66,8 +70,9 @@ def first_event(
         bad = g < sums.floor
         if held is not None:
             since = np.logical_or.accumulate(np.vstack([held, g > 0.0]), axis=0)
-            bad &= since[:-1] | (held & True)
-            held = since[-1]
+            sinking = np.logical_and.accumulate(np.vstack([falling, dg < 0.0]), axis=0)
+            bad &= since[:-1] | sinking[1:]
+            held, falling = since[-1], sinking[-1]
         found = _earliest(sums, times, g, dg, bad)
         if found is not None:
             return found[0], Change(float(found[0]), int(piece.rows.device[found[1]]), int(piece.rows.then[found[1]]))

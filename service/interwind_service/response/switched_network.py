@@ -90,13 +90,13 @@ class SwitchedNetwork:
         if record is not None:
             pairs = enumerate(zip(passage.mode, mode, strict=True))
             record.changes += [(start, device, new) for device, (old, new) in pairs if old != new]
-        now, fresh, events, ties, slack = start, -1, 0, 0, 1.0
+        now, fresh, events, ties, slack, tie_s = start, -1, 0, 0, 1.0, tol.TIE * stop
         steady, kept = self.tableau.drives.steady, w.tobytes()
         while now < stop:
             bound = self.pieces.driven(mode, w, kept) if steady else self.pieces.piece(mode).driven(w)
             piece, modes = bound.piece, bound.piece.modes
             kappa = modes.left @ (x - bound.particular)
-            span, change = first_event(bound, kappa, stop - now, fresh, slack)
+            span, change = first_event(bound, kappa, stop - now, fresh, tie_s, slack)
             if (piece.shorted or piece.stranded) and span > tol.FAULT_SPAN * (stop - start):
                 self._require_possible(piece, self.tableau.drives.moved(w, 0.5 * span), now)
             growth = piece.growth(span)
@@ -115,7 +115,7 @@ class SwitchedNetwork:
                 fresh = change.device
                 mode = (*mode[:fresh], change.then, *mode[fresh + 1 :])
                 events += 1
-                ties = ties + 1 if span <= tol.TIE * stop else 0
+                ties = ties + 1 if span <= tie_s else 0
                 if ties == 0:
                     slack = 1.0
                 elif ties > tol.TIES_PER_DEVICE * len(mode):  # the same devices flip without end: let rounding be

@@ -186,6 +186,18 @@ class Trajectory:
             total += 0.5 * both.real
         return total
 
+    def peak_energy(self, tableau: Tableau) -> float:
+        """Return the largest |x|²/2 among some instants inside every segment, J."""
+        width = tableau.unknowns + tableau.states
+        rows = Rows(np.eye(width)[tableau.unknowns :], np.zeros(tableau.states))
+        largest = 0.0
+        for group in self.groups():
+            coefficients = rows.coefficients(group.piece, group.kappa, group.w)
+            for share in np.linspace(0.0, 1.0, tol.PEAK_LOOKS):
+                x = np.einsum("srb,sb->sr", coefficients, group.piece.basis(share * group.span_s)).real
+                largest = max(largest, 0.5 * float((x**2).sum(axis=1).max()))
+        return largest
+
     def residual(self, tableau: Tableau) -> float:
         """Return max |b − A s|∞ / (|A|∞ |s|∞ + |b|∞) rows of A scaled to sum 1, numerator and
         denominator each the largest over the ends of some segments.
