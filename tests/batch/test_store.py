@@ -85,26 +85,6 @@ def test_turns_between_batches(store):
     assert [first, second, first, second] == [chunk.batch_id for chunk in store.chunks.pending(10)[:4]]
 
 
-def test_finished_batches_expire_and_a_clock_set_forward_expires_nothing(tmp_path, monkeypatch):
-    """Retention counts on a clock that never jumps while the server runs."""
-    store = Store(StateFolder(tmp_path), retain_s=1000.0)
-    batch_id = store.create(plan(store.folder, 4, 4)).batch_id
-    told = store.cancel(batch_id).expire_time_s
-    assert told == pytest.approx(store.now_s() + 1000.0, abs=5.0)
-    monkeypatch.setattr("time.time", lambda: 4e9)
-    store.expire()
-    assert store.progress(batch_id)
-    store.close()
-    monkeypatch.undo()
-    later = Store(StateFolder(tmp_path), retain_s=1000.0)
-    later._clock_offset_s += 1001.0
-    later.expire()
-    with pytest.raises(NotFound):
-        later.progress(batch_id)
-    assert [] == list(later.folder.batches.iterdir())
-    later.close()
-
-
 def test_one_server_a_folder_and_any_death_frees_it(tmp_path):
     """A second server is refused while the first lives, and let in once it was killed."""
     code = (

@@ -13,6 +13,10 @@ NUMERIC_ROOMS = ("windings", "network", "response", "engine", "tolerances")
 # The outermost edges: one for calls, one for the worker process that serves them.
 EDGES = {"interwind_service.server.boundary", "interwind_service.workers.process"}
 
+# The date is told and retention bridges the gap between two servers with it; whatever else waits, waits monotonically.
+WALL_CLOCKS = {"time.time", "time.time_ns", "datetime.now", "datetime.utcnow", "datetime.today", "date.today"}
+WALL_CLOCK_READERS = {"interwind_service.batch.store"}
+
 # Methods whose signature somebody else wrote: concurrent.futures.Executor.
 GIVEN_SIGNATURES = {"shutdown"}
 
@@ -126,6 +130,19 @@ def test_numerics_never_log(modules):
                     offenders.append(f"{name}:{node.lineno}")
                 if isinstance(node, ast.Name) and node.id == "print":
                     offenders.append(f"{name}:{node.lineno}")
+    assert [] == offenders
+
+
+def test_the_wall_clock_is_read_in_one_place(modules):
+    """It may jump by years; nothing that runs, waits or is kept alive may depend on it."""
+    offenders = [
+        f"{name}:{node.lineno}"
+        for name, tree in modules.items()
+        if name not in WALL_CLOCK_READERS
+        for node in ast.walk(tree)
+        if (isinstance(node, ast.Attribute) and ast.unparse(node).removeprefix("datetime.") in WALL_CLOCKS)
+        or (isinstance(node, ast.ImportFrom) and node.module == "time" and "time" in {n.name for n in node.names})
+    ]
     assert [] == offenders
 
 

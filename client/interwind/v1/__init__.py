@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "314ecca42f0ccc9ed86ff61f5ed1493f50fcc9bbe662e9919cfcde63c6a1950a"
+SOURCE_SHA256 = "fada90458acb9dca533f3827992c86dbfeadbaf8879583bb37fd94ff96112d87"

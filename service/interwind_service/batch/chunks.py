@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import json
 import sqlite3
 from collections.abc import Callable, Iterator
@@ -20,15 +21,19 @@ COUNTED = STATUSES[:3]  # cancelled rows are counted where a batch is cancelled
 
 
 class ChunkLedger:
-    """The chunks of every batch in ``journal``; their numbers stand in ``folder``."""
+    """The chunks of every batch in ``journal``; their numbers stand in ``folder``.
+
+    ``ended`` tells, of a batch done now, when that is, when it expires, and at which age of the folder.
+    """
 
     def __init__(
-        self, journal: Journal, folder: files.StateFolder, now_s: Callable[[], float], retain_s: float
+        self, journal: Journal, folder: files.StateFolder, ended: Callable[[], tuple[float, float, float]]
     ) -> None:
         self._journal = journal
         self._folder = folder
-        self._now_s = now_s
-        self._retain_s = retain_s
+        self._ended = ended
+        (last,) = journal.read("SELECT coalesce(max(stored_number), 0) AS number FROM chunk")
+        self._stored = itertools.count(last["number"] + 1)
 
     def pending(self, limit: int) -> list[Chunk]:
         """Return up to ``limit`` chunks to compute of every batch that has any, in turns, the oldest batch first."""
@@ -46,10 +51,10 @@ class ChunkLedger:
         return [chunk for _, _, chunk in sorted(turns, key=lambda item: item[:2])]
 
     def done(self) -> Iterator[Chunk]:
-        """Yield every chunk whose numbers stand in a file, the latest first."""
+        """Yield every chunk whose numbers stand in a file, the latest stored first."""
         for row in self._journal.read(
             "SELECT chunk.*, batch_id FROM chunk JOIN batch ON batch.key = chunk.batch"
-            " WHERE chunk.state = ? AND size_bytes > 0 ORDER BY chunk.key DESC", DONE,
+            " WHERE chunk.state = ? AND size_bytes > 0 ORDER BY stored_number DESC", DONE,
         ):  # fmt: skip
             yield chunk_of(row)
 
@@ -74,9 +79,13 @@ class ChunkLedger:
             self._journal.at("renamed")
             files.sync_folder(final.parent)
             connection.execute(
-                "UPDATE chunk SET state = ?, statuses = ?, reasons = ?, size_bytes = ?, sha256 = ? WHERE key = ?",
-                (DONE, answer.statuses, reasons_text(answer), answer.size_bytes, answer.sha256, chunk.key),
-            )
+                "UPDATE chunk SET state = ?, statuses = ?, reasons = ?, size_bytes = ?, sha256 = ?, stored_number = ?"
+                " WHERE key = ?",
+                (
+                    DONE, answer.statuses, reasons_text(answer), answer.size_bytes, answer.sha256, next(self._stored),
+                    chunk.key,
+                ),
+            )  # fmt: skip
             self._count(connection, row["batch"], answer.statuses, 1)
             self._journal.touch(chunk.batch_id)
             return True
@@ -156,9 +165,7 @@ class ChunkLedger:
             state = BatchState.CANCELLED
         else:
             state = BatchState.DONE if done else BatchState.RUNNING
-        done_time_s = self._now_s() if done else None
-        expire_time_s = None if done_time_s is None else done_time_s + self._retain_s
         connection.execute(
-            "UPDATE batch SET state = ?, done_time_s = ?, expire_time_s = ? WHERE key = ?",
-            (state.value, done_time_s, expire_time_s, batch),
+            "UPDATE batch SET state = ?, done_time_s = ?, expire_time_s = ?, expire_age_s = ? WHERE key = ?",
+            (state.value, *(self._ended() if done else (None, None, None)), batch),
         )

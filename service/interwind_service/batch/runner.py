@@ -262,18 +262,14 @@ class Runner:
 
     def _prove_newest(self) -> None:
         """Look at every stored file's size, and at every byte of the newest: those a power cut may have torn."""
-        found = []
-        for chunk in self._store.chunks.done():
-            path = self._store.folder.batch(chunk.batch_id) / files.rows_name(chunk.first_row, chunk.row_count)
-            try:
-                stat = path.stat()
-                found.append((stat.st_mtime, chunk, path, stat.st_size))
-            except FileNotFoundError:
-                found.append((float("inf"), chunk, path, 0))
-        found.sort(key=lambda item: item[0], reverse=True)
-        for position, (_, chunk, path, size_bytes) in enumerate(found):
+        for position, chunk in enumerate(self._store.chunks.done()):
             if self._stopping:
                 return
+            path = self._store.folder.batch(chunk.batch_id) / files.rows_name(chunk.first_row, chunk.row_count)
+            try:
+                size_bytes = path.stat().st_size
+            except FileNotFoundError:
+                size_bytes = 0
             if size_bytes != chunk.size_bytes or position < BATCH_PROVE_COUNT:
                 try:
                     files.prove(path, chunk.size_bytes, chunk.sha256)

@@ -52,6 +52,14 @@ MIGRATIONS = (
     ) STRICT;
     CREATE INDEX chunk_pending ON chunk (batch, first_row) WHERE state = 0;
     """,
+    # Retention on a clock of the folder's own, and the order in which chunks were stored; neither asks the wall clock.
+    """
+    CREATE TABLE clock (age_s REAL NOT NULL, wall_s REAL) STRICT;
+    INSERT INTO clock VALUES (0.0, NULL);
+    ALTER TABLE batch ADD COLUMN expire_age_s REAL;
+    UPDATE batch SET expire_age_s = expire_time_s - done_time_s;
+    ALTER TABLE chunk ADD COLUMN stored_number INTEGER;
+    """,
 )
 
 

@@ -16,6 +16,7 @@ from collections.abc import Callable
 from interwind.errors import InvalidRequest, NotFound, OutOfRange, Overloaded
 from interwind.model.batch import BatchProgress, BatchState
 from interwind_service.batch import folder as files
+from interwind_service.batch.age import FolderAge
 from interwind_service.batch.chunks import ChunkLedger
 from interwind_service.batch.journal import Journal
 from interwind_service.batch.rows import Chunk, Ingredients, chunk_of, progress_of
@@ -30,19 +31,20 @@ class Store:
     """
 
     def __init__(
-        self, folder: files.StateFolder, *, retain_s: float, at: Callable[[str], None] = lambda name: None
+        self,
+        folder: files.StateFolder,
+        *,
+        retain_s: float,
+        at: Callable[[str], None] = lambda name: None,
+        wall_s: Callable[[], float] = time.time,
     ) -> None:
         self.folder = folder
         self._retain_s = retain_s
-        # The wall clock is read once: a clock set wrong while the server runs expires nothing.
-        self._clock_offset_s = time.time() - time.monotonic()
+        self._wall_s = wall_s
         self._journal = Journal(folder.database, at=at)
-        self.chunks = ChunkLedger(self._journal, folder, self.now_s, retain_s)
+        self._age = FolderAge(self._journal, retain_s, wall_s)
+        self.chunks = ChunkLedger(self._journal, folder, self._ended)
         folder.sweep(row["batch_id"] for row in self._journal.read("SELECT batch_id FROM batch"))
-
-    def now_s(self) -> float:
-        """Seconds since 1970 on a clock that never jumps."""
-        return self._clock_offset_s + time.monotonic()
 
     def listen(self, listener: Callable[[frozenset[str]], None]) -> Callable[[], None]:
         """Call ``listener`` with the names of changed batches, from the writer's thread; return how to stop that."""
@@ -50,6 +52,7 @@ class Store:
 
     def close(self) -> None:
         """Write what waits, then let go of the database and of the folder."""
+        self._journal.write(self._age.keep)
         self._journal.close()
         self.folder.close()
 
@@ -92,7 +95,7 @@ class Store:
                     batch_id, owner, plan.request_id or None, plan.content_sha256, plan.recipe_sha256,
                     plan.columns_sha256, plan.width, plan.variant_count, plan.chunk_rows, plan.header,
                     forecast.duration_s, forecast.result_bytes, forecast.memory_bytes, forecast.chunk_count,
-                    BatchState.WAITING.value, self.now_s(),
+                    BatchState.WAITING.value, self._wall_s(),
                 ),
             ).lastrowid  # fmt: skip
             connection.executemany(
@@ -139,8 +142,8 @@ class Store:
                 )
                 connection.execute(
                     "UPDATE batch SET cancelled_count = cancelled_count + ?, sequence = sequence + 1, state = ?,"
-                    " done_time_s = ?, expire_time_s = ? WHERE key = ?",
-                    (rows, BatchState.CANCELLED.value, self.now_s(), self.now_s() + self._retain_s, key),
+                    " done_time_s = ?, expire_time_s = ?, expire_age_s = ? WHERE key = ?",
+                    (rows, BatchState.CANCELLED.value, *self._ended(), key),
                 )
                 self._journal.touch(batch_id)
 
@@ -167,9 +170,20 @@ class Store:
         return counts | {"pending": int(row[-1]) - sum(counts.values())}
 
     def expire(self) -> None:
-        """Delete the batches whose time has come."""
-        for row in self._journal.read("SELECT batch_id FROM batch WHERE expire_time_s < ?", self.now_s()):
-            self.delete(row["batch_id"])
+        """Delete the batches that are done and whose time has come."""
+
+        def job(connection: sqlite3.Connection) -> list[str]:
+            self._age.keep(connection)
+            rows = connection.execute(
+                "DELETE FROM batch WHERE expire_age_s < ? RETURNING batch_id", (self._age.now_s(),)
+            )
+            expired = [row["batch_id"] for row in rows]
+            for batch_id in expired:
+                self._journal.touch(batch_id)
+            return expired
+
+        for batch_id in self._journal.write(job).result():
+            shutil.rmtree(self.folder.batch(batch_id), ignore_errors=True)
 
     def ingredients(self, batch_id: str, owner: str | None = None) -> Ingredients:
         """Return where the submitted numbers of a batch stand."""
@@ -187,6 +201,11 @@ class Store:
         )  # fmt: skip
         found = [chunk_of(item) for item in rows if row < item["first_row"] + item["row_count"]]
         return found[0] if found else None
+
+    def _ended(self) -> tuple[float, float, float]:
+        """Return, for a batch done now, the two dates that are told, and the age of the folder at which it leaves."""
+        now_s = self._wall_s()
+        return now_s, now_s + self._retain_s, self._age.now_s() + self._retain_s
 
     def _row(self, batch_id: str, owner: str | None) -> sqlite3.Row:
         rows = self._journal.read(

@@ -96,8 +96,8 @@ class ArrayDoor:
             raise InvalidRequest.at(
                 "content_hash", f"{upload.hash.hexdigest()} is the hash of what arrived; send all parts again"
             )
+        self._folder.settle(upload.part, name)
         upload.file.close()
-        upload.part.replace(self._folder.folder / name)
         return _answer(upload.size_bytes, complete=True)
 
     def _begin(self, client: str, name: str, part: Any) -> _Upload:

@@ -5,6 +5,7 @@ BATCH_CHUNK_TRIES = 2  # a chunk whose worker died is tried once more, then spli
 BATCH_SPLIT = 8  # parts a poisoned chunk falls into: four splits single out one row of 4096
 BATCH_STORE_RETRY_S = 2.0  # before the state folder is tried again once it could not be written to
 BATCH_EXPIRE_EVERY_S = 60.0  # between two looks for batches whose time has come; retention is told in days
+BATCH_GAP_SHARE = 0.1  # of the retention: what a gap between two servers counts at most, for the date may be wrong
 BATCH_OPEN_COUNT = 8  # batches whose submitted numbers stay open: more run in turns rarely
 BATCH_PATIENCE_S = 60.0  # a chunk is never thought stuck before: a loaded machine may be ten times slower
 BATCH_PATIENCE_FACTOR = 50.0  # nor before so many times what it was forecast to take
