@@ -42,9 +42,21 @@ def components(nodes: int, start: IntArray, finish: IntArray) -> IntArray:
 
 def spanning_forest(nodes: int, start: IntArray, finish: IntArray, order: Iterable[int]) -> IntArray:
     """Return the branches of the spanning forest that takes branches in ``order`` (the greedy basis of the graph)."""
-    union = _Union(nodes)
+    parent = list(range(nodes))
     a, b = start.tolist(), finish.tolist()
-    return np.array([k for k in order if union.join(a[k], b[k])], dtype=np.int64)
+    taken = []
+    for k in order:
+        one, other = a[k], b[k]
+        while parent[one] != one:
+            parent[one] = one = parent[parent[one]]
+        while parent[other] != other:
+            parent[other] = other = parent[parent[other]]
+        if one != other:
+            parent[max(one, other)] = min(one, other)
+            taken.append(k)
+            if len(taken) == nodes - 1:
+                break
+    return np.array(taken, dtype=np.int64)
 
 
 def path_matrix(nodes: int, start: IntArray, finish: IntArray, tree: IntArray) -> NDArray[np.float64]:

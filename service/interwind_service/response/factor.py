@@ -72,9 +72,8 @@ def equilibrate(A: ComplexArray) -> tuple[ComplexArray, FloatArray, FloatArray]:
 
 
 def _root(largest: FloatArray) -> FloatArray:
-    with np.errstate(divide="ignore"):
-        exponent = np.where(largest > 0.0, np.round(-0.5 * np.log2(largest)), 0.0)
-    return np.exp2(exponent)
+    """The power of two next to 1/sqrt(largest); 1 for 0."""
+    return np.ldexp(1.0, -(np.frexp(largest)[1] // 2))
 
 
 def _by_inverse(A: ComplexArray, b: ComplexArray) -> tuple[ComplexArray, FloatArray]:

@@ -64,7 +64,7 @@ def frequency_response(
     topology = _with_port_drives(admit(network))
     asked = resolve(topology, observe)
     drives, u = drives_of(topology)
-    samples = np.full((len(f), len(asked)), np.nan, dtype=np.complex128)
+    samples = np.full((len(asked), len(f)), np.nan, dtype=np.complex128)
     findings, judged, methods, gauge = list(topology.findings), [], {}, StressGauge(topology)
     moving = left_open(topology, roles_of(topology, at_zero=False), drives, u)
     standing = left_open(topology, roles_of(topology, at_zero=True), drives, u) if not f.all() else moving
@@ -79,9 +79,9 @@ def frequency_response(
             for k in np.flatnonzero(singular)
         ]
         phasors = Phasors(found.state, open_ends)
-        for column, item in enumerate(asked):
-            samples[found.index, column] = evaluate(phasors, item)
-        samples[found.index[singular]] = np.nan
+        for row, item in zip(samples, asked, strict=True):
+            row[found.index] = evaluate(phasors, item)
+        samples[:, found.index[singular]] = np.nan
         if not singular.any():
             gauge.take_voltages(phasors)
             gauge.take_fields(Phasors(found.loudest, open_ends))
@@ -96,7 +96,7 @@ def frequency_response(
     require(evidence)
     return FrequencyResponse(
         asked,
-        samples,
+        samples.T,
         frequency_hz=f,
         findings=tuple(findings),
         cautions=cautions_of(topology, gauge.stress()),

@@ -140,15 +140,18 @@ def frequency_tree(
         columns.append(int(branch))
     apart = _apart(topology, coordinates)
     columns += [int(topology.groups[g].branches[w]) for g, w in apart]
+    unknown = np.ones(len(columns), dtype=bool)
+    unknown[known] = False
+    loops = role == Role.VOLTAGE
+    loops[tree] = False
     imposed = np.array([[float(d.branch == branch) for d in drives] for branch in imposing])
     imposed = imposed.reshape(len(imposing), len(drives))
     equations = _Equations(topology, coordinates, roles, drives, Q, paths, groups, current, apart, len(columns))
     M, J = equations.write(imposing)
     return FrequencyTree(
         topology, coordinates, roles, drives, tree, Q, paths, M, J,
-        np.delete(np.arange(len(columns)), known), known, imposed,
-        np.array(columns, dtype=np.int64), tuple(groups), current,
-        np.setdiff1d(np.flatnonzero(role == Role.VOLTAGE), tree),
+        np.flatnonzero(unknown), known, imposed,
+        np.array(columns, dtype=np.int64), tuple(groups), current, np.flatnonzero(loops),
     )  # fmt: skip
 
 
@@ -161,10 +164,11 @@ def _order(topology: Topology, roles: Roles, omega: float) -> list[int]:
         for group in topology.groups:
             impedance = omega * group.inductance_h.diagonal() + group.resistance_ohm.diagonal()
             size[group.branches] = np.where(impedance > 0.0, 1.0 / impedance, np.inf)
-    rank = np.select([role == Role.VOLTAGE, role == Role.CONTROLLED_VOLTAGE, role >= Role.TRANSFORMER], [0, 1, 3], 2)
+    rank = np.where(role >= Role.TRANSFORMER, 3, 2)
+    rank[role == Role.VOLTAGE], rank[role == Role.CONTROLLED_VOLTAGE] = 0, 1
     order = np.lexsort((-size, rank))
     conducts = (role != Role.CURRENT) & (role != Role.OPEN)
-    return [int(k) for k in order[conducts[order]]]
+    return order[conducts[order]].tolist()
 
 
 def _apart(topology: Topology, coordinates: tuple[WindingCoordinates, ...]) -> list[tuple[int, int]]:

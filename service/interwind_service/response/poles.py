@@ -88,7 +88,7 @@ def poles(network: Network, observe: Sequence[Observable] | None = None, around_
         evidence=Evidence(
             method="eigenvalues of the state equations in energy coordinates",
             residual=_residual(space.A, p, w),
-            condition=float(np.linalg.cond(right)),
+            condition=float(np.linalg.cond(right)) if len(right) else 1.0,
         ),
     )
 
@@ -190,4 +190,5 @@ def _residual(A: FloatArray, p: ComplexArray, w: ComplexArray) -> float:
     if not p.size:
         return 0.0
     gap = np.abs(A @ w - w * p).max()
-    return float(gap / (np.abs(A).sum(axis=1).max() * np.abs(w).max()))
+    size = np.abs(A).sum(axis=1).max() * np.abs(w).max()
+    return float(gap / size) if size > 0.0 else float(gap)

@@ -92,7 +92,7 @@ def solutions(
         comparisons: dict[int, list[Comparison]] = {}
 
         def agrees(band: SweptBand) -> bool:
-            found = compare(band, coordinates, frequency_hz, drives)
+            found = compare(band, coordinates, drives)
             comparisons[id(band)] = found
             return all(x.gap <= tol.SWEEP_AGREEMENT for x in found)
 

@@ -66,6 +66,7 @@ def _at_rest(network: SwitchedNetwork) -> FloatArray:
         system[:size, :size], system[:size, size:], system[size:, :size] = M, -N, tableau.P
         right = np.concatenate([(F @ w).real, np.zeros(tableau.states)])
         row = np.abs(system).max(axis=1)
+        row[row == 0.0] = 1.0  # an element with both ends on one node asks nothing
         solution, *_ = np.linalg.lstsq(system / row[:, None], right / row, rcond=tol.REST_RANK)
         x = solution[size:]
         following = network.consistent(mode, x, w)

@@ -28,10 +28,11 @@ class StressGauge:
         """Take the voltages of a band into account."""
         topology = self._topology
         self._direct &= not phasors.omega.any()
-        volts = phasors.node_voltages()
-        self._nodes = np.fmax(self._nodes, np.fmax.reduce(np.abs(volts), axis=0))
-        across = volts[:, topology.start[self._capacitors]] - volts[:, topology.finish[self._capacitors]]
-        self._across = np.fmax(self._across, np.fmax.reduce(np.abs(across), axis=0))
+        volts = np.ascontiguousarray(phasors.node_voltages().T)
+        self._nodes = np.fmax(self._nodes, np.fmax.reduce(np.abs(volts), axis=1))
+        across = volts[topology.start[self._capacitors]]
+        across -= volts[topology.finish[self._capacitors]]
+        self._across = np.fmax(self._across, np.fmax.reduce(np.abs(across), axis=1))
 
     def take_fields(self, phasors: Phasors) -> None:
         """Take the magnetic energies of a band into account."""

@@ -60,7 +60,7 @@ class SweptBand:
     def signals(self, rows: IntArray) -> ComplexArray:
         """Return signals (f, rows, drives) per unit of each drive; rows as in `Resolvent`."""
         f, m = len(self.s), self.t.shape[2]
-        H, t = self.own.H[rows], self.t.reshape(len(self.t), -1)
+        H, t = self.own.H[rows], self.t.reshape(len(self.t), f * m)
         moved = H @ (self.U @ t) if f * m < len(rows) else (H @ self.U) @ t
         moved = moved.reshape(len(rows), f, m).transpose(1, 0, 2)
         shift = (self.s - self.own.s0)[:, None, None]

@@ -15,8 +15,8 @@ from numpy.typing import NDArray
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import WindingCoordinates
-from interwind_service.response.frequency_tree import Drive, FrequencyTree
-from interwind_service.response.spectrum import Band, bands, solve_band, terminal_rows
+from interwind_service.response.frequency_tree import Drive, FrequencyTree, frequency_tree
+from interwind_service.response.spectrum import Band, solve_band, terminal_rows
 from interwind_service.response.sweep import SweptBand, check_points
 
 FloatArray = NDArray[np.float64]
@@ -66,7 +66,9 @@ class SweptState:
         self.topology: Topology = band.topology
         self.omega: FloatArray = band.s.imag
         self._band, self._u, self._coordinates = band, u, coordinates
-        self._t = band.t @ u
+        self._t: ComplexArray = np.zeros(band.t.shape[:2], dtype=np.complex128)
+        for k in np.flatnonzero(u):
+            self._t += band.t[:, :, k] * u[k]
         self._base = len(self.topology.kind)
         self._places: dict[int, int] = {}
         self._signals = np.zeros((0, len(self.omega)), dtype=np.complex128)
@@ -144,25 +146,21 @@ class Comparison:
 
 
 def compare(
-    swept: SweptBand, coordinates: tuple[WindingCoordinates, ...], frequency_hz: FloatArray, drives: tuple[Drive, ...]
+    swept: SweptBand, coordinates: tuple[WindingCoordinates, ...], drives: tuple[Drive, ...]
 ) -> list[Comparison]:
     """Hold a band against the frequency tree at its ends and where it is loudest."""
     points = check_points(swept, np.linalg.norm(swept.t, axis=(0, 2)))
-    return [_compare_at(swept, point, coordinates, frequency_hz, drives) for point in points.tolist()]
+    return [_compare_at(swept, point, coordinates, drives) for point in points.tolist()]
 
 
 def _compare_at(
-    swept: SweptBand,
-    point: int,
-    coordinates: tuple[WindingCoordinates, ...],
-    frequency_hz: FloatArray,
-    drives: tuple[Drive, ...],
+    swept: SweptBand, point: int, coordinates: tuple[WindingCoordinates, ...], drives: tuple[Drive, ...]
 ) -> Comparison:
     """Compare at one point; a tree of thousands of unknowns is not kept."""
-    part = swept.index[[point]]
-    tree, _ = next(iter(bands(swept.topology, coordinates, frequency_hz[part], drives)))
-    band = solve_band(tree, part, swept.s[[point]])
-    Z = _columns(swept.at(np.array([point])), tree)
+    one = swept.at(np.array([point]))
+    tree = frequency_tree(swept.topology, coordinates, swept.own.tree.roles, float(one.s.imag[0]), drives)
+    band = solve_band(tree, one.index, one.s)
+    Z = _columns(one, tree)
     noise = tol.NOISE_SHARE * (band.scale @ np.abs(terminal_rows(band)).T) * band.largest
     return Comparison(_gap(band, Z), _residual(band, Z), float(band.condition.max()), noise)
 
@@ -201,8 +199,8 @@ def _gap(band: Band, Z: ComplexArray) -> float:
         places = tree.current[rest]
         blocks.append((Z[:, places], band.Z[:, places], noise[:, places].max(initial=0.0)))
     for mine, theirs, floor in blocks:
-        size = np.maximum(np.abs(theirs).max(axis=1), floor * band.largest)
-        gap = np.abs(mine - theirs).max(axis=1)
+        size = np.maximum(np.abs(theirs).max(axis=1, initial=0.0), floor * band.largest)
+        gap = np.abs(mine - theirs).max(axis=1, initial=0.0)
         worst = max(worst, float(np.divide(gap, size, out=gap, where=size > 0.0).max(initial=0.0)))
     return worst
 

@@ -107,6 +107,8 @@ def _elements(topology: Topology, branches: list[int]) -> str:
 def suspects(tree: FrequencyTree, s: complex) -> str:
     """Name the nodes and elements that the null vector of a singular matrix is made of."""
     unknown = tree.unknown
+    if not unknown.size:
+        return "no element"
     M = tree.matrix(np.array([s]))[:, :, unknown]
     scaled, _, columns = equilibrate(M)
     null = np.linalg.svd(scaled[0])[2][-1].conj()

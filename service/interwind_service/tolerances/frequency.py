@@ -37,8 +37,8 @@ SWEEP_AGREEMENT = 1e-10
 # Points of a swept band at which the energy of its windings is looked at for cautions.
 LOUDEST_POINTS = 6
 
-# Rows of a Schur form substituted together: 16 to 64 cost the same within a third, 32 least.
-SCHUR_BLOCK = 32
+# Rows of a Schur form substituted together: 8 to 64 cost the same within a fifth.
+SCHUR_BLOCK = 16
 
 # One resolvent serves this ratio of frequencies: five decades leave 1e-10 in all but one of 200 random networks whose
 # values span twelve decades; that one is found at the ends of its band.

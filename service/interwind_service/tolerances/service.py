@@ -1,6 +1,8 @@
 """Limits of the front and of its workers."""
 
 WORKER_OOM_SCORE_ADJUST = 700  # the kernel, short of memory, takes a worker and not the server
+# Freed memory a worker keeps for its next arrays: the largest that the C library still takes from its heap, twice.
+WORKER_KEPT_HEAP_BYTES = 64 * 1024 * 1024
 WORKER_RESPAWN_PAUSE_S = 0.2  # between tries to start a process when the system has none to give
 IDLE_LOOK_S = 0.5  # how soon a worker that died without work is replaced
 WORKER_LEAVE_S = 0.3  # a stopping server waits so long for its workers; they see its end by themselves
