@@ -142,7 +142,8 @@ class StreamResult:
 def decode_stream(messages: Iterable[Any], progress: Callable[[int, int], None] | None = None) -> StreamResult:
     """Put a streamed answer together; `DataLoss` when a byte is missing or the checksum differs."""
     result = StreamResult()
-    buffer: bytearray = bytearray()
+    buffer = np.empty(0, np.uint8)
+    proof = hashlib.sha256()
     received = 0
     header: Any = None
     for message in messages:
@@ -152,18 +153,19 @@ def decode_stream(messages: Iterable[Any], progress: Callable[[int, int], None] 
                 progress(message.progress.done_count, message.progress.total_count)
         elif kind == "header":
             header = message.header
-            buffer = bytearray(sum(_size(array) for array in header.arrays))
+            buffer = np.empty(sum(_size(array) for array in header.arrays), np.uint8)
         elif kind == "chunk":
-            chunk = message.chunk
-            if header is None or chunk.offset_bytes != received or received + len(chunk.data) > len(buffer):
-                raise DataLoss(f"chunk at byte {chunk.offset_bytes} found, byte {received} expected; repeat the call")
-            buffer[received : received + len(chunk.data)] = chunk.data
-            received += len(chunk.data)
+            start, data = message.chunk.offset_bytes, message.chunk.data  # each look at the bytes copies them
+            if header is None or start != received or received + len(data) > len(buffer):
+                raise DataLoss(f"chunk at byte {start} found, byte {received} expected; repeat the call")
+            buffer[received : received + len(data)] = np.frombuffer(data, np.uint8)
+            proof.update(data)
+            received += len(data)
         elif kind == "trailer":
             result.trailer = message.trailer
     if result.trailer is None or header is None:
         raise DataLoss("the answer ended before its trailer; repeat the call")
-    if received != result.trailer.size_bytes or hashlib.sha256(buffer).hexdigest() != result.trailer.sha256:
+    if received != result.trailer.size_bytes or proof.hexdigest() != result.trailer.sha256:
         raise DataLoss(f"{received} bytes received do not match the checksum of the answer; repeat the call")
     offset = 0
     for array in header.arrays:
