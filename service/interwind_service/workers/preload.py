@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import atexit
+import gc
 import importlib
 import os
 
@@ -32,3 +33,4 @@ for _name in MODULES:
     importlib.import_module(_name)
     if os.getppid() != _parent:  # an orphan need not finish
         os._exit(1)
+gc.freeze()  # what is imported stays: the collector need not walk it, and its pages stay shared
