@@ -32,6 +32,9 @@ BAD = [
     ([OpenInductance("a", -1e-3, 1e-6)], "readings[0].inductance_h", "resonance"),
     ([OpenInductance("a", np.nan, 1e-6)], "readings[0].inductance_h", "above 0"),
     ([OpenInductance("a", 1e-3, 0.0)], "readings[0].uncertainty_h", "above 0"),
+    ([OpenInductance("a", 1e-300, 1e-303)], "readings[0].inductance_h", "a size of"),
+    ([OpenInductance("a", 1e-3, 1e-300)], "readings[0].uncertainty_h", "rounding would decide"),
+    ([OpenInductance("a", 1e-3, 1e9)], "readings[0].uncertainty_h", "says nothing"),
     ([PairLeakage(("a", "b"), (1.0, 0.0), 1e-3, 1e-6)], "readings[0].turns", "other than 0"),
 ]
 

@@ -136,6 +136,12 @@ FIT_GAIN = 1e-6
 FIT_STEPS = 200
 # Parts of a step in the matrix itself that are tried before one in its factor.
 FIT_FREE_PARTS = (1.0, 0.5, 0.1)
+# Sizes of a reading, H, 1/H or ratio: cubes of what lies beyond leave the range of a double.
+READING_LEAST = 1e-30
+READING_LARGEST = 1e30
+# Uncertainties over the scale of their reading. Weights further apart than these lose the blunter reading in rounding.
+READING_SHARPEST = 1e-12
+READING_BLUNTEST = 1e3
 # Readings scaled to norm 1 that determine a direction only below this say nothing about it beyond rounding.
 UNDETERMINED_SINGULAR_VALUE = 1e-9
 # A residual that keeps less than this part of its variance belongs to a reading that alone decides its own value.

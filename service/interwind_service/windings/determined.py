@@ -8,7 +8,7 @@ import numpy as np
 
 from interwind.errors import InvalidRequest
 from interwind.model.frozen import FloatArray
-from interwind_service.tolerances import UNDETERMINED_SINGULAR_VALUE
+from interwind_service.tolerances import READING_BLUNTEST, READING_SHARPEST, UNDETERMINED_SINGULAR_VALUE
 from interwind_service.windings.fit import upper_row
 from interwind_service.windings.intake import Taken
 from interwind_service.windings.readings import predicted
@@ -22,12 +22,15 @@ def require_determined(used: Sequence[Taken], labels: Sequence[str], L: FloatArr
 
     Raises
     ------
-    InvalidRequest : reason UNDETERMINED, with the winding or the pair and the reading that would settle it.
+    InvalidRequest : reason UNDETERMINED, with the winding or the pair and the reading that would settle it; or an
+        uncertainty that rounding, or nothing at all, could hold to.
     """
     n = len(labels)
     root = np.sqrt(L.diagonal())
     rows = np.array([upper_row(predicted(one.reading, L, labels)[1] * np.outer(root, root)) for one in used])
-    rows = rows / np.linalg.norm(rows, axis=1, keepdims=True)
+    scale = np.linalg.norm(rows, axis=1)
+    _require_sensible(used, scale)
+    rows = rows / scale[:, None]
     _, values, V = np.linalg.svd(rows)
     rank = int(np.count_nonzero(values > UNDETERMINED_SINGULAR_VALUE * values[0]))
     if rank == rows.shape[1]:
@@ -50,3 +53,15 @@ def require_determined(used: Sequence[Taken], labels: Sequence[str], L: FloatArr
         windings=what,
         open_count=rows.shape[1] - rank,
     )
+
+
+def _require_sensible(used: Sequence[Taken], scale: FloatArray) -> None:
+    """Refuse an uncertainty out of all proportion to how far its reading (``scale`` (m,)) moves with the matrix."""
+    for position, one in enumerate(used):
+        least, most = READING_SHARPEST * scale[position], READING_BLUNTEST * scale[position]
+        if not least <= one.uncertainty <= most:
+            raise InvalidRequest.at(
+                f"readings[{position}].uncertainty_h",
+                f"{one.uncertainty!r} found; {least:.3g} to {most:.3g} is expected of a reading of that size: what is "
+                "sharper rounding would decide, what is blunter says nothing and can be left out",
+            )

@@ -29,7 +29,13 @@ from interwind.model.readings import (
     SeriesInductance,
     ShortedInductance,
 )
-from interwind_service.tolerances import CORRECTION_LIMIT, CORRECTION_NEGLIGIBLE, DERIVATIVE_STEP
+from interwind_service.tolerances import (
+    CORRECTION_LIMIT,
+    CORRECTION_NEGLIGIBLE,
+    DERIVATIVE_STEP,
+    READING_LARGEST,
+    READING_LEAST,
+)
 from interwind_service.windings.readings import predicted, stated_value, windings_of
 
 POSITIVE = (OpenInductance, ShortedInductance, SeriesInductance, PairLeakage)
@@ -94,6 +100,11 @@ def _require(reading: Reading, labels: Sequence[str]) -> None:
         raise InvalidRequest.at(
             "inductance_h",
             f"{value!r} found; a finite inductance above 0 H is expected. A negative one was read above resonance",
+        )
+    if value != 0 and not READING_LEAST <= abs(value) <= READING_LARGEST:
+        raise InvalidRequest.at(
+            "inductance_h",
+            f"{value!r} found; a size of {READING_LEAST:g} to {READING_LARGEST:g}, or 0 where it may be, is expected",
         )
     if not (np.isfinite(uncertainty) and uncertainty > 0):
         raise InvalidRequest.at(
