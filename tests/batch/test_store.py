@@ -6,13 +6,14 @@ import dataclasses
 import sqlite3
 import subprocess
 import sys
+from concurrent.futures import Future
 
 import pytest
 from plain_batch import plan
 
 from interwind.errors import InvalidRequest, NotFound, OutOfRange, Overloaded, Unavailable
 from interwind.model.batch import BatchState
-from interwind_service.batch.folder import StateFolder
+from interwind_service.batch.folder import StateFolder, no_room, rows_name
 from interwind_service.batch.schema import MIGRATIONS
 from interwind_service.batch.store import Store
 
@@ -74,6 +75,27 @@ def test_delete_leaves_no_file(store):
     batch_id = store.create(plan(store.folder, 10, 4)).batch_id
     store.delete(batch_id)
     assert not store.folder.batch(batch_id).exists()
+    with pytest.raises(NotFound):
+        store.progress(batch_id)
+
+
+def test_rows_make_room_for_the_word_that_they_are_gone(store, monkeypatch):
+    """On a disk so full that not even a deletion can be written, the files of the batch leave first."""
+    batch_id = store.create(plan(store.folder, 10, 4)).batch_id
+    rows = store.folder.batch(batch_id) / rows_name(0, 4)
+    rows.write_bytes(bytes(96))
+    write = store._journal.write
+
+    def full(job):
+        if not rows.exists():
+            return write(job)
+        refused = Future()
+        refused.set_exception(no_room())
+        return refused
+
+    monkeypatch.setattr(store._journal, "write", full)
+    store.delete(batch_id)
+    assert [] == list(store.folder.batches.iterdir())
     with pytest.raises(NotFound):
         store.progress(batch_id)
 

@@ -190,6 +190,7 @@ def progress_to_message(progress: model.BatchProgress) -> Any:
         cancelled_count=progress.cancelled_count,
         sequence=progress.sequence,
         request_id=progress.request_id,
+        held_reason=progress.held_reason,
     )
     for name in ("create_time", "done_time", "expire_time"):
         seconds = getattr(progress, f"{name}_s")
@@ -228,6 +229,7 @@ def progress_from_message(message: Any) -> model.BatchProgress:
         )
         if message.HasField("forecast")
         else None,
+        held_reason=message.held_reason,
     )
 
 

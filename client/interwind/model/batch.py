@@ -104,6 +104,7 @@ class CostForecast:
 class BatchProgress:
     """Where a batch stands; ``sequence`` rises with every change, so a watcher takes up where it was.
 
+    ``held_reason``: why it stands still at present, ``STATE_FOLDER_FULL`` on a full disk; it goes on by itself.
     Times are seconds since the beginning of 1970, UTC.
     """
 
@@ -120,6 +121,7 @@ class BatchProgress:
     done_time_s: float | None = None
     expire_time_s: float | None = None
     forecast: CostForecast | None = None
+    held_reason: str = ""
 
     @property
     def done_count(self) -> int:

@@ -1,3 +1,3 @@
 """Generated from proto/interwind/v1 by deploy/generate.py; never edited."""
 
-SOURCE_SHA256 = "fada90458acb9dca533f3827992c86dbfeadbaf8879583bb37fd94ff96112d87"
+SOURCE_SHA256 = "ca0d9e9912cf69d718d0b8f76aa2013eb5b94556a17d7f2bfc1a0945165f14df"

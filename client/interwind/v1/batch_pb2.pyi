@@ -185,7 +185,7 @@ class CostForecast(_message.Message):
     def __init__(self, duration_s: _Optional[float] = ..., result_bytes: _Optional[int] = ..., memory_bytes: _Optional[int] = ..., chunk_count: _Optional[int] = ...) -> None: ...
 
 class Batch(_message.Message):
-    __slots__ = ("batch_id", "state", "done", "variant_count", "ok_count", "invalid_count", "failed_count", "cancelled_count", "sequence", "request_id", "create_time", "done_time", "expire_time", "forecast")
+    __slots__ = ("batch_id", "state", "done", "variant_count", "ok_count", "invalid_count", "failed_count", "cancelled_count", "sequence", "request_id", "create_time", "done_time", "expire_time", "forecast", "held_reason")
     BATCH_ID_FIELD_NUMBER: _ClassVar[int]
     STATE_FIELD_NUMBER: _ClassVar[int]
     DONE_FIELD_NUMBER: _ClassVar[int]
@@ -200,6 +200,7 @@ class Batch(_message.Message):
     DONE_TIME_FIELD_NUMBER: _ClassVar[int]
     EXPIRE_TIME_FIELD_NUMBER: _ClassVar[int]
     FORECAST_FIELD_NUMBER: _ClassVar[int]
+    HELD_REASON_FIELD_NUMBER: _ClassVar[int]
     batch_id: str
     state: BatchState
     done: bool
@@ -214,4 +215,5 @@ class Batch(_message.Message):
     done_time: _timestamp_pb2.Timestamp
     expire_time: _timestamp_pb2.Timestamp
     forecast: CostForecast
-    def __init__(self, batch_id: _Optional[str] = ..., state: _Optional[_Union[BatchState, str]] = ..., done: bool = ..., variant_count: _Optional[int] = ..., ok_count: _Optional[int] = ..., invalid_count: _Optional[int] = ..., failed_count: _Optional[int] = ..., cancelled_count: _Optional[int] = ..., sequence: _Optional[int] = ..., request_id: _Optional[str] = ..., create_time: _Optional[_Union[_timestamp_pb2.Timestamp, _Mapping]] = ..., done_time: _Optional[_Union[_timestamp_pb2.Timestamp, _Mapping]] = ..., expire_time: _Optional[_Union[_timestamp_pb2.Timestamp, _Mapping]] = ..., forecast: _Optional[_Union[CostForecast, _Mapping]] = ...) -> None: ...
+    held_reason: str
+    def __init__(self, batch_id: _Optional[str] = ..., state: _Optional[_Union[BatchState, str]] = ..., done: bool = ..., variant_count: _Optional[int] = ..., ok_count: _Optional[int] = ..., invalid_count: _Optional[int] = ..., failed_count: _Optional[int] = ..., cancelled_count: _Optional[int] = ..., sequence: _Optional[int] = ..., request_id: _Optional[str] = ..., create_time: _Optional[_Union[_timestamp_pb2.Timestamp, _Mapping]] = ..., done_time: _Optional[_Union[_timestamp_pb2.Timestamp, _Mapping]] = ..., expire_time: _Optional[_Union[_timestamp_pb2.Timestamp, _Mapping]] = ..., forecast: _Optional[_Union[CostForecast, _Mapping]] = ..., held_reason: _Optional[str] = ...) -> None: ...

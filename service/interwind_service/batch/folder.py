@@ -2,15 +2,19 @@
 
 from __future__ import annotations
 
+import errno
 import fcntl
 import hashlib
 import os
 import shutil
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
+from contextlib import contextmanager
 from pathlib import Path
 
-from interwind.errors import DataLoss, Unavailable
+from interwind.errors import DataLoss, Overloaded, Unavailable
+from interwind_service.tolerances import BATCH_STORE_RETRY_S
 
+FULL_DISK = (errno.ENOSPC, errno.EDQUOT, errno.EFBIG)
 READ_BYTES = 1 << 20
 
 
@@ -59,19 +63,42 @@ class StateFolder:
                     part.unlink(missing_ok=True)
 
 
-def rows_name(first_row: int, row_count: int) -> str:
-    """Return the name of the file that holds the numbers of these rows."""
+def rows_name(first_row: int | str, row_count: int | str) -> str:
+    """Return the name of the file that holds the numbers of these rows; of all files of rows for "*", "*"."""
     return f"rows-{first_row}-{row_count}"
 
 
+@contextmanager
+def room_in_state_folder() -> Iterator[None]:
+    """Turn a full disk, met inside, into `Overloaded`; nothing was stored."""
+    try:
+        yield
+    except OSError as error:
+        if error.errno not in FULL_DISK:
+            raise
+        raise no_room() from error
+
+
+def no_room() -> Overloaded:
+    """Return what a caller is told when the state folder cannot be written to."""
+    return Overloaded(
+        "the state folder cannot be written to (is its disk full?); nothing was stored, try again later",
+        reason="STATE_FOLDER_FULL",
+        retry_after_s=BATCH_STORE_RETRY_S,
+    )
+
+
 def write_durably(path: Path, data: bytes | memoryview) -> None:
-    """Write a whole new file and see it on the disk; its name is durable after `sync_folder`."""
+    """Write a whole new file and see it on the disk, or leave none; its name is durable after `sync_folder`."""
     handle = os.open(path, os.O_WRONLY | os.O_CREAT | os.O_TRUNC | os.O_CLOEXEC, 0o600)
     try:
         view = memoryview(data).cast("B") if len(data) else memoryview(b"")
         while view:
             view = view[os.write(handle, view) :]
         os.fsync(handle)
+    except OSError:
+        path.unlink(missing_ok=True)  # a part of it would take up the room that others wait for
+        raise
     finally:
         os.close(handle)
 

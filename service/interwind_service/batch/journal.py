@@ -11,9 +11,10 @@ from contextlib import contextmanager
 from pathlib import Path
 from typing import Any, TypeVar
 
-from interwind.errors import InterwindError, Overloaded, Unavailable
+from interwind.errors import InterwindError, Unavailable
+from interwind_service.batch.folder import no_room
 from interwind_service.batch.schema import connect, migrate
-from interwind_service.tolerances import BATCH_GROUP_COMMIT_COUNT, BATCH_STORE_RETRY_S
+from interwind_service.tolerances import BATCH_GROUP_COMMIT_COUNT
 
 T = TypeVar("T")
 _Job = tuple[Callable[[sqlite3.Connection], Any], "Future[Any]"]
@@ -92,11 +93,7 @@ class Journal:
                     except InterwindError as error:  # raised before the job changed anything
                         outcomes.append(lambda future=future, error=error: future.set_exception(error))  # type: ignore[misc]
         except (sqlite3.Error, OSError) as error:
-            refusal = Overloaded(
-                "the state folder cannot be written to (is its disk full?); nothing was stored, try again later",
-                reason="STATE_FOLDER_FULL",
-                retry_after_s=BATCH_STORE_RETRY_S,
-            )
+            refusal = no_room()
             refusal.__cause__ = error
             for _, future in group:
                 future.set_exception(refusal)

@@ -82,6 +82,7 @@ class Runner:
         self._open: OrderedDict[str, tuple[bytes, Any, int]] = OrderedDict()
         self._events: queue.SimpleQueue[Callable[[], None]] = queue.SimpleQueue()
         self._stopping = False
+        self.held_reason = ""  # why nothing could be stored the last time, as told in the progress of every batch
         self._pause_until_s = 0.0
         self._expire_at_s = 0.0
         self._stop_listening = store.listen(lambda touched: self.wake())
@@ -236,26 +237,35 @@ class Runner:
             part = self._store.folder.batch(chunk.batch_id) / running.path.rpartition("/")[2]
             if self._by_value:
                 try:
-                    files.write_durably(part, answer.values)
-                except OSError:
-                    self._leave(chunk)
+                    with files.room_in_state_folder():
+                        files.write_durably(part, answer.values)
+                except (OSError, Overloaded) as refusal:
+                    self._leave(chunk, refusal)
                     return
             stored = self._store.chunks.finish(chunk, answer, part)
         elif isinstance(error, Cancelled | CancelledError | OSError | Overloaded) or draining(error):
-            self._leave(chunk, pause=not isinstance(error, Cancelled | CancelledError))
+            self._leave(chunk, error)
             return
         else:
             code, message = verdict(error)
             self._tell("batch_chunk_lost", batch_id=chunk.batch_id, first_row=chunk.first_row, error=repr(error))
             stored = self._store.chunks.lost(chunk, code, message)
-        stored.add_done_callback(
-            lambda done: self._events.put(lambda: self._leave(chunk, pause=done.exception() is not None))
-        )
+        stored.add_done_callback(lambda done: self._events.put(lambda: self._leave(chunk, done.exception())))
 
-    def _leave(self, chunk: Chunk, *, pause: bool = True) -> None:
+    def _leave(self, chunk: Chunk, error: BaseException | None) -> None:
+        """Have done with a chunk: it is stored, or stays pending because of ``error``."""
         self._running.pop(chunk.key, None)
-        if pause:
+        if error is None:
+            self._hold("")
+        elif not isinstance(error, Cancelled | CancelledError | FileNotFoundError):  # not found: the batch was deleted
+            if not draining(error):
+                self._hold(getattr(error, "reason", "STATE_FOLDER_FAILED"))
             self._pause()
+
+    def _hold(self, reason: str) -> None:
+        if reason != self.held_reason:
+            self.held_reason = reason
+            self._tell("batches_held_up" if reason else "batches_go_on", reason=reason)
 
     def _pause(self) -> None:
         self._pause_until_s = time.monotonic() + BATCH_STORE_RETRY_S

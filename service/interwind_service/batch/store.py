@@ -151,14 +151,19 @@ class Store:
         return self.progress(batch_id, owner)
 
     def delete(self, batch_id: str, owner: str | None = None) -> None:
-        """Delete a batch, whatever its state, and its results."""
+        """Delete a batch, whatever its state, and its results; on a full disk they make the room to say so."""
         key = self._row(batch_id, owner)["key"]
 
         def job(connection: sqlite3.Connection) -> None:
             connection.execute("DELETE FROM batch WHERE key = ?", (key,))
             self._journal.touch(batch_id)
 
-        self._journal.write(job).result()
+        try:
+            self._journal.write(job).result()
+        except Overloaded:
+            for rows in self.folder.batch(batch_id).glob(files.rows_name("*", "*")):
+                rows.unlink(missing_ok=True)
+            self._journal.write(job).result()
         shutil.rmtree(self.folder.batch(batch_id), ignore_errors=True)
 
     def item_counts(self) -> dict[str, int]:

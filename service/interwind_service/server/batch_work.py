@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import functools
 import hashlib
+import shutil
 import time
 from pathlib import Path
 from typing import Any
@@ -19,11 +20,11 @@ from interwind.codec.batch import (
     summary_to_messages,
 )
 from interwind.codec.observable import observables_to_messages
-from interwind.errors import InvalidRequest, field_path
+from interwind.errors import InvalidRequest, Overloaded, field_path
 from interwind.model.batch import Analysis, CostForecast
 from interwind.v1 import array_pb2, batch_service_pb2
 from interwind_service.batch.chunk import Desk, Layout, desk_of, layout_of, shortened, solve_rows
-from interwind_service.batch.folder import sync_folder, write_durably
+from interwind_service.batch.folder import room_in_state_folder, sync_folder, write_durably
 from interwind_service.batch.overrides import Overrides, lay_out
 from interwind_service.batch.summary import StoredRows, summarize
 from interwind_service.batch.work import ChunkAnswer, ChunkTask, Plan
@@ -70,11 +71,7 @@ def plan_submission(request: bytes, incoming: str, arrays: ArrayFolder) -> Plan:
     recipe = recipe_of(overrides, submission.analysis)
     columns = np.ascontiguousarray(numbers, dtype="<f8").tobytes()
     if not submission.validate_only:
-        folder = Path(incoming)
-        folder.mkdir(mode=0o700)
-        write_durably(folder / "recipe", recipe)
-        write_durably(folder / "columns", columns)
-        sync_folder(folder)
+        _write_down(Path(incoming), recipe, columns)
     recipe_sha256, columns_sha256 = (hashlib.sha256(data).hexdigest() for data in (recipe, columns))
     return Plan(
         folder="" if submission.validate_only else Path(incoming).name,
@@ -103,7 +100,8 @@ def solve_chunk(task: ChunkTask) -> ChunkAnswer:
     values = np.ascontiguousarray(rows.values, dtype=desk.layout.dtype)
     data = memoryview(values.reshape(-1).view(np.uint8))
     if task.path:
-        write_durably(Path(task.path), data)
+        with room_in_state_folder():
+            write_durably(Path(task.path), data)
     return ChunkAnswer(
         statuses=rows.statuses,
         reasons=rows.reasons,
@@ -138,6 +136,19 @@ def _desk(recipe: bytes) -> Desk:
 
 def _submission(recipe: bytes) -> Submission:
     return submission_from_message(batch_service_pb2.SubmitBatchRequest.FromString(recipe))
+
+
+def _write_down(folder: Path, recipe: bytes, columns: bytes) -> None:
+    """Make the folder of a submission durable, or leave none."""
+    try:
+        with room_in_state_folder():
+            folder.mkdir(mode=0o700)
+            write_durably(folder / "recipe", recipe)
+            write_durably(folder / "columns", columns)
+            sync_folder(folder)
+    except Overloaded:
+        shutil.rmtree(folder, ignore_errors=True)
+        raise
 
 
 def _seconds(desk: Desk, numbers: Any) -> tuple[float, float]:

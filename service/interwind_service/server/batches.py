@@ -7,6 +7,7 @@ import contextlib
 import os
 import uuid
 from collections.abc import AsyncIterator, Callable, Iterator
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -76,7 +77,7 @@ class BatchDoor:
     async def _get(self, request: bytes, call: Call) -> bytes:
         message = _parse(messages.GetBatchRequest, request)
         progress = await asyncio.to_thread(self._store.progress, message.batch_id, _owner(call))
-        return _wrapped(messages.GetBatchResponse, progress)
+        return _wrapped(messages.GetBatchResponse, self._with_hold(progress))
 
     async def _list(self, request: bytes, call: Call) -> bytes:
         message = _parse(messages.ListBatchesRequest, request)
@@ -85,7 +86,7 @@ class BatchDoor:
         size = min(message.page_size or BATCH_PAGE_SIZE, BATCH_PAGE_LIMIT)
         page, following = await asyncio.to_thread(self._store.page, _owner(call), size, message.page_token)
         answer = messages.ListBatchesResponse(
-            batches=[progress_to_message(progress) for progress in page], next_page_token=following
+            batches=[progress_to_message(self._with_hold(progress)) for progress in page], next_page_token=following
         )
         return bytes(answer.SerializeToString())
 
@@ -108,7 +109,7 @@ class BatchDoor:
                 progress = await asyncio.to_thread(self._store.progress, message.batch_id, _owner(call))
                 if progress.sequence > after:
                     after = progress.sequence
-                    yield _wrapped(messages.WatchBatchResponse, progress)
+                    yield _wrapped(messages.WatchBatchResponse, self._with_hold(progress))
                 if progress.done:
                     return
                 await changed.wait()
@@ -138,6 +139,9 @@ class BatchDoor:
                 for part in await asyncio.to_thread(self._proven, known.folder, chunk):
                     yield part
                 row = chunk.first_row + chunk.row_count
+
+    def _with_hold(self, progress: BatchProgress) -> BatchProgress:
+        return progress if progress.done else replace(progress, held_reason=self._runner.held_reason)
 
     def _proven(self, folder: Path, chunk: Chunk) -> Iterator[bytes]:
         """Return the messages of a chunk, its file proven before the first; a damaged one is computed again."""
