@@ -2,11 +2,12 @@
 
     (G + s C) x = B u
 
-The pattern is the same at every frequency, so the column ordering that keeps the factors sparse is found for the first
-one and used for all. Each solution carries its residual, and is refined where that is
-worse than rounding.
+The pattern is the same at every frequency, so the order that keeps the factors sparse is found for the first one and
+used for all. Each solution carries its residual, is refined where that is worse than rounding, and is factored anew
+with full pivoting where it is not good enough.
 
-References: Ho, Ruehli & Brennan 1975 (the equations); Demmel, Eisenstat, Gilbert, Li & Liu 1999 (the factorization).
+References: Ho, Ruehli & Brennan 1975 (the equations); Demmel, Eisenstat, Gilbert, Li & Liu 1999 (the factorization);
+Liu 1985 (minimum degree).
 """
 
 from __future__ import annotations
@@ -88,45 +89,64 @@ def _right_sides(topology: Topology, plan: Plan, B: FloatArray, drives: tuple[Dr
 
 
 class _Ordered:
-    """G + s C on one pattern, columns in the order found by the first factorization."""
+    """G + s C on one pattern, rows and columns in the order found by the first factorization.
+
+    A symmetric order (minimum degree of A + Aᵀ) keeps the factors of a nodal matrix sparsest where its diagonal may
+    serve as pivots; the order of AᵀA takes any pivots. The first factorization tries both and keeps the smaller.
+    """
 
     def __init__(self, G: sparse.csc_matrix, C: sparse.csc_matrix) -> None:
         pattern = (abs(G) + abs(C)).tocsc()
         pattern.sort_indices()
-        self._indices, self._indptr, self._size = pattern.indices, pattern.indptr, pattern.shape[0]
-        self._G, self._C = _on_pattern(G, pattern), _on_pattern(C, pattern)
-        self._order: IntArray | None = None
+        self._size = pattern.shape[0]
+        self._set(pattern.indices, pattern.indptr, _on_pattern(G, pattern), _on_pattern(C, pattern))
+        self._rows = self._columns = np.arange(self._size)
+        self._pivot_share = 0.0
 
     def solve(self, s: complex, right: ComplexArray) -> tuple[ComplexArray, float]:
         """Return x and |b − A x|∞ / (|A|∞ |x|∞ + |b|∞); NaN where A is singular."""
         data = self._G + s * self._C
         A = sparse.csc_matrix((data, self._indices, self._indptr), shape=(self._size, self._size))
         try:
-            if self._order is None:
-                factors = sla.splu(A)
-                self._reorder(np.argsort(factors.perm_c))
+            if not self._pivot_share:
+                self._order_by(A)
                 return self.solve(s, right)
-            factors = sla.splu(A, permc_spec="NATURAL", options={"SymmetricMode": False})
+            y, residual = self._refined(A, right[self._rows], self._pivot_share)
+            if not residual <= tol.RESIDUAL_LIMIT and self._pivot_share < 1.0:
+                y, residual = self._refined(A, right[self._rows], 1.0)
         except RuntimeError:  # SuperLU says so when a pivot is exactly zero
             return np.full(right.shape, np.nan, dtype=np.complex128), np.nan
-        norm = np.bincount(self._indices, np.abs(data), self._size).max()
-        y = factors.solve(right)
-        residual, gap = _residual(A, norm, y, right)
-        if residual > tol.SPARSE_REFINED_RESIDUAL:
-            y = y + factors.solve(gap)
-            residual, _ = _residual(A, norm, y, right)
         x = np.empty_like(y)
-        x[self._order] = y
+        x[self._columns] = y
         return x, residual
 
-    def _reorder(self, order: IntArray) -> None:
-        """Put the columns into ``order`` once and for all."""
-        counts = np.diff(self._indptr)[order]
-        starts = self._indptr[:-1][order]
-        take = np.repeat(starts - np.concatenate(([0], np.cumsum(counts)[:-1])), counts) + np.arange(counts.sum())
-        self._indices, self._G, self._C = self._indices[take], self._G[take], self._C[take]
-        self._indptr = np.concatenate(([0], np.cumsum(counts))).astype(self._indptr.dtype)
-        self._order = order
+    def _refined(self, A: sparse.csc_matrix, b: ComplexArray, pivot_share: float) -> tuple[ComplexArray, float]:
+        spec = "NATURAL" if pivot_share == self._pivot_share else "COLAMD"
+        factors = sla.splu(A, permc_spec=spec, diag_pivot_thresh=pivot_share)
+        norm = np.bincount(self._indices, np.abs(A.data), self._size).max()
+        y = factors.solve(b)
+        residual, gap = _residual(A, norm, y, b)
+        if residual > tol.SPARSE_REFINED_RESIDUAL:
+            y = y + factors.solve(gap)
+            residual, _ = _residual(A, norm, y, b)
+        return y, residual
+
+    def _order_by(self, A: sparse.csc_matrix) -> None:
+        """Put rows and columns into the better order once and for all."""
+        best = sla.splu(A)
+        columns, rows, self._pivot_share = np.argsort(best.perm_c), self._rows, 1.0
+        symmetric = sla.splu(A, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=tol.SPARSE_PIVOT_SHARE)
+        if symmetric.nnz < best.nnz:
+            columns = rows = np.argsort(symmetric.perm_c)
+            self._pivot_share = tol.SPARSE_PIVOT_SHARE
+        places = sparse.csc_matrix((np.arange(len(self._indices)), self._indices, self._indptr), shape=A.shape)
+        moved = places[rows][:, columns].tocsc()
+        moved.sort_indices()
+        self._set(moved.indices, moved.indptr, self._G[moved.data], self._C[moved.data])
+        self._rows, self._columns = rows, columns
+
+    def _set(self, indices: IntArray, indptr: IntArray, G: FloatArray, C: FloatArray) -> None:
+        self._indices, self._indptr, self._G, self._C = indices, indptr, G, C
 
 
 def _residual(A: sparse.csc_matrix, norm: float, y: ComplexArray, right: ComplexArray) -> tuple[float, ComplexArray]:

@@ -71,6 +71,8 @@ SPARSE_UNKNOWNS = 3000
 SPARSE_COUPLING = 20
 # A residual above this is more than the rounding of one sparse solve, and worth a refinement.
 SPARSE_REFINED_RESIDUAL = 1e-15
+# The diagonal serves as pivot down to this share of its column: growth of 10 a step at most, and far fewer entries.
+SPARSE_PIVOT_SHARE = 0.1
 # So far beside a singular frequency the solution is looked at for its culprits, relative to the frequency.
 ASIDE = 1e-7
 
