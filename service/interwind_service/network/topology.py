@@ -6,7 +6,7 @@ transformer two (a-b, c-d). Solvers work on this value; names come back only in 
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -192,6 +192,26 @@ def number(network: Network) -> Topology:
         input_branch=input_branch,
         parts=parts,
         findings=findings,
+    )
+
+
+def with_current_sources(topology: Topology, sources: list[el.CurrentSource]) -> Topology:
+    """Return the numbered network with sources added, each between nodes of one part, and without its ports."""
+    network, size, count = topology.network, len(topology.kind), len(sources)
+    forced = topology.parts.forced
+    return replace(
+        topology,
+        network=replace(network, elements=(*network.elements, *sources), ports=()),
+        kind=np.append(topology.kind, [int(Kind.CURRENT_SOURCE)] * count),
+        start=np.append(topology.start, [topology.node(source.a) for source in sources]),
+        finish=np.append(topology.finish, [topology.node(source.b) for source in sources]),
+        value=np.append(topology.value, [np.nan] * count),
+        names=(*topology.names, *(source.name for source in sources)),
+        labels=topology.labels + ("",) * count,
+        element=np.append(topology.element, len(network.elements) + np.arange(count)),
+        inputs=(*topology.inputs, *(source.name for source in sources)),
+        input_branch=np.append(topology.input_branch, size + np.arange(count)),
+        parts=replace(topology.parts, forced=np.hstack((forced, np.zeros((len(forced), count), dtype=np.int64)))),
     )
 
 

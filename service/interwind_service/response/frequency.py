@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import dataclasses
 from collections.abc import Sequence
 
 import numpy as np
@@ -14,7 +13,7 @@ from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.response import FrequencyResponse
 from interwind_service.network.kind import Kind
-from interwind_service.network.topology import Topology, number
+from interwind_service.network.topology import Topology, with_current_sources
 from interwind_service.response.admit import admit
 from interwind_service.response.cautions import cautions_of
 from interwind_service.response.evidence import gather, judge, require
@@ -120,10 +119,7 @@ def _with_port_drives(topology: Topology) -> Topology:
         a, b = port_nodes(topology, position)
         if topology.parts.of_node[a] == topology.parts.of_node[b] and a != b:
             added.append(CurrentSource(unused_name(network, f"port {port.name}"), port.b, port.a))
-    if not added:
-        return topology
-    driven = number(dataclasses.replace(network, elements=(*network.elements, *added), ports=()))
-    return dataclasses.replace(driven, findings=topology.findings)
+    return with_current_sources(topology, added) if added else topology
 
 
 def unused_name(network: Network, name: str) -> str:
