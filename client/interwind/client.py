@@ -306,6 +306,7 @@ class Client:
         return ServerArrays(
             lambda path, request, kind: self._caller.unary(path, request, kind, deadline),
             lambda path, request, kind: self._caller.stream(path, request, kind, deadline),
+            lambda attempt: self._caller.repeatedly(attempt, deadline),
         )
 
     def _call(self, engine: str, arguments: dict[str, Any], timeout_s: float, progress: Progress | None = None) -> Any:

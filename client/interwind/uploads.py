@@ -13,11 +13,20 @@ PART_BYTES = 1 << 20
 
 
 class ServerArrays:
-    """The arrays a server holds, through one unary call (``send``) or one streamed one (``receive``)."""
+    """The arrays a server holds, through one unary call (``send``) or one streamed one (``receive``).
 
-    def __init__(self, send: Callable[..., Any], receive: Callable[..., Any]) -> None:
+    ``repeatedly`` runs a download until it is whole, each time from where the line broke.
+    """
+
+    def __init__(
+        self,
+        send: Callable[..., Any],
+        receive: Callable[..., Any],
+        repeatedly: Callable[[Callable[[], None]], None],
+    ) -> None:
         self._send = send
         self._receive = receive
+        self._repeatedly = repeatedly
 
     def put(self, data: bytes, shape: tuple[int, ...], dtype: int) -> str:
         """Upload the bytes unless the server holds them already; return their hash."""
@@ -40,9 +49,15 @@ class ServerArrays:
 
     def get(self, content_hash_: str) -> bytes:
         """Download the bytes of that hash and prove them."""
-        request = messages.GetArrayRequest(content_hash=content_hash_)
-        parts = self._receive("/interwind.v1.ArrayService/GetArray", request, messages.GetArrayResponse)
-        data = b"".join(part.data for part in parts)
-        if content_hash(data) != content_hash_:
-            raise DataLoss(f"{len(data)} bytes received do not have the hash {content_hash_}; repeat the call")
-        return data
+        data = bytearray()
+
+        def attempt() -> None:
+            request = messages.GetArrayRequest(content_hash=content_hash_, offset_bytes=len(data))
+            for part in self._receive("/interwind.v1.ArrayService/GetArray", request, messages.GetArrayResponse):
+                data.extend(part.data)
+
+        self._repeatedly(attempt)
+        whole = bytes(data)
+        if content_hash(whole) != content_hash_:
+            raise DataLoss(f"{len(whole)} bytes received do not have the hash {content_hash_}; repeat the call")
+        return whole
