@@ -63,13 +63,13 @@ def state_space() -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
 
 
 def drives(steps: int) -> dict[str, tuple[wf.Waveform, np.ndarray]]:
-    """Waveforms, and their samples for lsim."""
+    """Waveforms, and their samples for lsim; the record has a corner at every sample."""
     t = STEP_S * np.arange(steps + 1)
     record = np.random.default_rng(0).standard_normal(steps + 1)
     return {
         "step": (wf.Step(1.0), np.ones(steps + 1)),
         "sine": (wf.Sine(1.0, 3e3), np.sin(2 * np.pi * 3e3 * t)),
-        "record, a corner at every sample": (wf.SampledRecord(STEP_S, record), record),
+        "record": (wf.SampledRecord(STEP_S, record), record),
     }
 
 

@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 
 from interwind.errors import InvalidRequest
 from interwind.model import waveform as wf
-from interwind_service.tolerances import MAX_WAVEFORM_CORNERS
+from interwind_service.tolerances import CORNERS_TOGETHER, MAX_WAVEFORM_CORNERS
 
 FloatArray = NDArray[np.float64]
 
@@ -53,22 +53,26 @@ def corners_of(waveform: wf.Waveform, stop_s: float, step_s: float) -> Corners:
         if not (np.isfinite(waveform.interval_s) and waveform.interval_s > 0.0):
             raise InvalidRequest.at("interval_s", f"{waveform.interval_s!r} s found; a finite time above 0 is expected")
         time_s = waveform.start_s + waveform.interval_s * np.arange(len(waveform.value))
-        return _through(time_s, waveform.value, stop_s, step_s)
+        return _through(time_s, waveform.value, stop_s, step_s, gap_s=waveform.interval_s)
     if isinstance(waveform, wf.PiecewiseLinear):
         return _through(waveform.time_s, waveform.value, stop_s, step_s)
     raise InvalidRequest.at("", f"{type(waveform).__name__} found; a waveform is expected")
 
 
-def _through(time_s: FloatArray, value: FloatArray, stop_s: float, step_s: float) -> Corners:
+def _through(
+    time_s: FloatArray, value: FloatArray, stop_s: float, step_s: float, *, gap_s: float | None = None
+) -> Corners:
+    """Return the lines through points ``gap_s`` apart; None: as far apart as their times."""
     for field, array in (("time_s", time_s), ("value", value)):
         if not np.isfinite(array).all():
             position = int(np.flatnonzero(~np.isfinite(array))[0])
             raise InvalidRequest.at(f"{field}[{position}]", f"{array[position]!r} found; a finite number is expected")
-    gap = np.diff(time_s)
-    slope = np.append(np.divide(np.diff(value), gap, out=np.zeros_like(gap), where=gap > 0.0), 0.0)
-    first = min(0.0, float(time_s[0]))
-    time_s = np.concatenate(([first], time_s))
-    value, slope = np.concatenate(([value[0]], value)), np.concatenate(([0.0], slope))
+    gap = np.diff(time_s) if gap_s is None else np.float64(gap_s)
+    slope = np.zeros(len(value))
+    np.divide(np.diff(value), gap, out=slope[:-1], where=gap > 0.0)
+    if time_s[0] > 0.0:  # before its first corner a line stands at its first value
+        time_s, value = np.concatenate(([0.0], time_s)), np.concatenate((value[:1], value))
+        slope = np.concatenate(([0.0], slope))
     return _within(time_s, value, slope, stop_s, step_s)
 
 
@@ -106,7 +110,8 @@ def _within(time_s: FloatArray, value: FloatArray, slope: FloatArray, stop_s: fl
         raise _too_many(len(time_s))
     time_s = snap(time_s, step_s)
     last = np.append(np.diff(time_s) > 0.0, True)
-    time_s, value, slope = time_s[last], value[last], slope[last]
+    if not last.all():
+        time_s, value, slope = time_s[last], value[last], slope[last]
     first = max(int(np.searchsorted(time_s, 0.0, side="right")) - 1, 0)
     stop = int(np.searchsorted(time_s, stop_s, side="right"))
     return Corners(time_s[first:stop], value[first:stop], slope[first:stop])
@@ -114,8 +119,12 @@ def _within(time_s: FloatArray, value: FloatArray, slope: FloatArray, stop_s: fl
 
 def snap(time_s: FloatArray, step_s: float) -> FloatArray:
     """Return the times with those within rounding of a multiple of the step put on it."""
-    grid = np.rint(time_s / step_s) * step_s
-    return np.where(np.abs(time_s - grid) <= 8.0 * np.spacing(np.abs(time_s)), grid, time_s)
+    snapped = np.empty_like(time_s)
+    for low in range(0, len(time_s), CORNERS_TOGETHER):
+        own = time_s[low : low + CORNERS_TOGETHER]
+        grid = np.rint(own / step_s) * step_s
+        snapped[low : low + CORNERS_TOGETHER] = np.where(np.abs(own - grid) <= 8.0 * np.spacing(np.abs(own)), grid, own)
+    return snapped
 
 
 def _too_many(count: float) -> InvalidRequest:

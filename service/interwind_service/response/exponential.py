@@ -119,11 +119,11 @@ class Gramian:
 
     def add(self, level: int, states: FloatArray) -> None:
         """Add pieces of duration span/2^level that start at ``states``, shape (count, n)."""
-        square = states.T @ states
-        if level in self._pieces:
-            self._pieces[level] += square
-        else:
-            self._pieces[level] = square
+        self.add_square(level, states.T @ states)
+
+    def add_square(self, level: int, square: FloatArray) -> None:
+        """Add pieces of duration span/2^level by the sum y y' of their starts, shape (n, n)."""
+        self._pieces[level] = self._pieces.get(level, 0.0) + square
 
     def add_integral(self, integral: FloatArray) -> None:
         """Add ∫ y y' dt of a piece already integrated, shape (n, n)."""

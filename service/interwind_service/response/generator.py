@@ -76,7 +76,7 @@ def _join(sources: Sequence[Sequence[Channel]], further: Sequence[Channel], stop
     """Join the channels of the sources and further ones that no source reads."""
     matrices: list[FloatArray] = []
     states: list[Callable[[FloatArray], FloatArray]] = []
-    events: list[FloatArray] = [np.zeros(0)]
+    events: list[FloatArray] = []
     place: dict[object, slice] = {}
     reads: list[tuple[int, slice, FloatArray]] = []
     size = 0
@@ -88,17 +88,17 @@ def _join(sources: Sequence[Sequence[Channel]], further: Sequence[Channel], stop
                 size = where.stop
                 matrices.append(channel.matrix)
                 states.append(channel.state)
-                events.append(channel.events)
+                events += [channel.events] if len(channel.events) else []
                 if channel.key is not None:
                     place[channel.key] = where
             reads.append((source, where, channel.output))
     U = np.zeros((len(sources) + 1, size))
     for source, where, output in reads:
         U[source, where] += output
-    times = np.sort(np.concatenate(events))
-    times = times[np.diff(times, prepend=-np.inf) > 0.0]
+    times = np.unique(np.concatenate(events)) if len(events) > 1 else np.concatenate([*events, np.zeros(0)])
+    inside = slice(*np.searchsorted(times, (0.0, stop_s), side="right"))
     S = sl.block_diag(*matrices) if matrices else np.zeros((0, 0))
     rates = [np.full(len(matrix), np.abs(np.linalg.eigvals(matrix)).max()) for matrix in matrices]
     rate = np.concatenate(rates) if rates else np.zeros(0)
     unit = place["constant"].start if "constant" in place else -1
-    return Generator(S, U[:-1], rate, times[(times > 0.0) & (times <= stop_s)], tuple(states), unit)
+    return Generator(S, U[:-1], rate, times[inside], tuple(states), unit)

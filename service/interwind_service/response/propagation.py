@@ -2,8 +2,9 @@
 
 y = (x, ξ), x the states of the network, ξ those of its drives. ξ is known beforehand at every instant, so only x is
 carried: over a block without events the samples are one product with the block's observability matrix and the starts of
-all blocks follow from a doubling scan. Blocks with events step through together, one grid step of all of them at a
-time, and a step with events inside takes the exact response between its events. No step error enters at any step size.
+all blocks follow from a doubling scan. Blocks with events on the grid alone are products, too (`KickedBlocks`). The
+others step through together, one grid step of all of them at a time, and a step with events inside takes the exact
+response between its events. No step error enters at any step size.
 
 References: Van Loan 1978 (integrals of the exponential); Hillis & Steele 1986 (the scan).
 """
@@ -20,9 +21,11 @@ from interwind_service import tolerances as tol
 from interwind_service.response.exponential import Gramian, Ladder
 from interwind_service.response.flow import Flow
 from interwind_service.response.generator import Generator
+from interwind_service.response.kicked import KickedBlocks
 
 FloatArray = NDArray[np.float64]
 IntArray = NDArray[np.int64]
+BoolArray = NDArray[np.bool_]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -39,15 +42,21 @@ class EventSteps:
     @classmethod
     def of(cls, events: FloatArray, step_s: float) -> EventSteps:
         """Sort events into the steps of a grid."""
-        nearest = np.rint(events / step_s)
-        on_grid = nearest * step_s == events
-        below = np.floor(events / step_s)
-        below = np.where(below * step_s > events, below - 1.0, below)
-        below = np.where((below + 1.0) * step_s <= events, below + 1.0, below)
-        step = np.where(on_grid, nearest - 1.0, below).astype(np.int64)
+        step, on_grid = np.empty(len(events), dtype=np.int64), np.empty(len(events), dtype=bool)
+        for low in range(0, len(events), tol.CORNERS_TOGETHER):
+            own = slice(low, low + tol.CORNERS_TOGETHER)
+            nearest = np.rint(events[own] / step_s)
+            on_grid[own] = nearest * step_s == events[own]
+            step[own] = nearest - 1.0
+        off = np.flatnonzero(~on_grid)
+        times = events[off]
+        below = np.floor(times / step_s)
+        below = np.where(below * step_s > times, below - 1.0, below)
+        step[off] = np.where((below + 1.0) * step_s <= times, below + 1.0, below)
+        inside = step[off]
         first = np.ones(len(step), dtype=bool)
-        first[1:] = step[1:] != step[:-1]
-        return cls(step[first], step[~on_grid], events[~on_grid])
+        np.greater(step[1:], step[:-1], out=first[1:])
+        return cls(step if first.all() else step[first], inside, times)
 
 
 class Propagation:
@@ -94,7 +103,9 @@ class Propagation:
         self.step_level = step_level
         self.move = self.ladder.transition(step_level).T
         self._block = self.ladder.transition(self._chunk_bits)
+        self._spans = [self.ladder.transition(level)[: self.n, : self.n].T for level in range(self._chunk_bits, -1, -1)]
         self._observe = _observability(readout, self.ladder, step_level, self._block_bits)
+        self._kicked: dict[tuple[int, ...], KickedBlocks] = {}
         self.end = np.concatenate((self._x, generator.state(np.array([first * step_s]))[0]))
         self._seen: list[FloatArray] = [self.end[None]]
 
@@ -106,6 +117,9 @@ class Propagation:
 
     def gramian(self) -> FloatArray:
         """Return ∫ y yᵀ dt over the run, shape (n + g, n + g)."""
+        for kicked in self._kicked.values():
+            self.gram.add_square(self.step_level, kicked.sum_of_squares())
+        self._kicked = {}
         return self.gram.total()
 
     def some_states(self) -> FloatArray:
@@ -120,32 +134,48 @@ class Propagation:
         stop = min(self.last, first + blocks * self.block)
         low, high = np.searchsorted(self.events.steps, (first, stop))
         eventful = self.events.steps[low:high]
-        stepped = np.zeros(blocks, dtype=bool)
-        stepped[(eventful - first) // self.block] = True
+        of_block = (eventful - first) // self.block
+        stepped, kicked = np.zeros(blocks, dtype=bool), np.zeros(blocks, dtype=bool)
+        kicked[of_block] = True
+        low, high = np.searchsorted(self.events.inside_step, (first, stop))
+        stepped[(self.events.inside_step[low:high] - first) // self.block] = True
         stepped[-1] |= stop < first + blocks * self.block
-        walk = _Walk(self, first, stop, np.flatnonzero(stepped), eventful) if stepped.any() else None
+        kicked &= ~stepped
+        kicks = _Kicks(self, first, kicked, eventful[kicked[of_block]]) if kicked.any() else None
+        if kicks is not None and kicks.width * self.block > tol.WIDEST_KICKS * self.size:
+            stepped, kicked, kicks = stepped | kicked, np.zeros(blocks, dtype=bool), None
+        walk = None
+        if stepped.any():
+            walk = _Walk(self, first, stop, np.flatnonzero(stepped), eventful[stepped[of_block]])
 
         n = self.n
         ends = np.empty((blocks + 1, n))
         ends[0] = self._x
         ends[1:] = xi @ self._block[:n, n:].T
+        if kicks is not None:
+            ends[1:][kicked] += kicks.kicks @ kicks.products.ends[:, :n]
         if walk is not None:
             at_rest = np.hstack((np.zeros((len(walk.blocks), n)), xi[walk.blocks]))
             ends[walk.blocks + 1] = walk.go(at_rest)[-1, :, :n]
-        for bit in range(self._chunk_bits + 1):
+        for bit, move in enumerate(self._spans):
             shift = 1 << bit
             if shift > blocks:
                 break
-            ends[shift:] += ends[:-shift] @ self.ladder.transition(self._chunk_bits - bit)[:n, :n].T
+            ends[shift:] += ends[:-shift] @ move
         y = np.hstack((ends[:-1], xi))
         self._seen.append(y[:: max(1, self.steps // (self.block * tol.TESTED_STATES))])
 
-        samples = np.empty((blocks, self.block, len(self.readout)))
-        smooth = np.flatnonzero(~stepped)
-        if smooth.size:
-            own = y if smooth.size == blocks else y[smooth]
+        samples = np.empty((blocks, self.block * len(self.readout)))
+        smooth = ~(stepped | kicked)
+        if smooth.any():
+            own = y if smooth.all() else y[smooth]
             self.gram.add(self._chunk_bits, own)
-            samples[smooth] = (own @ self._observe).reshape(len(smooth), self.block, len(self.readout))
+            samples[smooth] = own @ self._observe
+        if kicks is not None and kicked.all():
+            samples = kicks.products.take(y, kicks.kicks)
+        elif kicks is not None:
+            samples[kicked] = kicks.products.take(y[kicked], kicks.kicks)
+        samples = samples.reshape(blocks, self.block, len(self.readout))
         end_state = np.concatenate((ends[-1], np.zeros(self.size - n)))
         if walk is not None:
             states = walk.go(y[walk.blocks])
@@ -157,6 +187,43 @@ class Propagation:
         end_state[n:] = self.generator.state(np.array([stop * self.step_s]))[0]
         self.end = end_state
         return samples.reshape(blocks * self.block, len(self.readout))[: stop - first]
+
+    def xi_changes(self, steps: IntArray) -> tuple[FloatArray, FloatArray]:
+        """Return ξ before steps (K,), and what it gains on each beyond its own flow, both shape (K, g)."""
+        if len(steps) and steps[-1] - steps[0] + 1 == len(steps):
+            xi = self.generator.state(np.arange(steps[0], steps[-1] + 2) * self.step_s)
+            before, after = xi[:-1], xi[1:]
+        else:
+            before = self.generator.state(steps * self.step_s)
+            after = self.generator.state((steps + 1) * self.step_s)
+        return before, after - before @ self.move[self.n :, self.n :]
+
+    def kicked_blocks(self, columns: tuple[int, ...]) -> KickedBlocks:
+        """Return the products for kicks of some drive states, ``columns`` of ξ."""
+        if columns not in self._kicked:
+            kick = np.hstack((self.jump, np.eye(self.size - self.n)))[list(columns)]
+            self._kicked[columns] = KickedBlocks(self.move, self._observe, kick, self.readout, block=self.block)
+        return self._kicked[columns]
+
+
+class _Kicks:
+    """The kicks of the blocks of a chunk that have events on the grid alone: ``kicks`` (blocks, B q)."""
+
+    def __init__(self, run: Propagation, first: int, kicked: BoolArray, eventful: IntArray) -> None:
+        before, change = run.xi_changes(eventful)
+        columns = [
+            k
+            for k in range(change.shape[1])
+            if np.abs(change[:, k]).max() > tol.KICK_ROUNDING * np.abs(before[:, k]).max()
+        ]
+        self.width, count = len(columns), int(np.count_nonzero(kicked))
+        kicks = change[:, columns]
+        if len(kicks) < run.block * count:
+            every = np.zeros((len(kicked), run.block, self.width))
+            every[(eventful - first) // run.block, (eventful - first) % run.block] = kicks
+            kicks = every[kicked]
+        self.kicks = kicks.reshape(count, run.block * self.width)
+        self.products = run.kicked_blocks(tuple(columns))
 
 
 class _Walk:
@@ -181,14 +248,9 @@ class _Walk:
 
     def _kicks(self, eventful: IntArray, kinked: IntArray) -> FloatArray:
         run, n = self.run, self.run.n
-        if len(eventful) and eventful[-1] - eventful[0] + 1 == len(eventful):
-            xi = run.generator.state(np.arange(eventful[0], eventful[-1] + 2) * run.step_s)
-            before, after = xi[:-1], xi[1:]
-        else:
-            before = run.generator.state(eventful * run.step_s)
-            after = run.generator.state((eventful + 1) * run.step_s)
+        before, change = run.xi_changes(eventful)
         kick = np.zeros((len(eventful), run.size))
-        kick[:, n:] = after - before @ run.move[n:, n:]
+        kick[:, n:] = change
         if run.jumps:
             kick[:, :n] = kick[:, n:] @ run.jump
         if len(kinked):

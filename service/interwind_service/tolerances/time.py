@@ -30,6 +30,10 @@ MOST_BLOCK_BITS = 8
 WALKED_BLOCK_BITS = 5
 # More events than one in so many steps count as dense.
 SPARSE_EVENTS = 256
+# A change of a drive at a grid point below this share of its largest value is rounding.
+KICK_ROUNDING = 1e-15
+# Kicks of a block as numbers a state: more, and stepping through costs less than one product with all of them.
+WIDEST_KICKS = 6
 # Samples computed at once, 4 MB: what one chunk holds is bounded, whatever the length of the run.
 CHUNK_ENTRIES = 2**19
 # Stop over step may miss a whole number by this much: the rounding of decimal times, never a misread grid.
@@ -78,3 +82,5 @@ LARGEST_RATE = 1e30
 LARGEST_EXPONENT = 1e45
 # Corners of one waveform within one run: 4 million take 100 MB and a few seconds.
 MAX_WAVEFORM_CORNERS = 4_000_000
+# Corners worked on at once: a few hundred kilobytes stay in the cache.
+CORNERS_TOGETHER = 2**14
