@@ -41,6 +41,13 @@ def test_step_that_does_not_divide_names_the_two_nearest():
         time_response_switching(chopper(), 1e-4, 3e-6)
 
 
+def test_period_of_more_changes_than_a_call_could_run_through():
+    """190 000 cycles of the gate in one period: refused at once, the shortest one is asked for."""
+    with pytest.raises(iw.InvalidRequest, match="shortest time in which all of them repeat") as refused:
+        periodic_response(chopper(), 1.9, 0.19)
+    assert refused.value.violations[0].field == "period_s"
+
+
 @pytest.mark.parametrize("period_s", [1.5e-5, 0.99e-5, 1e-5 * (1 + 1e-6)])
 def test_period_that_is_none_of_the_drives(period_s):
     with pytest.raises(iw.InvalidRequest, match="'S'") as refused:
@@ -173,17 +180,3 @@ def test_a_ledger_that_does_not_close_is_refused():
     with pytest.raises(iw.AccuracyNotReached) as refused:
         time_response_switching(chopper(), 1e-4, 1e-6, None, None, 1e-18)
     assert refused.value.evidence.energy_error > 1e-18
-
-
-def test_periodic_response_of_a_smooth_law_is_not_offered():
-    network = iw.Network(
-        "g",
-        [
-            iw.VoltageSource("E", "a", "g", iw.Sine(1.0, 50.0)),
-            iw.Diode("D", "a", "b", saturation_current_a=1e-9, thermal_voltage_v=0.03),
-            iw.Resistor("R", "b", "g", 1.0),
-        ],
-    )
-    with pytest.raises(iw.InvalidNetwork, match="'D'") as refused:
-        periodic_response(network, 0.02, 1e-3)
-    assert refused.value.reason == "NOT_OFFERED"

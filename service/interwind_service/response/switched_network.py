@@ -8,7 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import InvalidNetwork
+from interwind.errors import InvalidNetwork, InvalidRequest
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.response.complementarity import consistent_modes
@@ -149,9 +149,15 @@ class SwitchedNetwork:
 def switched_network(
     topology: Topology, stop_s: float, step_s: float, period_s: float | None = None
 ) -> SwitchedNetwork:
-    """Prepare a network for a run over [0, stop]."""
+    """Prepare a network for a run over [0, stop], which for a periodic state is one period."""
     drives = drives_of(topology, stop_s, step_s)
     at = breakpoints(topology, drives, stop_s, step_s)
+    if period_s is not None and len(at) > tol.PERIOD_BREAKPOINTS:
+        raise InvalidRequest.at(
+            "period_s",
+            f"{period_s!r} s holds {len(at)} changes of gates and waveforms; at most {tol.PERIOD_BREAKPOINTS} are "
+            "searched: ask for the shortest time in which all of them repeat",
+        )
     longest = float(np.diff(at).max())
     scale = period_s if period_s is not None else longest
     tableau = tableau_of(topology, drives, ideal_limit_of(topology, scale))

@@ -14,6 +14,7 @@ NEAR_RESONANCE = 3e-3  # |λ - s| span below which drive and mode are joined by 
 RESONANCE_TERMS = 6  # powers of t in that series; the next is 3e-3^6 / 7!
 SAME_INSTANT = 1e-14  # breakpoints closer than this share of the run are one
 MAXIMUM_BREAKPOINTS = 2_000_000  # drive changes in one run; 64 MB of segments
+PERIOD_BREAKPOINTS = 50_000  # the same in one period: a search of ten takes the ten minutes that a call may last
 GUARD_ROUNDING = 1e-12  # a guard above minus this share of its terms holds
 SUM_ROUNDING = 2e-15  # a modal sum below this share of its terms is zero as far as anyone can tell
 EVENT_INTERVAL = 1e-13  # share of its bracket to which an event is located
