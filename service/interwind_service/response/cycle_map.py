@@ -15,21 +15,27 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
+from interwind_service.response.smooth_network import SmoothNetwork
 from interwind_service.response.switched_network import Passage, SwitchedNetwork
 from interwind_service.response.tableau import Mode
 
+ComplexArray = NDArray[np.complex128]
 FloatArray = NDArray[np.float64]
 
 
 @dataclass(slots=True, eq=False)
 class CycleMap:
-    """One period of a switched network as a map of its state; counts the periods it has run."""
+    """One period of a switched network as a map of its state; counts the periods it has run.
 
-    network: SwitchedNetwork
+    ``resolution`` : the distance, over the largest |x|, below which a state and its image count as one.
+    """
+
+    network: SwitchedNetwork | SmoothNetwork
     mode: Mode
     periods: int = 0
     limit: int | None = None
     peak_j: float = 0.0
+    resolution: float = tol.PERIODIC_RESIDUAL
 
     @property
     def spent(self) -> bool:
@@ -86,6 +92,18 @@ class FixedPoint:
         s, Vt = np.linalg.svd(np.eye(len(self.x)) - self.jacobian)[1:]
         return Vt[s <= _kept_above(s)].T
 
+    @property
+    def multipliers(self) -> ComplexArray:
+        """The Floquet multipliers, largest first."""
+        mu = np.linalg.eigvals(self.jacobian).astype(complex) if len(self.x) else np.zeros(0, complex)
+        return mu[np.argsort(-np.abs(mu), kind="stable")]
+
+    @property
+    def uncertainty(self) -> float:
+        """How far the state may lie from the one sought: the residual over the least singular value of I − Φ."""
+        s = np.linalg.svd(np.eye(len(self.x)) - self.jacobian, compute_uv=False)
+        return self.residual / float(np.min(s[s > _kept_above(s)], initial=1.0))
+
 
 def fixed_point(cycle: CycleMap, x: FloatArray, *, affine: bool, warm_up: int, rounds: int) -> FixedPoint:
     """Search P(x) = x from ``x``: ``warm_up`` plain periods, Newton's method, and at most ``rounds`` bursts of periods.
@@ -114,13 +132,13 @@ def fixed_point(cycle: CycleMap, x: FloatArray, *, affine: bool, warm_up: int, r
 def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> FixedPoint:
     end, phi, residual = cycle.with_jacobian(x)
     best = FixedPoint(x, residual, False, phi)
-    partial = False
+    partial, close = False, max(cycle.resolution, tol.PERIODIC_STAGNATION)
     for _ in range(tol.NEWTON_STEPS):
-        if residual <= tol.PERIODIC_RESIDUAL:
+        if residual <= cycle.resolution:
             return FixedPoint(x, residual, True, phi)
         if refusals < 0 or cycle.spent:
             break
-        step = _slow_step(phi, end - x) if partial else _full_step(phi, end - x)
+        step = _slow_step(phi, end - x) if partial else full_step(phi, end - x)
         accepted = False
         factor = 1.0
         for _ in range(tol.LINE_SEARCH_TRIALS):
@@ -137,7 +155,7 @@ def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> 
             if partial:
                 means.append("correction of the slow modes only")
             partial = False
-        elif residual <= tol.PERIODIC_STAGNATION:
+        elif residual <= close:
             return FixedPoint(x, residual, True, phi)
         else:
             refusals -= 1
@@ -148,7 +166,7 @@ def _newton(cycle: CycleMap, x: FloatArray, refusals: int, means: list[str]) -> 
             partial = not partial
         if residual < best.residual:
             best = FixedPoint(x, residual, False, phi)
-    found = best.residual <= tol.PERIODIC_STAGNATION
+    found = best.residual <= close
     return FixedPoint(best.x, best.residual, found, best.jacobian)
 
 
@@ -156,7 +174,7 @@ def _kept_above(singular: FloatArray) -> float:
     return tol.UNDETERMINED_OFFSET * max(1.0, float(singular.max(initial=0.0)))
 
 
-def _full_step(phi: FloatArray, miss: FloatArray) -> FloatArray:
+def full_step(phi: FloatArray, miss: FloatArray) -> FloatArray:
     """Return (I − Φ)⁺ (P(x) − x); singular directions are left as they are."""
     U, s, Vt = np.linalg.svd(np.eye(len(phi)) - phi)
     kept = s > _kept_above(s)

@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind.model import devices as el
+from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
 from interwind_service.response.ideal_limit import IdealLimit
 
@@ -167,6 +168,11 @@ def is_smooth(topology: Topology, branch: int) -> bool:
     """Whether a branch follows a smooth law that no straight pieces make: an exponential diode or an arrester."""
     element = topology.network.elements[topology.element[branch]]
     return isinstance(element, el.Arrester) or (isinstance(element, el.Diode) and element.exponential)
+
+
+def has_smooth(topology: Topology) -> bool:
+    """Whether any branch of a network follows a smooth law."""
+    return any(is_smooth(topology, branch) for branch in topology.of_kind(Kind.DIODE, Kind.ARRESTER).tolist())
 
 
 def device_of(topology: Topology, branch: int, state: int, limit: IdealLimit) -> Device:

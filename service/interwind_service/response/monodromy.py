@@ -31,13 +31,15 @@ def transition(field: Field, drives: Drives, steps: Steps) -> FloatArray:
     """Return ∂x(end)/∂x(start) over these steps, shape (n, n)."""
     n, stages = field.states, len(_NODES)
     phi = np.eye(n)
+    if not n:
+        return phi
     together = max(1, tol.TRANSITION_NUMBERS // max(1, (stages * n) ** 2))
     for first in range(0, len(steps.length_s), together):
         which = np.repeat(np.arange(first, min(first + together, len(steps.length_s))), stages)
         theta = np.tile(_NODES, len(which) // stages)
         w = drives.moved_to(steps.w[which], theta * steps.length_s[which])
         driven = field.drives(w)
-        y = field.consistent(steps.at(which, theta), driven)
+        y = field.consistent(steps.at(which, theta), driven, steps.give)
         J = _reduced(field.jacobian(y, driven, np.zeros_like(driven))[0], n).reshape(-1, stages, n, n)
         h = steps.length_s[which[::stages], None, None, None, None]
         coupled = (h * _WEIGHTS[:, :, None, None] * J[:, None]).swapaxes(2, 3).reshape(len(J), stages * n, stages * n)

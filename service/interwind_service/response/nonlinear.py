@@ -12,8 +12,7 @@ from interwind.model.observables import Observable, StoredEnergy
 from interwind.model.response import EnergyLedger, Event, Initial
 from interwind_service.network.topology import Topology
 from interwind_service.response.device import SaturableBranch, TimedSwitch
-from interwind_service.response.energy import ABSORBED, DISSIPATED, JUMP, SUPPLIED, Energy, power_terms, stored_j
-from interwind_service.response.nonlinear_ledger import energies
+from interwind_service.response.energy import ABSORBED, DISSIPATED, JUMP, SUPPLIED, Energy, stored_j
 from interwind_service.response.readings import Readings, readings_of
 from interwind_service.response.rosenbrock import Effort, Steps
 from interwind_service.response.smooth_network import SmoothNetwork, Stretch, smooth_network
@@ -39,11 +38,16 @@ class Reader:
             if isinstance(item, StoredEnergy) and item.name in branches
         ]
 
-    def values(self, t: FloatArray, y: FloatArray) -> FloatArray:
+    def along(self, steps: Steps, t: FloatArray) -> FloatArray:
+        """Return the observables at instants t (T,) within some steps, shape (T, observables)."""
+        which = np.clip(np.searchsorted(steps.start_s, t, side="right") - 1, 0, len(steps.start_s) - 1)
+        return self.values(t, steps.at(which, (t - steps.start_s[which]) / steps.length_s[which]), steps.give)
+
+    def values(self, t: FloatArray, y: FloatArray, give: FloatArray | None = None) -> FloatArray:
         """Return the observables for unknowns y (T, d) at instants t (T,), shape (T, observables)."""
         w = self.drives.moved_to(self.stretch.w, t - self.stretch.start_s)
         driven = self.field.drives(w)
-        y = self.field.consistent(y, driven)
+        y = self.field.consistent(y, driven, give)
         j, _ = self.field.direct_currents(y, driven)
         sampled = y @ self.rows[0].T + j @ self.rows[1].T + (w @ self.rows[2].T).real + self.readings.rows.offset
         value = self.readings.values(sampled)
@@ -74,13 +78,12 @@ class NonlinearRecord:
                 self.changes.append((stretch.start_s, position, stretch.mode[position]))
         self.stretch, self.mode = stretch, stretch.mode
         self.reader = Reader(self.tableau, self.observables, stretch)
-        self.terms = power_terms(self.tableau, stretch.mode)
         self.undefined[len(self.undefined)] = self.reader.readings
 
     def take(self, steps: Steps) -> None:
         """Sample and book some steps."""
-        total = energies(self.stretch.field, self.tableau.drives, self.terms, steps)
-        account, element = self.terms.account, self.terms.element
+        total = self.stretch.ledger.energies(steps.y0, steps.stages, steps.w, steps.length_s)[0].sum(axis=0)
+        account, element = self.stretch.ledger.terms.account, self.stretch.ledger.terms.element
         for where, own in ((self.heat, account == DISSIPATED), (self.absorbed, account == ABSORBED)):
             np.add.at(where, element[own], total[own])
         self.supplied += float(total[account == SUPPLIED].sum())
@@ -90,14 +93,13 @@ class NonlinearRecord:
         first, last = np.searchsorted(self.time_s, [steps.start_s[0], end])
         if first == last:
             return
-        t = self.time_s[first:last]
-        which = np.searchsorted(steps.start_s, t, side="right") - 1
-        self._put(np.arange(first, last), t, steps.at(which, (t - steps.start_s[which]) / steps.length_s[which]))
+        self._put(np.arange(first, last), self.reader.along(steps, self.time_s[first:last]))
 
     def finish(self, y: FloatArray, effort: Effort) -> None:
         """Put the last sample, at the very end of the run."""
         self.effort = effort
-        self._put(np.array([len(self.time_s) - 1]), np.array([self.stretch.stop_s]), y[None])
+        last = len(self.time_s) - 1
+        self._put(np.array([last]), self.reader.values(self.time_s[last:], y[None]))
 
     def _check(self, steps: Steps) -> None:
         """Take the residual of the algebraic equations at the ends of the steps, |f| over |∂f/∂q| |q|."""
@@ -110,8 +112,7 @@ class NonlinearRecord:
         size = (1.0 + field.wave_slopes(steps.y1, driven)) * np.abs(steps.y1[:, field.states :]).max()
         self.residual = max(self.residual, float((gap / np.where(size > 0.0, size, 1.0)).max()))
 
-    def _put(self, own: NDArray[np.int64], t: FloatArray, y: FloatArray) -> None:
-        value = self.reader.values(t, y)
+    def _put(self, own: NDArray[np.int64], value: FloatArray) -> None:
         value[:, self.reader.readings.undefined] = np.nan
         self.samples[own] = value
 

@@ -120,27 +120,32 @@ class Field:
         j, _ = self.direct.currents(argument)
         return self.rho * self.waves.currents(wave + j @ self.wave_j.T)[1]
 
-    def consistent(self, u: FloatArray, driven: FloatArray) -> FloatArray:
-        """Return u (..., d) with waves that meet the algebraic equations: Newton's method with halving.
+    def consistent(self, u: FloatArray, driven: FloatArray, give: FloatArray | None = None) -> FloatArray:
+        """Return u (..., d) that meets the algebraic equations: Newton's method with halving.
 
-        The direct currents do not feel the waves, so the Jacobian is a constant minus ρ di/dv times a constant.
+        The correction is the least one counted in ``give`` (d,): how far each unknown may move. None lets the waves
+        alone move. Where a diode blocks in series with an inductor, its voltage hangs on the last digits of the
+        current, and it is the current that has to yield.
         """
         if self.states == self.size:
             return u
+        give = self.mass == 0.0 if give is None else give
         own = slice(self.states, self.size)
-        constant, argument = self.linear_u[own, own], self.linear_u[self.size + len(self.direct.branch) :, own]
-        u = u.copy()
+        u, still = u.copy(), np.zeros_like(driven)
         gap = self.value(u, driven)[..., own]
         for _ in range(tol.WAVE_STEPS):
             size = np.abs(gap).max(axis=-1, keepdims=True)
             wrong = size > tol.WAVE_RESIDUAL * np.maximum(1.0, np.abs(u[..., own]).max(axis=-1, keepdims=True))
             if not wrong.any():
                 break
-            J = constant - self.wave_slopes(u, driven)[..., :, None] * argument
-            step = np.where(wrong, np.linalg.solve(J, gap[..., None])[..., 0], 0.0)
-            before = u[..., own].copy()
+            rows = self.jacobian(u, driven, still)[0][..., own, :] * give
+            norm = np.linalg.norm(rows, axis=-1, keepdims=True)
+            rows /= norm
+            along = np.linalg.solve(rows @ rows.swapaxes(-1, -2), (gap / norm[..., 0])[..., None])
+            step = np.where(wrong, give * (rows.swapaxes(-1, -2) @ along)[..., 0], 0.0)
+            before = u.copy()
             for _ in range(tol.WAVE_HALVINGS):
-                u[..., own] = before - step
+                u = before - step
                 gap = self.value(u, driven)[..., own]
                 worse = np.abs(gap).max(axis=-1, keepdims=True) > size
                 if not worse.any():

@@ -38,8 +38,7 @@ class NonlinearFigures:
         )
 
         def evaluate(t: FloatArray) -> FloatArray:
-            which = np.clip(np.searchsorted(steps.start_s, t, side="right") - 1, 0, len(steps.start_s) - 1)
-            return reader.values(t, steps.at(which, (t - steps.start_s[which]) / steps.length_s[which]))
+            return reader.along(steps, t)
 
         t, weight = gauss_points(edges)
         value = evaluate(t)

@@ -18,6 +18,7 @@ from interwind.errors import AccuracyNotReached
 from interwind_service import tolerances as tol
 from interwind_service.response.drives import Drives
 from interwind_service.response.nonlinear_field import Field
+from interwind_service.response.nonlinear_ledger import Ledger
 from interwind_service.response.tableaux import C_TIME, D_TIME, GAMMA, A, C, H
 
 FloatArray = NDArray[np.float64]
@@ -28,7 +29,10 @@ _LAST = len(C_TIME) - 1
 
 @dataclass(slots=True, eq=False)
 class Steps:
-    """Accepted steps: start, length, y at start and end (S, d), stages u (S, 6, d), drives at the start (S, k)."""
+    """Accepted steps: start, length, y at start and end (S, d), stages u (S, 6, d), drives at the start (S, k).
+
+    ``give`` (d,): how far the unknowns may move to meet the algebraic equations between the ends.
+    """
 
     start_s: FloatArray
     length_s: FloatArray
@@ -36,6 +40,7 @@ class Steps:
     y1: FloatArray
     stages: FloatArray
     w: ComplexArray
+    give: FloatArray
 
     def at(self, which: NDArray[np.int64], theta: FloatArray) -> FloatArray:
         """Return y at the shares ``theta`` (T,) of the steps ``which`` (T,), by the dense output, shape (T, d)."""
@@ -48,11 +53,16 @@ class Steps:
 
 @dataclass(slots=True, eq=False)
 class Effort:
-    """How hard it was: accepted and rejected steps, the largest |x| so far, and the next step to try, s."""
+    """How hard it was: accepted and rejected steps; the largest |x|, the largest wave and the energy that went through
+    branches so far, which errors count against, or ``energy_j`` in its place; and the next step to try, s.
+    """
 
     accepted: int = 0
     rejected: int = 0
     size: float = 0.0
+    swing: float = 0.0
+    through_j: float = 0.0
+    energy_j: float = 0.0
     step_s: float = 0.0
 
 
@@ -66,8 +76,12 @@ def integrate(
     tolerance: float,
     effort: Effort,
     sink: Callable[[Steps], None],
+    ledger: Ledger,
 ) -> FloatArray:
     """Integrate from ``start_s`` to ``stop_s`` and hand on the steps in blocks; return y at the stop.
+
+    Where there are algebraic unknowns the powers hang on them and the states need not, so a step keeps the energy of
+    every branch to the tolerance as well.
 
     Raises
     ------
@@ -78,7 +92,7 @@ def integrate(
     kept: list[tuple[float, float, FloatArray, FloatArray, FloatArray, ComplexArray]] = []
     grown, previous_error, previous_h = False, tol.FIRST_ERROR, h
     J, f_t, driven, W = None, None, field.drives(w), drives.W
-    diagonal = np.arange(len(y))
+    diagonal, give = np.arange(len(y)), np.ones(len(y))
     while now < stop_s:
         last = now + h >= stop_s * (1.0 - tol.TIME_ROUNDING)
         if last:
@@ -110,14 +124,24 @@ def integrate(
         error = float(np.linalg.norm(stages[_LAST, :states])) / (tolerance * size) if size > 0.0 else 0.0
         if not np.isfinite(error):
             error = tol.OVERFLOWN_ERROR
+        if error <= 1.0 and states < len(y):  # what is left of the algebraic equations would be an error next
+            swing = max(effort.swing, float(np.abs(y1[states:]).max()))
+            give[:states], give[states:] = tolerance * size, tol.WAVE_GIVE * swing
+            stepped, y1 = y1, field.consistent(y1, along[_LAST], give)
+            if size > 0.0:
+                error = max(error, float(np.linalg.norm(y1[:states] - stepped[:states])) / (tolerance * size))
+            gone, missed = ledger.energies(y[None], stages[None], w[None], np.array([h]))
+            through = float(np.abs(gone).max())
+            scale = tolerance * (effort.energy_j or max(0.5 * size**2, effort.through_j + through))
+            error = max(error, float(np.abs(missed).max()) / scale) if scale > 0.0 else error
         factor = min(tol.STEP_SHRINK, max(tol.STEP_GROWTH, (error**0.25) / tol.STEP_SAFETY))
         if error <= 1.0:
             if effort.accepted and error > 0.0:  # predictive control (Gustafsson 1994)
                 predicted = (previous_h / h) * (error**2 / previous_error) ** 0.25 / tol.STEP_SAFETY
                 factor = max(factor, min(tol.STEP_SHRINK, max(tol.STEP_GROWTH, predicted)))
             previous_error, previous_h = max(tol.FIRST_ERROR, error), h
-            if states < len(y):  # what the stages leave of the algebraic equations would be taken for an error next
-                y1 = field.consistent(y1, along[_LAST])
+            if states < len(y):
+                effort.swing, effort.through_j = swing, effort.through_j + through
             kept.append((now, h, y, y1, stages, w))
             effort.accepted += 1
             effort.size = size
@@ -126,7 +150,7 @@ def integrate(
             driven = along[_LAST]
             J = None
             if len(kept) == tol.STEPS_TOGETHER:
-                sink(_stack(kept))
+                sink(_stack(kept, give.copy()))
                 kept = []
             following = h / factor
             if grown:
@@ -138,10 +162,12 @@ def integrate(
             effort.rejected += 1
             h, grown = h / factor, True
     if kept:
-        sink(_stack(kept))
+        sink(_stack(kept, give.copy()))
     return y
 
 
-def _stack(kept: list[tuple[float, float, FloatArray, FloatArray, FloatArray, ComplexArray]]) -> Steps:
+def _stack(
+    kept: list[tuple[float, float, FloatArray, FloatArray, FloatArray, ComplexArray]], give: FloatArray
+) -> Steps:
     start, length, y0, y1, stages, w = zip(*kept, strict=True)
-    return Steps(np.array(start), np.array(length), np.array(y0), np.array(y1), np.array(stages), np.array(w))
+    return Steps(np.array(start), np.array(length), np.array(y0), np.array(y1), np.array(stages), np.array(w), give)

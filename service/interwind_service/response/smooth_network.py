@@ -11,11 +11,13 @@ from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
-from interwind_service.response.device import LinearDiode, TimedSwitch
+from interwind_service.response.device import LinearDiode
 from interwind_service.response.drives import Drives
+from interwind_service.response.energy import power_terms
 from interwind_service.response.monodromy import transition
 from interwind_service.response.nonlinear_field import Field, field_of
 from interwind_service.response.nonlinear_laws import Laws, laws_of
+from interwind_service.response.nonlinear_ledger import Ledger
 from interwind_service.response.rosenbrock import Effort, Steps, integrate
 from interwind_service.response.switched_network import Passage, SwitchedNetwork, switched_network
 from interwind_service.response.tableau import Mode, Tableau
@@ -26,9 +28,10 @@ ComplexArray = NDArray[np.complex128]
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Stretch:
-    """An interval without a change of drives or switches: its field, and the drives w at its start."""
+    """An interval without a change of drives or switches: its field and powers, and the drives w at its start."""
 
     field: Field
+    ledger: Ledger
     mode: Mode
     start_s: float
     stop_s: float
@@ -50,12 +53,18 @@ class StepRecord(Protocol):
 
 @dataclass(slots=True, eq=False)
 class SmoothNetwork:
-    """A prepared network with its laws; each step keeps its local error to ``tolerance``."""
+    """A prepared network with its laws; each step keeps its local error to ``tolerance`` of ``size``.
+
+    ``size`` the largest |x| met in any run so far and ``energy_j`` what went through branches in the last one are what
+    errors count against.
+    """
 
     switched: SwitchedNetwork
     laws: Laws
     tolerance: float
-    fields: dict[Mode, Field] = field(default_factory=dict)
+    size: float = 0.0
+    energy_j: float = 0.0
+    fields: dict[Mode, tuple[Field, Ledger]] = field(default_factory=dict)
 
     @property
     def tableau(self) -> Tableau:
@@ -69,10 +78,7 @@ class SmoothNetwork:
 
     def start_mode(self, x: FloatArray) -> Mode:
         """Return open switches and conducting diodes: a law has no modes, and books as heat what its slope takes."""
-        return tuple(
-            1 if isinstance(device, LinearDiode) else own
-            for device, own in zip(self.tableau.devices, self.switched.start_mode(x), strict=True)
-        )
+        return tuple(int(isinstance(device, LinearDiode)) for device in self.tableau.devices)
 
     def run(
         self,
@@ -85,17 +91,19 @@ class SmoothNetwork:
     ) -> Passage:
         """Run from x over all stretches; with ``monodromy`` also Φ = ∂x(end)/∂x(start)."""
         passage = Passage(x, mode, np.eye(len(x)) if monodromy else None, 0.5 * float(x @ x))
-        effort, drives, at = Effort(size=float(np.linalg.norm(x))), self.tableau.drives, self.breakpoint_s
+        effort = Effort(size=max(self.size, float(np.linalg.norm(x))), energy_j=self.energy_j)
+        drives, at = self.tableau.drives, self.breakpoint_s
         for k in range(len(at) - 1):
             start, stop = float(at[k]), float(at[k + 1])
             inside = 0.5 * (start + stop)
             w = drives.moved(drives.state(inside), start - inside)
             passage.mode = self.switched.mode_at(passage.mode, start, stop)
-            own = self.field(passage.mode)
+            own, ledger = self.equations(passage.mode)
             if record is not None:
-                record.begin(Stretch(own, passage.mode, start, stop, w))
+                record.begin(Stretch(own, ledger, passage.mode, start, stop, w))
             y = own.consistent(np.concatenate([passage.x, np.zeros(own.size - own.states)]), own.drives(w))
             effort.size = max(effort.size, tol.SIZE_FLOOR * _expected_size(own, drives, w, stop - start))
+            effort.swing = max(effort.swing, float(np.abs(y[own.states :]).max(initial=0.0)))
             effort.step_s = tol.FIRST_STEP * (stop - start)
 
             def take(steps: Steps, own: Field = own) -> None:
@@ -106,25 +114,25 @@ class SmoothNetwork:
                 energy_j = 0.5 * float((steps.y1[:, : own.states] ** 2).sum(axis=1).max())
                 passage.peak_j = max(passage.peak_j, energy_j)
 
-            y = integrate(own, drives, y, w, start, stop, self.tolerance, effort, take)
+            y = integrate(own, drives, y, w, start, stop, self.tolerance, effort, take, ledger)
             passage.x = y[: own.states]
             if progress is not None:
                 progress(k + 1, len(at) - 1)
+        self.size, self.energy_j = effort.size, effort.through_j
         if record is not None:
             record.finish(y, effort)
         return passage
 
-    def field(self, mode: Mode) -> Field:
-        """Return the equations while the switches stand in these modes."""
-        key = tuple(
-            own if isinstance(device, TimedSwitch) else 0
-            for device, own in zip(self.tableau.devices, mode, strict=True)
-        )
-        if key not in self.fields:
+    def equations(self, mode: Mode) -> tuple[Field, Ledger]:
+        """Return the equations and the powers while the switches stand in these modes."""
+        found = self.fields.get(mode)
+        if found is None:
             if len(self.fields) >= tol.PIECES_KEPT:
                 self.fields.pop(next(iter(self.fields)))
-            self.fields[key] = field_of(self.tableau, key, self.laws)
-        return self.fields[key]
+            own = field_of(self.tableau, mode, self.laws)
+            found = own, Ledger(own, self.tableau.drives, power_terms(self.tableau, mode))
+            self.fields[mode] = found
+        return found
 
 
 def smooth_network(

@@ -14,11 +14,10 @@ from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.response import EnergyLedger, Event, Initial, TimeResponse
 from interwind_service import tolerances as tol
-from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
 from interwind_service.response.admit import admit
 from interwind_service.response.cautions import cautions_of
-from interwind_service.response.device import is_smooth
+from interwind_service.response.device import has_smooth
 from interwind_service.response.energy import Energy, energy_of
 from interwind_service.response.nonlinear import NonlinearRun
 from interwind_service.response.observe import resolve
@@ -61,7 +60,7 @@ def time_response_switching(
     time_s = step_s * np.arange(steps_of(stop_s, step_s) + 1)
     topology = admit(network)
     observables = resolve(topology, observe)
-    if any(is_smooth(topology, int(k)) for k in topology.of_kind(Kind.DIODE, Kind.ARRESTER)):
+    if has_smooth(topology):
         return _with_smooth_laws(topology, time_s, observables, initial, tolerance, sink, progress)
     prepared = switched_network(topology, float(time_s[-1]), step_s)
     x = start_state(prepared, initial)
