@@ -11,9 +11,9 @@ from interwind.model.network import Network
 from interwind.model.windings import WindingSet
 from interwind_service.network.elimination import eliminate
 from interwind_service.network.topology import number
+from interwind_service.network.winding_coordinates import all_coordinates
 from interwind_service.response.reduction import StateBasis, reduce
 from interwind_service.response.roles import roles_of
-from interwind_service.response.spectrum import all_coordinates
 from interwind_service.response.storage import storage_of
 
 

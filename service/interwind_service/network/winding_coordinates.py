@@ -19,6 +19,7 @@ from scipy.linalg import lapack
 
 from interwind_service import tolerances as tol
 from interwind_service.network.groups import WindingGroup
+from interwind_service.network.topology import Topology
 
 FloatArray = NDArray[np.float64]
 
@@ -52,6 +53,11 @@ class WindingCoordinates:
         if self.scale is None:
             return self.N.T @ resistance_ohm @ self.N
         return self.scale[:, None] * resistance_ohm * self.scale
+
+
+def all_coordinates(topology: Topology) -> tuple[WindingCoordinates, ...]:
+    """Return the coordinates of every winding group of a network."""
+    return tuple(winding_coordinates(group) for group in topology.groups)
 
 
 def winding_coordinates(group: WindingGroup) -> WindingCoordinates:

@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
-from interwind_service.network.winding_coordinates import WindingCoordinates
+from interwind_service.network.winding_coordinates import WindingCoordinates, all_coordinates
 from interwind_service.response.frequency_tree import Drive
 from interwind_service.response.phasors import State, TreeState
 from interwind_service.response.sparse_nodal import (
@@ -25,7 +25,7 @@ from interwind_service.response.sparse_nodal import (
     nodal_suspects,
     nodal_terminal,
 )
-from interwind_service.response.spectrum import Band, all_coordinates, bands, solve_band, terminal_rows
+from interwind_service.response.spectrum import Band, bands, solve_band, terminal_rows
 from interwind_service.response.sweep import SweptBand, sweep
 from interwind_service.response.swept_state import Comparison, SweptState, compare
 from interwind_service.response.undetermined import suspects

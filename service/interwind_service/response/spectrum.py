@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from interwind.errors import InvalidNetwork
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
-from interwind_service.network.winding_coordinates import WindingCoordinates, winding_coordinates
+from interwind_service.network.winding_coordinates import WindingCoordinates, all_coordinates
 from interwind_service.response.factor import solve
 from interwind_service.response.frequency_tree import Drive, FrequencyTree, frequency_tree
 from interwind_service.response.roles import roles_of
@@ -53,11 +53,6 @@ def checked_frequencies(frequency_hz: object) -> FloatArray:
             f"{float(f[k])!r} Hz found; 0 or {tol.LEAST_FREQUENCY_HZ:g} to {tol.LARGEST_FREQUENCY_HZ:g} Hz is expected",
         )
     return f
-
-
-def all_coordinates(topology: Topology) -> tuple[WindingCoordinates, ...]:
-    """Return the coordinates of every winding group."""
-    return tuple(winding_coordinates(group) for group in topology.groups)
 
 
 def spectrum(topology: Topology, frequency_hz: FloatArray, drives: tuple[Drive, ...]) -> Iterator[Band]:

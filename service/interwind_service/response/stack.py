@@ -20,12 +20,13 @@ from interwind.model.observables import Observable
 from interwind.model.vary import Column
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
+from interwind_service.network.winding_coordinates import all_coordinates
 from interwind_service.response.admit import admit
 from interwind_service.response.factor import equilibrate
 from interwind_service.response.frequency import drives_of
 from interwind_service.response.frequency_tree import FrequencyTree
 from interwind_service.response.observe import resolve
-from interwind_service.response.spectrum import all_coordinates, bands, checked_frequencies
+from interwind_service.response.spectrum import bands, checked_frequencies
 from interwind_service.response.stack_writer import StackWriter
 from interwind_service.response.straight_line import elimination_order
 from interwind_service.response.tape import Program

@@ -20,11 +20,11 @@ from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
+from interwind_service.network.winding_coordinates import all_coordinates
 from interwind_service.response.reduction import StateBasis, reduce
 from interwind_service.response.resolvent import Resolvent, resolvent
 from interwind_service.response.roles import roles_of
 from interwind_service.response.shifted_schur import ShiftedSchur, shifted_schur
-from interwind_service.response.spectrum import all_coordinates
 from interwind_service.response.storage import storage_of
 
 FloatArray = NDArray[np.float64]

@@ -9,11 +9,11 @@ import numpy as np
 from interwind.errors import AccuracyNotReached
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
+from interwind_service.network.winding_coordinates import all_coordinates
 from interwind_service.response.descriptor import descriptor_basis
 from interwind_service.response.reduction import reduce
 from interwind_service.response.resolvent import Resolvent, resolvent
 from interwind_service.response.roles import roles_of
-from interwind_service.response.spectrum import all_coordinates
 from interwind_service.response.state_space import StateSpace, state_space
 from interwind_service.response.storage import storage_of
 
