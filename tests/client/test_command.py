@@ -60,12 +60,18 @@ def run(address, tmp_path, capsys):
     return run
 
 
-def closed_form(frequency_hz: float) -> tuple[complex, complex]:
-    """Two coupled windings, a load and a source of 1 V: output voltage and rail current by hand (derived)."""
+def mesh_currents(frequency_hz: float) -> tuple[complex, complex]:
+    """Two coupled windings, a load and a source of 1 V: the currents of both windings by hand (derived)."""
     w = 2j * np.pi * frequency_hz
     m, l1, l2, r1, r2, load = 0.23e-3, 1.0e-3, 60e-6, 0.6, 0.03, 50.0
-    _, i2 = np.linalg.solve([[r1 + w * l1, w * m], [w * m, r2 + w * l2 + load]], [1.0, 0.0])
-    return -load * i2, i2
+    i1, i2 = np.linalg.solve([[r1 + w * l1, w * m], [w * m, r2 + w * l2 + load]], [1.0, 0.0])
+    return i1, i2
+
+
+def closed_form(frequency_hz: float) -> tuple[complex, complex]:
+    """Output voltage and rail current."""
+    _, i2 = mesh_currents(frequency_hz)
+    return -50.0 * i2, i2
 
 
 def test_check_prints_the_verdict(run):
@@ -147,6 +153,56 @@ def test_repair_prints_every_change(run):
     status, out, _ = run("repair", {"windings": {"labels": ["a", "b", "c"], "coupling_form": form}})
     assert 0 == status
     assert any(line.startswith("changes[0].after ") for line in out.splitlines())
+
+
+def test_identify_prints_the_set_that_was_read(run):
+    """Two open readings and a short: k = sqrt(1 - 0.3 mH / 1 mH) (derived)."""
+    readings = [
+        {"open_inductance": {"winding": "drive", "inductance_h": 1e-3, "uncertainty_h": 1e-6}},
+        {"open_inductance": {"winding": "rail", "inductance_h": 60e-6, "uncertainty_h": 1e-7}},
+        {"shorted_inductance": {"winding": "drive", "shorted": ["rail"], "inductance_h": 3e-4, "uncertainty_h": 1e-6}},
+    ]
+    status, out, _ = run("identify", {"labels": ["drive", "rail"], "readings": readings})
+    (row,) = (line for line in out.splitlines() if line.startswith("windings.coupling[0] "))
+    assert 0 == status
+    assert [1.0, np.sqrt(0.7)] == pytest.approx([float(word) for word in row.split()[1:]], rel=1e-9)
+
+
+def test_characterize_prints_the_leakages(run):
+    """Leakage of the driven winding with the other shorted: L1 - M² / L2 (derived)."""
+    status, out, _ = run("characterize", {"windings": SET})
+    (row,) = (line for line in out.splitlines() if line.startswith("leakage_h[0] "))
+    assert 0 == status
+    assert 1.0e-3 - 0.23e-3**2 / 60e-6 == pytest.approx(float(row.split()[2]), rel=1e-9)
+
+
+def test_poles_are_a_table(run):
+    """A row a pole, slowest first: the roots of det(R + s L) = 0 for the two meshes (derived)."""
+    l1, l2, m, r1, r2 = 1.0e-3, 60e-6, 0.23e-3, 0.6, 0.03 + 50.0
+    status, out, _ = run("poles", {"network": NETWORK, "observe": OBSERVE})
+    heading, *rows = csv.reader(io.StringIO(out))
+    found = [float(row[heading.index("pole_per_s real")]) for row in rows]
+    assert 0 == status
+    assert {"residue node_voltage out real", "participation T1 rail"} <= set(heading)
+    assert np.roots([l1 * l2 - m * m, l1 * r2 + l2 * r1, r1 * r2])[::-1] == pytest.approx(found, rel=1e-9)
+
+
+def test_what_is_read_off_the_ports_is_a_table(run):
+    """A column a figure; the impedance at the one port is the meshes' own, by both commands."""
+    passive = {"reference": "chassis", "elements": ELEMENTS[:2], "ports": [{"name": "p", "a": "in", "b": "chassis"}]}
+    request = {"network": passive, "frequency_hz": SWEEP["frequency_hz"]}
+    wanted = [1.0 / mesh_currents(frequency_hz)[0] for frequency_hz in (1e3, 1e5)]
+    figures = [{"input_impedance": {"a": "p"}}, {"scattering": {"measured": {"a": "p"}, "driven": {"a": "p"}}}]
+    for command, more, column in (
+        ("ports", {}, "impedance_ohm p p"),
+        ("port-figures", {"figures": figures}, "input_impedance p"),
+    ):
+        status, out, _ = run(command, request | more)
+        rows = list(csv.DictReader(io.StringIO(out)))
+        assert 0 == status
+        assert "scattering p p real" in rows[0]
+        read = [complex(float(row[f"{column} real"]), float(row[f"{column} imag"])) for row in rows]
+        assert wanted == pytest.approx(read, rel=1e-9)
 
 
 def test_cautions_go_to_standard_error(run):

@@ -11,8 +11,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind.codec.observable import observable_heading
+from interwind.codec.port_figures import figure_heading
 from interwind.model.batch import BatchResult
 from interwind.model.finding import Caution, Evidence, Finding
+from interwind.model.poles import PoleReport
+from interwind.model.port_figures import PortFigures
 from interwind.model.response import PortResponse
 
 Columns = dict[str, NDArray[Any]]
@@ -34,6 +37,14 @@ def columns_of(answer: Any) -> Columns:
             for row, into in enumerate(answer.ports):
                 for column, driven in enumerate(answer.ports):
                     columns[f"{name} {into} {driven}"] = matrix[:, row, column]
+    elif isinstance(answer, PortFigures):
+        columns |= {figure_heading(figure): answer[figure] for figure in answer.figures}
+    elif isinstance(answer, PoleReport):
+        columns |= {"pole_per_s": answer.pole_per_s, "quality_factor": answer.quality_factor}
+        for column, observable in enumerate(answer.observables):
+            columns[f"residue {observable_heading(observable)}"] = answer.residue[:, column]
+        for column, name_and_label in enumerate(answer.participants):
+            columns[" ".join(("participation", *filter(None, name_and_label)))] = answer.participation[:, column]
     else:
         columns |= {observable_heading(observable): answer[observable] for observable in answer}
     return columns

@@ -29,7 +29,12 @@ HEALTH_TIMEOUT_S = 5.0
 REQUESTS = {
     "check": ("check", "say whether windings can exist, and which entry is to blame when they cannot"),
     "repair": ("repair", "mend a set of windings with the least harm"),
+    "identify": ("identify", "find the windings that bench readings support best"),
+    "characterize": ("characterize", "show leakages, modes and equivalent circuits of windings"),
     "frequency": ("frequency_response", "solve a network over frequency"),
+    "poles": ("poles", "find the natural modes of a network"),
+    "ports": ("port_response", "show impedance, admittance and scattering of a network's ports over frequency"),
+    "port-figures": ("port_figures", "show what is read off the ports over frequency: losses, transfers, links"),
     "time": ("time_response", "solve a network over time"),
     "periodic": ("periodic_response", "find the periodic steady state of a network"),
     "batch": ("submit_batch", "compute many variants of one network and wait for all of them"),

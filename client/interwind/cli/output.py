@@ -19,7 +19,9 @@ from interwind.errors import InvalidRequest
 
 ENDINGS = (".npz", ".csv", ".json")
 # Fields that the columns of an answer show already.
-BEHIND_COLUMNS = ("samples", "observables", *MATRICES, "points", "table")
+BEHIND_COLUMNS = (
+    "samples", "observables", "figures", *MATRICES, "residue", "participants", "participation", "points", "table",
+)  # fmt: skip
 
 
 def write(answer: Any, output: str | None, *, as_json: bool) -> None:

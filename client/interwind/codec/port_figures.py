@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
+from dataclasses import fields
 from typing import Any
 
 from interwind.codec.array import array_from_message, array_to_message
@@ -74,6 +75,25 @@ def port_figures_from_message(message: pb2.ComputePortFiguresResponse) -> model.
         samples,
         **noticed_from_message(message),
     )
+
+
+def figure_heading(figure: model.PortFigure) -> str:
+    """Spell a figure as a column heading: ``scattering p2 p1``, ``insertion_loss differential p1 p2 p3 50 50``."""
+    return " ".join([_KINDS[type(figure)], *_words(figure)])
+
+
+def _words(value: Any) -> Iterator[str]:
+    if isinstance(value, str):
+        yield value
+    elif isinstance(value, tuple):
+        yield ",".join(value)
+    elif isinstance(value, float | int):
+        yield f"{value:g}"
+    else:
+        if isinstance(value, model.Differential | model.Common):
+            yield type(value).__name__.lower()
+        for field in fields(value):
+            yield from _words(getattr(value, field.name))
 
 
 def _figure_to_message(figure: Any) -> pb2.PortFigure:
