@@ -4,8 +4,10 @@ from __future__ import annotations
 
 import datetime
 import ipaddress
+import re
 import ssl
 import urllib.request
+from collections import Counter
 from collections.abc import Iterator
 from pathlib import Path
 
@@ -158,7 +160,9 @@ def test_tokens_open_the_door_and_stay_out_of_the_log(guarded):
 
     wait_until(lambda: len(callers()) == 2, 2)
     assert all(caller.startswith("token-") for caller in callers())
-    assert "first-token" not in guarded.log_text()
+    refused = [line["reason"] for line in guarded.log() if line["event"] == "call_refused"]
+    assert {"UNAUTHENTICATED": 1, "UNKNOWN_TOKEN": 2} == Counter(refused[-3:])  # whoever tries doors is seen
+    assert not {"first-token", "third-token"} & set(re.findall(r"[\w-]+", guarded.log_text()))
 
 
 def test_token_file_is_read_again(guarded, token_file):

@@ -143,9 +143,22 @@ def test_check_config_reads_the_files_it_names(tmp_path):
     for arguments, named in (
         (["--token-file", str(tokens)], "0600"),
         (["--tls-cert", str(tmp_path / "none.pem"), "--tls-key", str(tmp_path / "none.key")], "No such file"),
+        (["--tls-cert", str(tokens), "--tls-key", str(tokens)], "no pair"),
+        (["--state-dir", str(tokens / "below")], "no folder"),
+        (["--spool-dir", str(tokens)], "no folder"),
     ):
         answer = command("--check-config", *arguments)
         assert (answer.returncode, named in answer.stderr, "secret" in answer.stderr) == (2, True, False)
+
+
+def test_tokens_handed_over_by_the_supervisor_are_taken_as_they_are(tmp_path):
+    """An access list for the service shows as a group's right; a copy in the supervisor's folder is not refused."""
+    tokens = tmp_path / "tokens"
+    tokens.write_text("secret\n")
+    tokens.chmod(0o440)
+    arguments = ("--check-config", "--token-file", str(tokens))
+    assert 0 == command(*arguments, CREDENTIALS_DIRECTORY=str(tmp_path)).returncode
+    assert 2 == command(*arguments, CREDENTIALS_DIRECTORY=str(tmp_path / "other")).returncode
 
 
 def test_spool_of_a_dead_server_is_cleared_away_and_that_of_a_living_one_kept(tmp_path):

@@ -4,8 +4,10 @@ from __future__ import annotations
 
 import hashlib
 import hmac
+import os
 import stat
 import time
+from collections import Counter
 from collections.abc import Awaitable, Callable
 from pathlib import Path
 from typing import Any
@@ -16,10 +18,15 @@ from google.rpc import status_pb2
 from interwind.codec.errors import to_status
 from interwind.errors import Unauthenticated
 from interwind_service.server.boundary import refuse
+from interwind_service.server.logs import emit
 from interwind_service.server.settings import SettingsError
 from interwind_service.tolerances import TOKEN_RELOAD_INTERVAL_S
 
 OPEN_SERVICES = ("/grpc.health.v1.Health/",)  # probes carry no token, and learn nothing but whether we serve
+
+
+NO_TOKEN = Unauthenticated("no token found; send the metadata authorization: Bearer TOKEN")
+UNKNOWN_TOKEN = Unauthenticated("the token is not known here; ask the operator for one", reason="UNKNOWN_TOKEN")
 
 
 class Tokens:
@@ -55,7 +62,7 @@ class Tokens:
             status = self._path.stat()
             if status.st_mtime_ns == self._stamp:
                 return
-            if stat.S_IMODE(status.st_mode) & 0o077:
+            if stat.S_IMODE(status.st_mode) & 0o077 and not self._handed_over():
                 raise SettingsError(f"--token-file: {self._path} may be read by others; set its mode to 0600")
             lines = self._path.read_text().split()
         except (OSError, UnicodeDecodeError) as error:
@@ -64,12 +71,21 @@ class Tokens:
             raise SettingsError(f"--token-file: {self._path} is empty; write one token a line")
         self._hashes, self._stamp = tuple(_digest(line) for line in lines), status.st_mtime_ns
 
+    def _handed_over(self) -> bool:
+        """Say whether the supervisor made this copy for the service alone; its mode bits then show an access list."""
+        folder = os.environ.get("CREDENTIALS_DIRECTORY")
+        return bool(folder) and self._path.is_relative_to(Path(folder or ""))
+
 
 class TokenGate(grpc.aio.ServerInterceptor):  # type: ignore[misc]
-    """Turns away whoever carries no known token; the refusal is declared to take a stream, so no body is read."""
+    """Turns away whoever carries no known token; the refusal is declared to take a stream, so no body is read.
 
-    def __init__(self, tokens: Tokens) -> None:
+    ``refused`` counts them by reason.
+    """
+
+    def __init__(self, tokens: Tokens, refused: Counter[str]) -> None:
         self._tokens = tokens
+        self._refused = refused
 
     async def intercept_service(
         self, continuation: Callable[[Any], Awaitable[Any]], handler_call_details: Any
@@ -80,20 +96,15 @@ class TokenGate(grpc.aio.ServerInterceptor):  # type: ignore[misc]
         token = bearer_token(handler_call_details.invocation_metadata)
         if token is not None and self._tokens.knows(token):
             return await continuation(handler_call_details)
-        return grpc.stream_unary_rpc_method_handler(_no_token if token is None else _unknown_token)
+        error = NO_TOKEN if token is None else UNKNOWN_TOKEN
 
+        async def turn_away(request_iterator: Any, context: Any) -> None:
+            self._refused[error.reason] += 1
+            emit("call_refused", reason=error.reason, peer=context.peer())
+            status = to_status(error)
+            await refuse(context, status_pb2.Status.FromString(status), status)
 
-async def _no_token(request_iterator: Any, context: Any) -> None:
-    await _refuse(context, "no token found; send the metadata authorization: Bearer TOKEN")
-
-
-async def _unknown_token(request_iterator: Any, context: Any) -> None:
-    await _refuse(context, "the token is not known here; ask the operator for one", reason="UNKNOWN_TOKEN")
-
-
-async def _refuse(context: Any, message: str, reason: str | None = None) -> None:
-    status = to_status(Unauthenticated(message, reason=reason))
-    await refuse(context, status_pb2.Status.FromString(status), status)
+        return grpc.stream_unary_rpc_method_handler(turn_away)
 
 
 def bearer_token(metadata: Any) -> str | None:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import os
+import ssl
 from pathlib import Path
 from typing import Any
 
@@ -49,11 +51,20 @@ def open_door(server: grpc.aio.Server, settings: Settings) -> str:
 
 
 def check_files(settings: Settings) -> None:
-    """Raise `SettingsError` when a certificate, a key or the tokens cannot be used."""
+    """Raise `SettingsError` when a certificate, its key, the tokens or a folder cannot be used."""
     if settings.tls_cert:
         _Certificates(settings).read()
+        try:
+            ssl.SSLContext(ssl.PROTOCOL_TLS_SERVER).load_cert_chain(settings.tls_cert, settings.tls_key, lambda: "")
+        except OSError as error:
+            raise SettingsError(f"--tls-cert, --tls-key: they are no pair that can be used: {error}") from error
     if settings.token_file:
         Tokens(settings.token_file)
+    for flag, name in (("--state-dir", settings.state_dir), ("--spool-dir", settings.spool_dir)):
+        path = Path(name).absolute()
+        there = next(folder for folder in (path, *path.parents) if folder.exists())
+        if name and not (there.is_dir() and os.access(there, os.W_OK | os.X_OK)):
+            raise SettingsError(f"{flag}: {there} is no folder that can be written to")
 
 
 class _Certificates:

@@ -90,7 +90,7 @@ async def _serving(settings: Settings, pool: WorkerPool, spool: Path, batches: B
     gates = []
     if settings.token_file:
         tokens = Tokens(settings.token_file)
-        gates.append(TokenGate(tokens))
+        gates.append(TokenGate(tokens, admission.refused))
         asyncio.get_running_loop().add_signal_handler(signal.SIGHUP, tokens.look_again)
     server = grpc.aio.server(options=channel_options(settings), interceptors=gates)
     metrics = Metrics(pool=pool, admission=admission, batch_items=batches.store.item_counts)
