@@ -104,13 +104,9 @@ class NonlinearRecord:
     def _check(self, steps: Steps) -> None:
         """Take the residual of the algebraic equations at the ends of the steps, |f| over |∂f/∂q| |q|."""
         field, drives = self.stretch.field, self.tableau.drives
-        if field.states == field.size:
-            return
         past = steps.start_s + steps.length_s - self.stretch.start_s
         driven = field.drives(drives.moved_to(self.stretch.w, past))
-        gap = np.abs(field.value(steps.y1, driven)[:, field.states :])
-        size = (1.0 + field.wave_slopes(steps.y1, driven)) * np.abs(steps.y1[:, field.states :]).max()
-        self.residual = max(self.residual, float((gap / np.where(size > 0.0, size, 1.0)).max()))
+        self.residual = max(self.residual, field.residual(steps.y1, driven))
 
     def _put(self, own: NDArray[np.int64], value: FloatArray) -> None:
         value[:, self.reader.readings.undefined] = np.nan

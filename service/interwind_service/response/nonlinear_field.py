@@ -120,6 +120,16 @@ class Field:
         j, _ = self.direct.currents(argument)
         return self.rho * self.waves.currents(wave + j @ self.wave_j.T)[1]
 
+    def residual(self, u: FloatArray, driven: FloatArray) -> float:
+        """Return the largest |f| of the algebraic equations at points (S, d) over the largest sum of its terms."""
+        own = slice(self.states, self.size)
+        j, _ = self.direct_currents(u, driven)
+        terms = np.abs(u) @ np.abs(self.linear_u[own]).T + np.abs(driven[:, own])
+        terms += np.abs(j) @ np.abs(self.over_j[own]).T
+        terms = terms.max(axis=0) + self.wave_slopes(u, driven) * np.abs(u[:, own]).max(initial=0.0)
+        gap = np.abs(self.value(u, driven)[:, own])
+        return float((gap / np.where(terms > 0.0, terms, 1.0)).max(initial=0.0))
+
     def consistent(self, u: FloatArray, driven: FloatArray, give: FloatArray | None = None) -> FloatArray:
         """Return u (..., d) that meets the algebraic equations: Newton's method with halving.
 

@@ -76,6 +76,23 @@ class Laws:
         at = self.reference_a * inside**self.exponent
         return np.sign(v) * (at + rate * (share - inside) * self.reference_v), rate
 
+    def limited(self, before: FloatArray, wanted: FloatArray) -> FloatArray:
+        """Return where the laws meet the currents that their tangents at ``before`` give at ``wanted``, shape (q,).
+
+        Where a law grows beyond its knee, its current tells the better place; elsewhere this is ``wanted``.
+        """
+        found = wanted.copy()
+        own = self.exponential
+        knee = np.maximum(before[own], self.thermal_v)
+        beyond = np.maximum((wanted[own] - knee) / self.thermal_v, 0.0)
+        found[own] = np.where(beyond > 0.0, knee + self.thermal_v * np.log1p(beyond), wanted[own])
+        own = self.power
+        start = np.maximum(np.abs(before[own]), self.reference_v)
+        growth = np.maximum(np.abs(wanted[own]) / start - 1.0, 0.0)
+        met = np.sign(wanted[own]) * start * (1.0 + self.exponent * growth) ** (1.0 / self.exponent)
+        found[own] = np.where(growth > 0.0, met, wanted[own])
+        return found
+
     def part(self, own: IntArray) -> Laws:
         """Return the laws of some of the branches."""
         place = {int(k): position for position, k in enumerate(own)}

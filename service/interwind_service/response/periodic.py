@@ -30,7 +30,7 @@ from interwind_service.response.periodic_linear import periodic_response_linear
 from interwind_service.response.periodic_search import Period, not_periodic, other_start, stability
 from interwind_service.response.periodic_smooth import smooth_period
 from interwind_service.response.readings import readings_of
-from interwind_service.response.start import residual_state
+from interwind_service.response.rest import residual_state
 from interwind_service.response.switched_network import switched_network
 from interwind_service.response.switching import events_of, evidence_of, require_accuracy, sample, undefined_findings
 from interwind_service.response.trajectory import Trajectory
