@@ -29,6 +29,7 @@ from interwind.errors import (
     WorkerLost,
 )
 from interwind.model.batch import (
+    Analysis,
     BatchProgress,
     BatchResult,
     BatchRow,
@@ -49,13 +50,14 @@ from interwind.model.characterization import (
     EquivalentKind,
     Modes,
 )
-from interwind.model.connection import InParallel, InSeries, Open, Shorted
+from interwind.model.connection import Connection, InParallel, InSeries, Open, Shorted
 from interwind.model.devices import Arrester, Diode, Gate, GateTimes, SaturableInductor, Switch
 from interwind.model.elements import (
     Capacitor,
     CurrentByCurrent,
     CurrentByVoltage,
     CurrentSource,
+    Element,
     IdealTransformer,
     Inductor,
     Resistor,
@@ -74,6 +76,7 @@ from interwind.model.observables import (
     ElementVoltage,
     FluxLinkage,
     NodeVoltage,
+    Observable,
     StoredEnergy,
     WindingCurrent,
     WindingVoltage,
@@ -90,6 +93,7 @@ from interwind.model.port_figures import (
     LinkEfficiency,
     OptimumDrive,
     OptimumLoad,
+    Place,
     PortFigure,
     PortFigures,
     Scattering,
@@ -101,6 +105,7 @@ from interwind.model.readings import (
     MutualInductance,
     OpenInductance,
     PairLeakage,
+    Reading,
     ReadingContext,
     ReadingForm,
     SeriesInductance,
@@ -114,6 +119,7 @@ from interwind.model.response import (
     EnergyLedger,
     Event,
     FrequencyResponse,
+    Initial,
     MnaSystem,
     PortResponse,
     SteadyStart,
@@ -121,6 +127,7 @@ from interwind.model.response import (
 )
 from interwind.model.server_info import ServerInfo
 from interwind.model.vary import (
+    Column,
     SampleParameter,
     SampleWindings,
     Vary,
@@ -142,12 +149,14 @@ from interwind.model.waveform import (
     StandardImpulse,
     Step,
     Trapezoid,
+    Waveform,
 )
 from interwind.model.windings import WindingSet
 
 __all__ = [
     "AccuracyNotReached",
     "AdaptiveSweep",
+    "Analysis",
     "ArrayEvicted",
     "Arrester",
     "Batch",
@@ -163,7 +172,9 @@ __all__ = [
     "Characterization",
     "CheckAnalysis",
     "Client",
+    "Column",
     "Common",
+    "Connection",
     "Constant",
     "CostForecast",
     "Culprit",
@@ -179,6 +190,7 @@ __all__ = [
     "Diode",
     "DoubleExponential",
     "EffectiveLeakage",
+    "Element",
     "ElementCurrent",
     "ElementPower",
     "ElementVoltage",
@@ -202,6 +214,7 @@ __all__ = [
     "InParallel",
     "InSeries",
     "Inductor",
+    "Initial",
     "InputAngle",
     "InputImpedance",
     "InsertionLoss",
@@ -220,6 +233,7 @@ __all__ = [
     "NodeVoltage",
     "NotFound",
     "NotReady",
+    "Observable",
     "OffsetFaultCurrent",
     "Open",
     "OpenInductance",
@@ -233,12 +247,14 @@ __all__ = [
     "PeriodicResponse",
     "PermissionDenied",
     "PiecewiseLinear",
+    "Place",
     "PoleReport",
     "Port",
     "PortFigure",
     "PortFigures",
     "PortResponse",
     "Ramp",
+    "Reading",
     "ReadingContext",
     "ReadingForm",
     "RecordFigures",
@@ -280,6 +296,7 @@ __all__ = [
     "VoltageRatio",
     "VoltageSource",
     "VoltageTransfer",
+    "Waveform",
     "WindingCurrent",
     "WindingSet",
     "WindingVoltage",
