@@ -37,6 +37,7 @@ from interwind_service.tolerances import (
     BATCH_FORECAST_ROWS,
     BATCH_FORECAST_S,
     BATCH_FORECAST_TICK_S,
+    BATCH_FORECAST_TIMES,
     BATCH_VARIANT_LIMIT,
     WORKER_BASE_BYTES,
 )
@@ -156,9 +157,10 @@ def _seconds(desk: Desk, numbers: Any) -> tuple[float, float]:
 
     In processor time, for others may keep the machine busy. The first look pays for what a worker loads once; more
     rows are tried while that is quick. What a stack does not answer is tried at some of its points only, so that a
-    heavy variant does not keep the caller waiting.
+    heavy variant does not keep the caller waiting; one row at more of them then parts what each point costs from what
+    a variant costs once.
     """
-    points_share = 1.0
+    whole, points_share = desk, 1.0
     if desk.stack is None:
         analysis, points_share = shortened(desk.analysis, BATCH_FORECAST_POINTS)
         desk = desk_of(desk.overrides, analysis)
@@ -175,7 +177,14 @@ def _seconds(desk: Desk, numbers: Any) -> tuple[float, float]:
             call_s = max(spent_s - row_s * len(rows), 0.0)
         if spent_s > (BATCH_FORECAST_S if look else BATCH_FORECAST_COLD_S):
             break
-    return call_s, row_s * points_share
+    if points_share <= 1.0:
+        return call_s, row_s
+    times = BATCH_FORECAST_TIMES if BATCH_FORECAST_TIMES * row_s < BATCH_FORECAST_S else 2
+    longer, longer_share = shortened(whole.analysis, times * BATCH_FORECAST_POINTS)
+    began_s = time.process_time()
+    solve_rows(desk_of(whole.overrides, longer), numbers[:1], 0)
+    more_s = max(time.process_time() - began_s - row_s, 0.0)
+    return call_s, row_s + more_s * (points_share - 1.0) / max(points_share / longer_share - 1.0, 1.0)
 
 
 def _header(layout: Layout, variant_count: int) -> bytes:

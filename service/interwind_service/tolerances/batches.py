@@ -18,6 +18,7 @@ BATCH_CHUNK_BYTES = 4 * 2**20  # numbers of a chunk: the front proves and stream
 BATCH_CHUNK_S = 0.5  # work of a chunk: what an interactive call may have to wait for, and a stop may throw away
 BATCH_FORECAST_ROWS = (8, 64, 512)  # variants tried for the forecast, each while the one before was quick
 BATCH_FORECAST_POINTS = 64  # points of a heavy variant tried for the forecast
+BATCH_FORECAST_TIMES = 16  # so many points more for a second look, where the first was quick; twice where not
 BATCH_FORECAST_COLD_S = 3.0  # what the very first look may take: a cold worker loads a second of libraries
 BATCH_FORECAST_TICK_S = 1e-6  # the clock of processor time may stand still over a quick look
 BATCH_FORECAST_S = 0.3  # what is no longer quick: the caller waits for the forecast
