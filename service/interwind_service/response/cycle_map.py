@@ -62,12 +62,13 @@ class CycleMap:
         return float(np.linalg.norm(one - other)) / self.size if self.size > 0.0 else 0.0
 
     def _run(self, x: FloatArray, *, monodromy: bool) -> Passage:
-        passage = self.network.run(x, self._start(x), monodromy=monodromy)
+        passage = self.network.run(x, self.start(x), monodromy=monodromy)
         self.mode, self.peak_j = passage.mode, passage.peak_j
         self.periods += 1
         return passage
 
-    def _start(self, x: FloatArray) -> Mode:
+    def start(self, x: FloatArray) -> Mode:
+        """Return the modes a period from x begins with: pieces as its fluxes say, diodes as they were last."""
         fresh = self.network.start_mode(x)
         return tuple(
             now if device.state >= 0 else held

@@ -104,7 +104,7 @@ def _switched_period(
     findings = stability(found) + other_start(cycle, found, affine=affine)
     x = _without_offset(cycle, found)
     record = Trajectory()
-    passage = prepared.run(x, cycle.mode, record=record, progress=progress)
+    passage = prepared.run(x, cycle.start(x), record=record, progress=progress)
     cycle.periods += 1
     energy = energy_of(prepared.tableau, record, x, passage.x, passage.peak_j)
     method = "; ".join(
@@ -131,7 +131,7 @@ def _without_offset(cycle: CycleMap, found: FixedPoint) -> FloatArray:
     if not free.shape[1]:
         return found.x
     record = Trajectory()
-    cycle.network.run(found.x, cycle.mode, record=record)
+    cycle.network.run(found.x, cycle.start(found.x), record=record)
     cycle.periods += 1
     mean = record.state_integral(cycle.network.tableau) / float(cycle.network.breakpoint_s[-1])
     return found.x - free @ (free.T @ mean)

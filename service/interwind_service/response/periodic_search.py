@@ -12,6 +12,7 @@ from interwind.model.finding import Evidence, Finding, Severity
 from interwind.model.response import Event
 from interwind_service import tolerances as tol
 from interwind_service.response.cycle_map import CycleMap, FixedPoint, fixed_point
+from interwind_service.response.device import SaturableBranch
 from interwind_service.response.energy import Energy
 from interwind_service.response.figures import Figures
 
@@ -64,19 +65,31 @@ def stability(found: FixedPoint) -> tuple[Finding, ...]:
 
 
 def other_start(cycle: CycleMap, found: FixedPoint, *, affine: bool) -> tuple[Finding, ...]:
-    """Search once more from a distant start; a different answer is said."""
+    """Search again from distant starts; a different answer is said.
+
+    One start is the state found, enlarged; where a branch saturates, the other begins with its core saturated, for a
+    resonance with it has two steady states (ferroresonance: Bethenod 1907, from memory).
+    """
     if affine or not len(found.x):
         return ()
-    cycle.limit = cycle.periods + tol.OTHER_START_PERIODS
-    other = fixed_point(cycle, tol.OTHER_START * found.x, affine=True, warm_up=0, rounds=0)
-    apart = cycle.distance(other.x, found.x)
-    if not other.found or apart <= tol.SAME_SOLUTION + other.uncertainty + found.uncertainty:
-        return ()
-    return (
-        Finding("SEVERAL_PERIODIC_STATES", Severity.WARNING, field="period_s",
-                measured=apart, limit=tol.SAME_SOLUTION,
-                message="another start led to a different periodic state; the one reached from rest is shown"),
-    )  # fmt: skip
+    starts = [(tol.OTHER_START * found.x, 0, tol.OTHER_START_PERIODS)]
+    saturated = found.x.copy()
+    for device in cycle.network.tableau.devices:
+        if isinstance(device, SaturableBranch):
+            saturated[device.state] = tol.SATURATED_START * device.flux_wb[-1] / device.root
+    if not np.array_equal(saturated, found.x):
+        starts.append((saturated, tol.WARM_UP_PERIODS, tol.SATURATED_START_PERIODS))
+    for x, warm_up, periods in starts:
+        cycle.limit = cycle.periods + periods
+        other = fixed_point(cycle, x, affine=False, warm_up=warm_up, rounds=0)
+        apart = cycle.distance(other.x, found.x)
+        if other.found and apart > tol.SAME_SOLUTION + other.uncertainty + found.uncertainty:
+            return (
+                Finding("SEVERAL_PERIODIC_STATES", Severity.WARNING, field="period_s",
+                        measured=apart, limit=tol.SAME_SOLUTION,
+                        message="another start led to a different periodic state; the one reached from rest is shown"),
+            )  # fmt: skip
+    return ()
 
 
 def not_periodic(found: FixedPoint, period_s: float, periods: int) -> AccuracyNotReached:
