@@ -10,7 +10,9 @@ from scipy.optimize import brentq
 
 import interwind as iw
 from interwind_service.network.topology import number
+from interwind_service.response.handover import Handover
 from interwind_service.response.nonlinear import NonlinearRun
+from interwind_service.response.recording import Window
 from interwind_service.response.switching import time_response_switching
 
 
@@ -22,6 +24,14 @@ def test_ring_modulator_is_its_published_equations():
     expected = reference.y[:7, -1] * ring_modulator.SIGNS
     assert np.allclose(wave.samples[-1], expected, rtol=0.0, atol=1e-7 * 0.5)  # of the source's 0.5 V
     assert wave.evidence.energy_error < 1e-7
+
+
+def follow(topology, time_s, observables, tolerance: float) -> tuple[NonlinearRun, np.ndarray]:
+    """A run over evenly spaced instants, and its samples."""
+    steps = len(time_s) - 1
+    out = Handover(topology, observables, Window(0, steps, 1))
+    run = NonlinearRun(topology, float(time_s[-1]) / steps, steps, out, None, tolerance)
+    return run, out.recorder.samples
 
 
 def clipped_tank(thermal_v: float | None) -> iw.Network:
@@ -45,12 +55,12 @@ def test_order_four():
     """The error falls with the fourth power of the step."""
     topology, time_s = number(clipped_tank(0.05)), np.linspace(0.0, 10e-6, 5)
     observed = [iw.ElementVoltage("C"), iw.ElementCurrent("L")]
-    exact = NonlinearRun(topology, time_s, observed, None, 1e-12).samples
+    _, exact = follow(topology, time_s, observed, 1e-12)
     steps, errors = [], []
     for tolerance in (1e-6, 1e-7, 1e-8, 1e-9):
-        run = NonlinearRun(topology, time_s, observed, None, tolerance)
+        run, samples = follow(topology, time_s, observed, tolerance)
         steps.append(run.effort.accepted)
-        errors.append(np.abs((run.samples - exact)[[-1]] / np.abs(exact).max(axis=0)).max())
+        errors.append(np.abs((samples - exact)[[-1]] / np.abs(exact).max(axis=0)).max())
     order = -np.polyfit(np.log(steps), np.log(errors), 1)[0]
     assert order == pytest.approx(4.0, abs=0.35)
 
@@ -58,9 +68,7 @@ def test_order_four():
 def test_ledger_closes_with_the_tolerance():
     """The energy error is a quadrature by the same stages, so it falls with the local tolerance."""
     topology, time_s = number(clipped_tank(0.05)), np.linspace(0.0, 40e-6, 3)
-    gaps = [
-        NonlinearRun(topology, time_s, [], None, tolerance).evidence.energy_error for tolerance in (1e-6, 1e-8, 1e-10)
-    ]
+    gaps = [follow(topology, time_s, [], tolerance)[0].evidence.energy_error for tolerance in (1e-6, 1e-8, 1e-10)]
     assert gaps[0] < 1e-5
     assert gaps[1] < 1e-7
     assert gaps[2] < 1e-9
@@ -70,9 +78,9 @@ def test_dense_output_is_of_order_three():
     """Samples between the steps follow the exact solution; the interpolant loses one order, not more."""
     topology = number(clipped_tank(0.05))
     coarse, fine = np.linspace(0.0, 10e-6, 101), [iw.ElementVoltage("C")]
-    exact = NonlinearRun(topology, coarse, fine, None, 1e-11).samples
-    run = NonlinearRun(topology, coarse, fine, None, 1e-7)
-    assert np.abs(run.samples - exact).max() < 1e-4 * np.abs(exact).max()
+    _, exact = follow(topology, coarse, fine, 1e-11)
+    _, samples = follow(topology, coarse, fine, 1e-7)
+    assert np.abs(samples - exact).max() < 1e-4 * np.abs(exact).max()
 
 
 def test_exponential_diode_becomes_the_ideal_one():

@@ -32,8 +32,11 @@ class Recording:
 class RecordFigures:
     """Figures over the window of a recording, each shape (observables,).
 
-    ``means``, ``rmses`` : of the exact solution for voltages, currents, fluxes; of the samples for powers, energies.
-    ``peaks`` : the sample of largest magnitude, with its sign, kept or not; ``peak_times_s`` : its instant, s.
+    Linear runs: ``means``, ``rmses`` of the exact solution for voltages, currents, fluxes, of the samples for powers,
+    energies; ``peaks`` the sample of largest magnitude, with its sign, kept or not; ``peak_times_s`` its instant, s.
+    Runs with switches or nonlinear elements: all of the solution between its events, peaks between samples, too; NaN
+    for what has no path that defines it somewhere in the window. With exponential diodes or arresters the solution is
+    the dense output of the method, of order 3.
     """
 
     means: FloatArray

@@ -9,10 +9,14 @@ from numpy.typing import NDArray
 
 from interwind.model.finding import Evidence
 from interwind.model.observables import Observable, StoredEnergy
+from interwind.model.recording import RecordFigures
 from interwind.model.response import EnergyLedger, Event, Initial
+from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.response.device import SaturableBranch, TimedSwitch
 from interwind_service.response.energy import ABSORBED, DISSIPATED, JUMP, SUPPLIED, Energy, stored_j
+from interwind_service.response.handover import Handover
+from interwind_service.response.nonlinear_figures import NonlinearFigures
 from interwind_service.response.readings import Readings, readings_of
 from interwind_service.response.rosenbrock import Effort, Steps
 from interwind_service.response.smooth_network import SmoothNetwork, Stretch, smooth_network
@@ -59,9 +63,9 @@ class Reader:
 class NonlinearRecord:
     """Samples, energies, switch changes and residual of a run, gathered block by block."""
 
-    def __init__(self, network: SmoothNetwork, time_s: FloatArray, observables: Sequence[Observable]) -> None:
-        self.tableau, self.observables, self.time_s = network.tableau, tuple(observables), time_s
-        self.samples = np.full((len(time_s), len(self.observables)), np.nan)
+    def __init__(self, network: SmoothNetwork, step_s: float, steps: int, out: Handover) -> None:
+        self.tableau, self.observables, self.out = network.tableau, out.observables, out
+        self.step_s, self.steps, self.next = step_s, steps, 0
         self.changes: list[tuple[float, int, int]] = []
         self.mode: Mode | None = None
         self.effort = Effort()
@@ -90,16 +94,16 @@ class NonlinearRecord:
         self.jump += float(total[account == JUMP].sum())
         self._check(steps)
         end = steps.start_s[-1] + steps.length_s[-1]
-        first, last = np.searchsorted(self.time_s, [steps.start_s[0], end])
-        if first == last:
-            return
-        self._put(np.arange(first, last), self.reader.along(steps, self.time_s[first:last]))
+        last = min(self.steps, int(np.ceil(end / self.step_s)))
+        time_s = self.step_s * np.arange(self.next, last)
+        time_s = time_s[: np.searchsorted(time_s, end)]
+        for low in range(0, len(time_s), tol.SAMPLES_TOGETHER):
+            self._put(self.reader.along(steps, time_s[low : low + tol.SAMPLES_TOGETHER]))
 
     def finish(self, y: FloatArray, effort: Effort) -> None:
         """Put the last sample, at the very end of the run."""
         self.effort = effort
-        last = len(self.time_s) - 1
-        self._put(np.array([last]), self.reader.values(self.time_s[last:], y[None]))
+        self._put(self.reader.values(np.array([self.stretch.stop_s]), y[None]))
 
     def _check(self, steps: Steps) -> None:
         """Take the residual of the algebraic equations at the ends of the steps, |f| over |∂f/∂q| |q|."""
@@ -108,9 +112,11 @@ class NonlinearRecord:
         driven = field.drives(drives.moved_to(self.stretch.w, past))
         self.residual = max(self.residual, field.residual(steps.y1, driven))
 
-    def _put(self, own: NDArray[np.int64], value: FloatArray) -> None:
+    def _put(self, value: FloatArray) -> None:
+        """Hand on the samples that come next."""
         value[:, self.reader.readings.undefined] = np.nan
-        self.samples[own] = value
+        self.out.take(self.next, value)
+        self.next += len(value)
 
     def energy(self, start: FloatArray, end: FloatArray, peak_j: float) -> Energy:
         """Return the energy ledger of the run from state ``start`` to ``end``."""
@@ -136,28 +142,53 @@ class NonlinearRecord:
         return tuple(Event(t, devices[d].name, TimedSwitch.words[mode]) for t, d, mode in self.changes)
 
 
+class FigureRecord(NonlinearRecord):
+    """A record with figures over the time between two instants."""
+
+    def __init__(
+        self, network: SmoothNetwork, step_s: float, steps: int, out: Handover, sums: NonlinearFigures
+    ) -> None:
+        super().__init__(network, step_s, steps, out)
+        self.sums = sums
+
+    def take(self, steps: Steps) -> None:
+        """Sample, book and sum up some steps."""
+        super().take(steps)
+        self.sums.take(lambda t: self.reader.along(steps, t), steps)
+
+
 class NonlinearRun:
     """One run over [0, stop] from its initial state at a local tolerance."""
 
     def __init__(
         self,
         topology: Topology,
-        time_s: FloatArray,
-        observables: Sequence[Observable],
+        step_s: float,
+        steps: int,
+        out: Handover,
         initial: Initial,
         tolerance: float,
+        *,
+        figures: bool = False,
         progress: Callable[[int, int], None] | None = None,
     ) -> None:
-        network = smooth_network(topology, float(time_s[-1]), float(time_s[1] - time_s[0]), tolerance)
+        network = smooth_network(topology, steps * step_s, step_s, tolerance)
         start = start_state(network.switched, initial)
-        self.record = NonlinearRecord(network, time_s, observables)
+        self.record = NonlinearRecord(network, step_s, steps, out)
+        if figures:
+            sums = NonlinearFigures(len(out.observables), step_s * out.window.first, step_s * out.window.last, 0)
+            self.record = FigureRecord(network, step_s, steps, out, sums)
         passage = network.run(start, network.start_mode(start), record=self.record, progress=progress)
         self.energy = self.record.energy(start, passage.x, passage.peak_j)
 
     @property
-    def samples(self) -> FloatArray:
-        """The observables at the instants asked for."""
-        return self.record.samples
+    def figures(self) -> RecordFigures | None:
+        """Mean, RMS and peaks over the window, if they were asked for."""
+        if not isinstance(self.record, FigureRecord):
+            return None
+        undefined = np.any([own.undefined for own in self.record.undefined.values()], axis=0)
+        found = self.record.sums.figures(undefined)
+        return RecordFigures(found.mean, found.rms, found.peak, found.peak_time_s)
 
     @property
     def effort(self) -> Effort:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
@@ -46,6 +46,19 @@ def observed_stress(
         elif isinstance(element, el.Windings | el.Inductor):
             fields[element.name] = reached.get(ob.StoredEnergy(element.name), 0.0)
     return Stress(nodes, across, fields)
+
+
+def larger_of(one: Stress, other: Stress) -> Stress:
+    """Return the larger of each magnitude."""
+
+    def larger(a: Mapping[str, float], b: Mapping[str, float]) -> dict[str, float]:
+        return {name: float(np.fmax(a.get(name, math.nan), b.get(name, math.nan))) for name in {**a, **b}}
+
+    return Stress(
+        larger(one.node_voltage_v, other.node_voltage_v),
+        larger(one.capacitor_voltage_v, other.capacitor_voltage_v),
+        larger(one.magnetic_energy_j, other.magnetic_energy_j),
+    )
 
 
 def source_peak(waveform: wf.Waveform) -> float:

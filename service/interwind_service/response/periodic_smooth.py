@@ -18,29 +18,17 @@ from interwind.model.observables import Observable
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.response.cycle_map import CycleMap, FixedPoint, fixed_point, full_step
-from interwind_service.response.nonlinear import NonlinearRecord
+from interwind_service.response.handover import Handover
+from interwind_service.response.nonlinear import FigureRecord, NonlinearRecord
 from interwind_service.response.nonlinear_figures import NonlinearFigures
 from interwind_service.response.periodic_search import Period, not_periodic, other_start, stability
-from interwind_service.response.rosenbrock import Steps
-from interwind_service.response.smooth_network import SmoothNetwork, smooth_network
+from interwind_service.response.recording import Window
+from interwind_service.response.smooth_network import smooth_network
 from interwind_service.response.start import residual_state
 from interwind_service.response.switched_network import Passage
 from interwind_service.response.switching import require_accuracy, undefined_findings
 
 FloatArray = NDArray[np.float64]
-
-
-class PeriodRecord(NonlinearRecord):
-    """A record of one period, with its figures and the mean state."""
-
-    def __init__(self, network: SmoothNetwork, time_s: FloatArray, observables: Sequence[Observable]) -> None:
-        super().__init__(network, time_s, observables)
-        self.sums = NonlinearFigures(len(self.observables), float(time_s[-1]))
-
-    def take(self, steps: Steps) -> None:
-        """Sample, book and sum up some steps."""
-        super().take(steps)
-        self.sums.take(self.reader, steps)
 
 
 def smooth_period(
@@ -69,7 +57,9 @@ def smooth_period(
         if not found.found:
             raise not_periodic(found, period_s, cycle.periods)
         network.tolerance *= tol.STEP_SHARE
-        record = PeriodRecord(network, time_s, observables)
+        out = Handover(topology, observables, Window(0, len(time_s) - 1, 1))
+        sums = NonlinearFigures(len(observables), 0.0, period_s, tol.HARMONICS)
+        record = FigureRecord(network, step_s, len(time_s) - 1, out, sums)
         passage = network.run(found.x, cycle.mode, record=record, monodromy=True, progress=progress)
         cycle.periods += 1
         found, moved_by = _finer(cycle, found, passage)
@@ -89,7 +79,7 @@ def smooth_period(
     undefined = np.any([own.undefined for own in record.undefined.values()], axis=0)
     figures = record.sums.figures(undefined)
     findings += undefined_findings(observables, record.undefined)
-    return Period(found, record.samples, figures, energy, record.events, findings, evidence)
+    return Period(found, out.recorder.samples, figures, energy, record.events, findings, evidence)
 
 
 def _finer(cycle: CycleMap, found: FixedPoint, passage: Passage) -> tuple[FixedPoint, float]:

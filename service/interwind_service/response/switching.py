@@ -12,6 +12,7 @@ from interwind.errors import AccuracyNotReached
 from interwind.model.finding import Evidence, Finding, Severity
 from interwind.model.network import Network
 from interwind.model.observables import Observable
+from interwind.model.recording import RecordFigures, Recording
 from interwind.model.response import EnergyLedger, Event, Initial, TimeResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
@@ -19,18 +20,20 @@ from interwind_service.response.admit import admit
 from interwind_service.response.cautions import cautions_of
 from interwind_service.response.device import has_smooth
 from interwind_service.response.energy import Energy, energy_of
+from interwind_service.response.figures import figures_of
+from interwind_service.response.handover import Handover, window_held
 from interwind_service.response.nonlinear import NonlinearRun
 from interwind_service.response.observe import resolve
-from interwind_service.response.observed_stress import observed_stress
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readings import Readings, readings_of
+from interwind_service.response.recording import Window
 from interwind_service.response.start import start_state
 from interwind_service.response.start_jump import start_findings
 from interwind_service.response.switched_network import SwitchedNetwork, switched_network
 from interwind_service.response.trajectory import Rows, Trajectory
+from interwind_service.rows import RowSink
 
 FloatArray = NDArray[np.float64]
-RowSink = Callable[[int, FloatArray], None]
 
 
 def time_response_switching(
@@ -42,11 +45,17 @@ def time_response_switching(
     tolerance: float = tol.DEFAULT_TOLERANCE,
     *,
     sink: RowSink | None = None,
+    recording: Recording | None = None,
     progress: Callable[[int, int], None] | None = None,
 ) -> TimeResponse:
     """Run a network with piecewise-linear devices from event to event and sample it on a grid.
 
         x(t) = Re V (κ ∘ e^{λt}) + particular solution,    between events, no time step
+
+    Parameters
+    ----------
+    sink : takes (step of the first sample, samples) piece by piece once the ledger has closed; nothing is held then.
+    recording : what is kept; its figures, the peaks too, are those of the exact solution.
 
     Returns
     -------
@@ -57,12 +66,18 @@ def time_response_switching(
     InvalidRequest, InvalidNetwork, InvalidWindings : bad input, by its path.
     AccuracyNotReached : the energy ledger misses ``tolerance``.
     """
-    time_s = step_s * np.arange(steps_of(stop_s, step_s) + 1)
+    steps = steps_of(stop_s, step_s)
     topology = admit(network)
     observables = resolve(topology, observe)
+    streamed = sink is not None and not has_smooth(topology)
+    window = window_held(recording, step_s, steps, len(observables), streamed=streamed)
+    envelope = recording is not None and recording.envelope
     if has_smooth(topology):
-        return _with_smooth_laws(topology, time_s, observables, initial, tolerance, sink, progress)
-    prepared = switched_network(topology, float(time_s[-1]), step_s)
+        return time_response_smooth(
+            topology, step_s, steps, observables, initial, tolerance, window,
+            envelope=envelope, figures=recording is not None, sink=sink, progress=progress,
+        )  # fmt: skip
+    prepared = switched_network(topology, steps * step_s, step_s)
     x = start_state(prepared, initial)
     record = Trajectory()
     passage = prepared.run(x, prepared.start_mode(x), record=record, progress=progress)
@@ -72,45 +87,60 @@ def time_response_switching(
     )
     readings = {piece.number: readings_of(prepared.tableau, piece.mode, observables) for piece in record.distinct()}
     require_accuracy(evidence, energy.ledger, tolerance)
-    samples = sample(record, readings, time_s, step_s)
-    cautions = cautions_of(topology, observed_stress(topology, observables, samples))
-    if sink is not None:
-        sink(0, samples)
-        samples, time_s = samples[:0], time_s[:0]
+    out = Handover(topology, observables, window, envelope=envelope, sink=sink)
+    for first in range(0, steps + 1, tol.STEPS_HANDED_OVER):
+        own = np.arange(first, min(first + tol.STEPS_HANDED_OVER, steps + 1))
+        out.take(first, sample(record, readings, step_s * own, step_s))
+    figures = None
+    if recording is not None:
+        ends = step_s * window.first, step_s * window.last
+        inside = record.between(prepared.tableau.drives, *ends)
+        met = {piece.number: readings[piece.number] for piece in inside.distinct()}
+        exact = figures_of(inside, met, ends[1] - ends[0], 0, tol.SETTLE_SHARE * step_s)
+        figures = RecordFigures(exact.mean, exact.rms, exact.peak, exact.peak_time_s)
     return TimeResponse(
         observables,
-        samples,
-        time_s=time_s,
+        out.recorder.samples,
+        time_s=out.time_s(step_s),
         events=events_of(prepared, record),
         ledger=energy.ledger,
+        figures=figures,
+        lowest=out.recorder.lowest,
+        highest=out.recorder.highest,
         findings=(
             *topology.findings,
             *start_findings(prepared.tableau, record, x, tol.SETTLE_SHARE * step_s),
             *undefined_findings(observables, readings),
         ),
-        cautions=cautions,
+        cautions=cautions_of(topology, out.stress),
         evidence=evidence,
     )
 
 
-def _with_smooth_laws(
+def time_response_smooth(
     topology: Topology,
-    time_s: FloatArray,
+    step_s: float,
+    steps: int,
     observables: tuple[Observable, ...],
     initial: Initial,
     tolerance: float,
+    window: Window,
+    *,
+    envelope: bool,
+    figures: bool,
     sink: RowSink | None,
     progress: Callable[[int, int], None] | None,
 ) -> TimeResponse:
+    """Run a network with smooth laws; what is recorded is held until the ledger closes, and handed over then."""
     local = tol.STEP_SHARE * tolerance
     for _ in range(tol.FINER_RUNS + 1):  # the ledger is the judge: finer steps while it does not close
-        run = NonlinearRun(topology, time_s, observables, initial, local, progress)
+        out = Handover(topology, observables, window, envelope=envelope)
+        run = NonlinearRun(topology, step_s, steps, out, initial, local, figures=figures, progress=progress)
         if run.evidence.energy_error <= tolerance and run.evidence.residual <= tolerance:
             break
         local *= tol.STEP_SHARE
     require_accuracy(run.evidence, run.energy.ledger, tolerance)
-    samples = run.samples
-    cautions = cautions_of(topology, observed_stress(topology, observables, samples))
+    samples, time_s = out.recorder.samples, out.time_s(step_s)
     if sink is not None:
         sink(0, samples)
         samples, time_s = samples[:0], time_s[:0]
@@ -120,8 +150,11 @@ def _with_smooth_laws(
         time_s=time_s,
         events=run.record.events,
         ledger=run.energy.ledger,
+        figures=run.figures,
+        lowest=out.recorder.lowest,
+        highest=out.recorder.highest,
         findings=(*topology.findings, *undefined_findings(observables, run.record.undefined)),
-        cautions=cautions,
+        cautions=cautions_of(topology, out.stress),
         evidence=run.evidence,
     )
 

@@ -18,6 +18,7 @@ from interwind_service.response.admit import admit
 from interwind_service.response.cautions import cautions_of
 from interwind_service.response.flow import flow_of
 from interwind_service.response.generator import Generator, generator_of
+from interwind_service.response.handover import window_held
 from interwind_service.response.initial import start_of
 from interwind_service.response.ledger import ledger_of
 from interwind_service.response.linear_evidence import evidence_of_run, require_run
@@ -25,7 +26,7 @@ from interwind_service.response.linear_run import run_linear
 from interwind_service.response.observe import resolve
 from interwind_service.response.output_grid import steps_of
 from interwind_service.response.readout import Readout, readout_of
-from interwind_service.response.recording import Recorder, window_of
+from interwind_service.response.recording import Recorder
 from interwind_service.response.state_space import StateSpace
 from interwind_service.response.stated import stated_of
 from interwind_service.response.switching import time_response_switching
@@ -80,21 +81,13 @@ def time_response(
     topology = admit(network)
     asked = resolve(topology, observe)
     stated = stated_of(topology, initial)
-    window = window_of(recording or Recording(), step_s, steps)
     if sink is None and recording is None:
         sink = offer(asked, steps + 1)
-    if sink is None and window.kept * len(asked) > tol.MAX_RESPONSE_VALUES:
-        raise InvalidRequest.at(
-            "observe",
-            f"{window.kept} samples of {len(asked)} observables found; at most {tol.MAX_RESPONSE_VALUES} values are "
-            "held; observe less, choose a larger step_s, or record a window or every so many samples",
-        )
     if topology.of_kind(*_SWITCHED).size:
-        if recording is not None:
-            raise InvalidRequest.at(
-                "recording", "found with switches or nonlinear elements; it is offered for linear runs"
-            )
-        return time_response_switching(network, stop_s, step_s, asked, initial, tolerance, sink=sink)
+        return time_response_switching(
+            network, stop_s, step_s, asked, initial, tolerance, sink=sink, recording=recording
+        )
+    window = window_held(recording, step_s, steps, len(asked), streamed=sink is not None)
     generator = generator_of(topology, stop_s, step_s, unit=recording is not None)
     space = model_of(topology, _centre(generator, stop_s, step_s))
     if topology.controls:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from bisect import bisect_left, bisect_right
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass, field
 
@@ -9,6 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind_service import tolerances as tol
+from interwind_service.response.drives import Drives
 from interwind_service.response.modal_integrals import gauss_points, products, transform
 from interwind_service.response.piece import Piece
 from interwind_service.response.tableau import Tableau
@@ -89,34 +91,48 @@ class Trajectory:
         self.kappa.append(kappa)
         self.w.append(w)
 
-    def groups(self, limit: int = tol.SEGMENTS_TOGETHER) -> Iterator[Group]:
-        """Yield the segments by piece, at most ``limit`` at once."""
+    def groups(self, low: int = 0, high: int | None = None) -> Iterator[Group]:
+        """Yield segments ``low`` to before ``high`` (None: all) by piece, so many at once."""
         members: dict[int, list[int]] = {}
-        for position, piece in enumerate(self.piece):
+        for position, piece in enumerate(self.piece[low:high], start=low):
             members.setdefault(id(piece), []).append(position)
-        start, span = np.array(self.start_s), np.array(self.span_s)
         for positions in members.values():
-            for first in range(0, len(positions), limit):
-                own = np.array(positions[first : first + limit])
+            for first in range(0, len(positions), tol.SEGMENTS_TOGETHER):
+                own = np.array(positions[first : first + tol.SEGMENTS_TOGETHER])
                 yield Group(
                     self.piece[own[0]],
                     own,
-                    start[own],
-                    span[own],
+                    np.array([self.start_s[k] for k in own]),
+                    np.array([self.span_s[k] for k in own]),
                     np.array([self.kappa[k] for k in own]),
                     np.array([self.w[k] for k in own]),
                 )
 
+    def between(self, drives: Drives, start_s: float, stop_s: float) -> Trajectory:
+        """Return the segments from ``start_s`` to ``stop_s``, the first and the last cut there."""
+        part = Trajectory()
+        first = max(0, bisect_right(self.start_s, start_s) - 1)
+        for k in range(first, bisect_left(self.start_s, stop_s)):
+            piece, start, kappa, w = self.piece[k], self.start_s[k], self.kappa[k], self.w[k]
+            begin, end = max(start, start_s), min(start + self.span_s[k], stop_s)
+            if end <= begin and len(self.start_s) > 1:
+                continue
+            if begin > start:
+                kappa, w = kappa * np.exp(piece.modes.eigenvalue * (begin - start)), drives.moved(w, begin - start)
+            part.add(piece, begin, end - begin, kappa, w)
+        return part
+
     def segment_of(self, time_s: FloatArray, settle_s: float) -> tuple[IntArray, NDArray[np.bool_]]:
         """Return the segment of each sample, and whether it stands at an event (then: the one after the jump)."""
-        start = np.array(self.start_s)
-        rounding = tol.SAME_INSTANT * float(start[-1] + self.span_s[-1])
-        own = np.maximum(np.searchsorted(start, time_s + rounding, side="right") - 1, 0)
-        at_event = np.abs(start[own] - time_s) <= rounding
+        rounding = tol.SAME_INSTANT * self._ends(len(self.start_s) - 1)
+        low = max(0, bisect_left(self.start_s, time_s.min(initial=np.inf) - rounding) - 1)
+        start = np.array(self.start_s[low : bisect_right(self.start_s, time_s.max(initial=0.0) + rounding)])
+        own = low + np.maximum(np.searchsorted(start, time_s + rounding, side="right") - 1, 0)
+        at_event = np.abs(start[own - low] - time_s) <= rounding
         for k in np.flatnonzero(at_event):
-            first = int(np.searchsorted(start, time_s[k] - rounding))
+            first = low + int(np.searchsorted(start, time_s[k] - rounding))
             while first < own[k] or (self._jumps(first, settle_s) and self._ends(first) < time_s[k] + settle_s):
-                if first + 1 == len(start):
+                if first + 1 == len(self.start_s):
                     break
                 first += 1
             own[k] = first
@@ -153,7 +169,7 @@ class Trajectory:
         order = np.argsort(segment, kind="stable")
         ranked = segment[order]
         found: FloatArray | None = None
-        for group in self.groups():
+        for group in self.groups(int(segment.min(initial=0)), int(segment.max(initial=-1)) + 1):
             first = np.searchsorted(ranked, group.position, side="left")
             counts = np.searchsorted(ranked, group.position, side="right") - first
             if not counts.any():
