@@ -185,6 +185,8 @@ class _Translating:
             )
         if self._closed.is_set():
             return Cancelled("this client was closed")
+        if isinstance(ours, Cancelled):  # nobody here withdrew: a server that stops cuts off what outlasts its grace
+            return Unavailable(f"the server at {self._address} stopped before it answered {name}; ask again")
         return ours
 
 

@@ -25,10 +25,10 @@ INFO = "/interwind.v1.ServerService/GetServerInfo"
 
 
 class Scripted(grpc.GenericRpcHandler):
-    """A server that answers call after call as its script says: an error, or None for an answer."""
+    """A server that answers call after call as its script says: an error, a bare code, or None for an answer."""
 
     def __init__(self) -> None:
-        self.script: list[iw.InterwindError | None] = []
+        self.script: list[iw.InterwindError | grpc.StatusCode | None] = []
         self.calls_s: list[float] = []
         self.metadata: list[dict[str, str]] = []
         self.version = "999.0"
@@ -45,6 +45,8 @@ class Scripted(grpc.GenericRpcHandler):
         error = self.script.pop(0) if self.script else None
         if error is None:
             return server_service_pb2.GetServerInfoResponse(service_version=self.version).SerializeToString()
+        if isinstance(error, grpc.StatusCode):
+            context.abort(error, "")
         status = to_status(error)
         code = next(code for code in grpc.StatusCode if code.name == error.code)
         context.set_trailing_metadata((("grpc-status-details-bin", status),))
@@ -90,6 +92,17 @@ def test_unavailable_is_tried_again_with_growing_pauses(scripted):
 
     assert 0.15 < first < 0.4
     assert 0.6 < second < 1.2
+
+
+def test_a_call_cut_off_by_a_stopping_server_is_tried_again(scripted):
+    """Nobody here withdrew it, so it is no `Cancelled`: the next try finds a server, or there is none."""
+    scripted.script = [grpc.StatusCode.CANCELLED] * 2
+    with iw.connect(scripted.address) as client:
+        assert client.server_info().service_version == "999.0"
+    with iw.connect(scripted.address, retries=0) as client:
+        scripted.script = [grpc.StatusCode.CANCELLED]
+        with pytest.raises(iw.Unavailable, match="stopped before it answered GetServerInfo"):
+            client.server_info()
 
 
 def test_retries_have_an_end(scripted):
