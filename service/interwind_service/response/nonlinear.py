@@ -106,7 +106,7 @@ class NonlinearRecord:
         self._put(self.reader.values(np.array([self.stretch.stop_s]), y[None]))
 
     def _check(self, steps: Steps) -> None:
-        """Take the residual of the algebraic equations at the ends of the steps, |f| over |∂f/∂q| |q|."""
+        """Take the residual of the algebraic equations at the ends of the steps, |f| over the sum of its terms."""
         field, drives = self.stretch.field, self.tableau.drives
         past = steps.start_s + steps.length_s - self.stretch.start_s
         driven = field.drives(drives.moved_to(self.stretch.w, past))

@@ -23,8 +23,8 @@ from interwind_service.response.nonlinear import FigureRecord, NonlinearRecord
 from interwind_service.response.nonlinear_figures import NonlinearFigures
 from interwind_service.response.periodic_search import Period, not_periodic, other_start, stability
 from interwind_service.response.recording import Window
+from interwind_service.response.rest import residual_state
 from interwind_service.response.smooth_network import smooth_network
-from interwind_service.response.start import residual_state
 from interwind_service.response.switched_network import Passage
 from interwind_service.response.switching import require_accuracy, undefined_findings
 
