@@ -46,7 +46,9 @@ def test_half_open_calls_hold_up_nobody(service, order):
         rounds = [latencies_s(client.health, 100) for _ in range(3)]
         assert [call.result() for call in running] == ["OK", "OK"]
 
-    assert min(took[98] for took in rounds) < 0.05
+    tails_ms = [round(1e3 * took[98], 1) for took in rounds]
+    print(f"health beside 100 half-open calls: p99 {tails_ms} ms")
+    assert min(tails_ms) < 50.0
 
 
 def test_half_open_calls_leave_nothing_behind(service, order):

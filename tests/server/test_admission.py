@@ -139,6 +139,10 @@ def test_front_answers_while_everything_is_busy(small, order):
             for call in running:
                 call.result()
     best = min(rounds, key=lambda took: took[98])
+    middle_s = statistics.median(best)
+    print(
+        f"server_info, full queue: p50 {1e3 * middle_s:.2f} ms, {middle_s / idle_s:.1f} idle, p99 {1e3 * best[98]:.1f}"
+    )
 
     assert best[98] < 0.05
-    assert statistics.median(best) < 5 * idle_s
+    assert middle_s < 5 * idle_s

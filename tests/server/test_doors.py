@@ -137,6 +137,7 @@ def test_one_unauthenticated_message_of_100_megabytes_is_not_read(guarded):
     with grpc.insecure_channel(guarded.address) as channel, pytest.raises(grpc.RpcError) as caught:
         channel.unary_unary("/interwind.v1.ArrayService/PutArray")(bytes(100_000_000), timeout=20)
     after_s, grown = cost()
+    print(f"100 MB without a token: {1e3 * (after_s - cpu_s):.0f} ms of processor, {(grown - resident) / 1e6:.1f} MB")
 
     assert caught.value.code() is grpc.StatusCode.UNAUTHENTICATED
     assert after_s - cpu_s <= 0.05
