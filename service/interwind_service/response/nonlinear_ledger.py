@@ -48,6 +48,11 @@ class Ledger:
         self.one, self.other = _Factor(terms.one, field, drives), _Factor(terms.other, field, drives)
         self.turn = drives.W.T
 
+    def powers(self, y: FloatArray, w: ComplexArray) -> FloatArray:
+        """Return every power term for unknowns y (T, d) and drives w (T, k), W, shape (T, terms)."""
+        j, _ = self.field.direct_currents(y, self.field.drives(w))
+        return self.one.at(y, j, w) * self.other.at(y, j, w)
+
     def energies(
         self, y: FloatArray, stages: FloatArray, w: ComplexArray, length_s: FloatArray
     ) -> tuple[FloatArray, FloatArray]:

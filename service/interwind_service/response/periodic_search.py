@@ -70,7 +70,7 @@ def other_start(cycle: CycleMap, found: FixedPoint, *, affine: bool) -> tuple[Fi
     One start is the state found, enlarged; where a branch saturates, the other begins with its core saturated, for a
     resonance with it has two steady states (ferroresonance: Bethenod 1907, from memory).
     """
-    if affine or not len(found.x):
+    if affine or not len(found.x) or found.undetermined.shape[1]:
         return ()
     starts = [(tol.OTHER_START * found.x, 0, tol.OTHER_START_PERIODS)]
     saturated = found.x.copy()

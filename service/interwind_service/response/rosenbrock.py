@@ -76,12 +76,12 @@ def integrate(
     tolerance: float,
     effort: Effort,
     sink: Callable[[Steps], None],
-    ledger: Ledger,
+    ledger: Ledger | None,
 ) -> FloatArray:
     """Integrate from ``start_s`` to ``stop_s`` and hand on the steps in blocks; return y at the stop.
 
-    Where there are algebraic unknowns the powers hang on them and the states need not, so a step keeps the energy of
-    every branch to the tolerance as well.
+    With a ``ledger`` a step keeps the energy of every branch to the tolerance as well: where there are algebraic
+    unknowns or kinks, powers hang on them and the states need not.
 
     Raises
     ------
@@ -91,6 +91,7 @@ def integrate(
     now, h = start_s, min(effort.step_s, stop_s - start_s)
     kept: list[tuple[float, float, FloatArray, FloatArray, FloatArray, ComplexArray]] = []
     grown, previous_error, previous_h = False, tol.FIRST_ERROR, h
+    swing, through = effort.swing, effort.through_j
     J, f_t, driven, W = None, None, field.drives(w), drives.W
     diagonal, give = np.arange(len(y)), np.ones(len(y))
     while now < stop_s:
@@ -130,9 +131,10 @@ def integrate(
             stepped, y1 = y1, field.consistent(y1, along[_LAST], give)
             if size > 0.0:
                 error = max(error, float(np.linalg.norm(y1[:states] - stepped[:states])) / (tolerance * size))
+        if error <= 1.0 and ledger is not None:
             gone, missed = ledger.energies(y[None], stages[None], w[None], np.array([h]))
-            through = float(np.abs(gone).max())
-            scale = tolerance * (effort.energy_j or max(0.5 * size**2, effort.through_j + through))
+            through = effort.through_j + float(np.abs(gone).max())
+            scale = tolerance * (effort.energy_j or max(0.5 * size**2, through))
             error = max(error, float(np.abs(missed).max()) / scale) if scale > 0.0 else error
         factor = min(tol.STEP_SHRINK, max(tol.STEP_GROWTH, (error**0.25) / tol.STEP_SAFETY))
         if error <= 1.0:
@@ -140,8 +142,7 @@ def integrate(
                 predicted = (previous_h / h) * (error**2 / previous_error) ** 0.25 / tol.STEP_SAFETY
                 factor = max(factor, min(tol.STEP_SHRINK, max(tol.STEP_GROWTH, predicted)))
             previous_error, previous_h = max(tol.FIRST_ERROR, error), h
-            if states < len(y):
-                effort.swing, effort.through_j = swing, effort.through_j + through
+            effort.swing, effort.through_j = swing, through
             kept.append((now, h, y, y1, stages, w))
             effort.accepted += 1
             effort.size = size

@@ -102,7 +102,9 @@ class SmoothNetwork:
             if record is not None:
                 record.begin(Stretch(own, ledger, passage.mode, start, stop, w))
             y = own.consistent(np.concatenate([passage.x, np.zeros(own.size - own.states)]), own.drives(w))
-            effort.size = max(effort.size, tol.SIZE_FLOOR * _expected_size(own, drives, w, stop - start))
+            size, energy_j = _expected(own, ledger, drives, y, w, stop - start)
+            effort.size = max(effort.size, tol.SIZE_FLOOR * size)
+            effort.through_j = max(effort.through_j, tol.SIZE_FLOOR * energy_j)
             effort.swing = max(effort.swing, float(np.abs(y[own.states :]).max(initial=0.0)))
             effort.step_s = tol.FIRST_STEP * (stop - start)
 
@@ -114,7 +116,8 @@ class SmoothNetwork:
                 energy_j = 0.5 * float((steps.y1[:, : own.states] ** 2).sum(axis=1).max())
                 passage.peak_j = max(passage.peak_j, energy_j)
 
-            y = integrate(own, drives, y, w, start, stop, self.tolerance, effort, take, ledger)
+            watched = ledger if own.size > own.states or self.laws.broken else None
+            y = integrate(own, drives, y, w, start, stop, self.tolerance, effort, take, watched)
             passage.x = y[: own.states]
             if progress is not None:
                 progress(k + 1, len(at) - 1)
@@ -144,15 +147,21 @@ def smooth_network(
     return SmoothNetwork(switched, laws_of(topology, tableau.devices, 1.0 / tableau.limit.open_ohm), tolerance)
 
 
-def _expected_size(field: Field, drives: Drives, w: ComplexArray, span_s: float) -> float:
-    """Return about how large |x| grows under the drives of an interval: at rest, or by plain growth if that is less.
+def _expected(
+    field: Field, ledger: Ledger, drives: Drives, y: FloatArray, w: ComplexArray, span_s: float
+) -> tuple[float, float]:
+    """Return about how large |x| grows under the drives of an interval, and the energy that may go through a branch.
 
-    From a state of exactly 0 a relative error means nothing; this gives it a scale.
+    From a state of exactly 0 a relative error means nothing; these give it a scale: |x| at rest, or by plain growth if
+    that is less, the laws as they are at 0, for beyond their currents would be no guide; powers with the states held.
+    The looks at the drives are a golden section apart, so that no drive is met at its zeros alone.
     """
-    u = np.zeros(field.size)
-    rows = field.drives(drives.moved_to(w, span_s * np.linspace(0.0, 1.0, tol.SIZE_LOOKS)))
-    f = rows[:, : field.size]  # the laws as they are at 0: beyond, their currents would be no guide
-    J, _ = field.jacobian(u, np.zeros_like(rows[0]), np.zeros_like(rows[0]))
+    moved = drives.moved_to(w, span_s * (np.arange(tol.SIZE_LOOKS) * tol.GOLDEN_SECTION % 1.0))
+    rows, nothing = field.drives(moved), np.zeros_like(field.drives(w))
+    f = rows[:, : field.size]
+    J, _ = field.jacobian(np.zeros(field.size), nothing, nothing)
     rest = np.linalg.lstsq(J, f.T, rcond=None)[0][: field.states]
     growth = span_s * float(np.linalg.norm(f[:, : field.states], axis=1).max())
-    return min(float(np.linalg.norm(rest, axis=0).max()), growth)
+    held = field.consistent(np.broadcast_to(y, (len(moved), len(y))), rows)
+    energy_j = span_s * float(np.abs(ledger.powers(held, moved)).max())
+    return min(float(np.linalg.norm(rest, axis=0).max()), growth), energy_j

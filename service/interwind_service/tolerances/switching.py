@@ -92,6 +92,7 @@ SAME_SOLUTION = 1e-6  # relative distance of two answers that are one
 FINER_RUNS = 2  # runs with finer steps when the ledger of the first misses the tolerance
 SIZE_FLOOR = 1e-3  # share of the expected |x| that the scale of errors starts from
 SIZE_LOOKS = 9  # instants of an interval at which the drives are looked at for it
+GOLDEN_SECTION = 0.6180339887498949  # of the interval from one look to the next
 EXPONENT_CLIP = 60.0  # exponents beyond this are continued by the tangent: e^60 of any saturation current is no current
 STIFF_VOLTAGE = 1e-9  # volts per volt of its wave below which a branch voltage is fixed by states and sources
 WAVE_STEPS = 400  # Newton steps for consistent waves; an exponential takes one for each thermal voltage
