@@ -117,6 +117,19 @@ def test_a_start_that_does_not_fit_is_made_consistent_and_told(solver, more):
     assert answer.ledger.lost_in_jumps_j == pytest.approx(18e-6, rel=1e-4)
 
 
+@pytest.mark.parametrize("more", [(), (SWITCH,)], ids=["linear", "switched"])
+def test_a_recording_is_admitted_by_what_it_keeps(solver, more):
+    """10¹² steps are refused for their number even if few are kept; memory is forecast from what is kept."""
+    thin = iw.Recording(every=10**9)
+    with pytest.raises(iw.InvalidRequest) as caught:
+        solver.time_response(network(*more), 1.0, 1e-12, recording=thin)
+    (violation,) = caught.value.violations
+    assert violation.field == "step_s"
+    assert "1e+12 steps found" in violation.description
+    size = TIME.encode_request(network=network(*more), stop_s=1.0, step_s=1e-8, recording=iw.Recording(0.5, None, 1000))
+    assert size.size.point_count == pytest.approx(50_001, abs=1)
+
+
 SHORTED = iw.Network(
     "g",
     [

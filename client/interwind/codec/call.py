@@ -8,6 +8,7 @@ from typing import Any
 
 from interwind.model.elements import Windings
 from interwind.model.network import Network
+from interwind.model.recording import Recording
 
 Arguments = Mapping[str, Any]
 
@@ -64,7 +65,15 @@ def column_count(network: Network, observe: Any) -> int:
     return len(network.nodes) + sum(item.windings.size for item in network.elements if isinstance(item, Windings))
 
 
-def point_count(stop_s: float, step_s: float) -> int:
-    """Return about how many samples a run has, for admission; 0 where the numbers make no sense."""
-    ratio = stop_s / step_s if step_s > 0 and stop_s >= 0 else 0.0
-    return int(ratio) + 1 if 0.0 <= ratio < 2.0**62 else 0
+def point_count(stop_s: float, step_s: float, recording: Recording | None = None) -> int:
+    """Return about how many rows a run returns, for admission; 0 where the numbers make no sense.
+
+    A recording keeps every so many samples of its window, with an envelope three rows for each.
+    """
+    span_s, rows = stop_s, 1
+    if recording is not None:
+        last_s = stop_s if recording.until_s is None else min(stop_s, recording.until_s)
+        span_s, rows = last_s - recording.from_s, 3 if recording.envelope else 1
+        step_s *= recording.every
+    ratio = span_s / step_s if step_s > 0 and span_s >= 0 else 0.0
+    return rows * (int(ratio) + 1) if 0.0 <= ratio < 2.0**60 else 0

@@ -108,10 +108,10 @@ def _figures_arguments(message: Any) -> dict[str, Any]:
 def _time_request(arguments: Arguments) -> Any:
     network = arguments["network"]
     observe = observables_to_messages(arguments.get("observe"), "observe")
-    stop_s, step_s = float(arguments["stop_s"]), float(arguments["step_s"])
+    stop_s, step_s, recording = float(arguments["stop_s"]), float(arguments["step_s"]), arguments.get("recording")
     message = response_service_pb2.ComputeTimeResponseRequest(
         size=response_pb2.Size(
-            point_count=point_count(stop_s, step_s),
+            point_count=point_count(stop_s, step_s, recording),
             observable_count=column_count(network, observe),
             **size_of_network(network),
         ),
@@ -121,7 +121,6 @@ def _time_request(arguments: Arguments) -> Any:
         observe=observe,
         tolerance=float(arguments.get("tolerance") or 0.0),
     )
-    recording = arguments.get("recording")
     if recording is not None:
         message.recording.from_s, message.recording.every_count = recording.from_s, recording.every
         message.recording.envelope = recording.envelope

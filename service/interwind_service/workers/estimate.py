@@ -65,7 +65,7 @@ def recount(arguments: Mapping[str, Any]) -> dict[str, int]:
         counts["point_count"] = int(arguments["frequency_hz"].size)
     elif "step_s" in arguments:
         end_s = arguments["stop_s"] if "stop_s" in arguments else arguments["period_s"]
-        counts["point_count"] = point_count(end_s, arguments["step_s"])
+        counts["point_count"] = point_count(end_s, arguments["step_s"], arguments.get("recording"))
     return counts
 
 
