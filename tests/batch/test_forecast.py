@@ -25,7 +25,7 @@ ROWS = 10
         iw.PeriodicAnalysis(1e-5, 1e-8),
         iw.FrequencyAnalysis(link.FREQUENCY_HZ, link.OBSERVE),
     ],
-    ids=["long", "short", "periodic", "frequency"],
+    ids=["many points", "few points", "periodic", "frequency"],
 )
 def test_forecast_is_of_the_right_size(analysis):
     """Processor seconds of some rows, forecast and spent, agree within a factor."""
