@@ -22,6 +22,25 @@ IntArray = NDArray[np.int64]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
+class BrokenLine:
+    """Straight pieces between ``knot`` (p - 1,), each from (``start``, ``current_a``) at ``slope``, all (p,)."""
+
+    knot: FloatArray
+    start: FloatArray
+    current_a: FloatArray
+    slope: FloatArray
+    odd: bool
+
+    def at(self, argument: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return currents and slopes, shapes of ``argument``; an ``odd`` line is its own image in the origin."""
+        size = np.abs(argument) if self.odd else argument
+        piece = self.knot.searchsorted(size, side="right")
+        slope = self.slope[piece]
+        current = self.current_a[piece] + slope * (size - self.start[piece])
+        return (np.copysign(current, argument) if self.odd else current), slope
+
+
+@dataclass(frozen=True, slots=True, eq=False)
 class Laws:
     """``branch`` (q,); exponential, power and piecewise-linear branches by their positions among them.
 
@@ -37,7 +56,7 @@ class Laws:
     reference_v: FloatArray
     reference_a: FloatArray
     exponent: FloatArray
-    broken: tuple[tuple[int, LinearDiode | SaturableBranch], ...]
+    broken: tuple[tuple[int, BrokenLine], ...]
     leak_s: float
 
     def current(self, argument: FloatArray) -> FloatArray:
@@ -54,12 +73,11 @@ class Laws:
         if len(self.exponential) == argument.shape[-1]:
             return self._exponential(argument)
         current, slope = np.empty_like(argument), np.empty_like(argument)
-        own = self.exponential
-        current[..., own], slope[..., own] = self._exponential(argument[..., own])
-        own = self.power
-        current[..., own], slope[..., own] = self._power(argument[..., own])
-        for position, device in self.broken:
-            current[..., position], slope[..., position] = _broken(device, argument[..., position])
+        for own, law in ((self.exponential, self._exponential), (self.power, self._power)):
+            if own.size:
+                current[..., own], slope[..., own] = law(argument[..., own])
+        for position, line in self.broken:
+            current[..., position], slope[..., position] = line.at(argument[..., position])
         return current, slope
 
     def _exponential(self, v: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -107,20 +125,18 @@ class Laws:
             self.reference_v[power],
             self.reference_a[power],
             self.exponent[power],
-            tuple((place[k], device) for k, device in self.broken if k in place),
+            tuple((place[k], line) for k, line in self.broken if k in place),
             self.leak_s,
         )
 
 
-def _broken(device: LinearDiode | SaturableBranch, argument: FloatArray) -> tuple[FloatArray, FloatArray]:
+def _broken_line(device: LinearDiode | SaturableBranch) -> BrokenLine:
     if isinstance(device, LinearDiode):
-        on = argument > device.forward_v
-        slope = np.where(on, 1.0 / device.on_ohm, 1.0 / device.off_ohm)
-        return device.forward_v / device.off_ohm * on + slope * (argument - device.forward_v * on), slope
-    flux = np.abs(argument)
-    piece = np.clip(np.searchsorted(device.flux_wb, flux, side="right") - 1, 0, len(device.flux_wb) - 2)
-    slope = (np.diff(device.current_a) / np.diff(device.flux_wb))[piece]
-    return np.sign(argument) * (device.current_a[piece] + slope * (flux - device.flux_wb[piece])), slope
+        V, g = device.forward_v, 1.0 / device.off_ohm
+        pieces = (np.array([V]), np.array([0.0, V]), np.array([0.0, g * V]), np.array([g, 1.0 / device.on_ohm]))
+        return BrokenLine(*pieces, odd=False)
+    slope = np.diff(device.current_a) / np.diff(device.flux_wb)
+    return BrokenLine(device.flux_wb[1:-1], device.flux_wb[:-1], device.current_a[:-1], slope, odd=True)
 
 
 def laws_of(topology: Topology, devices: tuple[Device, ...], leak_s: float) -> Laws:
@@ -142,7 +158,7 @@ def laws_of(topology: Topology, devices: tuple[Device, ...], leak_s: float) -> L
             parameters["is"].append(float(element.saturation_current_a or 0.0))
             parameters["vt"].append(float(element.thermal_voltage_v or 0.0))
         else:
-            broken.append((position, by_branch[k]))
+            broken.append((position, _broken_line(by_branch[k])))
     return Laws(
         np.array(branch, dtype=np.int64),
         np.array(exponential, dtype=np.int64),
