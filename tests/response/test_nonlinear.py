@@ -11,8 +11,10 @@ from scipy.optimize import brentq
 import interwind as iw
 from interwind_service.network.topology import number
 from interwind_service.response.handover import Handover
-from interwind_service.response.nonlinear import NonlinearRun
+from interwind_service.response.nonlinear import NonlinearRecord, NonlinearRun
 from interwind_service.response.recording import Window
+from interwind_service.response.rosenbrock import Effort, integrate
+from interwind_service.response.smooth_network import Stretch, smooth_network
 from interwind_service.response.switching import time_response_switching
 
 
@@ -63,6 +65,36 @@ def test_order_four():
         errors.append(np.abs((samples - exact)[[-1]] / np.abs(exact).max(axis=0)).max())
     order = -np.polyfit(np.log(steps), np.log(errors), 1)[0]
     assert order == pytest.approx(4.0, abs=0.35)
+
+
+def even_steps(topology, stop_s: float, steps: int) -> tuple[np.ndarray, float]:
+    """The state after steps of one length, the tolerance out of reach, and the gap of the ledger, J."""
+    network = smooth_network(topology, stop_s, stop_s, 1.0)
+    drives, mode = network.tableau.drives, network.start_mode(np.zeros(network.tableau.states))
+    field, ledger = network.equations(mode)
+    w, h = drives.state(0.0), stop_s / steps
+    y = start = field.consistent(np.zeros(field.size), field.drives(w))
+    record = NonlinearRecord(network, stop_s, 1, Handover(topology, [], Window(0, 1, 1)))
+    record.begin(Stretch(field, ledger, mode, 0.0, stop_s, w))
+    for k in range(steps):
+        effort = Effort(size=1.0, step_s=2.0 * h)
+        y = integrate(field, drives, y, w, k * h, (k + 1) * h, 1e30, effort, record.take, None)
+        assert effort.accepted == 1
+        w = drives.moved(drives.state(0.0), (k + 1) * h)
+    energy = record.energy(start[: field.states], y[: field.states], 0.0)
+    return y[: field.states], abs(energy.ledger.numerical_j)
+
+
+def test_state_and_energy_are_of_order_four_in_the_step():
+    """With steps of one length both errors fall with its fourth power (Hairer & Wanner 1996: RODAS is of order 4)."""
+    topology, stop_s, numbers = number(clipped_tank(0.3)), 10e-6, np.array([50, 100, 200, 400])
+    exact, _ = even_steps(topology, stop_s, 1600)
+    runs = [even_steps(topology, stop_s, int(steps)) for steps in numbers]
+    of_state = [float(np.linalg.norm(y - exact)) for y, _ in runs]
+    of_energy = [gap for _, gap in runs]
+    for errors in (of_state, of_energy):
+        order = np.polyfit(np.log(stop_s / numbers), np.log(errors), 1)[0]
+        assert order == pytest.approx(4.0, abs=0.1)
 
 
 def test_ledger_closes_with_the_tolerance():
