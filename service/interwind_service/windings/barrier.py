@@ -47,11 +47,14 @@ def best_completion(matrix: FloatArray, pairs: Pairs) -> BestCompletion:
                 inverse = _inverse(K - t * identity)
                 square = inverse @ inverse
                 gradient, hessian = np.empty(m + 1), np.empty((m + 1, m + 1))
-                gradient[:m], hessian[:m, :m] = 2.0 * inverse[pairs[:, 0], pairs[:, 1]], _curvature(inverse, pairs)
+                gradient[:m], hessian[:m, :m] = (
+                    2.0 * inverse[pairs[:, 0], pairs[:, 1]],
+                    log_det_curvature(inverse, pairs),
+                )
                 gradient[m], hessian[m, m] = 1.0 / mu - np.trace(inverse), np.trace(square)
                 hessian[:m, m] = hessian[m, :m] = -2.0 * square[pairs[:, 0], pairs[:, 1]]
-                step, decrement = _newton(hessian, gradient)
-                move = _spread(step[:m], pairs, n)
+                step, decrement = newton_step(hessian, gradient)
+                move = spread(step[:m], pairs, n)
                 length = _line_search(K - t * identity, move - step[m] * identity, step[m] / mu)
                 K, t = K + length * move, t + length * step[m]
                 if decrement < BARRIER_DECREMENT:
@@ -71,8 +74,8 @@ def extreme_value(matrix: FloatArray, pairs: Pairs, target: int, direction: floa
                 inverse = _inverse(K)
                 gradient = 2.0 * inverse[pairs[:, 0], pairs[:, 1]]
                 gradient[target] += direction / mu
-                step, decrement = _newton(_curvature(inverse, pairs), gradient)
-                move = _spread(step, pairs, n)
+                step, decrement = newton_step(log_det_curvature(inverse, pairs), gradient)
+                move = spread(step, pairs, n)
                 K = K + _line_search(K, move, direction * step[target] / mu) * move
                 if decrement < BARRIER_DECREMENT:
                     break
@@ -88,7 +91,7 @@ def _parameters(scale: float, n: int) -> Iterator[float]:
         yield mu
 
 
-def _curvature(inverse: FloatArray, pairs: Pairs) -> FloatArray:
+def log_det_curvature(inverse: FloatArray, pairs: Pairs) -> FloatArray:
     """−∂² log det / ∂x_ij ∂x_kl = 2 (W_ik W_jl + W_il W_jk) with W the inverse."""
     first, second = inverse[pairs[:, 0]], inverse[pairs[:, 1]]
     straight = first[:, pairs[:, 0]] * second[:, pairs[:, 1]]
@@ -97,7 +100,8 @@ def _curvature(inverse: FloatArray, pairs: Pairs) -> FloatArray:
     return straight
 
 
-def _newton(hessian: FloatArray, gradient: FloatArray) -> tuple[FloatArray, float]:
+def newton_step(hessian: FloatArray, gradient: FloatArray) -> tuple[FloatArray, float]:
+    """Return Newton's step of a concave function, −∂² = ``hessian``, and its decrement."""
     scale = 1.0 / np.sqrt(hessian.diagonal())
     scaled, right = hessian * np.outer(scale, scale), gradient * scale
     try:
@@ -131,7 +135,8 @@ def _inverse(matrix: FloatArray) -> FloatArray:
     return 0.5 * (inverse + inverse.T)
 
 
-def _spread(values: FloatArray, pairs: Pairs, size: int) -> FloatArray:
-    spread = np.zeros((size, size))
-    spread[pairs[:, 0], pairs[:, 1]] = spread[pairs[:, 1], pairs[:, 0]] = values
-    return spread
+def spread(values: FloatArray, pairs: Pairs, size: int) -> FloatArray:
+    """Return the symmetric matrix with these values at the pairs and zeros elsewhere."""
+    found = np.zeros((size, size))
+    found[pairs[:, 0], pairs[:, 1]] = found[pairs[:, 1], pairs[:, 0]] = values
+    return found

@@ -12,6 +12,7 @@ import numpy as np
 from interwind.errors import InvalidRequest
 from interwind.model.frozen import FloatArray
 from interwind_service.tolerances import COMPLETION_DECREMENT, COMPLETION_STEPS, COMPLETION_UNKNOWN_PAIRS
+from interwind_service.windings.barrier import Pairs, log_det_curvature, newton_step, spread
 from interwind_service.windings.completable import complete
 from interwind_service.windings.pattern import fill_chordal, pattern_of
 from interwind_service.windings.spectrum import rounding_bound
@@ -51,23 +52,19 @@ def largest_determinant(coupling: FloatArray) -> FloatArray | None:
             f"{len(pairs)} unknown pairs found in a loose pattern, more than can be completed at once "
             f"({COMPLETION_UNKNOWN_PAIRS}): measure more pairs, or complete parts of the set",
         )
-    return _newton(start, (pairs[:, 0], pairs[:, 1]))
+    return _newton(start, pairs)
 
 
-def _newton(K: FloatArray, pairs: tuple[np.ndarray, np.ndarray]) -> FloatArray:
-    """Maximise log det K over the unknown pairs: gradient 2 Γ_ij, curvature 2 (Γ_ik Γ_jl + Γ_il Γ_jk), Γ = K⁻¹.
+def _newton(K: FloatArray, pairs: Pairs) -> FloatArray:
+    """Maximise log det K over the unknown pairs: gradient 2 Γ_ij, Γ = K⁻¹.
 
     Steps damped by 1 / (1 + decrement) stay inside the cone.
     """
-    i, j = pairs
     for _ in range(COMPLETION_STEPS):
-        W = np.linalg.inv(K)
-        curvature = 2.0 * (W[np.ix_(i, i)] * W[np.ix_(j, j)] + W[np.ix_(i, j)] * W[np.ix_(j, i)])
-        step = np.linalg.solve(curvature, 2.0 * W[pairs])
-        decrement = float(np.sqrt(max(2.0 * step @ W[pairs], 0.0)))
-        K = K.copy()
-        K[i, j] += step if decrement < 0.25 else step / (1.0 + decrement)
-        K[j, i] = K[i, j]
+        inverse = np.linalg.inv(K)
+        gradient = 2.0 * inverse[pairs[:, 0], pairs[:, 1]]
+        step, decrement = newton_step(log_det_curvature(inverse, pairs), gradient)
+        K = K + spread(step if decrement < 0.25 else step / (1.0 + decrement), pairs, len(K))
         if decrement < COMPLETION_DECREMENT:
             break
     return K
