@@ -66,13 +66,13 @@ class Field:
 
     def value(self, u: FloatArray, driven: FloatArray) -> FloatArray:
         """Return f, shape (..., d)."""
-        rows: FloatArray = u @ self.linear_u.T
+        rows: FloatArray = u.dot(self.linear_u.T)
         rows += driven
-        d, e = u.shape[-1], len(self.direct.branch)
+        d, e = u.shape[-1], self.over_j.shape[1]
         f: FloatArray = rows[..., :d]
         if e:
             j = self.direct.current(rows[..., d : d + e])
-            f += j @ self.over_j.T
+            f += j.dot(self.over_j.T)
         if d > self.states:
             wave = rows[..., d + e :]
             if e:
@@ -82,6 +82,8 @@ class Field:
 
     def jacobian(self, u: FloatArray, driven: FloatArray, rate: FloatArray) -> tuple[FloatArray, FloatArray]:
         """Return ∂f/∂u, shape (..., d, d), and ∂f/∂t, shape (..., d), for drives that change by ``rate``."""
+        if u.ndim == 1 and self.size == self.states:
+            return self._jacobian_at(u, driven, rate)
         _, argument, wave = self._cut(u @ self.linear_u.T + driven)
         over_u, direct_u, wave_u = self._cut(self.linear_u.T)
         J = np.array(np.broadcast_to(over_u.T, (*u.shape[:-1], self.size, self.size)))
@@ -101,6 +103,14 @@ class Field:
             J[..., self.states :, :] -= slope[..., :, None] * wave_rows
             f_t[..., self.states :] -= slope * wave_rate
         return J, f_t
+
+    def _jacobian_at(self, u: FloatArray, driven: FloatArray, rate: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return the same at one point where nothing is solved for by waves; every step of a run asks for it."""
+        d = len(u)
+        direct_u = self.linear_u[d:]
+        slope = self.direct.currents(direct_u.dot(u) + driven[d:])[1]
+        over = self.over_j * slope
+        return self.linear_u[:d] + over.dot(direct_u), rate[:d] + over.dot(rate[d:])
 
     def direct_currents(self, u: FloatArray, driven: FloatArray) -> tuple[FloatArray, FloatArray]:
         """Return currents and slopes of the direct branches, each (..., e)."""

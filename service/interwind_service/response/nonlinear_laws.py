@@ -63,8 +63,10 @@ class Laws:
         """Return currents alone, as `currents` does; the inner loop of a run asks for nothing else."""
         if len(self.exponential) == argument.shape[-1]:
             u = argument / self.thermal_v
-            if not (u > tol.EXPONENT_CLIP).any():
-                found: FloatArray = self.saturation_a * np.expm1(u) + self.leak_s * argument
+            if np.maximum.reduce(u, axis=None, initial=0.0) <= tol.EXPONENT_CLIP:
+                found: FloatArray = np.expm1(u, out=u)
+                found *= self.saturation_a
+                found += self.leak_s * argument
                 return found
         return self.currents(argument)[0]
 

@@ -8,11 +8,13 @@ their energy, so one scale, the largest |x| so far, serves all of them.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy.linalg.lapack import dgetrf, dgetri
 
 from interwind.errors import AccuracyNotReached
 from interwind_service import tolerances as tol
@@ -93,7 +95,7 @@ def integrate(
     grown, previous_error, previous_h = False, tol.FIRST_ERROR, h
     swing, through = effort.swing, effort.through_j
     J, f_t, driven, W = None, None, field.drives(w), drives.W
-    diagonal, give = np.arange(len(y)), np.ones(len(y))
+    d, give, couplings = len(y), np.ones(len(y)), np.stack((A, C), axis=1)
     while now < stop_s:
         last = now + h >= stop_s * (1.0 - tol.TIME_ROUNDING)
         if last:
@@ -107,22 +109,24 @@ def integrate(
             J, f_t = field.jacobian(y, driven, field.drives(W @ w))
         moved = drives.moved_to(w, C_TIME * h) if not drives.steady else np.broadcast_to(w, (len(C_TIME), len(w)))
         along = field.drives(moved)
-        shifted = -J
+        along[:, :d] += (h * D_TIME)[:, None] * f_t  # nothing for the last stages, whose drives are those of the end
         weight = mass / h
-        shifted[diagonal, diagonal] += weight / GAMMA
-        inverse = np.linalg.inv(shifted)
-        stages = np.empty((len(C_TIME), len(y)))
-        for i in range(len(C_TIME)):
-            argument = y + A[i, :i] @ stages[:i] if i else y
+        shifted = -J
+        shifted.reshape(-1)[:: d + 1] += weight / GAMMA
+        inverse = _inverse(shifted)
+        stages = np.empty((len(C_TIME), d))
+        argument = y
+        np.dot(inverse, field.value(y, along[0]), out=stages[0])
+        for i in range(1, len(C_TIME)):
+            step, held = couplings[i, :, :i].dot(stages[:i])
+            argument = y + step
             right = field.value(argument, along[i])
-            if i:
-                right += weight * (C[i, :i] @ stages[:i])
-            if D_TIME[i]:
-                right += (h * D_TIME[i]) * f_t
-            stages[i] = inverse @ right
+            held *= weight
+            right += held
+            np.dot(inverse, right, out=stages[i])
         y1 = argument + stages[_LAST]
-        size = max(effort.size, float(np.linalg.norm(y1[:states])))
-        error = float(np.linalg.norm(stages[_LAST, :states])) / (tolerance * size) if size > 0.0 else 0.0
+        size = max(effort.size, _length(y1[:states]))
+        error = _length(stages[_LAST, :states]) / (tolerance * size) if size > 0.0 else 0.0
         if not np.isfinite(error):
             error = tol.OVERFLOWN_ERROR
         if error <= 1.0 and states < len(y):  # what is left of the algebraic equations would be an error next
@@ -130,7 +134,7 @@ def integrate(
             give[:states], give[states:] = tolerance * size, tol.WAVE_GIVE * swing
             stepped, y1 = y1, field.consistent(y1, along[_LAST], give)
             if size > 0.0:
-                error = max(error, float(np.linalg.norm(y1[:states] - stepped[:states])) / (tolerance * size))
+                error = max(error, _length(y1[:states] - stepped[:states]) / (tolerance * size))
         if error <= 1.0 and ledger is not None:
             gone, missed = ledger.energies(y[None], stages[None], w[None], np.array([h]))
             through = effort.through_j + float(np.abs(gone).max())
@@ -165,6 +169,21 @@ def integrate(
     if kept:
         sink(_stack(kept, give.copy()))
     return y
+
+
+def _inverse(matrix: FloatArray) -> FloatArray:
+    """Return the inverse of a matrix (d, d), which is lost: its transpose is in the order LAPACK counts in."""
+    factors, pivots, _ = dgetrf(matrix.T, overwrite_a=True)
+    inverse, info = dgetri(factors, pivots, overwrite_lu=True)
+    if info:
+        raise np.linalg.LinAlgError("singular matrix")
+    turned: FloatArray = inverse.T
+    return turned
+
+
+def _length(x: FloatArray) -> float:
+    """Return |x|."""
+    return math.sqrt(x.dot(x))
 
 
 def _stack(
