@@ -86,7 +86,7 @@ class Field:
             return self._jacobian_at(u, driven, rate)
         _, argument, wave = self._cut(u @ self.linear_u.T + driven)
         over_u, direct_u, wave_u = self._cut(self.linear_u.T)
-        J = np.array(np.broadcast_to(over_u.T, (*u.shape[:-1], self.size, self.size)))
+        J = over_u.T.copy() if u.ndim == 1 else np.tile(over_u.T, (*u.shape[:-1], 1, 1))
         f_t = rate[..., : self.size].copy()
         if argument.size:
             j, slope = self.direct.currents(argument)
@@ -114,6 +114,9 @@ class Field:
 
     def direct_currents(self, u: FloatArray, driven: FloatArray) -> tuple[FloatArray, FloatArray]:
         """Return currents and slopes of the direct branches, each (..., e)."""
+        if not self.direct.branch.size:
+            nothing = np.empty((*u.shape[:-1], 0))
+            return nothing, nothing
         return self.direct.currents(self._cut(u @ self.linear_u.T + driven)[1])
 
     def direct_change(self, u: FloatArray) -> FloatArray:

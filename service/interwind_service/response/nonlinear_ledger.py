@@ -13,7 +13,6 @@ from interwind_service.response.drives import Drives
 from interwind_service.response.energy import PowerTerms
 from interwind_service.response.nonlinear_field import Field
 from interwind_service.response.tableaux import C_TIME, D_TIME, GAMMA, A, B, C
-from interwind_service.response.trajectory import Rows
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]
@@ -22,36 +21,33 @@ _STAGES = GAMMA * np.linalg.inv(np.eye(len(C_TIME)) - GAMMA * C)
 _RESULT, _ERROR = B @ _STAGES, _STAGES[-1]
 
 
-class _Factor:
-    """One factor of all powers over y, direct currents and drives."""
-
-    def __init__(self, rows: Rows, field: Field, drives: Drives) -> None:
-        self.u, self.j = (rows.over @ field.signal_u).T, (rows.over @ field.signal_j).T
-        self.w, self.offset = (rows.over @ field.signal_w).T, rows.offset
-        self.rate = drives.W.T @ self.w
-
-    def at(self, y: FloatArray, j: FloatArray, w: ComplexArray) -> FloatArray:
-        return y @ self.u + j @ self.j + (w @ self.w).real + self.offset
-
-    def along(self, u: FloatArray, lifted: FloatArray) -> FloatArray:
-        return u @ self.u + lifted @ self.j
-
-    def in_time(self, lifted: FloatArray, w: ComplexArray) -> FloatArray:
-        return lifted @ self.j + (w @ self.rate).real
-
-
 class Ledger:
-    """The power terms of one field, and their integrals over steps."""
+    """The power terms of one field, products of two factors each, and their integrals over steps."""
 
     def __init__(self, field: Field, drives: Drives, terms: PowerTerms) -> None:
         self.field, self.drives, self.terms = field, drives, terms
-        self.one, self.other = _Factor(terms.one, field, drives), _Factor(terms.other, field, drives)
+        over = np.vstack([terms.one.over, terms.other.over])  # both factors of all terms at once
+        self.u, self.j, self.w = ((over @ own).T for own in (field.signal_u, field.signal_j, field.signal_w))
+        self.offset = np.concatenate([terms.one.offset, terms.other.offset])
         self.turn = drives.W.T
+        self.rate = self.turn @ self.w
+
+    def _factors(self, y: FloatArray, j: FloatArray, w: ComplexArray) -> tuple[FloatArray, FloatArray]:
+        found = y @ self.u + (w @ self.w).real + self.offset
+        if j.shape[-1]:
+            found += j @ self.j
+        half = found.shape[-1] // 2
+        return found[..., :half], found[..., half:]
+
+    def _product_rate(self, change: FloatArray, one: FloatArray, other: FloatArray) -> FloatArray:
+        half = change.shape[-1] // 2
+        return other * change[..., :half] + one * change[..., half:]
 
     def powers(self, y: FloatArray, w: ComplexArray) -> FloatArray:
-        """Return every power term for unknowns y (T, d) and drives w (T, k), W, shape (T, terms)."""
+        """Return every power term for unknowns y (..., d) and drives w (..., k), W, shape (..., terms)."""
         j, _ = self.field.direct_currents(y, self.field.drives(w))
-        return self.one.at(y, j, w) * self.other.at(y, j, w)
+        one, other = self._factors(y, j, w)
+        return one * other
 
     def energies(
         self, y: FloatArray, stages: FloatArray, w: ComplexArray, length_s: FloatArray
@@ -62,23 +58,18 @@ class Ledger:
         ----------
         y : shape (S, d), at the start of each step; ``stages`` (S, 6, d); ``w`` (S, k) the drives there.
         """
-        field, one, other = self.field, self.one, self.other
-        h = length_s[:, None, None]
+        field, h = self.field, length_s[:, None, None]
         j, slope = field.direct_currents(y, field.drives(w))
-        a, b = one.at(y, j, w)[:, None], other.at(y, j, w)[:, None]
-        lifted_t = slope * field.direct_rate(w @ self.turn)
-        in_time = b[:, 0] * one.in_time(lifted_t, w) + a[:, 0] * other.in_time(lifted_t, w)
-        lifted = slope[:, None] * field.direct_change(stages)
-        right = b * one.along(stages, lifted) + a * other.along(stages, lifted)
-        right += h * D_TIME[:, None] * in_time[:, None]
-        argument = y[:, None] + A @ stages
-        shape = (len(y), len(C_TIME), len(w[0]))
-        moved = np.broadcast_to(w[:, None], shape).reshape(-1, shape[2])
+        one, other = self._factors(y, j, w)
+        change, in_time = stages @ self.u, (w @ self.rate).real
+        if j.shape[-1]:
+            change += (slope[:, None] * field.direct_change(stages)) @ self.j
+            in_time += (slope * field.direct_rate(w @ self.turn)) @ self.j
+        right = self._product_rate(change, one[:, None], other[:, None])
+        right += h * D_TIME[:, None] * self._product_rate(in_time, one, other)[:, None]
+        moved = w[:, None]
         if not self.drives.steady:
-            moved = self.drives.moved_to(moved, (length_s[:, None] * C_TIME).ravel())
-        moved = moved.reshape(shape)
-        j, _ = field.direct_currents(argument, field.drives(moved))
-        right += one.at(argument, j, moved) * other.at(argument, j, moved)
-        energy: FloatArray = length_s[:, None] * (_RESULT @ right)
-        error: FloatArray = length_s[:, None] * (_ERROR @ right)
-        return energy, error
+            times = (length_s[:, None] * C_TIME).ravel()
+            moved = self.drives.moved_to(np.repeat(w, len(C_TIME), axis=0), times).reshape(len(w), len(C_TIME), -1)
+        right += self.powers(y[:, None] + A @ stages, moved)
+        return length_s[:, None] * (_RESULT @ right), length_s[:, None] * (_ERROR @ right)
