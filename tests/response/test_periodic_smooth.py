@@ -133,6 +133,26 @@ def test_the_ledger_closes_over_the_period():
     assert answer.evidence.energy_error < 1e-6
 
 
+@pytest.mark.parametrize("series_ohm", [0.5, 1e-3])
+def test_a_bridge_of_exponential_diodes(series_ohm: float):
+    """From a state of exactly 0, the source across two diodes and a capacitor: charge balance, and the peak at most
+    the crest less two drops at the mean current.
+    """
+    arms = {"D1": ("b", "x"), "D2": ("g", "x"), "D3": ("y", "b"), "D4": ("y", "g")}
+    network = line(
+        20.0,
+        iw.Resistor("Rs", "a", "b", series_ohm),
+        iw.Capacitor("C", "x", "y", 2e-3),
+        iw.Resistor("R", "x", "y", 50.0),
+        *(iw.Diode(k, a, b, saturation_current_a=1e-12, thermal_voltage_v=0.02585) for k, (a, b) in arms.items()),
+    )
+    volt, flow = iw.NodeVoltage("x", "y"), iw.ElementCurrent("D1")
+    answer = periodic_response(network, 0.02, 1e-3, [volt, flow])
+    assert answer.mean(volt) / 50.0 == pytest.approx(2.0 * answer.mean(flow), rel=1e-5)
+    assert 17.0 < answer.mean(volt) < answer.peak(volt) < 20.0 - 2.0 * 0.02585 * np.log(answer.mean(flow) / 1e-12)
+    assert [answer.mean_power_w[k] for k in arms] == pytest.approx([answer.mean_power_w["D1"]] * 4, rel=1e-4)
+
+
 def test_a_chopper_with_timed_switch():
     """Mean voltages of the inductor vanish; a period of the diode's own time is that of the switch."""
     period = 1e-4

@@ -163,9 +163,8 @@ class Field:
                 break
             rows = self.jacobian(u, driven, still)[0][..., own, :] * give
             norm = np.linalg.norm(rows, axis=-1, keepdims=True)
-            rows /= norm
-            along = np.linalg.solve(rows @ rows.swapaxes(-1, -2), (gap / norm[..., 0])[..., None])
-            step = np.where(wrong, give * (rows.swapaxes(-1, -2) @ along)[..., 0], 0.0)
+            norm[norm == 0.0] = 1.0
+            step = np.where(wrong, give * (np.linalg.pinv(rows / norm) @ (gap[..., None] / norm))[..., 0], 0.0)
             before = u.copy()
             for _ in range(tol.WAVE_HALVINGS):
                 u = before - step

@@ -102,7 +102,7 @@ class SmoothNetwork:
             if record is not None:
                 record.begin(Stretch(own, ledger, passage.mode, start, stop, w))
             y = own.consistent(np.concatenate([passage.x, np.zeros(own.size - own.states)]), own.drives(w))
-            size, energy_j = _expected(own, ledger, drives, y, w, stop - start)
+            size, energy_j = _expected(own, drives, w, stop - start)
             effort.size = max(effort.size, tol.SIZE_FLOOR * size)
             effort.through_j = max(effort.through_j, tol.SIZE_FLOOR * energy_j)
             effort.swing = max(effort.swing, float(np.abs(y[own.states :]).max(initial=0.0)))
@@ -147,14 +147,13 @@ def smooth_network(
     return SmoothNetwork(switched, laws_of(topology, tableau.devices, 1.0 / tableau.limit.open_ohm), tolerance)
 
 
-def _expected(
-    field: Field, ledger: Ledger, drives: Drives, y: FloatArray, w: ComplexArray, span_s: float
-) -> tuple[float, float]:
+def _expected(field: Field, drives: Drives, w: ComplexArray, span_s: float) -> tuple[float, float]:
     """Return about how large |x| grows under the drives of an interval, and the energy that may go through a branch.
 
     From a state of exactly 0 a relative error means nothing; these give it a scale: |x| at rest, or by plain growth if
-    that is less, the laws as they are at 0, for beyond their currents would be no guide; powers with the states held.
-    The looks at the drives are a golden section apart, so that no drive is met at its zeros alone.
+    that is less, the laws as they are at 0, for beyond their currents would be no guide; U² / ρ of what the drives put
+    across the laws, and a small share of the |x| that it would charge. The looks at the drives are a golden section
+    apart, so that no drive is met at its zeros alone.
     """
     moved = drives.moved_to(w, span_s * (np.arange(tol.SIZE_LOOKS) * tol.GOLDEN_SECTION % 1.0))
     rows, nothing = field.drives(moved), np.zeros_like(field.drives(w))
@@ -162,6 +161,7 @@ def _expected(
     J, _ = field.jacobian(np.zeros(field.size), nothing, nothing)
     rest = np.linalg.lstsq(J, f.T, rcond=None)[0][: field.states]
     growth = span_s * float(np.linalg.norm(f[:, : field.states], axis=1).max())
-    held = field.consistent(np.broadcast_to(y, (len(moved), len(y))), rows)
-    energy_j = span_s * float(np.abs(ledger.powers(held, moved)).max())
-    return min(float(np.linalg.norm(rest, axis=0).max()), growth), energy_j
+    across_v = float(np.abs(rows[:, field.size :]).max(initial=0.0))
+    energy_j = span_s * across_v**2 / field.rho
+    size = min(float(np.linalg.norm(rest, axis=0).max()), growth)
+    return max(size, tol.SIZE_FLOOR * float(np.sqrt(2.0 * energy_j))), energy_j
