@@ -28,7 +28,11 @@ PALETTE = (
     lambda name, a, b: iw.Windings(name, PERFECT, {"x": (a, b), "y": ("g", b)}),
     lambda name, a, b: iw.IdealTransformer(name, a, "g", b, "g", 2.0),
 )
-DIODE = (lambda name, a, b: iw.Diode(name, a, b),)
+DEVICES = (
+    lambda name, a, b: iw.Diode(name, a, b),
+    lambda name, a, b: iw.Diode(name, a, b, saturation_current_a=1e-9, thermal_voltage_v=0.026),
+    lambda name, a, b: iw.SaturableInductor(name, a, b, [-1.0, 0.0, 1.0], [-0.1, 0.0, 0.1]),
+)
 MANY = np.concatenate(([0.0], np.geomspace(1.0, 1e6, 60)))
 FREQUENCY = {
     "many": lambda net: engine.frequency_response(net, MANY),
@@ -70,19 +74,22 @@ def answered(calls, network):
     return len(calls) - len(refusals)
 
 
-SHORT = [(0, 100), pytest.param(1, 3000, marks=[pytest.mark.long, pytest.mark.timeout(1800)])]
+def drawn(few, many):
+    """A few networks in every run, many with --long."""
+    marks = [pytest.mark.long, pytest.mark.timeout(1800)]
+    return pytest.mark.parametrize(("seed", "count"), [(0, few), pytest.param(1, many, marks=marks)])
 
 
-@pytest.mark.parametrize(("seed", "count"), SHORT)
+@drawn(100, 2000)
 def test_over_frequency(seed, count):
     """Drawn with switches, which stand as at 0 s; a quarter of the calls at least is answered."""
     assert sum(answered(FREQUENCY, net) for net in networks(seed, count, PALETTE)) > count * len(FREQUENCY) / 4
 
 
-@pytest.mark.parametrize(("seed", "count"), SHORT)
+@drawn(40, 600)
 def test_over_time(seed, count):
-    """Drawn with ideal diodes, too."""
-    assert sum(answered(TIME, net) for net in networks(seed, count, PALETTE + DIODE)) > count * len(TIME) / 4
+    """Drawn with ideal and exponential diodes and saturable branches, too."""
+    assert sum(answered(TIME, net) for net in networks(seed, count, PALETTE + DEVICES)) > count * len(TIME) / 4
 
 
 @pytest.mark.parametrize(

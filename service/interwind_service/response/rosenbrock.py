@@ -173,6 +173,8 @@ def integrate(
 
 def _inverse(matrix: FloatArray) -> FloatArray:
     """Return the inverse of a matrix (d, d), which is lost: its transpose is in the order LAPACK counts in."""
+    if not matrix.size:
+        return matrix
     factors, pivots, _ = dgetrf(matrix.T, overwrite_a=True)
     inverse, info = dgetri(factors, pivots, overwrite_lu=True)
     if info:
