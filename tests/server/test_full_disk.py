@@ -94,6 +94,7 @@ def test_batch_waits_for_room_and_loses_nothing(disk, order):
             assert got.table[key].tobytes() == want.table[key].tobytes()
         assert ("", VARIANTS) == (batch.progress().held_reason, batch.progress().ok_count)
         assert [] == list(seen.glob("batches/*/*.part"))
+        wait_until(lambda: "batches_go_on" in server.log_text(), 10)  # the log runs behind
         events = [line["event"] for line in server.log()]
         assert events.index("batches_held_up") < events.index("batches_go_on")
         assert "incident" not in events
