@@ -159,7 +159,7 @@ class Field:
         for _ in range(tol.WAVE_STEPS):
             size = np.abs(gap).max(axis=-1, keepdims=True)
             wrong = size > tol.WAVE_RESIDUAL * np.maximum(1.0, np.abs(u[..., own]).max(axis=-1, keepdims=True))
-            if not wrong.any():
+            if not wrong.any() or not np.isfinite(size).all():
                 break
             rows = self.jacobian(u, driven, still)[0][..., own, :] * give
             norm = np.linalg.norm(rows, axis=-1, keepdims=True)

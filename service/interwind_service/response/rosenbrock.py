@@ -135,6 +135,8 @@ def integrate(
             stepped, y1 = y1, field.consistent(y1, along[_LAST], give)
             if size > 0.0:
                 error = max(error, _length(y1[:states] - stepped[:states]) / (tolerance * size))
+            if not np.isfinite(y1).all():
+                error = tol.OVERFLOWN_ERROR
         if error <= 1.0 and ledger is not None:
             gone, missed = ledger.energies(y[None], stages[None], w[None], np.array([h]))
             through = effort.through_j + float(np.abs(gone).max())
