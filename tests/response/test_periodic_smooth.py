@@ -133,7 +133,7 @@ def test_the_ledger_closes_over_the_period():
     assert answer.evidence.energy_error < 1e-6
 
 
-@pytest.mark.parametrize("series_ohm", [0.5, 1e-3])
+@pytest.mark.parametrize("series_ohm", [0.5, pytest.param(1e-3, marks=pytest.mark.long)])
 def test_a_bridge_of_exponential_diodes(series_ohm: float):
     """From a state of exactly 0, the source across two diodes and a capacitor: charge balance, and the peak at most
     the crest less two drops at the mean current.
