@@ -10,7 +10,7 @@ import interwind as iw
 from interwind_service import engine
 from interwind_service.batch.overrides import lay_out
 from interwind_service.network.topology import number
-from interwind_service.response.tape import Program, Tape, largest
+from interwind_service.response.stacked.tape import Program, Tape, largest
 
 CLOSE = 1e-12  # of the largest value: what the two methods may differ by
 

@@ -27,6 +27,18 @@ SERVICE: dict[str, tuple[set[str], set[str]]] = {
     "__main__": ({"workers", "server"}, set()),
     "": (set(), set()),
 }
+# The floors of the largest room, from below; what stands beside them in that room may use them all.
+FLOORS: dict[str, set[str]] = {
+    "request": set(),
+    "drive": set(),
+    "equations": set(),
+    "sinusoidal": {"request", "equations"},
+    "stacked": {"equations"},
+    "linear": {"request", "drive", "equations", "sinusoidal"},
+    "switched": {"request", "drive"},
+    "smooth": {"drive", "switched"},
+    "steady": {"request", "drive", "equations", "linear", "switched", "smooth"},
+}
 CLIENT: dict[str, set[str]] = {
     "errors": set(),
     "model": {"errors"},
@@ -125,3 +137,23 @@ def test_every_room_is_on_the_ladder(modules):
     rooms = {(name.split(".")[0], room_of(name, names)) for name in modules}
     known = {("interwind_service", room) for room in SERVICE} | {("interwind", room) for room in CLIENT}
     assert set() == rooms - known
+
+
+def floor_of(dotted: str) -> str:
+    """The floor of the response room that a dotted name stands on, "" where it stands on none."""
+    parts = dotted.split(".")
+    return parts[2] if parts[:2] == ["interwind_service", "response"] and len(parts) > 3 else ""
+
+
+def test_every_floor_stands_on_lower_ones(modules):
+    """Nothing on a floor uses a higher floor, or what the engine calls."""
+    offenders = []
+    for name, tree in modules.items():
+        if (floor := floor_of(name)) == "":
+            continue
+        for line, target in imports(tree):
+            inside = target.startswith("interwind_service.response.")
+            if inside and floor_of(target) not in FLOORS.get(floor, set()) | {floor}:
+                offenders.append(f"{name}:{line} imports {target}")
+    assert [] == offenders
+    assert set(FLOORS) == {floor_of(name) for name in modules} - {""}

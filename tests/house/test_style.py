@@ -7,7 +7,7 @@ import ast
 # Below this a literal is a tolerance, not a coefficient; above its inverse it is a stand-in for infinity.
 SMALL = 1e-3
 NUMBERS = "interwind_service.tolerances"
-TABLES = {"interwind_service.response.tableau"}
+TABLES = {"interwind_service.response.switched.tableau"}
 UNIT_PREFIXES = {"UNIT_FACTORS", "_MICRO"}
 NUMERIC_ROOMS = ("windings", "network", "response", "engine", "tolerances")
 # The outermost edges: one for calls, one for the worker process that serves them.

@@ -12,9 +12,9 @@ from interwind.model.windings import WindingSet
 from interwind_service.network.elimination import eliminate
 from interwind_service.network.topology import number
 from interwind_service.network.winding_coordinates import all_coordinates
-from interwind_service.response.reduction import StateBasis, reduce
-from interwind_service.response.roles import roles_of
-from interwind_service.response.storage import storage_of
+from interwind_service.response.equations.reduction import StateBasis, reduce
+from interwind_service.response.equations.roles import roles_of
+from interwind_service.response.equations.storage import storage_of
 
 
 def basis_of(elements: list[el.Element]) -> StateBasis:

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 import scipy.io
 
-from interwind_service.response.shifted_schur import shifted_schur
+from interwind_service.response.sinusoidal.shifted_schur import shifted_schur
 
 
 def load(data_folder, name: str) -> dict[str, np.ndarray]:

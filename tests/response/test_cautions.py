@@ -11,8 +11,8 @@ from interwind.model.network import Network
 from interwind.model.waveform import DoubleExponential
 from interwind.model.windings import WindingSet
 from interwind_service.network.topology import number
-from interwind_service.response.cautions import Stress, cautions_of
 from interwind_service.response.frequency import frequency_response
+from interwind_service.response.request.cautions import Stress, cautions_of
 
 PLAIN = Network("0", [el.VoltageSource("V", "a", "0", phasor=1.0), el.Capacitor("C", "a", "0", 2e-3)])
 

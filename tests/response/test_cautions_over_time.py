@@ -7,7 +7,7 @@ import pytest
 
 import interwind as iw
 from interwind_service import engine
-from interwind_service.response.observed_stress import source_peak
+from interwind_service.response.switched.observed_stress import source_peak
 
 WAVEFORMS = [
     iw.Constant(-3.0),

@@ -10,11 +10,11 @@ from scipy.optimize import brentq
 
 import interwind as iw
 from interwind_service.network.topology import number
-from interwind_service.response.handover import Handover
-from interwind_service.response.nonlinear import NonlinearRecord, NonlinearRun
-from interwind_service.response.recording import Window
-from interwind_service.response.rosenbrock import Effort, integrate
-from interwind_service.response.smooth_network import Stretch, smooth_network
+from interwind_service.response.request.recording import Window
+from interwind_service.response.smooth.nonlinear import NonlinearRecord, NonlinearRun
+from interwind_service.response.smooth.rosenbrock import Effort, integrate
+from interwind_service.response.smooth.smooth_network import Stretch, smooth_network
+from interwind_service.response.switched.handover import Handover
 from interwind_service.response.switching import time_response_switching
 
 

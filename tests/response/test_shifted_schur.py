@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from interwind_service.response.shifted_schur import shifted_schur
+from interwind_service.response.sinusoidal.shifted_schur import shifted_schur
 
 
 @pytest.mark.parametrize("size", [1, 2, 31, 32, 33, 100])

@@ -8,8 +8,8 @@ from meshes import mesh
 import interwind as iw
 from interwind_service.network.topology import number
 from interwind_service.response.frequency import drives_of, frequency_response
-from interwind_service.response.observe import evaluate
-from interwind_service.response.sparse_nodal import NodalPhasors, is_sparse, nodal_spectrum
+from interwind_service.response.sinusoidal.observe import evaluate
+from interwind_service.response.sinusoidal.sparse_nodal import NodalPhasors, is_sparse, nodal_spectrum
 
 
 def test_against_the_frequency_tree():

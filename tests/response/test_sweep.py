@@ -8,7 +8,7 @@ import pytest
 import interwind as iw
 from interwind_service.network.topology import number
 from interwind_service.response.frequency import frequency_response
-from interwind_service.response.sweep import SweptBand, sweep
+from interwind_service.response.sinusoidal.sweep import SweptBand, sweep
 
 
 def sections(count: int) -> iw.Network:

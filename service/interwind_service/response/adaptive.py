@@ -20,12 +20,12 @@ from interwind.model.observables import Observable
 from interwind.model.response import AdaptiveSweep, FrequencyResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
-from interwind_service.response.admit import admit
 from interwind_service.response.frequency import drives_of, frequency_response
-from interwind_service.response.observe import resolve
+from interwind_service.response.linear.readout import readout_of
 from interwind_service.response.poles import close_poles, linear_rows, model_at
-from interwind_service.response.readout import readout_of
-from interwind_service.response.shifted_schur import shifted_schur
+from interwind_service.response.request.admit import admit
+from interwind_service.response.sinusoidal.observe import resolve
+from interwind_service.response.sinusoidal.shifted_schur import shifted_schur
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]

@@ -14,19 +14,19 @@ from interwind.model.observables import Observable
 from interwind.model.response import FrequencyResponse
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology, with_current_sources
-from interwind_service.response.admit import admit
-from interwind_service.response.cautions import cautions_of
-from interwind_service.response.evidence import gather, judge, require
-from interwind_service.response.findings import open_end_findings, singular_finding
-from interwind_service.response.frequency_tree import Drive
-from interwind_service.response.observe import evaluate, resolve
-from interwind_service.response.phasors import Phasors
-from interwind_service.response.roles import roles_of
-from interwind_service.response.solutions import solutions
-from interwind_service.response.spectrum import checked_frequencies
-from interwind_service.response.stress import StressGauge
-from interwind_service.response.swept_state import Recorder
-from interwind_service.response.undetermined import left_open, refuse
+from interwind_service.response.equations.frequency_tree import Drive
+from interwind_service.response.equations.roles import roles_of
+from interwind_service.response.equations.undetermined import left_open, refuse
+from interwind_service.response.request.admit import admit
+from interwind_service.response.request.cautions import cautions_of
+from interwind_service.response.sinusoidal.evidence import gather, judge, require
+from interwind_service.response.sinusoidal.findings import open_end_findings, singular_finding
+from interwind_service.response.sinusoidal.observe import evaluate, resolve
+from interwind_service.response.sinusoidal.phasors import Phasors
+from interwind_service.response.sinusoidal.solutions import solutions
+from interwind_service.response.sinusoidal.spectrum import checked_frequencies
+from interwind_service.response.sinusoidal.stress import StressGauge
+from interwind_service.response.sinusoidal.swept_state import Recorder
 
 ComplexArray = NDArray[np.complex128]
 

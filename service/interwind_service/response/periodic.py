@@ -16,24 +16,30 @@ from interwind.model.periodic import PeriodicResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
 from interwind_service.network.topology import Topology
-from interwind_service.response.admit import admit
-from interwind_service.response.cautions import cautions_of
-from interwind_service.response.commensurate import require_commensurate
-from interwind_service.response.cycle_map import CycleMap, FixedPoint, fixed_point
-from interwind_service.response.device import TimedSwitch, has_smooth
-from interwind_service.response.energy import energy_of
-from interwind_service.response.figures import figures_of
-from interwind_service.response.observe import resolve
-from interwind_service.response.observed_stress import observed_stress
-from interwind_service.response.output_grid import steps_of
-from interwind_service.response.periodic_linear import periodic_response_linear
-from interwind_service.response.periodic_search import Period, not_periodic, other_start, stability
-from interwind_service.response.periodic_smooth import smooth_period
-from interwind_service.response.readings import readings_of
-from interwind_service.response.rest import residual_state
-from interwind_service.response.switched_network import switched_network
-from interwind_service.response.switching import events_of, evidence_of, require_accuracy, sample, undefined_findings
-from interwind_service.response.trajectory import Trajectory
+from interwind_service.response.drive.commensurate import require_commensurate
+from interwind_service.response.request.admit import admit
+from interwind_service.response.request.cautions import cautions_of
+from interwind_service.response.request.output_grid import steps_of
+from interwind_service.response.sinusoidal.observe import resolve
+from interwind_service.response.steady.cycle_map import CycleMap, FixedPoint, fixed_point
+from interwind_service.response.steady.periodic_linear import periodic_response_linear
+from interwind_service.response.steady.periodic_search import Period, not_periodic, other_start, stability
+from interwind_service.response.steady.periodic_smooth import smooth_period
+from interwind_service.response.switched.device import TimedSwitch, has_smooth
+from interwind_service.response.switched.energy import energy_of
+from interwind_service.response.switched.figures import figures_of
+from interwind_service.response.switched.observed_stress import observed_stress
+from interwind_service.response.switched.outcome import (
+    events_of,
+    evidence_of,
+    require_accuracy,
+    sample,
+    undefined_findings,
+)
+from interwind_service.response.switched.readings import readings_of
+from interwind_service.response.switched.rest import residual_state
+from interwind_service.response.switched.switched_network import switched_network
+from interwind_service.response.switched.trajectory import Trajectory
 
 FloatArray = NDArray[np.float64]
 

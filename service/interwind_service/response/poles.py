@@ -26,12 +26,12 @@ from interwind.model.poles import PoleReport
 from interwind_service import tolerances as tol
 from interwind_service.network.hazards import hazards
 from interwind_service.network.topology import Topology
-from interwind_service.response.admit import admit
+from interwind_service.response.equations.state_space import StateSpace
+from interwind_service.response.equations.time_model import model_of
 from interwind_service.response.frequency import drives_of
-from interwind_service.response.observe import resolve
-from interwind_service.response.readout import readout_of
-from interwind_service.response.state_space import StateSpace
-from interwind_service.response.time_model import model_of
+from interwind_service.response.linear.readout import readout_of
+from interwind_service.response.request.admit import admit
+from interwind_service.response.sinusoidal.observe import resolve
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]

@@ -21,8 +21,8 @@ from interwind.model.finding import Finding, Severity
 from interwind.model.network import Network
 from interwind.model.response import PortResponse
 from interwind_service import tolerances as tol
-from interwind_service.response.best_link import BestLink, best_link
 from interwind_service.response.ports import port_response
+from interwind_service.response.sinusoidal.best_link import BestLink, best_link
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]

@@ -16,15 +16,15 @@ from interwind.model.response import PortResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.hazards import hazards
 from interwind_service.network.topology import Topology, number
-from interwind_service.response.admit import admit
-from interwind_service.response.evidence import Judgement, gather, judge, require
-from interwind_service.response.findings import singular_finding
+from interwind_service.response.equations.frequency_tree import Drive
+from interwind_service.response.equations.roles import Roles, roles_of
+from interwind_service.response.equations.undetermined import left_open
 from interwind_service.response.frequency import drives_of, port_nodes, unused_name
-from interwind_service.response.frequency_tree import Drive
-from interwind_service.response.roles import Roles, roles_of
-from interwind_service.response.solutions import solutions
-from interwind_service.response.spectrum import checked_frequencies
-from interwind_service.response.undetermined import left_open
+from interwind_service.response.request.admit import admit
+from interwind_service.response.sinusoidal.evidence import Judgement, gather, judge, require
+from interwind_service.response.sinusoidal.findings import singular_finding
+from interwind_service.response.sinusoidal.solutions import solutions
+from interwind_service.response.sinusoidal.spectrum import checked_frequencies
 
 ComplexArray = NDArray[np.complex128]
 FloatArray = NDArray[np.float64]

@@ -21,17 +21,17 @@ from interwind.model.vary import Column
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
 from interwind_service.network.winding_coordinates import all_coordinates
-from interwind_service.response.admit import admit
-from interwind_service.response.factor import equilibrate
+from interwind_service.response.equations.factor import equilibrate
+from interwind_service.response.equations.frequency_tree import FrequencyTree
+from interwind_service.response.equations.undetermined import undetermined
 from interwind_service.response.frequency import drives_of
-from interwind_service.response.frequency_tree import FrequencyTree
-from interwind_service.response.observe import resolve
-from interwind_service.response.spectrum import bands, checked_frequencies
-from interwind_service.response.stack_writer import StackWriter
-from interwind_service.response.straight_line import elimination_order
-from interwind_service.response.tape import Program
-from interwind_service.response.undetermined import undetermined
-from interwind_service.response.variants import Name, Variants, variants_of
+from interwind_service.response.request.admit import admit
+from interwind_service.response.sinusoidal.observe import resolve
+from interwind_service.response.sinusoidal.spectrum import bands, checked_frequencies
+from interwind_service.response.stacked.stack_writer import StackWriter
+from interwind_service.response.stacked.straight_line import elimination_order
+from interwind_service.response.stacked.tape import Program
+from interwind_service.response.stacked.variants import Name, Variants, variants_of
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]

@@ -2,35 +2,39 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Callable, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
 
-from interwind.errors import AccuracyNotReached
-from interwind.model.finding import Evidence, Finding, Severity
 from interwind.model.network import Network
 from interwind.model.observables import Observable
 from interwind.model.recording import RecordFigures, Recording
-from interwind.model.response import EnergyLedger, Event, Initial, TimeResponse
+from interwind.model.response import Initial, TimeResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.topology import Topology
-from interwind_service.response.admit import admit
-from interwind_service.response.cautions import cautions_of
-from interwind_service.response.device import has_smooth
-from interwind_service.response.energy import Energy, energy_of
-from interwind_service.response.figures import figures_of
-from interwind_service.response.handover import Handover, window_held
-from interwind_service.response.nonlinear import NonlinearRun
-from interwind_service.response.observe import resolve
-from interwind_service.response.output_grid import steps_of
-from interwind_service.response.readings import Readings, readings_of
-from interwind_service.response.recording import Window
-from interwind_service.response.start import start_state
-from interwind_service.response.start_jump import start_findings
-from interwind_service.response.switched_network import SwitchedNetwork, switched_network
-from interwind_service.response.trajectory import Rows, Trajectory
+from interwind_service.response.request.admit import admit
+from interwind_service.response.request.cautions import cautions_of
+from interwind_service.response.request.output_grid import steps_of
+from interwind_service.response.request.recording import Window
+from interwind_service.response.sinusoidal.observe import resolve
+from interwind_service.response.smooth.nonlinear import NonlinearRun
+from interwind_service.response.switched.device import has_smooth
+from interwind_service.response.switched.energy import energy_of
+from interwind_service.response.switched.figures import figures_of
+from interwind_service.response.switched.handover import Handover, window_held
+from interwind_service.response.switched.outcome import (
+    events_of,
+    evidence_of,
+    require_accuracy,
+    sample,
+    undefined_findings,
+)
+from interwind_service.response.switched.readings import readings_of
+from interwind_service.response.switched.start import start_state
+from interwind_service.response.switched.start_jump import start_findings
+from interwind_service.response.switched.switched_network import switched_network
+from interwind_service.response.switched.trajectory import Trajectory
 from interwind_service.rows import RowSink
 
 FloatArray = NDArray[np.float64]
@@ -156,65 +160,4 @@ def time_response_smooth(
         findings=(*topology.findings, *undefined_findings(observables, run.record.undefined)),
         cautions=cautions_of(topology, out.stress),
         evidence=run.evidence,
-    )
-
-
-def sample(record: Trajectory, readings: dict[int, Readings], time_s: FloatArray, step_s: float) -> FloatArray:
-    """Return the observables at instants, shape (T, observables); NaN where nothing defines them."""
-    rows: dict[int, Rows] = {number: own.rows for number, own in readings.items()}
-
-    def finish(number: int, sampled: FloatArray) -> FloatArray:
-        value = readings[number].values(sampled)
-        value[:, readings[number].undefined] = np.nan
-        return value
-
-    return record.samples(rows, time_s, tol.SETTLE_SHARE * step_s, finish)
-
-
-def events_of(network: SwitchedNetwork, record: Trajectory) -> tuple[Event, ...]:
-    """Return the changes of switches and diodes in order; a saturable branch has none."""
-    found = []
-    for time_s, position, mode in record.changes:
-        device = network.tableau.devices[position]
-        if mode in device.words:
-            found.append(Event(float(time_s), device.name, device.words[mode]))
-    return tuple(found)
-
-
-def evidence_of(
-    network: SwitchedNetwork, energy: Energy, record: Trajectory, method: str, periods: int = 0
-) -> Evidence:
-    """Gather what vouches for a switched run."""
-    return Evidence(
-        method=method,
-        residual=record.residual(network.tableau),
-        condition=network.pieces.worst_condition,
-        energy_error=energy.error,
-        periods_propagated=periods,
-    )
-
-
-def require_accuracy(evidence: Evidence, ledger: EnergyLedger, tolerance: float) -> None:
-    """Refuse numbers whose energy ledger or equations miss the tolerance."""
-    for name, value in (("energy_error", evidence.energy_error), ("residual", evidence.residual)):
-        if not (math.isfinite(value) and value <= tolerance):
-            raise AccuracyNotReached(
-                f"{name} is {value:.3g}; the tolerance is {tolerance:g}; {ledger.numerical_j:.3g} J of "
-                f"{ledger.supplied_j:.6g} J supplied are unaccounted for; check for loops without resistance, "
-                "or state a larger tolerance",
-                evidence=evidence,
-            )
-
-
-def undefined_findings(observables: Sequence[Observable], readings: dict[int, Readings]) -> tuple[Finding, ...]:
-    """Say which observables had no path that defines them for a stretch."""
-    ever = np.any([own.undefined for own in readings.values()], axis=0)
-    return tuple(
-        Finding(
-            "UNDEFINED_POTENTIAL",
-            Severity.WARNING,
-            field="observe",
-            message=f"{observables[k]!r} is NaN while ideal open switches and blocking diodes leave it without a path",
-        )
-        for k in np.flatnonzero(ever)
     )

@@ -14,24 +14,24 @@ from interwind.model.recording import Recording
 from interwind.model.response import Initial, TimeResponse
 from interwind_service import tolerances as tol
 from interwind_service.network.kind import Kind
-from interwind_service.response.admit import admit
-from interwind_service.response.cautions import cautions_of
-from interwind_service.response.flow import flow_of
-from interwind_service.response.generator import Generator, generator_of
-from interwind_service.response.handover import window_held
-from interwind_service.response.initial import start_of
-from interwind_service.response.ledger import ledger_of
-from interwind_service.response.linear_evidence import evidence_of_run, require_run
-from interwind_service.response.linear_run import run_linear
-from interwind_service.response.observe import resolve
-from interwind_service.response.output_grid import steps_of
-from interwind_service.response.readout import Readout, readout_of
-from interwind_service.response.recording import Recorder
-from interwind_service.response.state_space import StateSpace
-from interwind_service.response.stated import stated_of
+from interwind_service.response.drive.generator import Generator, generator_of
+from interwind_service.response.equations.state_space import StateSpace
+from interwind_service.response.equations.time_model import model_of
+from interwind_service.response.linear.flow import flow_of
+from interwind_service.response.linear.initial import start_of
+from interwind_service.response.linear.ledger import ledger_of
+from interwind_service.response.linear.linear_evidence import evidence_of_run, require_run
+from interwind_service.response.linear.linear_run import run_linear
+from interwind_service.response.linear.readout import Readout, readout_of
+from interwind_service.response.linear.time_stress import stress_of
+from interwind_service.response.request.admit import admit
+from interwind_service.response.request.cautions import cautions_of
+from interwind_service.response.request.output_grid import steps_of
+from interwind_service.response.request.recording import Recorder
+from interwind_service.response.request.stated import stated_of
+from interwind_service.response.sinusoidal.observe import resolve
+from interwind_service.response.switched.handover import window_held
 from interwind_service.response.switching import time_response_switching
-from interwind_service.response.time_model import model_of
-from interwind_service.response.time_stress import stress_of
 from interwind_service.rows import RowSink, offer
 
 FloatArray = NDArray[np.float64]

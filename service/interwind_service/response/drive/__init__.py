@@ -1,0 +1,1 @@
+"""What drives a network: waveforms as generators, and the instants at which they change."""

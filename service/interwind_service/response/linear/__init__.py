@@ -1,0 +1,1 @@
+"""Exact runs of linear networks: propagation, energy ledger, recording."""

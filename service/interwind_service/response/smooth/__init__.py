@@ -1,0 +1,1 @@
+"""Networks with smooth laws, run by a Rosenbrock method."""
