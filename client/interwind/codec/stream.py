@@ -58,17 +58,19 @@ class ChunkWriter:
         self._hash = hashlib.sha256()
         self._offset = 0
 
-    def chunks(self, array: NDArray[Any]) -> Iterator[Any]:
-        """Yield the response messages that carry the bytes of one array."""
-        little = np.ascontiguousarray(array, dtype=DTYPES[dtype_code(array)])
-        view = memoryview(little.reshape(-1).view(np.uint8).data)
-        for start in range(0, len(view), CHUNK_BYTES):
-            piece = bytes(view[start : start + CHUNK_BYTES])
-            self._hash.update(piece)
-            part = self._part()
-            part.chunk.offset_bytes, part.chunk.data = self._offset, piece  # in place: a constructor would copy twice
-            yield part
-            self._offset += len(piece)
+    def chunks(self, *arrays: NDArray[Any]) -> Iterator[Any]:
+        """Yield the response messages that carry the bytes of arrays, all in one where one holds them."""
+        views = [_bytes_of(array) for array in arrays]
+        if sum(map(len, views)) <= CHUNK_BYTES:
+            views = [memoryview(b"".join(views))]
+        for view in views:
+            for start in range(0, len(view), CHUNK_BYTES):
+                piece = bytes(view[start : start + CHUNK_BYTES])
+                self._hash.update(piece)
+                part = self._part()
+                part.chunk.offset_bytes, part.chunk.data = self._offset, piece  # a constructor would copy twice
+                yield part
+                self._offset += len(piece)
 
     def trailer(self, value: Any) -> Any:
         """Return the message that ends the stream: evidence, findings and cautions of ``value``, and the checksum."""
@@ -89,12 +91,16 @@ def encode_stream(
     """Yield the response messages of a finished answer; ``finish`` may add to the trailer."""
     yield part(header=header_of(arrays))
     writer = ChunkWriter(part)
-    for item in arrays:
-        yield from writer.chunks(item.array)
+    yield from writer.chunks(*(item.array for item in arrays))
     trailer = writer.trailer(value)
     if finish is not None:
         finish(trailer.trailer)
     yield trailer
+
+
+def _bytes_of(array: NDArray[Any]) -> memoryview:
+    little = np.ascontiguousarray(array, dtype=DTYPES[dtype_code(array)])
+    return memoryview(little.reshape(-1).view(np.uint8).data)
 
 
 class RowStream:

@@ -57,12 +57,19 @@ class ShiftedSchur:
         denominator *= weight
         return denominator
 
-    def distance(self, shift: ComplexArray) -> FloatArray:
-        """Return the least |1 + σ μ| / (1 + |σ μ|) over the eigenvalues μ of K, (f,): 0 where I + σ K is singular."""
+    def near(self, shift: ComplexArray, distance: float) -> NDArray[np.bool_]:
+        """Return where |1 + σ μ| < distance (1 + |σ μ|) for an eigenvalue μ of K, (f,): I + σ K is nearly singular.
+
+        |1 + σ μ| = |μ* + |μ|² σ| / |μ| is at least the real part of that, so that few μ need a look at every σ.
+        """
         poles = self.T.diagonal()
+        size = np.abs(poles)
+        inward = poles.real[:, None] + (size**2)[:, None] * np.array([shift.real.min(), shift.real.max()])
+        least = np.where(inward[:, 0] * inward[:, 1] > 0.0, np.abs(inward).min(axis=1), 0.0)
+        poles = poles[least < distance * (1.0 + size * np.abs(shift).max()) * size]
         apart = np.abs(1.0 + poles[:, None] * shift)
         apart /= 1.0 + np.abs(poles)[:, None] * np.abs(shift)
-        return apart.min(axis=0, initial=1.0)
+        return (apart < distance).any(axis=0)
 
 
 def shifted_schur(K: FloatArray) -> ShiftedSchur:

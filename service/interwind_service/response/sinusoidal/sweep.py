@@ -87,7 +87,7 @@ def sweep(
         s0 = float(np.sqrt(omega[part[0]] * omega[part[-1]]))
         own = resolvent(basis, roles, s0)
         schur = shifted_schur(own.K)
-        near = schur.distance(1j * omega[part] - s0) < tol.SWEEP_POLE_DISTANCE
+        near = schur.near(1j * omega[part] - s0, tol.SWEEP_POLE_DISTANCE)
         if near.any():
             yield order[part[near]]
             part = part[~near]

@@ -66,9 +66,8 @@ class SweptState:
         self.topology: Topology = band.topology
         self.omega: FloatArray = band.s.imag
         self._band, self._u, self._coordinates = band, u, coordinates
-        self._t: ComplexArray = np.zeros(band.t.shape[:2], dtype=np.complex128)
-        for k in np.flatnonzero(u):
-            self._t += band.t[:, :, k] * u[k]
+        driven = [band.t[:, :, k] * u[k] for k in np.flatnonzero(u)]
+        self._t: ComplexArray = sum(driven[1:], driven[0]) if driven else np.zeros(band.t.shape[:2], np.complex128)
         self._base = len(self.topology.kind)
         self._places: dict[int, int] = {}
         self._signals = np.zeros((0, len(self.omega)), dtype=np.complex128)
