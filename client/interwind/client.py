@@ -12,7 +12,7 @@ from typing import Any
 from numpy.typing import ArrayLike
 
 from interwind.batch import Batch, list_batches, submit
-from interwind.calling import Caller, Deadline
+from interwind.calling import HEALTH_CHECK, Caller, Deadline
 from interwind.channel import DEFAULT_TIMEOUT_S, RetryPolicy, Target
 from interwind.codec.array import stored_arrays
 from interwind.codec.batch import Submission
@@ -294,7 +294,7 @@ class Client:
     def health(self, *, timeout_s: float = DEFAULT_TIMEOUT_S) -> bool:
         """Say whether the server takes calls: the standard gRPC health check."""
         try:
-            answer = self._caller.unary("/grpc.health.v1.Health/Check", b"", _Bytes, Deadline(timeout_s))
+            answer = self._caller.unary(HEALTH_CHECK, b"", _Bytes, Deadline(timeout_s))
         except Unavailable:
             return False
         return bool(answer == b"\x08\x01")  # status = SERVING

@@ -6,6 +6,7 @@ import os
 import socket
 import subprocess
 import sys
+import threading
 import time
 from collections.abc import Iterator
 from concurrent import futures
@@ -244,3 +245,20 @@ def test_calls_from_many_threads_share_one_client(real_service):
         reports = list(threads.map(lambda _: client.check(coils), range(40)))
 
     assert {report.verdict for report in reports} == {iw.Verdict.VALID}
+
+
+def test_closing_does_not_wait_for_a_call_that_an_interrupt_left_half_made(scripted, monkeypatch):
+    """Its own thread never began, so the channel, which waits for every call it counts, would wait for good."""
+    client = iw.connect(scripted.address)
+    client.server_info()
+    half_made, close = threading.Event(), client._caller._channel.close
+    monkeypatch.setattr(client._caller._channel, "close", half_made.wait)
+    start_s = time.monotonic()
+    client.close()
+    waited_s = time.monotonic() - start_s
+    half_made.set()
+    close()
+
+    assert waited_s < 3.0
+    with pytest.raises(iw.Cancelled):
+        client.server_info()
