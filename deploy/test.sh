@@ -19,7 +19,8 @@ stage "types";             mypy
 stage "contract lint";     buf lint proto
 stage "contract breaking"; buf breaking proto --against proto/contract.binpb
 stage "house rules";       python -m pytest tests/house
-stage "tests";             python -m pytest tests --ignore=tests/house --durations=10 "$@"
+red=0  # a red test does not keep the last stage from being seen
+stage "tests";             python -m pytest tests --ignore=tests/house --durations=10 "$@" || red=1
 
 if [ "$long" = yes ]; then
   # The floors stand in pyproject.toml only; here they become pins.
@@ -33,6 +34,7 @@ PYTHON
   # shellcheck disable=SC2086 — one pin a word
   environment .venv-floor service,plot,dev $floors
   stage "oldest grpcio and protobuf"
-  .venv-floor/bin/python -m pytest tests/codec tests/client tests/server
+  .venv-floor/bin/python -m pytest tests/codec tests/client tests/server || red=1
 fi
+if [ "$red" != 0 ]; then stage "tests failed, see above"; exit 1; fi
 stage "all passed"

@@ -2,5 +2,8 @@
 
 The modules at the top are what the engine calls; each floor below them may use only floors further down:
 
-    steady -> smooth -> switched -> linear, stacked -> sinusoidal -> equations, drive, request
+    steady -> smooth -> switched -> drive, request
+    steady -> linear -> sinusoidal -> equations, request
+    linear -> drive
+    stacked -> equations
 """

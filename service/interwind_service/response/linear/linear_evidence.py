@@ -5,12 +5,12 @@ from __future__ import annotations
 from interwind.errors import AccuracyNotReached
 from interwind.model.finding import Evidence
 from interwind.model.response import EnergyLedger
-from interwind_service import tolerances as tol
 from interwind_service.response.equations.state_space import StateSpace
 from interwind_service.response.linear.flow import Flow
 from interwind_service.response.linear.linear_run import LinearRun
 from interwind_service.response.linear.real_axis import source_evidence
 from interwind_service.response.linear.residual import equation_residual
+from interwind_service.response.sinusoidal.evidence import beyond_passive
 
 
 def evidence_of_run(
@@ -46,10 +46,7 @@ def require_run(evidence: Evidence, tolerance: float) -> None:
         )
         if not value <= limit
     ]
-    if evidence.reciprocity_error > tol.RECIPROCITY_LIMIT:
-        beyond.append(f"reciprocity_error {evidence.reciprocity_error:.3g} above {tol.RECIPROCITY_LIMIT:g}")
-    if evidence.passivity_margin < tol.PASSIVITY_LIMIT:
-        beyond.append(f"passivity_margin {evidence.passivity_margin:.3g} below {tol.PASSIVITY_LIMIT:g}")
+    beyond += beyond_passive(evidence)
     if beyond:
         raise AccuracyNotReached(
             f"evidence: {'; '.join(beyond)}; the response is not returned; choose a larger tolerance, a shorter run or "

@@ -84,6 +84,16 @@ def gather(method: str, judged: Sequence[Judgement]) -> Evidence:
     )
 
 
+def beyond_passive(evidence: Evidence) -> list[str]:
+    """Say where reciprocity and passivity miss their limits; NaN, where they do not apply, misses none."""
+    beyond = []
+    if evidence.reciprocity_error > tol.RECIPROCITY_LIMIT:
+        beyond.append(f"reciprocity_error {evidence.reciprocity_error:.3g} above {tol.RECIPROCITY_LIMIT:g}")
+    if evidence.passivity_margin < tol.PASSIVITY_LIMIT:
+        beyond.append(f"passivity_margin {evidence.passivity_margin:.3g} below {tol.PASSIVITY_LIMIT:g}")
+    return beyond
+
+
 def require(evidence: Evidence) -> None:
     """Refuse a response whose evidence is beyond its tolerance.
 
@@ -94,10 +104,7 @@ def require(evidence: Evidence) -> None:
     beyond = []
     if not evidence.residual <= tol.RESIDUAL_LIMIT:
         beyond.append(f"residual {evidence.residual:.3g} above {tol.RESIDUAL_LIMIT:g}")
-    if evidence.reciprocity_error > tol.RECIPROCITY_LIMIT:
-        beyond.append(f"reciprocity_error {evidence.reciprocity_error:.3g} above {tol.RECIPROCITY_LIMIT:g}")
-    if evidence.passivity_margin < tol.PASSIVITY_LIMIT:
-        beyond.append(f"passivity_margin {evidence.passivity_margin:.3g} below {tol.PASSIVITY_LIMIT:g}")
+    beyond += beyond_passive(evidence)
     if beyond:
         raise AccuracyNotReached(
             f"evidence: {'; '.join(beyond)}; condition {evidence.condition:.3g}; leave out the frequencies next to a "

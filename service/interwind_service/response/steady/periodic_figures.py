@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
@@ -13,20 +12,10 @@ from interwind_service.response.drive.generator import Generator
 from interwind_service.response.linear.exponential import Ladder
 from interwind_service.response.linear.flow import Flow
 from interwind_service.response.linear.readout import Readout
+from interwind_service.response.switched.figures import Figures
 
 FloatArray = NDArray[np.float64]
 ComplexArray = NDArray[np.complex128]
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class Figures:
-    """``mean``, ``rms``, ``peak``, ``peak_time_s`` (observables,); ``harmonic`` (observables, K), complex peaks."""
-
-    mean: FloatArray
-    rms: FloatArray
-    peak: FloatArray
-    peak_time_s: FloatArray
-    harmonic: ComplexArray
 
 
 def figures_over_period(
