@@ -28,16 +28,6 @@ def frozen_floats(value: Any, field: str) -> FloatArray:
     return array
 
 
-def frozen_complex(value: Any, field: str) -> ComplexArray:
-    """Return a read-only complex128 copy of ``value``."""
-    raw = np.asarray(value)
-    if raw.dtype.kind not in "buifc":
-        raise InvalidRequest.at(field, f"{raw.dtype} found; numbers are expected here")
-    array = np.array(raw, dtype=np.complex128, order="C")
-    array.setflags(write=False)
-    return array
-
-
 def frozen_vector(value: Any, field: str) -> FloatArray:
     """Return a read-only float64 vector, shape (n,)."""
     array = frozen_floats(value, field)

@@ -14,7 +14,6 @@ import numpy as np
 from numpy.typing import NDArray
 
 from interwind.errors import InvalidRequest
-from interwind.model import elements as el
 from interwind.model.devices import Gate, GateTimes, Switch
 from interwind_service import tolerances as tol
 from interwind_service.network.forest import components
@@ -176,20 +175,3 @@ def closed_at(gate: Gate | GateTimes, time_s: float) -> bool:
     if isinstance(gate, Gate):
         return gate.on_s >= gate.period_s or (time_s - gate.delay_s) % gate.period_s < gate.on_s
     return gate.initially_closed ^ bool(int(np.searchsorted(gate.toggle_s, time_s, side="right")) % 2)
-
-
-def shortest_period_s(topology: Topology) -> float | None:
-    """Return the shortest period of any gate or waveform, None when nothing repeats."""
-    periods = [
-        element.closed.period_s
-        for element in topology.network.elements
-        if isinstance(element, Switch) and isinstance(element.closed, Gate)
-    ]
-    for element in topology.network.elements:
-        if isinstance(element, el.VoltageSource | el.CurrentSource):
-            waveform = element.waveform
-            if hasattr(waveform, "period_s"):
-                periods.append(waveform.period_s)
-            elif hasattr(waveform, "frequency_hz") and waveform.frequency_hz > 0.0:
-                periods.append(1.0 / waveform.frequency_hz)
-    return min(periods) if periods else None
